@@ -1,0 +1,100 @@
+"""Arrows point inwards only: cli -> app -> api -> workflows -> charts -> trade -> flow."""
+
+import ast
+import sys
+
+import pytest
+
+from support.tree import imports, module_name, modules, relative, syntax
+
+LAYERS = ("flow", "trade", "charts", "workflows", "api", "app", "cli")
+"""From the inside out; a module imports from its own layer and from those before it."""
+
+OUTERMOST = {"report", "demo", "__main__"}
+"""Parts of the command line that have files of their own."""
+
+THIRD_PARTY = {
+    "flow": {"numpy", "scipy", "numba"},
+    "trade": {"numpy", "scipy", "gsw"},
+    "charts": {"numpy", "matplotlib", "contourpy"},
+    "workflows": {"numpy"},
+}
+"""What the layers without HTTP may import from outside; the layers above are free."""
+
+LEAVES = {"settings"}
+"""Modules that import nothing of ours and may be imported from `api` outwards."""
+
+FILES = modules()
+
+
+def layer_of(name: str) -> str:
+    """Layer of a dotted name in the package; the package itself, which holds the version, counts as `api`."""
+    parts = name.split(".")
+    part = parts[1] if len(parts) > 1 else "api"
+    if part in OUTERMOST:
+        return "cli"
+    return "api" if part in LEAVES or part not in LAYERS else part
+
+
+def ours(names: set[str]) -> set[str]:
+    return {name for name in names if name.split(".")[0] == "forebay"}
+
+
+@pytest.mark.parametrize("path", FILES, ids=relative)
+def test_imports_point_inwards(path):
+    here = layer_of(module_name(path))
+    outward = {
+        name for name in ours(imports(syntax(path))) if LAYERS.index(layer_of(name)) > LAYERS.index(here)
+    }
+    assert not outward, f"{relative(path)} ({here}) imports outwards: {sorted(outward)}"
+
+
+@pytest.mark.parametrize("path", modules(*THIRD_PARTY), ids=relative)
+def test_inner_layers_import_only_their_libraries(path):
+    layer = layer_of(module_name(path))
+    allowed = THIRD_PARTY[layer] | set(sys.stdlib_module_names) | {"forebay"}
+    foreign = {name for name in imports(syntax(path)) if name.split(".")[0] not in allowed}
+    assert not foreign, (
+        f"{relative(path)} imports {sorted(foreign)}; {layer} may use {sorted(THIRD_PARTY[layer])}"
+    )
+
+
+@pytest.mark.parametrize("path", FILES, ids=relative)
+def test_imports_are_absolute(path):
+    relative_imports = [
+        node.lineno for node in ast.walk(syntax(path)) if isinstance(node, ast.ImportFrom) and node.level > 0
+    ]
+    assert not relative_imports
+
+
+def import_graph() -> dict[str, set[str]]:
+    """Modules that each module needs in order to be imported (imports inside functions left out)."""
+    names = {module_name(path) for path in FILES}
+    return {
+        module_name(path): needed_at_import(syntax(path)) & names - {module_name(path)}
+        for path in FILES
+        if path.name != "__init__.py"
+    }
+
+
+def needed_at_import(tree: ast.Module) -> set[str]:
+    top = [node for node in tree.body if isinstance(node, (ast.Import, ast.ImportFrom))]
+    return ours(imports(ast.Module(body=list(top), type_ignores=[])))
+
+
+def depth(name: str, graph: dict[str, set[str]], above: tuple[str, ...] = ()) -> int:
+    assert name not in above, f"import cycle: {' -> '.join((*above, name))}"
+    below = [depth(needed, graph, (*above, name)) for needed in sorted(graph.get(name, set()))]
+    return 1 + max(below, default=0)
+
+
+def test_imports_have_no_cycle_and_stay_shallow():
+    graph = import_graph()
+    deepest = max(graph, key=lambda name: depth(name, graph))
+    # the chain cli, app, api (3), workflows, charts, trade and flow (4) is as long as it should get
+    assert depth(deepest, graph) <= 14, deepest
+
+
+def test_layers_are_all_there():
+    seen = {layer_of(module_name(path)) for path in FILES}
+    assert seen == set(LAYERS)
