@@ -10,7 +10,7 @@ from support.tree import imports, module_name, modules, relative, syntax
 LAYERS = ("flow", "trade", "charts", "workflows", "api", "app", "cli")
 """From the inside out; a module imports from its own layer and from those before it."""
 
-OUTERMOST = {"report", "demo", "__main__"}
+OUTERMOST = {"__main__", "assess", "demo", "report", "server"}
 """Parts of the command line that have files of their own."""
 
 THIRD_PARTY = {

@@ -1,0 +1,98 @@
+"""Assess a file with the service's own application, in this process and without a network."""
+
+import asyncio
+import json
+from collections.abc import Mapping
+from pathlib import Path
+from typing import Any
+
+from forebay.app import create_app
+from forebay.report import engineers_table
+from forebay.settings import Settings
+
+ROUTE = "/v1/assessment"
+
+
+class FileError(Exception):
+    """A file cannot be assessed; the text says why, line by line."""
+
+
+def assess_file(path: Path) -> str:
+    """Engineer's table of the layout or assessment request in a file."""
+    request = as_request(read_json(path))
+    status, answer = asyncio.run(post(ROUTE, request))
+    if status != 200:
+        raise FileError(problem_text(path, answer))
+    return engineers_table(request, answer)
+
+
+def read_json(path: Path) -> dict[str, Any]:
+    """Content of a file that must hold one JSON object."""
+    try:
+        content = json.loads(path.read_text(encoding="utf-8"))
+    except OSError as error:
+        raise FileError(f"{path}: {error.strerror}") from error
+    except ValueError as error:
+        raise FileError(f"{path}: not JSON: {error}") from error
+    if not isinstance(content, dict):
+        raise FileError(f"{path}: a JSON object was expected")
+    return content
+
+
+def as_request(content: dict[str, Any]) -> dict[str, Any]:
+    """Body of an assessment: a bare layout, known by its `depth`, is wrapped."""
+    return {"layout": content} if "depth" in content and "layout" not in content else content
+
+
+def problem_text(path: Path, problem: Mapping[str, Any]) -> str:
+    """Problem details as lines: the title, then one line for each place at fault."""
+    lines = [f"{path}: {problem['title']}"]
+    errors = problem.get("errors") or [{"pointer": "", "detail": problem.get("detail", "")}]
+    lines += [f"  {error.get('pointer', '')}: {error['detail']}" for error in errors]
+    return "\n".join(lines)
+
+
+async def post(route: str, body: Mapping[str, Any]) -> tuple[int, dict[str, Any]]:
+    """Status and answer of the application to a POST, handed over without a socket."""
+    app = create_app(Settings())
+    payload = json.dumps(body).encode()
+    sent: list[Mapping[str, Any]] = []
+    waiting = [{"type": "http.request", "body": payload, "more_body": False}]
+
+    async def receive() -> Mapping[str, Any]:
+        if waiting:
+            return waiting.pop()
+        await asyncio.Event().wait()  # the client stays connected for as long as it takes
+        raise AssertionError
+
+    async def send(message: Mapping[str, Any]) -> None:
+        sent.append(message)
+
+    async with app.router.lifespan_context(app):
+        await app(scope(route, len(payload)), receive, send)
+    content = b"".join(message.get("body", b"") for message in sent)
+    return int(sent[0]["status"]), json.loads(content)
+
+
+def scope(route: str, length: int) -> dict[str, Any]:
+    """What the application learns of a request before its body."""
+    headers = [
+        (b"host", b"localhost"),
+        (b"content-type", b"application/json"),
+        (b"content-length", str(length).encode()),
+        (b"accept", b"application/json"),
+    ]
+    return {
+        "type": "http",
+        "asgi": {"version": "3.0"},
+        "http_version": "1.1",
+        "method": "POST",
+        "scheme": "http",
+        "path": route,
+        "raw_path": route.encode(),
+        "query_string": b"",
+        "root_path": "",
+        "headers": headers,
+        "client": ("127.0.0.1", 0),
+        "server": ("127.0.0.1", 0),
+    }

@@ -1,0 +1,1 @@
+"""The demonstration: an invented site, sent to a service started for it."""

@@ -1,0 +1,66 @@
+"""Start the service on loopback, assess the invented site over HTTP, draw it, say where everything is."""
+
+import json
+from importlib.resources import files
+from pathlib import Path
+from typing import Any
+from urllib.request import Request, urlopen
+
+from forebay.demo.child import Service
+from forebay.report import engineers_table
+
+WAIT = 120.0
+"""Longest wait for an answer [s]: the first one may have to compile."""
+
+INTRODUCTION = """\
+The site is invented. In a dry summer a power station on the right bank of a river draws its cooling water
+through screens along the bank and returns it 30 m downstream. A town draws further down, below a
+bridge; on the far bank a farm draws below a treatment works. Whose water does each of them get?"""
+
+
+def run_demo(output: Path, *, keep: bool) -> int:
+    """Whole demonstration; the value is the exit code. The picture and the service's log go to `output`."""
+    output.mkdir(parents=True, exist_ok=True)
+    with Service(log=output / "service.log") as service:
+        print(f"Service started on {service.address}\n\n{INTRODUCTION}\n", flush=True)
+        request = demo_request()
+        answer = json.loads(post(f"{service.address}/v1/assessment", request, accept="application/json"))
+        print(engineers_table(request, answer))
+        picture = output / "flow-net.svg"
+        body = {"layout": request["layout"]}
+        picture.write_bytes(post(f"{service.address}/v1/chart/flow-net", body, accept="image/svg+xml"))
+        print(f"\nPicture: {picture}\nAnswer:  {write_answer(output, answer)}")
+        if keep:
+            print(
+                f"Service: {service.address}\nDocs:    {service.address}/docs\nCtrl-C stops it.", flush=True
+            )
+            service.wait()
+        else:
+            print("Service: stopped; `forebay demo --keep` leaves it up, with its docs at /docs")
+    return 0
+
+
+def demo_request() -> dict[str, Any]:
+    """Body of the assessment: the packaged site and three transects over it."""
+    return {"layout": packaged("layout.json"), "transects": packaged("transects.json")}
+
+
+def packaged(name: str) -> Any:  # noqa: ANN401  (JSON)
+    """Content of a JSON file that is installed with the package."""
+    return json.loads((files("forebay.demo") / name).read_text(encoding="utf-8"))
+
+
+def post(address: str, body: dict[str, Any], *, accept: str) -> bytes:
+    """Answer to a POST over HTTP."""
+    headers = {"Content-Type": "application/json", "Accept": accept}
+    request = Request(address, data=json.dumps(body).encode(), headers=headers, method="POST")
+    with urlopen(request, timeout=WAIT) as response:
+        content: bytes = response.read()
+    return content
+
+
+def write_answer(output: Path, answer: dict[str, Any]) -> Path:
+    """Path of the file that now holds the whole answer."""
+    path = output / "assessment.json"
+    path.write_text(json.dumps(answer, indent=2), encoding="utf-8")
+    return path

@@ -1,0 +1,195 @@
+"""The engineer's table: an assessment's answer as lines of text, whoever computed it."""
+
+from collections.abc import Iterable, Mapping, Sequence
+from textwrap import wrap
+from typing import Any
+
+Json = Mapping[str, Any]
+Row = Sequence[str]
+
+WIDTH = 100
+
+RECIRCULATION_CLOSED_FORM = 1e-12
+"""Share below which an error is rounding of a closed form, and printed as such [-]."""
+
+CAUTIONS = (
+    "Screening level: depth-mean, steady, frictionless flow in the plane.",
+    "Not for the safety of divers, swimmers or craft.",
+    "Regulators' criteria and licensed engineers decide.",
+)
+
+
+def engineers_table(request: Json, answer: Json) -> str:
+    """Table of an assessment: `request` is the body that was sent, `answer` the envelope that came back."""
+    result, units = answer["result"], answer["units"]
+    sections = [
+        heading(request["layout"], answer["provenance"], units),
+        intakes_section(result["withdrawal"]["intakes"], units),
+        stagnation_section(result["stagnation"], units),
+        transects_section(result.get("transects", []), units),
+        warnings_section(answer["warnings"]),
+        cautions_section(result.get("cautions", CAUTIONS)),
+    ]
+    return "\n\n".join("\n".join(lines) for lines in sections if lines)
+
+
+def heading(layout: Json, provenance: Json, units: Json) -> list[str]:
+    """What was assessed, by what."""
+    elements = [element["kind"].replace("-", " ") for element in layout.get("elements", [])]
+    structures = [structure["kind"] for structure in layout.get("structures", [])]
+    things = ", ".join(f"{count} {kind}" for kind, count in counts([*elements, *structures]).items())
+    shore = layout.get("shore", {"kind": "open-water"})["kind"]
+    digest = provenance["layout_digest"][:19]
+    return [
+        f"Assessment by {provenance['service']} {provenance['version']}, layout {digest}",
+        f"Site: {shore}, depth {number(layout['depth'])} {units.get('depth', units.get('x', 'm'))}; {things}",
+    ]
+
+
+def counts(words: Iterable[str]) -> dict[str, int]:
+    """How often each word occurs, in order of first occurrence."""
+    totals: dict[str, int] = {}
+    for word in words:
+        totals[word] = totals.get(word, 0) + 1
+    return totals
+
+
+def intakes_section(intakes: Sequence[Json], units: Json) -> list[str]:
+    """Each intake: discharge, width of its zone far upstream, origins of its water, recirculation."""
+    rows = [row for intake in intakes for row in intake_rows(intake)]
+    names = (
+        "intake",
+        f"discharge {units['discharge']}",
+        f"width {units['width_far_upstream']}",
+        "water from",
+    )
+    columns = (*names, "share %", "recirculated %")
+    return ["INTAKES", *table(columns, rows, right={1, 2, 4, 5})] if rows else []
+
+
+def intake_rows(intake: Json) -> list[Row]:
+    """One row per origin; the intake's own numbers stand in the first."""
+    own = (
+        intake["name"],
+        number(intake["discharge"]),
+        number(intake["width_far_upstream"]),
+    )
+    shares = intake["shares"] or []
+    if not shares:
+        return [(*own, f"({intake['status']})", "-", "-")]
+    returned = recirculation(intake)
+    rows = []
+    for index, share in enumerate(shares):
+        first = own if index == 0 else ("", "", "")
+        rows.append((*first, share["from"], percent(share["share"]), returned if index == 0 else ""))
+    return rows
+
+
+def recirculation(intake: Json) -> str:
+    """Recirculated share with its error, e.g. `7.52 +- 0.00001`."""
+    share, error = intake["recirculation_share"], intake["share_error"]
+    if share is None:
+        return "-"
+    if error is None:
+        return percent(share)
+    bound = max(error, RECIRCULATION_CLOSED_FORM)
+    return f"{percent(share)} +- {100 * bound:.1g}"
+
+
+def stagnation_section(search: Json, units: Json) -> list[str]:
+    """Where the water stands still, and whether that is all."""
+    points = search["points"]
+    verdict = "complete" if search["complete"] else "NOT shown to be complete"
+    title = f"STAGNATION POINTS: {len(points)} found, {verdict} ({search['method']})"
+    rows = [
+        (
+            number(point["x"]),
+            number(point["y"]),
+            point["kind"],
+            point["on"],
+            number(point["strain_rate"]),
+        )
+        for point in points
+    ]
+    columns = (f"x {units['x']}", f"y {units['y']}", "kind", "on", f"strain rate {units['strain_rate']}")
+    return [title, *(table(columns, rows, right={0, 1, 4}) if rows else [])]
+
+
+def transects_section(transects: Sequence[Json], units: Json) -> list[str]:
+    """Discharge over each transect, positive to the right of its direction."""
+    rows = [
+        (
+            transect["name"],
+            number(transect["length"]),
+            number(transect["discharge"]),
+            number(transect["circulation"]),
+            transect["status"],
+        )
+        for transect in transects
+    ]
+    columns = (
+        "transect",
+        f"length {units.get('length', 'm')}",
+        f"discharge {units['discharge']}",
+        f"circulation {units.get('circulation', 'm2/s')}",
+        "status",
+    )
+    title = "FLUXES OVER TRANSECTS (positive to the right of the direction of travel)"
+    return [title, *table(columns, rows, right={1, 2, 3})] if rows else []
+
+
+def warnings_section(warnings: Sequence[Json]) -> list[str]:
+    """Each warning with its value, its threshold and its source."""
+    if not warnings:
+        return ["WARNINGS: none"]
+    return ["WARNINGS", *(line for warning in warnings for line in warning_lines(warning))]
+
+
+def warning_lines(warning: Json) -> list[str]:
+    """One warning, wrapped."""
+    threshold = ""
+    if warning["value"] is not None and warning["limit"] is not None:
+        threshold = f" [value {number(warning['value'])}, threshold {number(warning['limit'])}]"
+    source = f" Source: {warning['source']}." if warning["source"] else ""
+    text = f"{warning['severity']}: {warning['message']}{threshold}{source} ({warning['code']})"
+    return wrap(text, WIDTH, initial_indent="  - ", subsequent_indent="    ")
+
+
+def cautions_section(cautions: Iterable[str]) -> list[str]:
+    """What no number above can take away."""
+    return [
+        "CAUTIONS",
+        *(
+            line
+            for text in cautions
+            for line in wrap(text, WIDTH, initial_indent="  - ", subsequent_indent="    ")
+        ),
+    ]
+
+
+def table(columns: Row, rows: Sequence[Row], right: set[int]) -> list[str]:
+    """Rows under their headings, columns in `right` flush right."""
+    widths = [max(len(row[index]) for row in (columns, *rows)) for index in range(len(columns))]
+
+    def line(cells: Row) -> str:
+        padded = [
+            cell.rjust(width) if index in right else cell.ljust(width)
+            for index, (cell, width) in enumerate(zip(cells, widths, strict=True))
+        ]
+        return ("  " + "  ".join(padded)).rstrip()
+
+    return [line(columns), line(["-" * width for width in widths]), *(line(row) for row in rows)]
+
+
+def number(value: float | None) -> str:
+    """Four significant digits without an exponent where that is readable; `-` if there is no value."""
+    if value is None:
+        return "-"
+    if value == 0 or 1e-3 <= abs(value) < 1e5:
+        return f"{value:.4g}" if abs(value) < 1e4 else f"{value:.0f}"
+    return f"{value:.3e}"
+
+
+def percent(share: float | None) -> str:
+    """Share as per cent to two decimals; `-` if there is no value."""
+    return "-" if share is None else f"{100 * share:.2f}"
