@@ -54,7 +54,7 @@ def problem_text(path: Path, problem: Mapping[str, Any]) -> str:
 
 async def post(route: str, body: Mapping[str, Any]) -> tuple[int, dict[str, Any]]:
     """Status and answer of the application to a POST, handed over without a socket."""
-    app = create_app(Settings())
+    app = create_app(Settings.from_environment())
     payload = json.dumps(body).encode()
     sent: list[Mapping[str, Any]] = []
     waiting = [{"type": "http.request", "body": payload, "more_body": False}]

@@ -8,7 +8,7 @@ from forebay.settings import Settings
 
 def run_server(*, host: str | None, port: int | None) -> int:
     """Listen on `host` and `port`, by default those of the settings, until a signal comes."""
-    settings = Settings()
+    settings = Settings.from_environment()
     uvicorn.run(
         create_app(settings),
         host=host if host is not None else settings.host,

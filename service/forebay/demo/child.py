@@ -29,7 +29,7 @@ class Service:
 
     def __init__(self, log: Path) -> None:
         self.log = log
-        self.port = free_port(Settings().port)
+        self.port = free_port(Settings.from_environment().port)
         self.address = f"http://{LOOPBACK}:{self.port}"
 
     def __enter__(self) -> Self:
