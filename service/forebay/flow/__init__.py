@@ -1,0 +1,1 @@
+"""The mathematics of plane flow: SI units, no input or output, no settings."""
