@@ -6,6 +6,8 @@ import sys
 from collections.abc import Sequence
 from pathlib import Path
 
+from forebay.settings import SettingsError
+
 WRONG_REQUEST = 2
 """Exit code for a layout or a command line that is wrong."""
 
@@ -15,7 +17,11 @@ def main(arguments: Sequence[str] | None = None) -> int:
     parser = build_parser()
     chosen = parser.parse_args(arguments)
     run = {"serve": serve, "demo": demo, "assess": assess, "openapi": openapi}[chosen.command]
-    return run(chosen)
+    try:
+        return run(chosen)
+    except SettingsError as error:
+        print(f"forebay: {error}", file=sys.stderr)
+        return WRONG_REQUEST
 
 
 def build_parser() -> argparse.ArgumentParser:

@@ -16,8 +16,8 @@ OUTERMOST = {"__main__", "assess", "demo", "report", "server"}
 THIRD_PARTY = {
     "flow": {"numpy", "scipy", "numba"},
     "trade": {"numpy", "scipy", "gsw"},
-    "charts": {"numpy", "matplotlib", "contourpy"},
-    "workflows": {"numpy"},
+    "charts": {"numpy", "scipy", "matplotlib", "contourpy"},
+    "workflows": {"numpy", "scipy"},
 }
 """What the layers without HTTP may import from outside; the layers above are free."""
 

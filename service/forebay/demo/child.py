@@ -10,7 +10,6 @@ from typing import Self
 from urllib.error import URLError
 from urllib.request import urlopen
 
-from forebay.settings import Settings
 
 LOOPBACK = "127.0.0.1"
 START = 180.0
@@ -25,11 +24,11 @@ class ServiceDiedError(RuntimeError):
 
 
 class Service:
-    """Context manager: a ready service inside, none outside."""
+    """Context manager: a ready service inside, none outside; on another port if `port` is busy."""
 
-    def __init__(self, log: Path) -> None:
+    def __init__(self, log: Path, port: int) -> None:
         self.log = log
-        self.port = free_port(Settings.from_environment().port)
+        self.port = free_port(port)
         self.address = f"http://{LOOPBACK}:{self.port}"
 
     def __enter__(self) -> Self:

@@ -8,6 +8,7 @@ from urllib.request import Request, urlopen
 
 from forebay.demo.child import Service
 from forebay.report import engineers_table
+from forebay.settings import Settings
 
 WAIT = 120.0
 """Longest wait for an answer [s]: the first one may have to compile."""
@@ -21,7 +22,7 @@ bridge; on the far bank a farm draws below a treatment works. Whose water does e
 def run_demo(output: Path, *, keep: bool) -> int:
     """Whole demonstration; the value is the exit code. The picture and the service's log go to `output`."""
     output.mkdir(parents=True, exist_ok=True)
-    with Service(log=output / "service.log") as service:
+    with Service(output / "service.log", Settings.from_environment().port) as service:
         print(f"Service started on {service.address}\n\n{INTRODUCTION}\n", flush=True)
         request = demo_request()
         answer = json.loads(post(f"{service.address}/v1/assessment", request, accept="application/json"))

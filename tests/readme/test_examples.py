@@ -1,0 +1,82 @@
+"""Every example of the README works as pasted, from the repository's root."""
+
+import json
+import re
+import subprocess
+import sys
+
+import pytest
+
+from support.readme import ADDRESS, blocks, curl_commands
+from support.tree import ROOT
+
+ROUTES = (
+    "/v1/assessment",
+    "/v1/chart/flow-net",
+    "/v1/field/sample",
+    "/v1/stagnation/search",
+    "/v1/contour/integrate",
+    "/v1/withdrawal/trace",
+    "/v1/stress/tensor",
+    "/v1/criteria",
+    "/v1/warnings",
+    "/v1/limits",
+    "/v1/water",
+    "/livez",
+    "/readyz",
+    "/metrics",
+    "/openapi.json",
+)
+
+
+@pytest.fixture
+def folder(tmp_path):
+    """Folder that looks like the repository's root to a command, and may be written to."""
+    (tmp_path / "openapi").symlink_to(ROOT / "openapi")
+    return tmp_path
+
+
+def route(command):
+    return re.search(rf"{ADDRESS}(/[^\s'?]*)", command).group(1)
+
+
+@pytest.mark.parametrize("command", curl_commands(), ids=route)
+def test_curl_example_works(command, service, folder):
+    pasted = command.replace(ADDRESS, service.address).replace("curl ", "curl --fail-with-body ", 1)
+    outcome = subprocess.run(["bash", "-c", pasted], cwd=folder, capture_output=True, text=True, check=False)
+    assert outcome.returncode == 0, outcome.stdout + outcome.stderr
+    picture = folder / "flow-net.png"
+    if picture.exists():
+        assert picture.read_bytes().startswith(b"\x89PNG")
+    elif route(command) != "/metrics":
+        assert json.loads(outcome.stdout)
+    else:
+        assert "# HELP" in outcome.stdout
+
+
+def test_each_route_has_a_curl_example():
+    shown = {route(command) for command in curl_commands()}
+    assert shown >= set(ROUTES)
+
+
+def test_curl_examples_name_only_routes_of_the_contract():
+    paths = json.loads((ROOT / "openapi" / "openapi.json").read_text(encoding="utf-8"))["paths"]
+    assert {route(command) for command in curl_commands()} <= {*paths, "/openapi.json"}
+
+
+def test_python_example_works(service, folder):
+    (code,) = blocks("python")
+    script = code.replace(ADDRESS, service.address)
+    command = [sys.executable, "-W", "error", "-c", script]
+    outcome = subprocess.run(command, cwd=folder, capture_output=True, text=True, check=False)
+    assert outcome.returncode == 0, outcome.stderr
+    assert len(outcome.stdout.splitlines()) == 6
+
+
+def test_assess_takes_the_layout_of_the_readme(folder):
+    (layout,) = blocks("json")
+    (folder / "layout.json").write_text(layout, encoding="utf-8")
+    command = [sys.executable, "-m", "forebay", "assess", "layout.json"]
+    outcome = subprocess.run(command, cwd=folder, capture_output=True, text=True, check=False)
+    assert outcome.returncode == 0, outcome.stderr
+    assert "town intake" in outcome.stdout
