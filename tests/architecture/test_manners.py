@@ -14,7 +14,7 @@ BANNED_NAMES = {"utils", "helpers", "manager", "base", "misc"}
 
 TREE_ONLY = {
     "a package registry's host": re.compile(
-        r"py[p]i\.org|pyt[h]onhosted|np[m]js|jsde[l]ivr|unp[k]g|regi[s]try\."
+        r"py[p]i\.org|pyt[h]onhosted|np[m]js|jsde[l]ivr|unp[k]g|regi[s]try\.npm"
     ),
     "a path of one machine": re.compile(r"/(?:work|home|root|Users)/\w+"),
     "a folder beside the repository": re.compile(r"\.\./shar[e]d"),

@@ -24,8 +24,14 @@ def is_up(address):
         return False
 
 
+def found(pattern, text):
+    match = re.search(pattern, text)
+    assert match is not None, text
+    return match.group(1)
+
+
 def address_in(text):
-    return re.search(r"http://127\.0\.0\.1:\d+", text).group()
+    return found(r"(http://127\.0\.0\.1:\d+)", text)
 
 
 @pytest.fixture(scope="module")
@@ -53,7 +59,7 @@ def test_demo_shows_recirculation(finished):
 def test_demo_shows_the_river_in_its_transects(finished):
     _, text = finished
     discharge = {
-        name: float(re.search(rf"{name}\s+\d+\s+(\S+)", text).group(1))
+        name: float(found(rf"{name}\s+\d+\s+(\S+)", text))
         for name in (
             "river above the station",
             "between screens and outfall",
@@ -80,6 +86,7 @@ def test_demo_stops_its_service(finished):
 def test_demo_keeps_its_service_until_interrupted(tmp_path):
     with subprocess.Popen([*DEMO, "--keep"], cwd=tmp_path, stdout=subprocess.PIPE, text=True) as demo:
         text = ""
+        assert demo.stdout is not None
         for line in demo.stdout:
             text += line
             if "Ctrl-C" in line:

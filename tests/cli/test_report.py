@@ -1,12 +1,13 @@
 """The engineer's table says what the answer says: every number, unit, status and caution."""
 
 import copy
+from typing import Any
 
 import pytest
 
 from forebay.report import CAUTIONS, engineers_table, number, percent, table, warning_lines
 
-REQUEST = {
+REQUEST: dict[str, Any] = {
     "layout": {
         "depth": 4.0,
         "shore": {"kind": "channel", "point": [0, 0], "along": [1, 0], "width": 110},
@@ -17,7 +18,7 @@ REQUEST = {
         "structures": [{"kind": "pier", "name": "P1", "at": [120, 37], "radius": 1.6}],
     }
 }
-ANSWER = {
+ANSWER: dict[str, Any] = {
     "result": {
         "withdrawal": {
             "intakes": [

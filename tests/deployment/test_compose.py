@@ -49,7 +49,7 @@ def test_health_is_readiness():
 
 
 def test_image_runs_as_an_ordinary_user():
-    assert re.findall(r"^USER (.*)$", DOCKERFILE, re.MULTILINE) == ["forebay"]
+    assert re.findall(r"^USER (.*)$", DOCKERFILE, re.MULTILINE) == ["10001"]
 
 
 @pytest.mark.parametrize(

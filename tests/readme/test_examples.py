@@ -37,7 +37,8 @@ def folder(tmp_path):
 
 
 def route(command):
-    return re.search(rf"{ADDRESS}(/[^\s'?]*)", command).group(1)
+    (path,) = re.findall(rf"{ADDRESS}(/[^\s'?]*)", command)
+    return path
 
 
 @pytest.mark.parametrize("command", curl_commands(), ids=route)

@@ -10,7 +10,6 @@ from typing import Self
 from urllib.error import URLError
 from urllib.request import urlopen
 
-
 LOOPBACK = "127.0.0.1"
 START = 180.0
 """Longest wait for readiness [s]: on a fresh machine the kernels are compiled first."""
