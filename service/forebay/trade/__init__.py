@@ -1,0 +1,1 @@
+"""Knowledge of the trade: water properties, screen criteria, limits of applicability."""
