@@ -1,0 +1,1 @@
+"""HTTP only: convert, call once, convert back."""

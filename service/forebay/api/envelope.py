@@ -1,0 +1,148 @@
+"""The envelope of an answer: result in the client's units, the units' codes, warnings, provenance."""
+
+import dataclasses
+import hashlib
+from collections.abc import Mapping
+from enum import StrEnum
+from functools import cache
+from typing import Any
+
+import numpy as np
+import orjson
+
+from forebay import __version__
+from forebay.api.numbers import round_array, round_number
+from forebay.api.schemas.common import Answer, ComputeRequest
+from forebay.api.units import UnitSystem
+from forebay.api.warnings import Notice, written_warnings
+from forebay.flow.layout import Layout
+
+Json = dict[str, Any]
+
+Notices = tuple[Notice, ...]
+
+
+@dataclasses.dataclass(frozen=True)
+class Written:
+    """How an answer is to be written."""
+
+    unit_system: UnitSystem = UnitSystem.SI
+    digits: int = 9
+
+
+@cache
+def units_of(model: type[Answer]) -> Mapping[str, str]:
+    """SI unit of every numeric field that an answer can hold, by name.
+
+    Raises ValueError if one name has two units, since an answer could not say which is meant.
+    """
+    schema = model.model_json_schema(by_alias=True)
+    units: dict[str, str] = {}
+    for part in (schema, *schema.get("$defs", {}).values()):
+        for name, field in part.get("properties", {}).items():
+            unit = _unit_in(field)
+            if unit is not None and units.setdefault(name, unit) != unit:
+                raise ValueError(f"{model.__name__}: {name} is in {units[name]} and in {unit}")
+    return units
+
+
+def _unit_in(field: Json) -> str | None:
+    if "unit" in field:
+        return str(field["unit"])
+    items = field.get("items")
+    inner = [items] if isinstance(items, dict) else []
+    inner += [*field.get("prefixItems", ()), *field.get("anyOf", ()), *field.get("oneOf", ())]
+    return next((unit for unit in map(_unit_in, inner) if unit is not None), None)
+
+
+class Presenter:
+    """Turns SI results into the client's units and digits, and keeps the units it used."""
+
+    def __init__(self, si_units: Mapping[str, str], system: UnitSystem, digits: int) -> None:
+        self._si_units = si_units
+        self._system = system
+        self._digits = digits
+        self.units: dict[str, str] = {}
+
+    def present(self, value: Any, name: str = "") -> Any:  # noqa: ANN401
+        """Value of the field `name` in the client's units: arrays stay arrays, NaN becomes null on encoding."""
+        if name in self._si_units:
+            self.units[name] = self._system.code(self._si_units[name])
+        match value:
+            case bool() | str() | None:
+                return str(value) if isinstance(value, StrEnum) else value
+            case Mapping():
+                return {key: self.present(inner, key) for key, inner in value.items()}
+            case list() | tuple():
+                return [self.present(inner, name) for inner in value]
+            case np.ndarray():
+                return self._array(value, name)
+            case complex():
+                return [self._number(value.real, name), self._number(value.imag, name)]
+            case int() | np.integer():
+                return int(value)
+            case _:
+                return self._number(float(value), name)
+
+    def _number(self, value: float, name: str) -> float | None:
+        return round_number(self._system.write(value, self._si_units[name]), self._digits)
+
+    def _array(self, values: np.ndarray[Any, Any], name: str) -> np.ndarray[Any, Any]:
+        if values.dtype.kind in "iub":
+            return np.ascontiguousarray(values)
+        if values.dtype.kind == "c":
+            values = np.stack((values.real, values.imag), axis=-1)
+        written = self._system.write(values.astype(np.float64, copy=False), self._si_units[name])
+        return round_array(written, self._digits)
+
+
+def digest(layout: Layout) -> str:
+    """Digest of a layout in SI: the same for every way of writing the same layout in one unit system."""
+    return (
+        "sha256:" + hashlib.sha256(orjson.dumps(_canonical(layout), option=orjson.OPT_SORT_KEYS)).hexdigest()
+    )
+
+
+def _canonical(value: Any) -> Any:  # noqa: ANN401
+    if dataclasses.is_dataclass(value):
+        fields = {field.name: _canonical(getattr(value, field.name)) for field in dataclasses.fields(value)}
+        return {"kind": type(value).__name__, **fields}
+    match value:
+        case tuple():
+            return [_canonical(item) for item in value]
+        case complex():
+            return [value.real + 0.0, value.imag + 0.0]
+        case float():
+            return value + 0.0
+        case _:
+            return value
+
+
+def provenance(layout: Layout | None) -> Json:
+    """Which service and version computed the answer, and of which layout."""
+    facts = {"service": "forebay", "version": __version__}
+    return facts if layout is None else {**facts, "layout_digest": digest(layout)}
+
+
+def document(
+    model: type[Answer],
+    result: Json,
+    *,
+    request: Written | ComputeRequest,
+    layout: Layout | None = None,
+    notices: Notices = (),
+) -> Json:
+    """The whole envelope of a result in SI, in the units and digits that the request asks for."""
+    presenter = Presenter(units_of(model), request.unit_system, request.digits)
+    presented = presenter.present(result)
+    return {
+        "result": presented,
+        "units": dict(sorted(presenter.units.items())),
+        "warnings": written_warnings(notices, request.digits),
+        "provenance": provenance(layout),
+    }
+
+
+def encode(document: Json) -> bytes:
+    """JSON of an answer; arrays without a detour through lists, NaN as null."""
+    return orjson.dumps(document, option=orjson.OPT_SERIALIZE_NUMPY)

@@ -1,0 +1,70 @@
+"""What one request may ask for, and the check before any work."""
+
+from typing import NamedTuple, Self
+
+from forebay.flow.errors import Path, TooLargeError
+from forebay.settings import Settings
+
+
+class Price(NamedTuple):
+    """What a request asks for.
+
+    points : points at which the field is wanted
+    elements : elements and structures of the layout
+    values : numbers in the answer
+    lengthy : whether the work may last seconds whatever its size
+    path : where the request says how many points it wants
+    """
+
+    points: int = 0
+    elements: int = 1
+    values: int = 0
+    lengthy: bool = False
+    path: Path = ()
+
+    @property
+    def pairs(self) -> int:
+        """Evaluations of one element at one point."""
+        return self.points * max(self.elements, 1)
+
+
+class Limits(NamedTuple):
+    """Limits of one service, as GET /v1/limits publishes them."""
+
+    max_body: int
+    max_points: int
+    max_elements: int
+    max_pairs: int
+    max_values: int
+    deadline: float
+    workers: int
+    queue: int
+
+    @classmethod
+    def of(cls, settings: Settings) -> Self:
+        """Limits that the settings set; an answer holds at most ten numbers a point."""
+        return cls(
+            max_body=settings.max_body,
+            max_points=settings.max_points,
+            max_elements=settings.max_elements,
+            max_pairs=settings.max_pairs,
+            max_values=10 * settings.max_points,
+            deadline=settings.deadline,
+            workers=settings.workers,
+            queue=settings.queue,
+        )
+
+    def check(self, price: Price) -> None:
+        """Refuse a request over a limit.
+
+        Raises TooLargeError with the limit and what was asked for.
+        """
+        _check("elements and structures", price.elements, self.max_elements, ("layout", "elements"))
+        _check("points", price.points, self.max_points, price.path)
+        _check("pairs of element and point", price.pairs, self.max_pairs, price.path)
+        _check("numbers in the answer", price.values, self.max_values, price.path)
+
+
+def _check(what: str, asked: int, limit: int, path: Path) -> None:
+    if asked > limit:
+        raise TooLargeError(f"{asked} {what}; the limit is {limit}", path, asked=asked, limit=limit)

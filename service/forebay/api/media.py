@@ -1,0 +1,65 @@
+"""Media types: which one an Accept header asks for, and whether a body can be read."""
+
+from forebay.api.problems import Problem
+
+JSON = "application/json"
+CSV = "text/csv"
+SVG = "image/svg+xml"
+PNG = "image/png"
+HTML = "text/html"
+
+
+def negotiate(accept: str | None, offered: tuple[str, ...]) -> str:
+    """Offered media type that Accept prefers (RFC 9110, 12.5.1); the first offered one wins a tie.
+
+    Raises Problem not-acceptable if it accepts none of them.
+    """
+    if not accept or not accept.strip():
+        return offered[0]
+    ranges = [_media_range(part) for part in accept.split(",")[:64] if part.strip()]
+    best = max(offered, key=lambda media_type: _quality(media_type, ranges))
+    if _quality(best, ranges) <= 0.0:
+        raise Problem(
+            "not-acceptable",
+            "This route answers none of the media types in Accept",
+            offered=list(offered),
+        )
+    return best
+
+
+def _media_range(part: str) -> tuple[str, float]:
+    name, *parameters = (piece.strip() for piece in part.split(";"))
+    quality = next((text[2:] for text in parameters if text.lower().startswith("q=")), "1")
+    try:
+        return name.lower(), min(max(float(quality), 0.0), 1.0)
+    except ValueError:
+        return name.lower(), 0.0
+
+
+def _quality(media_type: str, ranges: list[tuple[str, float]]) -> float:
+    family = media_type.split("/", maxsplit=1)[0]
+    for wanted in (media_type, f"{family}/*", "*/*"):
+        qualities = [quality for name, quality in ranges if name == wanted]
+        if qualities:
+            return max(qualities)
+    return 0.0
+
+
+def require_json(content_type: str | None, content_encoding: str | None) -> None:
+    """Refuse a body that is not plain JSON in UTF-8 (a missing type counts as JSON)."""
+    if content_encoding and content_encoding.strip().lower() != "identity":
+        raise Problem(
+            "unsupported-media-type",
+            "Compressed bodies are not read",
+            headers={"Accept-Encoding": "identity"},
+        )
+    name, *parameters = (piece.strip().lower() for piece in (content_type or JSON).split(";"))
+    charsets = [
+        text.removeprefix("charset=").strip('"') for text in parameters if text.startswith("charset=")
+    ]
+    if name != JSON or any(charset not in {"utf-8", "utf8", "us-ascii"} for charset in charsets):
+        raise Problem(
+            "unsupported-media-type",
+            "The body must be application/json in UTF-8",
+            headers={"Accept-Post": JSON},
+        )

@@ -1,0 +1,49 @@
+"""Significant digits: shorter numbers in answers, without loss where all digits are asked for."""
+
+import math
+
+import numpy as np
+import numpy.typing as npt
+
+FloatArray = npt.NDArray[np.float64]
+
+EXACT_POWER = 22
+"""Largest n for which 10^n is a double without error."""
+
+EVERY_DIGIT = 17
+"""Significant digits that identify any double."""
+
+BLOCK = 65536
+"""Values rounded at a time, so that the intermediate arrays stay in the cache."""
+
+
+def round_number(value: float, digits: int) -> float | None:
+    """Round to `digits` significant digits; None for NaN and infinities."""
+    if not math.isfinite(value):
+        return None
+    return value if digits >= EVERY_DIGIT else float(f"{value:.{digits}g}")
+
+
+def round_array(values: FloatArray, digits: int) -> FloatArray:
+    """Round every finite value to `digits` significant digits; NaN stays, infinities become NaN.
+
+    Powers of ten up to 1e22 are exact, so that n / 10^k is the double nearest to the decimal number and prints
+    short; the rare values beyond are rounded through text.
+    """
+    flat = np.array(values, dtype=np.float64).ravel()
+    if digits < EVERY_DIGIT:
+        for start in range(0, flat.size, BLOCK):
+            _round_block(flat[start : start + BLOCK], digits)
+    flat[np.isinf(flat)] = np.nan
+    return flat.reshape(values.shape)
+
+
+def _round_block(block: FloatArray, digits: int) -> None:
+    with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
+        power = digits - 1 - np.floor(np.log10(np.abs(block)))
+        usual = np.abs(power) <= EXACT_POWER
+        scale = 10.0 ** np.where(usual, np.abs(power), 0.0)
+        rounded = np.where(power >= 0, np.rint(block * scale) / scale, np.rint(block / scale) * scale)
+    far = ~usual & np.isfinite(block) & (block != 0.0)
+    rounded[far] = [float(f"{value:.{digits}g}") for value in block[far]]
+    np.copyto(block, rounded, where=usual | far)

@@ -1,0 +1,93 @@
+"""The OpenAPI document: what the routes declare, plus the schemas that they refer to by name."""
+
+from typing import Any
+
+from fastapi import FastAPI
+from fastapi.openapi.utils import get_openapi
+from pydantic import BaseModel
+from pydantic.json_schema import models_json_schema
+
+from forebay import __version__
+from forebay.api.problems import MEDIA_TYPE, catalogue
+from forebay.api.routers.serving import ENVELOPES, REQUESTS
+from forebay.api.schemas.catalogues import ProblemDocument, ProblemExplanation, Provenance, WarningValue
+
+REFERENCE = "#/components/schemas/{model}"
+
+DESCRIPTION = """\
+Forebay screens sites for water intakes and outfalls by depth-mean plane potential flow: where each intake's water
+comes from, how much outfall water comes back, what the screens see, where the water stands still.
+
+**Screening level.** The flow is steady, inviscid and uniform over the depth. Answers are not for the safety of
+divers, swimmers or craft. Regulators' criteria and licensed engineers decide; a warning in an answer says where its
+numbers should not be trusted.
+
+Conventions: x, y in a local plan grid; angles anticlockwise from +x; circulation anticlockwise positive; flux positive
+towards the right of the direction of travel; stress positive in tension. `"unit_system": "us"` reads and answers in
+ft, ft/s, ft3/s, lbf/ft2, degF; `units` in every answer names the unit of every number in UCUM codes.
+A value that does not exist is `null` with a status. Errors are problem details (RFC 9457) whose `type` can be read.
+"""
+
+
+def build_document(app: FastAPI) -> dict[str, Any]:
+    """OpenAPI 3.1 document of an application."""
+    document = get_openapi(
+        title="Forebay",
+        version=__version__,
+        summary="Screening of water intakes and outfalls",
+        description=DESCRIPTION,
+        routes=app.routes,
+        servers=[{"url": ".", "description": "Where this document was read"}],
+        license_info={"name": "Apache-2.0", "identifier": "Apache-2.0"},
+    )
+    schemas = document.setdefault("components", {}).setdefault("schemas", {})
+    for unused in ("HTTPValidationError", "ValidationError"):
+        schemas.pop(unused, None)
+    schemas |= _model_schemas()
+    schemas |= {name: _envelope(result.__name__) for name, result in ENVELOPES.items()}
+    schemas["Problem"] = schemas.pop("ProblemDocument")
+    document["components"]["schemas"] = dict(sorted(schemas.items()))
+    for item in document["paths"].values():
+        for operation in item.values():
+            _name_problems(operation["responses"])
+    document["paths"] = dict(sorted(document["paths"].items()))
+    return document
+
+
+def _model_schemas() -> dict[str, Any]:
+    models: list[type[BaseModel]] = [*REQUESTS.values(), *ENVELOPES.values()]
+    models += [ProblemDocument, ProblemExplanation, Provenance, WarningValue]
+    _, schema = models_json_schema([(model, "validation") for model in models], ref_template=REFERENCE)
+    definitions: dict[str, Any] = schema["$defs"]
+    return definitions
+
+
+def _envelope(result: str) -> dict[str, Any]:
+    references = {
+        name: {"$ref": REFERENCE.format(model=name)} for name in (result, "WarningValue", "Provenance")
+    }
+    return {
+        "type": "object",
+        "required": ["result", "units", "warnings", "provenance"],
+        "properties": {
+            "result": references[result],
+            "units": {
+                "type": "object",
+                "additionalProperties": {"type": "string"},
+                "description": "UCUM code of every numeric field of the result, by name",
+                "examples": [{"u": "m/s"}],
+            },
+            "warnings": {"type": "array", "items": references["WarningValue"]},
+            "provenance": references["Provenance"],
+        },
+    }
+
+
+def _name_problems(responses: dict[str, Any]) -> None:
+    """Say which codes a status can mean; drop the framework's own error, which never leaves the service."""
+    for status, response in list(responses.items()):
+        if "application/json" in response.get("content", {}) and status == "422":
+            del responses[status]
+        elif MEDIA_TYPE in response.get("content", {}):
+            kinds = {code: kind for code, kind in catalogue().items() if kind.status == int(status)}
+            response["description"] = "; ".join(f"`{code}`: {kind.title}" for code, kind in kinds.items())

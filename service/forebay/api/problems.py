@@ -1,0 +1,177 @@
+"""Problems (RFC 9457): every way a request can fail, its status, and its body."""
+
+from http import HTTPStatus
+from typing import Any, NamedTuple
+
+from forebay.flow.errors import FlowError, Path
+
+MEDIA_TYPE = "application/problem+json"
+
+MOST_ERRORS = 20
+"""Errors that one problem lists at most."""
+
+LONGEST_TOKEN = 80
+"""Characters of a member name that a pointer repeats; a longer name ends the pointer at its parent."""
+
+API_NAMES = {"start": "from", "end": "to", "interior_angle": "interior_angle_deg"}
+"""Names of layout fields where the API's differ from those of the flow."""
+
+
+class ProblemKind(NamedTuple):
+    """One kind of problem: status, title, and what a client can do about it."""
+
+    status: int
+    title: str
+    explanation: str
+
+
+HTTP_PROBLEMS = {
+    "malformed-json": ProblemKind(
+        400,
+        "The body is not JSON",
+        "The body is truncated, nested too deep, or not UTF-8 JSON. Send valid JSON.",
+    ),
+    "not-found": ProblemKind(
+        404, "No such resource", "The address names nothing here; /openapi.json lists every route."
+    ),
+    "method-not-allowed": ProblemKind(
+        405,
+        "Method not allowed",
+        "The route exists but not with this method; the Allow header lists those it has.",
+    ),
+    "not-acceptable": ProblemKind(
+        406,
+        "No acceptable media type",
+        "Accept asks for nothing that this route can answer; `offered` lists it.",
+    ),
+    "body-too-large": ProblemKind(
+        413, "The body is too large", "The body exceeds the limit in bytes that GET /v1/limits publishes."
+    ),
+    "unsupported-media-type": ProblemKind(
+        415, "Unsupported media type", "Send application/json in UTF-8, without Content-Encoding."
+    ),
+    "invalid-request": ProblemKind(
+        422,
+        "The request does not fit its schema",
+        "A field is missing, unknown, of the wrong type or out of its bounds; `errors` points at each.",
+    ),
+    "internal-error": ProblemKind(
+        500,
+        "Internal error",
+        "The service failed. Nothing in the request needs to change; report the request id.",
+    ),
+    "busy": ProblemKind(
+        503, "The service is busy", "Every worker and the queue are full. Retry after Retry-After."
+    ),
+    "not-ready": ProblemKind(
+        503, "The service is starting", "Kernels are still being prepared. Retry after Retry-After."
+    ),
+    "deadline-exceeded": ProblemKind(
+        504,
+        "The computation took too long",
+        "The work was stopped at the deadline of GET /v1/limits. Ask for less.",
+    ),
+}
+"""Problems of the HTTP layer itself, by code."""
+
+FLOW_STATUS = 422
+"""Status of every FlowError: the request can be read but describes something that cannot be computed."""
+
+
+def flow_errors(root: type[FlowError] = FlowError) -> dict[str, type[FlowError]]:
+    """Every kind of FlowError that carries a code, by code."""
+    found: dict[str, type[FlowError]] = {}
+    for kind in root.__subclasses__():
+        if "code" in vars(kind):
+            found[kind.code] = kind
+        found |= flow_errors(kind)
+    return dict(sorted(found.items()))
+
+
+def catalogue() -> dict[str, ProblemKind]:
+    """Every kind of problem this service answers with, by code."""
+    flow = {
+        code: ProblemKind(FLOW_STATUS, kind.title, " ".join((kind.__doc__ or "").split()))
+        for code, kind in flow_errors().items()
+    }
+    return HTTP_PROBLEMS | flow
+
+
+class Problem(Exception):  # noqa: N818  (RFC 9457's own word)
+    """A problem on its way to the client."""
+
+    def __init__(
+        self,
+        code: str,
+        detail: str,
+        *,
+        errors: tuple[dict[str, str], ...] = (),
+        headers: dict[str, str] | None = None,
+        **facts: Any,  # noqa: ANN401
+    ) -> None:
+        super().__init__(code, detail)
+        self.code = code
+        self.detail = detail
+        self.errors = errors
+        self.headers = headers or {}
+        self.facts = facts
+
+    def __reduce__(self) -> tuple[Any, ...]:
+        return _rebuild, (self.code, self.detail, self.errors, self.headers, self.facts)
+
+    @property
+    def status(self) -> int:
+        """HTTP status."""
+        return catalogue()[self.code].status
+
+    def body(self, request_id: str) -> dict[str, Any]:
+        """Members of the problem, facts last; a fact never overwrites a standard member."""
+        kind = catalogue()[self.code]
+        standard = {
+            "type": f"/problems/{self.code}",
+            "title": kind.title,
+            "status": kind.status,
+            "detail": self.detail,
+            "instance": f"urn:forebay:request:{request_id}",
+        }
+        if self.errors:
+            standard["errors"] = list(self.errors[:MOST_ERRORS])
+        return standard | {name: fact for name, fact in self.facts.items() if name not in standard}
+
+
+def _rebuild(
+    code: str,
+    detail: str,
+    errors: tuple[dict[str, str], ...],
+    headers: dict[str, str],
+    facts: dict[str, Any],
+) -> Problem:
+    return Problem(code, detail, errors=errors, headers=headers, **facts)
+
+
+def pointer(path: Path) -> str:
+    """JSON pointer as a URI fragment; stops before a member name too long to repeat."""
+    parts = []
+    for token in path:
+        text = str(token)
+        if len(text) > LONGEST_TOKEN:
+            break
+        parts.append("/" + text.replace("~", "~0").replace("/", "~1"))
+    return "#" + "".join(parts)
+
+
+def from_flow(error: FlowError) -> Problem:
+    """Problem of a FlowError: the pointer starts at the layout where the error belongs to it."""
+    steps = tuple(API_NAMES.get(step, step) if isinstance(step, str) else step for step in error.path)
+    path = ("layout", *steps) if error.in_layout else steps
+    errors = ({"pointer": pointer(path), "detail": error.detail},) if path else ()
+    return Problem(error.code, error.detail, errors=errors, **error.facts)
+
+
+def from_status(status: int, headers: dict[str, str] | None = None) -> Problem:
+    """Problem of a bare HTTP status that the router raised."""
+    codes = {404: "not-found", 405: "method-not-allowed"}
+    code = codes.get(
+        status, "malformed-json" if status < HTTPStatus.INTERNAL_SERVER_ERROR else "internal-error"
+    )
+    return Problem(code, HTTP_PROBLEMS[code].explanation, headers=headers)

@@ -1,0 +1,53 @@
+"""Readiness: every kernel is compiled here and in a worker process before the service says so."""
+
+import asyncio
+import logging
+from functools import partial
+
+import orjson
+
+from forebay.api.examples import request_example
+from forebay.api.media import JSON
+from forebay.api.operation import Reply, perform
+from forebay.api.routers.registry import OPERATIONS
+from forebay.api.work import Workshop
+
+LOG = logging.getLogger("forebay")
+
+
+class Readiness:
+    """Runs the example of every operation once, in a thread and in a worker process."""
+
+    def __init__(self, workshop: Workshop) -> None:
+        self._workshop = workshop
+        self._task: asyncio.Task[None] | None = None
+        self.is_ready = False
+        self.detail = "Kernels are being prepared"
+
+    def start(self) -> None:
+        """Begin without waiting, so that the service answers /livez meanwhile."""
+        self._task = asyncio.create_task(self._prepare())
+
+    async def stop(self) -> None:
+        """Give up what is still being prepared."""
+        self.is_ready = False
+        if self._task is not None:
+            self._task.cancel()
+            await asyncio.gather(self._task, return_exceptions=True)
+
+    async def _prepare(self) -> None:
+        try:
+            for operation in OPERATIONS.values():
+                body = orjson.dumps(request_example(operation.operation_id))
+                media_type = operation.media_types[0]
+                reply = await self._workshop.in_process(operation.operation_id, body, media_type)
+                if JSON in operation.media_types:
+                    work = partial(perform, operation, body, media_type, limits=self._workshop.limits)
+                    await self._workshop.in_thread(work)
+                if not isinstance(reply, Reply):
+                    raise TypeError(f"the example of {operation.operation_id} is refused: {reply}")
+        except Exception:
+            self.detail = "Preparation failed; the log says why"
+            LOG.exception("preparation failed")
+            return
+        self.is_ready = True

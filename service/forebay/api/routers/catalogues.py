@@ -1,0 +1,82 @@
+"""Catalogues: water properties and the limits of this service."""
+
+from dataclasses import asdict
+from typing import Annotated, Any
+
+from fastapi import APIRouter, Query, Request
+from starlette.responses import Response
+
+from forebay.api import envelope
+from forebay.api.media import JSON, negotiate
+from forebay.api.problems import Problem
+from forebay.api.routers.serving import documented
+from forebay.api.schemas.catalogues import LimitsResult, WaterResult
+from forebay.api.schemas.common import Answer
+from forebay.api.units import UnitSystem
+from forebay.flow.errors import FlowError
+from forebay.trade.water import LEFT_OUT, SOURCES, water_properties
+
+router = APIRouter(tags=["catalogues"])
+
+Temperature = Annotated[
+    float,
+    Query(
+        ge=-50,
+        le=200,
+        allow_inf_nan=False,
+        description="Temperature",
+        json_schema_extra={"unit": "Cel"},
+        examples=[12],
+    ),
+]
+Salinity = Annotated[
+    float,
+    Query(
+        ge=0,
+        le=100,
+        allow_inf_nan=False,
+        description="Salinity",
+        json_schema_extra={"unit": "g/kg"},
+        examples=[0],
+    ),
+]
+Units = Annotated[UnitSystem, Query(description="Units of the parameters and of the answer")]
+
+
+def answer(request: Request, model: type[Answer], result: dict[str, Any], units: UnitSystem) -> Response:
+    """Envelope of a catalogue."""
+    media_type = negotiate(request.headers.get("accept"), (JSON,))
+    document = envelope.document(model, result, request=envelope.Written(units))
+    return Response(envelope.encode(document), media_type=media_type)
+
+
+@router.get("/v1/water", operation_id="readWater", summary="Properties of water", **documented(WaterResult))
+async def read_water(
+    *,
+    temperature: Temperature,
+    salinity: Salinity = 0.0,
+    unit_system: Units = UnitSystem.SI,
+    request: Request,
+) -> Response:
+    result = water(unit_system.read(temperature, "Cel"), salinity)
+    return answer(request, WaterResult, result, unit_system)
+
+
+def water(temperature: float, salinity: float) -> dict[str, Any]:
+    """Properties in SI with their sources; an error names the query parameter."""
+    try:
+        properties = water_properties(temperature, salinity)
+    except FlowError as error:
+        errors = ({"parameter": str(error.path[0]), "detail": error.detail},)
+        raise Problem(error.code, error.detail, errors=errors, **error.facts) from None
+    return {**asdict(properties), "sources": SOURCES, "left_out": LEFT_OUT}
+
+
+@router.get(
+    "/v1/limits",
+    operation_id="readLimits",
+    summary="What one request may ask for",
+    **documented(LimitsResult),
+)
+async def read_limits(request: Request) -> Response:
+    return answer(request, LimitsResult, request.app.state.limits._asdict(), UnitSystem.SI)

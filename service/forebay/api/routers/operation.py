@@ -1,0 +1,51 @@
+"""Running the service: liveness, readiness, metrics."""
+
+from typing import Literal
+
+from fastapi import APIRouter, Request
+from prometheus_client.exposition import choose_encoder
+from pydantic import BaseModel
+from starlette.responses import Response
+
+from forebay.api.metrics import Metrics
+from forebay.api.problems import Problem
+from forebay.api.routers.serving import problem_responses
+
+router = APIRouter(tags=["operation"])
+
+
+class Health(BaseModel):
+    """State of the service."""
+
+    status: Literal["pass"] = "pass"
+
+
+@router.get("/livez", operation_id="isAlive", summary="Whether the process answers at all")
+async def livez() -> Health:
+    return Health()
+
+
+@router.get(
+    "/readyz",
+    operation_id="isReady",
+    summary="Whether every kernel is compiled and a worker process answers",
+    responses=problem_responses((503,)),
+)
+async def readyz(request: Request) -> Health:
+    if not request.app.state.readiness.is_ready:
+        raise Problem("not-ready", request.app.state.readiness.detail, headers={"Retry-After": "1"})
+    return Health()
+
+
+@router.get(
+    "/metrics",
+    operation_id="readMetrics",
+    summary="Counters for Prometheus",
+    response_class=Response,
+    responses={200: {"description": "Metrics", "content": {"text/plain": {"schema": {"type": "string"}}}}},
+)
+async def read_metrics(request: Request) -> Response:
+    metrics: Metrics = request.app.state.metrics
+    metrics.lengthy.set(request.app.state.workshop.waiting)
+    encoder, content_type = choose_encoder(request.headers.get("accept", ""))
+    return Response(encoder(metrics.registry), media_type=content_type)

@@ -1,0 +1,19 @@
+"""Every compute operation by its id, and every router."""
+
+from typing import Any
+
+from fastapi import APIRouter
+
+from forebay.api.operation import Operation
+from forebay.api.routers import catalogues, documents, field, operation
+
+OPERATIONS: dict[str, Operation[Any]] = {known.operation_id: known for known in (field.SAMPLE,)}
+"""Compute operations, as the worker processes look them up."""
+
+ROUTERS: tuple[APIRouter, ...] = (
+    field.router,
+    catalogues.router,
+    operation.router,
+    documents.router,
+)
+"""Routers in the order of the documentation."""

@@ -1,0 +1,95 @@
+"""How an operation becomes a route: one handler for all, and what its documentation says."""
+
+from typing import Any
+
+from fastapi import APIRouter, Request
+from starlette.responses import Response
+
+from forebay.api.examples import request_example
+from forebay.api.media import CSV, JSON, negotiate, require_json
+from forebay.api.operation import Operation
+from forebay.api.problems import MEDIA_TYPE, Problem
+from forebay.api.schemas.common import Answer, ComputeRequest
+from forebay.api.work import Workshop
+
+COMPUTE_STATUSES = (400, 406, 413, 415, 422, 500, 503, 504)
+"""Statuses of the problems that a compute route can answer with."""
+
+READ_STATUSES = (406, 422, 500)
+"""Statuses of the problems that a catalogue can answer with."""
+
+REQUESTS: dict[str, type[ComputeRequest]] = {}
+"""Request models that routes refer to, by their name in the OpenAPI document."""
+
+ENVELOPES: dict[str, type[Answer]] = {}
+"""Results whose envelopes routes refer to, by the envelope's name in the OpenAPI document."""
+
+
+def serve(router: APIRouter, operation: Operation[Any]) -> None:
+    """Add the route of an operation."""
+
+    async def handler(request: Request) -> Response:
+        media_type = negotiate(request.headers.get("accept"), operation.media_types)
+        require_json(request.headers.get("content-type"), request.headers.get("content-encoding"))
+        workshop: Workshop = request.app.state.workshop
+        reply = await workshop.run(operation, await request.body(), media_type)
+        if isinstance(reply, Problem):
+            raise reply
+        return Response(reply.body, media_type=reply.media_type, headers=reply.headers)
+
+    router.add_api_route(
+        operation.path,
+        handler,
+        methods=["POST"],
+        operation_id=operation.operation_id,
+        summary=operation.summary,
+        description=operation.description,
+        tags=[operation.tag],
+        responses={200: answer_of(operation), **problem_responses(COMPUTE_STATUSES)},
+        response_class=Response,
+        openapi_extra={"requestBody": body_of(operation)},
+    )
+
+
+def body_of(operation: Operation[Any]) -> dict[str, Any]:
+    """Request body as OpenAPI says it."""
+    REQUESTS[operation.request.__name__] = operation.request
+    reference = {"$ref": f"#/components/schemas/{operation.request.__name__}"}
+    example = request_example(operation.operation_id)
+    return {"required": True, "content": {JSON: {"schema": reference, "example": example}}}
+
+
+def answer_of(operation: Operation[Any]) -> dict[str, Any]:
+    """Answer with status 200 as OpenAPI says it, one entry for each media type."""
+    content: dict[str, Any] = {}
+    for media_type in operation.media_types:
+        if media_type == JSON and operation.result is not None:
+            content[JSON] = {"schema": envelope_reference(operation.result)}
+        else:
+            content[media_type] = {"schema": {"type": "string"}} if media_type == CSV else {"schema": {}}
+    return {"description": "Computed", "content": content}
+
+
+def documented(result: type[Answer]) -> dict[str, Any]:
+    """Documentation of a GET route that answers with an envelope."""
+    return {
+        "response_class": Response,
+        "responses": {
+            200: {"description": "Catalogue", "content": {JSON: {"schema": envelope_reference(result)}}},
+            **problem_responses(READ_STATUSES),
+        },
+    }
+
+
+def envelope_reference(result: type[Answer]) -> dict[str, str]:
+    """Reference to the envelope of a result in the OpenAPI document."""
+    ENVELOPES[f"{result.__name__}Envelope"] = result
+    return {"$ref": f"#/components/schemas/{result.__name__}Envelope"}
+
+
+def problem_responses(statuses: tuple[int, ...]) -> dict[int | str, dict[str, Any]]:
+    """Problems with these statuses as OpenAPI says them; the document names their codes once all are known."""
+    schema = {"$ref": "#/components/schemas/Problem"}
+    return {
+        status: {"description": "Problem", "content": {MEDIA_TYPE: {"schema": schema}}} for status in statuses
+    }

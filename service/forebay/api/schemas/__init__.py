@@ -1,0 +1,1 @@
+"""What travels over the wire: pydantic models with units in the schema."""

@@ -1,0 +1,108 @@
+"""Answers of the catalogues: water, limits, warnings, criteria, and the parts every envelope has."""
+
+from typing import Annotated
+
+from pydantic import Field
+
+from forebay.api.schemas.common import Answer
+from forebay.api.schemas.quantities import (
+    AccelerationValue,
+    BytesValue,
+    CountValue,
+    DensityValue,
+    KinematicValue,
+    PressureValue,
+    RatioValue,
+    SalinityValue,
+    SurfaceTensionValue,
+    TemperatureValue,
+    TimeValue,
+    ViscosityValue,
+)
+
+
+class WaterResult(Answer):
+    """Properties of water at atmospheric pressure."""
+
+    temperature: TemperatureValue
+    salinity: SalinityValue
+    density: DensityValue
+    dynamic_viscosity: ViscosityValue
+    kinematic_viscosity: KinematicValue
+    surface_tension: SurfaceTensionValue
+    vapour_pressure: PressureValue
+    gravity: AccelerationValue
+    sources: Annotated[dict[str, str], Field(description="Publication of each property")]
+    left_out: Annotated[str, Field(description="What the properties do not contain")]
+
+
+class LimitsResult(Answer):
+    """What one request may ask for."""
+
+    max_body: Annotated[BytesValue, Field(description="Bytes of a request body")]
+    max_points: Annotated[CountValue, Field(description="Points of one request")]
+    max_elements: Annotated[CountValue, Field(description="Elements and structures of a layout")]
+    max_pairs: Annotated[CountValue, Field(description="Pairs of element and point")]
+    max_values: Annotated[CountValue, Field(description="Numbers in an answer")]
+    deadline: Annotated[TimeValue, Field(description="Longest computation")]
+    workers: Annotated[CountValue, Field(description="Processes for large computations")]
+    queue: Annotated[CountValue, Field(description="Large computations that may wait")]
+
+
+class WarningValue(Answer):
+    """A number that was computed but should not be trusted as it stands."""
+
+    code: Annotated[
+        str, Field(description="Permanent name; GET /v1/warnings explains it", examples=["rigid-lid"])
+    ]
+    severity: Annotated[str, Field(description="note, caution or unsafe-to-use", examples=["caution"])]
+    message: Annotated[str, Field(description="What an engineer reads")]
+    pointer: Annotated[str, Field(description="What it is about", examples=["#/layout/elements/0"])]
+    value: Annotated[RatioValue, Field(description="Number compared, in the unit that the message names")]
+    limit: Annotated[RatioValue, Field(description="Number it was compared with")]
+    source: Annotated[str, Field(description="Where the limit is published")]
+
+
+class Provenance(Answer):
+    """What computed the answer, and of what."""
+
+    service: Annotated[str, Field(examples=["forebay"])]
+    version: Annotated[str, Field(examples=["0.1.0"])]
+    layout_digest: Annotated[
+        str | None,
+        Field(description="Digest of the layout in SI; absent where there is none", examples=["sha256:…"]),
+    ] = None
+
+
+class ProblemError(Answer):
+    """One thing that is wrong."""
+
+    detail: str
+    pointer: Annotated[
+        str | None, Field(description="JSON pointer into the body", examples=["#/layout/elements/0/depth"])
+    ] = None
+    parameter: Annotated[str | None, Field(description="Query parameter", examples=["temperature"])] = None
+
+
+class ProblemDocument(Answer):
+    """A problem (RFC 9457); further members are facts that a client can use, such as `limit` and `asked`."""
+
+    model_config = {"extra": "allow", "title": "Problem"}
+
+    type: Annotated[
+        str, Field(description="Address that explains the code", examples=["/problems/invalid-request"])
+    ]
+    title: str
+    status: Annotated[int, Field(examples=[422], json_schema_extra={"unit": "1"})]
+    detail: str
+    instance: Annotated[str, Field(description="Identifies this occurrence by its request id")]
+    errors: Annotated[list[ProblemError], Field(max_length=20)] = []
+
+
+class ProblemExplanation(Answer):
+    """What a problem code means."""
+
+    type: Annotated[str, Field(examples=["/problems/too-large"])]
+    title: str
+    status: Annotated[int, Field(examples=[422], json_schema_extra={"unit": "1"})]
+    explanation: str

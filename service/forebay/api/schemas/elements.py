@@ -1,0 +1,139 @@
+"""Elements and structures as a client writes them, and their conversion into the flow's own values."""
+
+from typing import Annotated, Literal
+
+from pydantic import Field
+
+from forebay.api.schemas.common import Name, Strict
+from forebay.api.schemas.quantities import (
+    CubicMetresPerSecond,
+    Moment,
+    Position,
+    PositiveMetres,
+    SquareMetresPerSecond,
+)
+from forebay.api.units import UnitSystem
+from forebay.flow import layout as flow
+
+
+class Core(Strict):
+    """Vortex core."""
+
+    model: Annotated[
+        flow.CoreModel, Field(description="How the vortex turns inside its core", examples=["lamb-oseen"])
+    ]
+    radius: Annotated[PositiveMetres, Field(description="Core radius")]
+
+
+class _Discharging(Strict):
+    name: Name
+    at: Annotated[Position, Field(description="Position")]
+    discharge: Annotated[CubicMetresPerSecond, Field(description="Discharge over the whole depth, positive")]
+
+
+class Source(_Discharging):
+    """Point outfall."""
+
+    kind: Literal["source"]
+
+    def to_flow(self, units: UnitSystem) -> flow.Source:
+        """Source in SI."""
+        return flow.Source(self.name, units.position(self.at), units.read(self.discharge, "m3/s"))
+
+
+class Sink(_Discharging):
+    """Point intake."""
+
+    kind: Literal["sink"]
+
+    def to_flow(self, units: UnitSystem) -> flow.Sink:
+        """Sink in SI."""
+        return flow.Sink(self.name, units.position(self.at), units.read(self.discharge, "m3/s"))
+
+
+class _Spread(Strict):
+    name: Name
+    start: Annotated[Position, Field(alias="from", description="One end")]
+    end: Annotated[Position, Field(alias="to", description="Other end", examples=[[52.0, 0.0]])]
+    discharge: Annotated[CubicMetresPerSecond, Field(description="Discharge of the whole line, positive")]
+
+
+class LineSource(_Spread):
+    """Diffuser: a source spread evenly along a line."""
+
+    kind: Literal["line-source"]
+
+    def to_flow(self, units: UnitSystem) -> flow.LineSource:
+        """Line source in SI."""
+        ends = units.position(self.start), units.position(self.end)
+        return flow.LineSource(self.name, *ends, units.read(self.discharge, "m3/s"))
+
+
+class LineSink(_Spread):
+    """Screen bay: a sink spread evenly along a line."""
+
+    kind: Literal["line-sink"]
+
+    def to_flow(self, units: UnitSystem) -> flow.LineSink:
+        """Line sink in SI."""
+        ends = units.position(self.start), units.position(self.end)
+        return flow.LineSink(self.name, *ends, units.read(self.discharge, "m3/s"))
+
+
+class Vortex(Strict):
+    """Vortex, free unless it has a core."""
+
+    kind: Literal["vortex"]
+    name: Name
+    at: Annotated[Position, Field(description="Position of the centre")]
+    circulation: Annotated[SquareMetresPerSecond, Field(description="Circulation, anticlockwise positive")]
+    core: Annotated[Core | None, Field(description="Core; without one the vortex is free")] = None
+
+    def to_flow(self, units: UnitSystem) -> flow.Vortex:
+        """Vortex in SI."""
+        core = self.core and flow.Core(self.core.model, units.read(self.core.radius, "m"))
+        return flow.Vortex(self.name, units.position(self.at), units.read(self.circulation, "m2/s"), core)
+
+
+class Doublet(Strict):
+    """Source and sink at one place, w = -M/(2 pi (z - at))."""
+
+    kind: Literal["doublet"]
+    name: Name
+    at: Annotated[Position, Field(description="Position")]
+    moment: Annotated[
+        Moment,
+        Field(
+            description="Strength per unit depth times spacing, from the sink to the source of the pair",
+            examples=[[-1.2, 0.0]],
+        ),
+    ]
+
+    def to_flow(self, units: UnitSystem) -> flow.Doublet:
+        """Doublet in SI."""
+        mx, my = (units.read(part, "m3/s") for part in self.moment)
+        return flow.Doublet(self.name, units.position(self.at), complex(mx, my))
+
+
+Element = Annotated[
+    Source | Sink | LineSource | LineSink | Vortex | Doublet,
+    Field(discriminator="kind", description="An element"),
+]
+
+
+class Pier(Strict):
+    """Circular pier."""
+
+    kind: Literal["pier"]
+    name: Name
+    at: Annotated[Position, Field(description="Position of the centre")]
+    radius: Annotated[PositiveMetres, Field(description="Radius", examples=[1.5])]
+    circulation: Annotated[
+        SquareMetresPerSecond,
+        Field(description="Circulation round the pier, anticlockwise positive", examples=[0.0]),
+    ] = 0.0
+
+    def to_flow(self, units: UnitSystem) -> flow.Pier:
+        """Pier in SI."""
+        circulation = units.read(self.circulation, "m2/s")
+        return flow.Pier(self.name, units.position(self.at), units.read(self.radius, "m"), circulation)

@@ -1,0 +1,111 @@
+"""A layout as a client writes it, and its conversion into the flow's own values."""
+
+from typing import Annotated
+
+from pydantic import Field
+
+from forebay.api.schemas.common import ComputeRequest, Strict
+from forebay.api.schemas.elements import Element, Pier
+from forebay.api.schemas.quantities import (
+    DepthMetres,
+    PerSecond,
+    Position,
+    Salinity,
+    Velocity,
+    WaterTemperature,
+)
+from forebay.api.schemas.shores import OpenWater, Shore
+from forebay.api.units import UnitSystem
+from forebay.flow import layout as flow
+
+MAX_ELEMENTS = 2000
+"""Elements that the schema admits; a service may set a lower limit."""
+
+MAX_STRUCTURES = 500
+"""Structures that the schema admits; a service may set a lower limit."""
+
+
+class Water(Strict):
+    """Temperature and salinity of the water."""
+
+    temperature: Annotated[WaterTemperature, Field(description="Temperature of the water")] = 10.0
+    salinity: Annotated[Salinity, Field(description="Absolute salinity")] = 0.0
+
+    def to_flow(self, units: UnitSystem) -> flow.Water:
+        """Water properties in SI; the defaults are SI values in either unit system."""
+        given = "temperature" in self.model_fields_set
+        temperature = units.read(self.temperature, "Cel") if given else self.temperature
+        return flow.Water(temperature, self.salinity)
+
+
+GradientRow = Annotated[list[PerSecond], Field(min_length=2, max_length=2, fail_fast=True)]
+
+
+class Ambient(Strict):
+    """Current far upstream of every element, with an optional linear part about `at`."""
+
+    velocity: Annotated[Velocity, Field(description="Velocity far upstream", examples=[[0.35, 0.0]])] = [
+        0.0,
+        0.0,
+    ]
+    gradient: Annotated[
+        list[GradientRow],
+        Field(
+            min_length=2,
+            max_length=2,
+            fail_fast=True,
+            description="[[du/dx, du/dy], [dv/dx, dv/dy]], zero trace",
+            examples=[[[0.0, 0.001], [0.0, 0.0]]],
+        ),
+    ] = [[0.0, 0.0], [0.0, 0.0]]
+    at: Annotated[Position, Field(description="Where the linear part vanishes", examples=[[0.0, 0.0]])] = [
+        0.0,
+        0.0,
+    ]
+
+    def to_flow(self, units: UnitSystem) -> flow.Ambient:
+        """Ambient current in SI."""
+        (ux, uy), (vx, vy) = self.gradient
+        u, v = (units.read(part, "m/s") for part in self.velocity)
+        return flow.Ambient(complex(u, v), ((ux, uy), (vx, vy)), units.position(self.at))
+
+
+class Layout(Strict):
+    """A site: water, current, banks, what draws and gives, what stands in the way."""
+
+    depth: Annotated[DepthMetres, Field(description="Mean depth")]
+    water: Annotated[Water, Field(description="Water properties")] = Water()
+    ambient: Annotated[Ambient, Field(description="Ambient current")] = Ambient()
+    shore: Annotated[Shore, Field(description="Banks; open water if absent")] = OpenWater()
+    elements: Annotated[
+        list[Element], Field(max_length=MAX_ELEMENTS, description="What draws, gives or turns")
+    ] = []
+    structures: Annotated[
+        list[Pier], Field(max_length=MAX_STRUCTURES, description="What stands in the water")
+    ] = []
+
+    @property
+    def size(self) -> int:
+        """Number of elements and structures."""
+        return len(self.elements) + len(self.structures)
+
+    def to_flow(self, units: UnitSystem) -> flow.Layout:
+        """Layout in SI, with complex positions."""
+        return flow.Layout(
+            depth=units.read(self.depth, "m"),
+            water=self.water.to_flow(units),
+            ambient=self.ambient.to_flow(units),
+            shore=self.shore.to_flow(units),
+            elements=tuple(element.to_flow(units) for element in self.elements),
+            structures=tuple(pier.to_flow(units) for pier in self.structures),
+        )
+
+
+class LayoutRequest(ComputeRequest):
+    """What every route about a layout takes."""
+
+    layout: Annotated[Layout, Field(description="The site")]
+
+    def flow_layout(self) -> flow.Layout:
+        """Layout in SI."""
+        return self.layout.to_flow(self.unit_system)

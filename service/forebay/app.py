@@ -1,0 +1,86 @@
+"""The application: the only place where the parts are put together."""
+
+from collections.abc import AsyncIterator
+from contextlib import asynccontextmanager
+from functools import cached_property
+from typing import Any
+
+import orjson
+from fastapi import FastAPI, Request
+from fastapi.exceptions import RequestValidationError
+from starlette.exceptions import HTTPException
+from starlette.responses import Response
+from typing_extensions import override
+
+from forebay import __version__
+from forebay.api.guard import BodyLimit, CrossOrigin, LastErrors, RequestIds
+from forebay.api.limits import Limits
+from forebay.api.metrics import Measured, Metrics
+from forebay.api.openapi import build_document
+from forebay.api.problems import from_status
+from forebay.api.readiness import Readiness
+from forebay.api.routers.registry import ROUTERS
+from forebay.api.validation import problem_of_query
+from forebay.api.work import Workshop
+from forebay.settings import Settings
+
+
+class Application(FastAPI):
+    """The framework's application with our own OpenAPI document, made once."""
+
+    @cached_property
+    def document(self) -> dict[str, Any]:
+        """OpenAPI document."""
+        return build_document(self)
+
+    @override
+    def openapi(self) -> dict[str, Any]:
+        """OpenAPI document."""
+        return self.document
+
+
+def create_app(settings: Settings) -> FastAPI:
+    """Application under the given settings; its own documents, counters and workers."""
+    limits, metrics = Limits.of(settings), Metrics()
+    app = Application(
+        title="Forebay",
+        version=__version__,
+        docs_url=None,
+        redoc_url=None,
+        openapi_url=None,
+        redirect_slashes=False,
+        root_path=settings.root_path,
+        lifespan=_lifespan,
+        exception_handlers={HTTPException: _raise_status, RequestValidationError: _raise_query},
+    )
+    for router in ROUTERS:
+        app.include_router(router)
+    app.state.limits, app.state.metrics, app.state.settings = limits, metrics, settings
+    app.state.workshop = Workshop(limits)
+    app.state.readiness = Readiness(app.state.workshop)
+    app.state.openapi_bytes = orjson.dumps(app.openapi())
+    # the last one added is the outermost
+    app.add_middleware(BodyLimit, limit=settings.max_body)
+    app.add_middleware(LastErrors)
+    app.add_middleware(CrossOrigin, origins=settings.cors_origins)
+    app.add_middleware(Measured, metrics=metrics)
+    app.add_middleware(RequestIds)
+    return app
+
+
+@asynccontextmanager
+async def _lifespan(app: FastAPI) -> AsyncIterator[None]:
+    app.state.readiness.start()
+    try:
+        yield
+    finally:
+        await app.state.readiness.stop()
+        app.state.workshop.close()
+
+
+def _raise_status(_request: Request, error: Any) -> Response:  # noqa: ANN401  (the framework's own signature)
+    raise from_status(error.status_code, error.headers)
+
+
+def _raise_query(_request: Request, error: Any) -> Response:  # noqa: ANN401  (the framework's own signature)
+    raise problem_of_query(error.errors())
