@@ -54,8 +54,16 @@ class PoleField:
             if not self.is_periodic:
                 return np.asarray(1.0 / d, dtype=np.complex128)
             sign = np.where(d.real < 0.0, -1.0, 1.0)
-            lost = -np.expm1(-np.abs(d.real) - 1j * sign * d.imag)
+            lost = -np.expm1(-sign * d)
             return np.asarray(sign * (2.0 - lost) / (2.0 * lost), dtype=np.complex128)
+
+    def kernel_slope(self, d: ComplexArray) -> ComplexArray:
+        """X'(d) = kappa - X^2, without the cancellation far from d = 0, any shape [-]."""
+        with np.errstate(divide="ignore", invalid="ignore"):
+            if not self.is_periodic:
+                return np.asarray(-1.0 / (d * d), dtype=np.complex128)
+            folded = np.where(d.real < 0.0, -d, d)
+            return np.asarray(-np.exp(-folded) / np.expm1(-folded) ** 2, dtype=np.complex128)
 
     def velocity(self, tau: ComplexArray) -> ComplexArray:
         """W_tau at tau, shape (n,) [m2/s]; nan at a pole."""
@@ -79,8 +87,7 @@ class PoleField:
         first = np.zeros(tau.shape, dtype=np.complex128)
         second = np.zeros(tau.shape, dtype=np.complex128)
         for centre, moments in zip(self.centres, self.moments, strict=True):
-            x = self.kernel(tau - centre)
-            change = self.kappa - x * x
+            x, change = self.kernel(tau - centre), self.kernel_slope(tau - centre)
             orders = np.arange(1, moments.size + 1)
             weights = orders * moments
             polynomial = np.polynomial.polynomial.polyval(x, weights)
@@ -146,5 +153,5 @@ class PoleField:
         for centre, moments in zip(self.centres, self.moments, strict=True):
             x = self.kernel(tau - centre)
             weights = np.arange(1, moments.size + 1) * np.abs(moments)
-            total += np.abs(self.kappa - x * x) * np.polynomial.polynomial.polyval(np.abs(x), weights)
+            total += np.abs(self.kernel_slope(tau - centre)) * np.polynomial.polynomial.polyval(np.abs(x), weights)
         return total

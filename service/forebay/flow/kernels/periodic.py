@@ -20,8 +20,12 @@ def kernel(d: complex, offset: float) -> tuple[complex, complex]:
     """X(d) + offset, for offset -1/2, 0 or 1/2, and X'(d) = -1/(4 sinh^2(d/2)); no cancellation far away."""
     a = 0.5 * d.real
     sign = 1.0 if a >= 0.0 else -1.0
-    m = -math.expm1(-2.0 * abs(a))
-    e = 1.0 - m
+    if abs(a) > 0.5:
+        e = math.exp(-2.0 * abs(a))
+        m = 1.0 - e
+    else:
+        m = -math.expm1(-2.0 * abs(a))
+        e = 1.0 - m
     s = math.sin(0.5 * d.imag)
     c = math.cos(0.5 * d.imag)
     denominator = m * m + 4.0 * e * s * s

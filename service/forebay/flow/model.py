@@ -1,0 +1,398 @@
+"""The flow of a layout: one object that is evaluated, searched, integrated and followed downstream."""
+
+from dataclasses import dataclass
+from functools import cached_property
+
+import numpy as np
+
+from forebay.flow.arrays import BoolArray, ComplexArray, FloatArray, IntArray
+from forebay.flow.assembly import (
+    PoleBuilder,
+    add_elements,
+    add_piers,
+    ambient_constant,
+    offset_of,
+    strength,
+)
+from forebay.flow.ends import End, ends_of
+from forebay.flow.gradient import GradientTerm
+from forebay.flow.layout import (
+    Core,
+    Layout,
+    LineSink,
+    LineSource,
+    Pier,
+    PointElement,
+    Vortex,
+    outflow,
+)
+from forebay.flow.piers import solve_piers
+from forebay.flow.placement import TOUCHING, check_layout, scale_of
+from forebay.flow.poles import PoleField
+from forebay.flow.shores import Frame, Wall, frame_of
+from forebay.flow.terms import Jet, Term
+
+AMBIENT = "ambient"
+"""Owner of everything that is there without the elements."""
+
+
+@dataclass(frozen=True, slots=True)
+class Singularity:
+    """A point element in the water.
+
+    at : position, x + iy [m];  owner : its name;  kind : the element
+    strength : g = (q - i Gamma)/(2 pi) [m2/s];  on : name of the wall it stands on, or "water"
+    """
+
+    at: complex
+    owner: str
+    kind: PointElement
+    strength: complex
+    on: str
+
+
+@dataclass(frozen=True, slots=True)
+class Line:
+    """A line element: flux [m/s] out of it per length, negative for a sink; `on` as for Singularity."""
+
+    start: complex
+    end: complex
+    owner: str
+    flux: float
+    on: str
+
+
+@dataclass(frozen=True, slots=True)
+class CoredVortex:
+    """A vortex with a core of `core.radius` [m]."""
+
+    at: complex
+    core: Core
+    owner: str
+    circulation: float
+
+
+@dataclass(frozen=True)
+class FlowModel:
+    """Velocity, derivatives, potential and integrals of a layout's flow.
+
+    W = u - iv = W_tau dtau/dz + sum of terms. Arrays may have any shape; nothing is validated: the value
+    at a singularity is nan, on land it is the continuation of the flow and means nothing.
+
+    layout : what was asked for;  frame : the shore in the mapped plane
+    rational : poles of the mapped plane;  terms : line elements, cores, gradient
+    scale : length scale [m];  boundary_residual : largest normal velocity on the piers as part of the
+    largest speed there, on a sample other than the one fitted [-]
+    """
+
+    layout: Layout
+    frame: Frame
+    rational: PoleField
+    terms: tuple[Term, ...]
+    scale: float
+    boundary_residual: float
+
+    def velocity(self, z: ComplexArray) -> ComplexArray:
+        """Conjugate velocity W = u - iv [m/s] at z [m]; relative accuracy 1e-14 of `magnitude`."""
+        at = self._moved(z)
+        flat = at.ravel()
+        velocity = self.rational.velocity(self.frame.map.forward(flat)) * self.frame.map.slope(flat)
+        for term in self.terms:
+            velocity = velocity + term.jet(flat).velocity
+        return self._still_at_vertex(z, velocity.reshape(at.shape))
+
+    def jet(self, z: ComplexArray) -> Jet:
+        """W [m/s] with dW/dz and dW/dzbar [1/s] at z [m]."""
+        at = self._moved(z)
+        flat = at.ravel()
+        slope = self.frame.map.slope(flat)
+        velocity, change = self.rational.jet(self.frame.map.forward(flat))
+        jet = Jet(
+            velocity * slope,
+            change * slope**2 + velocity * self.frame.map.curvature(flat),
+            np.zeros_like(velocity),
+        )
+        for term in self.terms:
+            jet = jet + term.jet(flat)
+        shape = at.shape
+        return Jet(
+            self._still_at_vertex(z, jet.velocity.reshape(shape)),
+            jet.slope.reshape(shape),
+            jet.skew.reshape(shape),
+        )
+
+    def _moved(self, z: ComplexArray) -> ComplexArray:
+        """Points at a corner's vertex or a core's centre moved to where every part is finite."""
+        at = np.array(z, dtype=np.complex128)
+        if not self.frame.map.affine:
+            first, second = self.frame.walls
+            inward = first.direction - second.direction
+            inward = inward / abs(inward) if abs(inward) > TOUCHING else 1j * first.direction
+            at = np.where(np.abs(at - first.point) < 1e-9 * self.scale, first.point + 1e-9 * self.scale * inward, at)
+        for vortex in self.cores:
+            reach = 1e-8 * vortex.core.radius
+            at = np.where(np.abs(at - vortex.at) < reach, vortex.at + reach, at)
+        return np.asarray(at, dtype=np.complex128)
+
+    def _still_at_vertex(self, z: ComplexArray, velocity: ComplexArray) -> ComplexArray:
+        """At the vertex of a corner below 180 degrees the water stands still."""
+        if self.frame.map.affine or self.layout.shore.interior_angle >= np.pi:  # type: ignore[union-attr]
+            return velocity
+        at_vertex = np.abs(np.asarray(z) - self.frame.walls[0].point) < 1e-9 * self.scale
+        return np.where(at_vertex, 0.0, velocity)
+
+    def potential(self, z: ComplexArray) -> ComplexArray:
+        """Complex potential phi + i psi [m2/s] with principal branches: it jumps across cuts.
+
+        Differences are exact only by `chord`. Where the flow is rotational phi has no meaning.
+        """
+        at = self._moved(z)
+        flat = at.ravel()
+        total = self.rational.potential(self.frame.map.forward(flat))
+        for term in self.terms:
+            total = total + term.potential(flat)
+        return total.reshape(at.shape)
+
+    def chords(self, a: ComplexArray, b: ComplexArray) -> ComplexArray:
+        """Integral of W dz along straight chords in the water, owner by owner.
+
+        Parameters
+        ----------
+        a, b : shape (n,), ends of the chords [m]; no chord meets a point element
+
+        Returns
+        -------
+        shape (n, len(owners)) [m2/s]: circulation + i flux to the right of travel; exact to rounding.
+        """
+        start, end = np.atleast_1d(self._moved(a)), np.atleast_1d(self._moved(b))
+        if self.frame.map.affine:
+            tau = self.frame.map.forward
+            sums = self.rational.chords(tau(start), tau(end), owner_count=len(self.owners))
+        else:
+            sums = self._curved_chords(start, end)
+        for term in self.terms:
+            sums[:, term.owner] += term.chords(start, end)
+        return sums
+
+    def _curved_chords(self, start: ComplexArray, end: ComplexArray) -> ComplexArray:
+        """Chords in a corner: cut where they pass the vertex most closely, so that Re tau is monotone."""
+        vertex = self.frame.walls[0].point
+        a, b = start - vertex, end - vertex
+        span = b - a
+        length = np.abs(span) ** 2
+        part = np.clip(-(a.conj() * span).real / np.where(length > 0.0, length, 1.0), 0.0, 1.0)
+        foot = start + part * (end - start)
+        return self._monotone_chords(start, foot) + self._monotone_chords(foot, end)
+
+    def _monotone_chords(self, start: ComplexArray, end: ComplexArray) -> ComplexArray:
+        vertex = self.frame.walls[0].point
+        radius = np.abs(self.frame.map.inverse(self.rational.poles) - vertex)
+        a, span = (start - vertex)[:, None], (end - start)[:, None]
+        square, half = np.abs(span) ** 2, (a.conj() * span).real
+        rest = np.abs(a) ** 2 - radius**2
+        root = np.sqrt(np.maximum(half**2 - square * rest, 0.0))
+        outwards = np.abs(end - vertex) >= np.abs(start - vertex)
+        safe = np.where(square > 0.0, square, 1.0)
+        part = np.where(outwards[:, None], root - half, -root - half) / safe
+        crossing = self.frame.map.forward(a + vertex + np.clip(part, 0.0, 1.0) * span).imag
+        tau = self.frame.map.forward
+        return self.rational.chords(tau(start), tau(end), owner_count=len(self.owners), crossing=crossing)
+
+    def chord(self, a: ComplexArray, b: ComplexArray) -> ComplexArray:
+        """`chords` summed over the owners, shape (n,) [m2/s]."""
+        return np.asarray(self.chords(a, b).sum(axis=1), dtype=np.complex128)
+
+    def magnitude(self, z: ComplexArray) -> FloatArray:
+        """Sum of the absolute values of the parts of W at z [m/s]: its rounding error is some 1e-15 of it."""
+        at = self._moved(z)
+        flat = at.ravel()
+        total = self.rational.magnitude(self.frame.map.forward(flat)) * np.abs(self.frame.map.slope(flat))
+        for term in self.terms:
+            total = total + term.magnitude(flat)
+        return total.reshape(at.shape)
+
+    def wet(self, z: ComplexArray) -> BoolArray:
+        """Whether z lies in the water; walls count, with a tolerance of 1e-9 of the scale."""
+        at = np.asarray(z, dtype=np.complex128)
+        reach = TOUCHING * self.scale
+        with np.errstate(invalid="ignore"):
+            inside = self.frame.wet(self.frame.map.forward(at), reach * np.abs(self.frame.map.slope(at)))
+        if not self.frame.map.affine:
+            inside = inside | (np.abs(at - self.frame.walls[0].point) < reach)
+        for pier in self.piers:
+            inside = inside & (np.abs(at - pier.at) >= pier.radius - reach)
+        return np.asarray(inside, dtype=np.bool_)
+
+    def singular(self, z: ComplexArray, radius: float | None = None) -> IntArray:
+        """Index of the place without a velocity within `radius` [m] of z, or -1.
+
+        Places: `singularities` in order (a vortex with a core is none), then both ends of every line, then
+        the vertex of a corner above 180 degrees. radius : default 1e-9 of the scale.
+        """
+        at = np.asarray(z, dtype=np.complex128)
+        reach = TOUCHING * self.scale if radius is None else radius
+        found = np.full(at.shape, -1, dtype=np.int64)
+        for index, place in enumerate(self.singular_places):
+            found[(np.abs(at - place) <= reach) & (found < 0)] = index
+        return found
+
+    @cached_property
+    def singular_places(self) -> ComplexArray:
+        """The places that `singular` counts, shape (s,), nan for cored vortices [m]."""
+        cored = {vortex.owner for vortex in self.cores}
+        places = [complex(np.nan, np.nan) if s.owner in cored else s.at for s in self.singularities]
+        places += [end for line in self.lines for end in (line.start, line.end)]
+        if not self.frame.map.affine and self.layout.shore.interior_angle > np.pi:  # type: ignore[union-attr]
+            places.append(self.frame.walls[0].point)
+        return np.array(places, dtype=np.complex128)
+
+    @cached_property
+    def owners(self) -> tuple[str, ...]:
+        """Who answers for what: "ambient", then elements, then structures."""
+        return (
+            AMBIENT,
+            *(element.name for element in self.layout.elements),
+            *(pier.name for pier in self.layout.structures),
+        )
+
+    @cached_property
+    def singularities(self) -> tuple[Singularity, ...]:
+        """The point elements."""
+        return tuple(
+            Singularity(e.at, e.name, e, strength(e, self.layout.depth), self._wall_at(e.at))
+            for e in self.layout.elements
+            if not isinstance(e, LineSource | LineSink)
+        )
+
+    @cached_property
+    def lines(self) -> tuple[Line, ...]:
+        """The line elements."""
+        return tuple(
+            Line(
+                e.start,
+                e.end,
+                e.name,
+                outflow(e) / self.layout.depth / abs(e.end - e.start),
+                self._wall_along(e.start, e.end),
+            )
+            for e in self.layout.elements
+            if isinstance(e, LineSource | LineSink)
+        )
+
+    @cached_property
+    def cores(self) -> tuple[CoredVortex, ...]:
+        """The vortices with a core."""
+        return tuple(
+            CoredVortex(e.at, e.core, e.name, e.circulation)
+            for e in self.layout.elements
+            if isinstance(e, Vortex) and e.core
+        )
+
+    @property
+    def walls(self) -> tuple[Wall, ...]:
+        """The straight walls."""
+        return self.frame.walls
+
+    @property
+    def piers(self) -> tuple[Pier, ...]:
+        """The piers."""
+        return self.layout.structures
+
+    @cached_property
+    def ends(self) -> tuple[End, ...]:
+        """The far ends of the water with what flows in there."""
+        return ends_of(self.layout)
+
+    @property
+    def is_rational(self) -> bool:
+        """Whether W_tau is a sum of poles and nothing else."""
+        return not self.terms
+
+    @cached_property
+    def has_potential(self) -> bool:
+        """Whether the flow is irrotational everywhere."""
+        return not self.cores and self.layout.ambient.vorticity == 0.0
+
+    def distance_to_wall(self, z: ComplexArray) -> FloatArray:
+        """Distance to the nearest wall or pier [m], inf without any; negative inside a pier."""
+        at = np.asarray(z, dtype=np.complex128)
+        distance = np.full(at.shape, np.inf)
+        for wall in self.walls:
+            distance = np.minimum(distance, wall.distance(at))
+        for pier in self.piers:
+            distance = np.minimum(distance, np.abs(at - pier.at) - pier.radius)
+        return distance
+
+    def nearest_wall(self, z: ComplexArray) -> IntArray:
+        """Index into `walls` followed by `piers` of the nearest one, -1 without any."""
+        at = np.asarray(z, dtype=np.complex128)
+        distances = [wall.distance(at) for wall in self.walls]
+        distances += [np.abs(at - pier.at) - pier.radius for pier in self.piers]
+        if not distances:
+            return np.full(at.shape, -1, dtype=np.int64)
+        return np.asarray(np.argmin(np.stack(distances), axis=0), dtype=np.int64)
+
+    def _wall_at(self, at: complex) -> str:
+        z = np.asarray(at)
+        near = (wall.name for wall in self.walls if float(wall.distance(z)) <= TOUCHING * self.scale)
+        return next(near, "water")
+
+    def _wall_along(self, start: complex, end: complex) -> str:
+        name = self._wall_at(start)
+        return name if name == self._wall_at(end) and name == self._wall_at((start + end) / 2) else "water"
+
+
+def compile_layout(layout: Layout) -> FlowModel:
+    """The flow model of a layout.
+
+    Raises
+    ------
+    LayoutError : the subclass names the fault, `path` the place (see `placement` and `piers`)
+    """
+    middle, scale = scale_of(layout)
+    frame = frame_of(layout.shore, middle, scale)
+    check_layout(layout, frame, scale)
+    terms = _terms(layout, frame, scale)
+    builder = PoleBuilder(frame, scale)
+    add_elements(builder, layout, frame)
+    first_pier = len(layout.elements) + 1
+    add_piers(builder, layout.structures, first_pier)
+    constant, offset = ambient_constant(layout, frame), offset_of(layout, frame)
+    model = FlowModel(layout, frame, builder.build(constant, offset), terms, scale, 0.0)
+    if not layout.structures:
+        return model
+    solution = solve_piers(layout.structures, frame, model.rational, model.velocity)
+    for k, (pier, moments) in enumerate(zip(layout.structures, solution.moments, strict=True)):
+        builder.add_moments(pier.at, moments, first_pier + k)
+    return FlowModel(layout, frame, builder.build(constant, offset), terms, scale, solution.residual)
+
+
+def _terms(layout: Layout, frame: Frame, scale: float) -> tuple[Term, ...]:
+    terms: list[Term] = []
+    if layout.ambient.has_gradient:
+        terms.append(GradientTerm.of(layout.ambient, owner=0))
+    offset = offset_of(layout, frame)
+    for k, element in enumerate(layout.elements):
+        match element:
+            case LineSource() | LineSink():
+                from forebay.flow.lines import line_term
+
+                start, end = (_onto_wall(at, frame, scale) for at in (element.start, element.end))
+                flux = outflow(element) / layout.depth
+                terms.append(line_term(start, end, flux, owner=k + 1, frame=frame, offset=offset))
+            case Vortex(core=Core() as core):
+                from forebay.flow.cores import core_term
+
+                terms.append(core_term(element.at, element.circulation, core, owner=k + 1, frame=frame))
+            case _:
+                continue
+    return tuple(terms)
+
+
+def _onto_wall(at: complex, frame: Frame, scale: float) -> complex:
+    """The point moved on to a wall that it touches."""
+    z = np.asarray(at)
+    for wall in frame.walls:
+        if float(wall.distance(z)) <= TOUCHING * scale:
+            return complex(wall.nearest(z))
+    return at
