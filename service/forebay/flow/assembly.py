@@ -127,7 +127,7 @@ def _imaging(at: complex, layout: Layout) -> tuple[Pier, ...]:
 def _add_doublet(
     builder: PoleBuilder, element: Doublet, piers: tuple[Pier, ...], frame: Frame, *, owner: int
 ) -> None:
-    """F = -M / (2 pi (z - at)); its image in a circle is a doublet -conj(m) (a / conj(at - centre))^2 inside."""
+    """F = m / (z - at), m = -M / (2 pi); its image in a circle is -conj(m) (a / conj(at - centre))^2."""
     moment = -element.moment / (2.0 * np.pi)
     places = [(element.at, moment)]
     for pier in piers:

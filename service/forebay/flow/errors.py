@@ -26,9 +26,6 @@ class FlowError(Exception):
         self.path = path
         self.facts = facts
 
-    def __repr__(self) -> str:
-        return f"{type(self).__name__}({self.detail!r}, path={self.path!r})"
-
 
 class LayoutError(FlowError):
     """The layout describes something that cannot be."""

@@ -69,7 +69,7 @@ class Vortex:
 
 @dataclass(frozen=True, slots=True)
 class Doublet:
-    """Doublet w = -M / (2 pi (z - at)); moment M [m3/s] = strength per depth times spacing, from sink to source."""
+    """Doublet w = -M / (2 pi (z - at)); moment M [m3/s]: strength [m2/s] times spacing, sink to source."""
 
     name: str
     at: complex
@@ -115,7 +115,7 @@ class Channel:
 
 @dataclass(frozen=True, slots=True)
 class Corner:
-    """Two straight banks meeting at `vertex`: one runs along `along` (unit), the other at `interior_angle` [rad] to its left."""
+    """Two straight banks from `vertex`, along `along` (unit) and at `interior_angle` [rad] to its left."""
 
     vertex: complex
     along: complex
@@ -197,4 +197,3 @@ def outflow(element: Element) -> float:
             return -element.discharge
         case Vortex() | Doublet():
             return 0.0
-

@@ -104,7 +104,7 @@ class LogarithmMap:
         with np.errstate(divide="ignore"):
             modulus = np.log(np.abs(local))
         argument = np.angle(local * np.exp(-1j * half)) + half
-        return self.exponent * (modulus + 1j * argument)
+        return np.asarray(self.exponent * (modulus + 1j * argument), dtype=np.complex128)
 
     def slope(self, z: ComplexArray) -> ComplexArray:
         """dtau/dz = n / (z - vertex) [1/m]."""
@@ -118,4 +118,5 @@ class LogarithmMap:
 
     def inverse(self, tau: ComplexArray) -> ComplexArray:
         """z(tau) [m]."""
-        return np.exp(tau / self.exponent) * (self.unit * self.along) + self.vertex
+        spread = np.exp(tau / self.exponent) * (self.unit * self.along)
+        return np.asarray(spread + self.vertex, dtype=np.complex128)

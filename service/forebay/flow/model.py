@@ -12,9 +12,17 @@ from forebay.flow.assembly import (
     add_piers,
     ambient_constant,
     offset_of,
-    strength,
 )
 from forebay.flow.ends import End, ends_of
+from forebay.flow.features import (
+    CoredVortex,
+    Line,
+    Singularity,
+    cores_of,
+    lines_of,
+    onto_wall,
+    singularities_of,
+)
 from forebay.flow.gradient import GradientTerm
 from forebay.flow.layout import (
     Core,
@@ -22,7 +30,6 @@ from forebay.flow.layout import (
     LineSink,
     LineSource,
     Pier,
-    PointElement,
     Vortex,
     outflow,
 )
@@ -34,42 +41,6 @@ from forebay.flow.terms import Jet, Term
 
 AMBIENT = "ambient"
 """Owner of everything that is there without the elements."""
-
-
-@dataclass(frozen=True, slots=True)
-class Singularity:
-    """A point element in the water.
-
-    at : position, x + iy [m];  owner : its name;  kind : the element
-    strength : g = (q - i Gamma)/(2 pi) [m2/s];  on : name of the wall it stands on, or "water"
-    """
-
-    at: complex
-    owner: str
-    kind: PointElement
-    strength: complex
-    on: str
-
-
-@dataclass(frozen=True, slots=True)
-class Line:
-    """A line element: flux [m/s] out of it per length, negative for a sink; `on` as for Singularity."""
-
-    start: complex
-    end: complex
-    owner: str
-    flux: float
-    on: str
-
-
-@dataclass(frozen=True, slots=True)
-class CoredVortex:
-    """A vortex with a core of `core.radius` [m]."""
-
-    at: complex
-    core: Core
-    owner: str
-    circulation: float
 
 
 @dataclass(frozen=True)
@@ -128,7 +99,9 @@ class FlowModel:
             first, second = self.frame.walls
             inward = first.direction - second.direction
             inward = inward / abs(inward) if abs(inward) > TOUCHING else 1j * first.direction
-            at = np.where(np.abs(at - first.point) < 1e-9 * self.scale, first.point + 1e-9 * self.scale * inward, at)
+            at = np.where(
+                np.abs(at - first.point) < 1e-9 * self.scale, first.point + 1e-9 * self.scale * inward, at
+            )
         for vortex in self.cores:
             reach = 1e-8 * vortex.core.radius
             at = np.where(np.abs(at - vortex.at) < reach, vortex.at + reach, at)
@@ -258,35 +231,17 @@ class FlowModel:
     @cached_property
     def singularities(self) -> tuple[Singularity, ...]:
         """The point elements."""
-        return tuple(
-            Singularity(e.at, e.name, e, strength(e, self.layout.depth), self._wall_at(e.at))
-            for e in self.layout.elements
-            if not isinstance(e, LineSource | LineSink)
-        )
+        return singularities_of(self.layout, self.walls, TOUCHING * self.scale)
 
     @cached_property
     def lines(self) -> tuple[Line, ...]:
         """The line elements."""
-        return tuple(
-            Line(
-                e.start,
-                e.end,
-                e.name,
-                outflow(e) / self.layout.depth / abs(e.end - e.start),
-                self._wall_along(e.start, e.end),
-            )
-            for e in self.layout.elements
-            if isinstance(e, LineSource | LineSink)
-        )
+        return lines_of(self.layout, self.walls, TOUCHING * self.scale)
 
     @cached_property
     def cores(self) -> tuple[CoredVortex, ...]:
         """The vortices with a core."""
-        return tuple(
-            CoredVortex(e.at, e.core, e.name, e.circulation)
-            for e in self.layout.elements
-            if isinstance(e, Vortex) and e.core
-        )
+        return cores_of(self.layout)
 
     @property
     def walls(self) -> tuple[Wall, ...]:
@@ -332,15 +287,6 @@ class FlowModel:
             return np.full(at.shape, -1, dtype=np.int64)
         return np.asarray(np.argmin(np.stack(distances), axis=0), dtype=np.int64)
 
-    def _wall_at(self, at: complex) -> str:
-        z = np.asarray(at)
-        near = (wall.name for wall in self.walls if float(wall.distance(z)) <= TOUCHING * self.scale)
-        return next(near, "water")
-
-    def _wall_along(self, start: complex, end: complex) -> str:
-        name = self._wall_at(start)
-        return name if name == self._wall_at(end) and name == self._wall_at((start + end) / 2) else "water"
-
 
 def compile_layout(layout: Layout) -> FlowModel:
     """The flow model of a layout.
@@ -377,7 +323,9 @@ def _terms(layout: Layout, frame: Frame, scale: float) -> tuple[Term, ...]:
             case LineSource() | LineSink():
                 from forebay.flow.lines import line_term
 
-                start, end = (_onto_wall(at, frame, scale) for at in (element.start, element.end))
+                start, end = (
+                    onto_wall(at, frame.walls, TOUCHING * scale) for at in (element.start, element.end)
+                )
                 flux = outflow(element) / layout.depth
                 terms.append(line_term(start, end, flux, owner=k + 1, frame=frame, offset=offset))
             case Vortex(core=Core() as core):
@@ -387,12 +335,3 @@ def _terms(layout: Layout, frame: Frame, scale: float) -> tuple[Term, ...]:
             case _:
                 continue
     return tuple(terms)
-
-
-def _onto_wall(at: complex, frame: Frame, scale: float) -> complex:
-    """The point moved on to a wall that it touches."""
-    z = np.asarray(at)
-    for wall in frame.walls:
-        if float(wall.distance(z)) <= TOUCHING * scale:
-            return complex(wall.nearest(z))
-    return at

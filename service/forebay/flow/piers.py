@@ -24,7 +24,7 @@ _LADDER = (1, 2, 4, 8, 12, 16, 24, 32, 48, 64, 96, 128)
 _ENOUGH = 1e-13
 """Normal velocity on the piers, as part of the largest speed there, that ends the ladder [-]."""
 TOLERANCE = 1e-8
-"""Normal velocity on the piers, as part of the largest speed there, above which they count as unsolved [-]."""
+"""Normal velocity on the piers, as part of the largest speed there, that counts as unsolved [-]."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -47,7 +47,7 @@ def image_in(pier: Pier, at: complex) -> complex:
 
 
 def circle(pier: Pier, count: int, start: float = 0.0) -> tuple[ComplexArray, ComplexArray]:
-    """Points on a pier's wall, evenly spaced from angle `start` [rad], and outward normals; shape (count,)."""
+    """Points evenly spaced on a pier's wall from angle `start` [rad], outward normals; shape (count,)."""
     normal = np.exp(1j * (start + 2.0 * np.pi * np.arange(count) / count))
     return pier.at + pier.radius * normal, normal
 
@@ -95,9 +95,7 @@ def solve_piers(piers: tuple[Pier, ...], frame: Frame, field: PoleField, base: V
     return best
 
 
-def _fit(
-    piers: tuple[Pier, ...], frame: Frame, field: PoleField, base: Velocity, order: int
-) -> PierSolution:
+def _fit(piers: tuple[Pier, ...], frame: Frame, field: PoleField, base: Velocity, order: int) -> PierSolution:
     count = 4 * order + 12
     z, normal = _circles(piers, count, 0.0)
     columns = _columns(piers, frame, field, z, order)

@@ -3,6 +3,7 @@
 import numpy as np
 from scipy.spatial import cKDTree
 
+from forebay.flow.arrays import ComplexArray
 from forebay.flow.errors import (
     CoincidentElementsError,
     CurrentThroughWallError,
@@ -61,7 +62,9 @@ def scale_of(layout: Layout) -> tuple[complex, float]:
     points = [at for element in layout.elements for _, at in places(element)]
     points += [pier.at for pier in layout.structures]
     radii = [pier.radius for pier in layout.structures]
-    radii += [element.core.radius for element in layout.elements if isinstance(element, Vortex) and element.core]
+    radii += [
+        element.core.radius for element in layout.elements if isinstance(element, Vortex) and element.core
+    ]
     middle = _home(layout.shore)
     if points:
         xs, ys = [p.real for p in points], [p.imag for p in points]
@@ -193,7 +196,7 @@ def _check_wet(at: complex, frame: Frame, scale: float, path: Path) -> None:
 def _check_line(element: LineSource | LineSink, frame: Frame, scale: float, path: Path) -> None:
     if abs(element.end - element.start) <= TOUCHING * scale:
         raise ElementOnLandError("the line has no length", (*path, "to"))
-    inside = element.start + (element.end - element.start) * np.linspace(0.0, 1.0, 65)
+    inside: ComplexArray = np.linspace(element.start, element.end, 65, dtype=np.complex128)
     tolerance = TOUCHING * scale * np.abs(frame.map.slope(inside))
     if not np.all(frame.wet(frame.map.forward(inside), tolerance)):
         raise ElementOnLandError("the line crosses land", (*path, "to"))
@@ -217,9 +220,7 @@ def _check_structures(layout: Layout, frame: Frame, scale: float) -> None:
             raise OverlappingStructuresError("the pier touches a bank", ("structures", k, "radius"))
         for j, other in enumerate(layout.structures[:k]):
             if abs(pier.at - other.at) - pier.radius - other.radius <= TOUCHING * scale:
-                raise OverlappingStructuresError(
-                    f"the pier touches structures/{j}", ("structures", k, "at")
-                )
+                raise OverlappingStructuresError(f"the pier touches structures/{j}", ("structures", k, "at"))
         for i, element in enumerate(layout.elements):
             for name, at in _nearest_places(element, pier.at):
                 if abs(at - pier.at) - pier.radius <= TOUCHING * scale:

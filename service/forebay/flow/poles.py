@@ -105,21 +105,24 @@ class PoleField:
         ----------
         start, end : shape (n,), ends [-]; neither is a pole
         owner_count : number of columns of the answer
-        crossing : see `kernels.periodic.chord_sums`; empty for straight paths
+        crossing : see `kernels.periodic.path_integrals`; empty for straight paths
 
         Returns
         -------
         shape (n, owner_count) [m2/s]: circulation + i flux of each owner.
         """
         if self.is_periodic:
-            sums = periodic.chord_sums(
-                start, end, self.poles, self.strengths, self.offset, crossing, self.owners, owner_count
-            )
+            integrals = periodic.path_integrals(start, end, self.poles, self.offset, crossing)
         else:
-            sums = rational.chord_sums(start, end, self.poles, self.strengths, self.owners, owner_count)
+            integrals = rational.path_integrals(start, end, self.poles)
+        shares = np.zeros((self.poles.size, owner_count), dtype=np.complex128)
+        shares[np.arange(self.poles.size), self.owners] = self.strengths
+        sums = integrals @ shares
         sums[:, 0] += self.constant * (end - start)
         for centre, moments, owner in zip(self.centres, self.moments, self.moment_owners, strict=True):
-            sums[:, owner] += self._multipole(end - centre, moments) - self._multipole(start - centre, moments)
+            sums[:, owner] += self._multipole(end - centre, moments) - self._multipole(
+                start - centre, moments
+            )
         return np.asarray(sums, dtype=np.complex128)
 
     def _multipole(self, d: ComplexArray, moments: ComplexArray) -> ComplexArray:
@@ -153,5 +156,7 @@ class PoleField:
         for centre, moments in zip(self.centres, self.moments, strict=True):
             x = self.kernel(tau - centre)
             weights = np.arange(1, moments.size + 1) * np.abs(moments)
-            total += np.abs(self.kernel_slope(tau - centre)) * np.polynomial.polynomial.polyval(np.abs(x), weights)
+            total += np.abs(self.kernel_slope(tau - centre)) * np.polynomial.polynomial.polyval(
+                np.abs(x), weights
+            )
         return total

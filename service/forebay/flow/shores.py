@@ -32,7 +32,7 @@ class Wall:
     def along(self, z: ComplexArray) -> FloatArray:
         """Distance along the wall from `point` [m], clipped to the wall."""
         offset = ((z - self.point) * np.conj(self.direction)).real
-        return np.clip(offset, -self.before, self.after)
+        return np.asarray(np.clip(offset, -self.before, self.after), dtype=np.float64)
 
     def nearest(self, z: ComplexArray) -> ComplexArray:
         """Nearest point of the wall, x + iy [m]."""
@@ -60,18 +60,17 @@ class Images:
 class Frame:
     """What a shore means in the mapped plane.
 
-    map, kappa : see `maps` and `poles`
+    map, kappa : see `maps` and `poles`;  walls : the straight walls
     mirrored : whether Im tau = 0 (and Im tau = pi with the periodic kernel) are banks
     closed : whether Re tau = 0 is a wall;  length : Re tau of the wall opposite, inf without one [-]
-    walls : straight walls, with names
     """
 
     map: ConformalMap
     kappa: float
-    mirrored: bool
-    closed: bool
-    length: float
     walls: tuple[Wall, ...]
+    mirrored: bool = True
+    closed: bool = False
+    length: float = inf
 
     def images(self, tau: complex) -> Images:
         """Every image of a pole at tau that can be felt in the water, the pole itself first.
@@ -132,7 +131,7 @@ def frame_of(shore: Shore, middle: complex, size: float) -> Frame:
     """
     match shore:
         case OpenWater():
-            return Frame(AffineMap(middle, 1.0 + 0j), RATIONAL, False, False, inf, ())
+            return Frame(AffineMap(middle, 1.0 + 0j), RATIONAL, (), mirrored=False)
         case StraightBank():
             return _straight(Wall("bank", shore.point, shore.along, inf, inf), middle)
         case Channel():
@@ -147,14 +146,14 @@ def frame_of(shore: Shore, middle: complex, size: float) -> Frame:
 
 def _straight(bank: Wall, middle: complex, walls: tuple[Wall, ...] | None = None) -> Frame:
     origin = complex(bank.nearest(np.asarray(middle)))
-    return Frame(AffineMap(origin, bank.direction.conjugate()), RATIONAL, True, False, inf, walls or (bank,))
+    return Frame(AffineMap(origin, bank.direction.conjugate()), RATIONAL, walls or (bank,))
 
 
 def _channel(shore: Channel, middle: complex) -> Frame:
     right = Wall("right bank", shore.point, shore.along, inf, inf)
     left = Wall("left bank", shore.point + 1j * shore.along * shore.width, -shore.along, inf, inf)
     tau = AffineMap(complex(right.nearest(np.asarray(middle))), pi / shore.width * shore.along.conjugate())
-    return Frame(tau, PERIODIC, True, False, inf, (right, left))
+    return Frame(tau, PERIODIC, (right, left))
 
 
 def _corner(shore: Corner, middle: complex, size: float) -> Frame:
@@ -167,7 +166,7 @@ def _corner(shore: Corner, middle: complex, size: float) -> Frame:
         return _straight(Wall("bank", shore.vertex, shore.along, inf, inf), middle, walls)
     unit = exp(0.5 * (log(max(abs(middle - shore.vertex), size)) + log(size)))
     tau = LogarithmMap(shore.vertex, shore.along, shore.interior_angle, unit)
-    return Frame(tau, PERIODIC, True, False, inf, walls)
+    return Frame(tau, PERIODIC, walls)
 
 
 def _dead_end(shore: DeadEnd) -> Frame:
@@ -178,7 +177,7 @@ def _dead_end(shore: DeadEnd) -> Frame:
         Wall("closed end", shore.point, -across, shore.width, 0.0),
     )
     tau = AffineMap(shore.point, pi / shore.width * shore.along.conjugate())
-    return Frame(tau, PERIODIC, True, True, inf, walls)
+    return Frame(tau, PERIODIC, walls, closed=True)
 
 
 def _basin(shore: Basin) -> Frame:
@@ -195,6 +194,5 @@ def _basin(shore: Basin) -> Frame:
         origin, along, length, width = shore.corner, shore.along, shore.length, shore.width
     else:
         origin, along, length, width = far, across, shore.width, shore.length
-    return Frame(
-        AffineMap(origin, pi / width * along.conjugate()), PERIODIC, True, True, pi * length / width, walls
-    )
+    tau = AffineMap(origin, pi / width * along.conjugate())
+    return Frame(tau, PERIODIC, walls, closed=True, length=pi * length / width)

@@ -30,7 +30,9 @@ class Term(Protocol):
     """
 
     @property
-    def owner(self) -> int: ...
+    def owner(self) -> int:
+        """Index into the model's owners."""
+        ...
 
     def jet(self, z: ComplexArray) -> Jet:
         """Conjugate velocity [m/s] and derivatives [1/s] at z, any shape [m]."""

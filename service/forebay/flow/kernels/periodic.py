@@ -10,12 +10,12 @@ import math
 import numpy as np
 from numba import njit
 
-from forebay.flow.arrays import ComplexArray, FloatArray, IntArray
+from forebay.flow.arrays import ComplexArray, FloatArray
 
 _TURN = 2.0 * math.pi
 
 
-@njit(cache=True, error_model="numpy", inline="always")  # type: ignore[untyped-decorator]
+@njit(cache=True, error_model="numpy", inline="always")
 def kernel(d: complex, offset: float) -> tuple[complex, complex]:
     """X(d) + offset, for offset -1/2, 0 or 1/2, and X'(d) = -1/(4 sinh^2(d/2)); no cancellation far away."""
     a = 0.5 * d.real
@@ -38,7 +38,7 @@ def kernel(d: complex, offset: float) -> tuple[complex, complex]:
     return complex(0.5 * real / denominator, -2.0 * e * s * c / denominator), -e / (sinh * sinh)
 
 
-@njit(cache=True, error_model="numpy")  # type: ignore[untyped-decorator]
+@njit(cache=True, error_model="numpy")
 def pole_sums(
     tau: ComplexArray, poles: ComplexArray, strengths: ComplexArray, offset: float
 ) -> tuple[ComplexArray, ComplexArray]:
@@ -58,7 +58,7 @@ def pole_sums(
     return velocity, slope
 
 
-@njit(cache=True, error_model="numpy")  # type: ignore[untyped-decorator]
+@njit(cache=True, error_model="numpy")
 def velocity_sums(
     tau: ComplexArray, poles: ComplexArray, strengths: ComplexArray, offset: float
 ) -> ComplexArray:
@@ -70,7 +70,7 @@ def velocity_sums(
     return velocity
 
 
-@njit(cache=True, error_model="numpy", inline="always")  # type: ignore[untyped-decorator]
+@njit(cache=True, error_model="numpy", inline="always")
 def _logarithm(d: complex, side: float) -> complex:
     """Log(2 sinh(d/2)) as side d/2 + log(1 - exp(-side d)), continuous while side Re d > 0."""
     x = side * d.real
@@ -82,30 +82,22 @@ def _logarithm(d: complex, side: float) -> complex:
     return complex(0.5 * x + 0.5 * math.log(re * re + im * im), 0.5 * y + math.atan2(im, re))
 
 
-@njit(cache=True, error_model="numpy")  # type: ignore[untyped-decorator]
-def chord_sums(
-    start: ComplexArray,
-    end: ComplexArray,
-    poles: ComplexArray,
-    strengths: ComplexArray,
-    offset: float,
-    crossing: FloatArray,
-    owners: IntArray,
-    owner_count: int,
+@njit(cache=True, error_model="numpy")
+def path_integrals(
+    start: ComplexArray, end: ComplexArray, poles: ComplexArray, offset: float, crossing: FloatArray
 ) -> ComplexArray:
-    """Integrals of sum g (X + offset) along paths on which Re tau is monotone, owner by owner.
+    """Integrals of X + offset along paths on which Re tau is monotone.
 
     The antiderivative log(2 sinh(d/2)) has one form for Re d > 0 and one for Re d < 0. Where the path
     crosses Re d = 0 at height Im d in (2 pi k, 2 pi (k+1)) the right form exceeds the left by i pi (1 + 2k).
 
     crossing : shape (n, m) or (0, 0), Im tau where path i meets Re tau = Re p_j; (0, 0) means
         straight paths, on which it is interpolated.
-    Returns shape (n, owner_count) [m2/s]; nan if a path ends on a pole.
+    Returns shape (n, m) [-]; not finite if a path ends on a pole.
     """
-    n = start.shape[0]
-    sums = np.zeros((n, owner_count), np.complex128)
+    integrals = np.empty((start.shape[0], poles.shape[0]), np.complex128)
     straight = crossing.shape[0] == 0
-    for i in range(n):
+    for i in range(start.shape[0]):
         for j in range(poles.shape[0]):
             a = start[i] - poles[j]
             b = end[i] - poles[j]
@@ -119,11 +111,11 @@ def chord_sums(
                     height = crossing[i, j] - poles[j].imag
                 jump = math.pi * (1.0 + 2.0 * math.floor(height / _TURN))
                 value += complex(0.0, -jump * side_b)
-            sums[i, owners[j]] += strengths[j] * (value + offset * (b - a))
-    return sums
+            integrals[i, j] = value + offset * (b - a)
+    return integrals
 
 
-@njit(cache=True, error_model="numpy")  # type: ignore[untyped-decorator]
+@njit(cache=True, error_model="numpy")
 def magnitude_sums(
     tau: ComplexArray, poles: ComplexArray, strengths: ComplexArray, offset: float
 ) -> FloatArray:

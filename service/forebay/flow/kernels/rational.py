@@ -5,14 +5,16 @@ import math
 import numpy as np
 from numba import njit
 
-from forebay.flow.arrays import ComplexArray, FloatArray, IntArray
+from forebay.flow.arrays import ComplexArray, FloatArray
 
 _BLOCK = 64
 """Points in one block: 64 doubles a column stay in the first-level cache."""
 
 
-@njit(cache=True, error_model="numpy")  # type: ignore[untyped-decorator]
-def pole_sums(tau: ComplexArray, poles: ComplexArray, strengths: ComplexArray) -> tuple[ComplexArray, ComplexArray]:
+@njit(cache=True, error_model="numpy")
+def pole_sums(
+    tau: ComplexArray, poles: ComplexArray, strengths: ComplexArray
+) -> tuple[ComplexArray, ComplexArray]:
     """Sums of g X and of g X' over the poles, X(d) = 1/d.
 
     tau : shape (n,), points [-];  poles, strengths : shape (m,), positions [-] and g [m2/s]
@@ -60,7 +62,7 @@ def pole_sums(tau: ComplexArray, poles: ComplexArray, strengths: ComplexArray) -
     return velocity, slope
 
 
-@njit(cache=True, error_model="numpy")  # type: ignore[untyped-decorator]
+@njit(cache=True, error_model="numpy")
 def velocity_sums(tau: ComplexArray, poles: ComplexArray, strengths: ComplexArray) -> ComplexArray:
     """Sum of g X over the poles, X(d) = 1/d: as `pole_sums` without the derivative."""
     n = tau.shape[0]
@@ -93,23 +95,15 @@ def velocity_sums(tau: ComplexArray, poles: ComplexArray, strengths: ComplexArra
     return velocity
 
 
-@njit(cache=True, error_model="numpy")  # type: ignore[untyped-decorator]
-def chord_sums(
-    start: ComplexArray,
-    end: ComplexArray,
-    poles: ComplexArray,
-    strengths: ComplexArray,
-    owners: IntArray,
-    owner_count: int,
-) -> ComplexArray:
-    """Integrals of sum g X along straight chords, owner by owner: g log((end - p)/(start - p)).
+@njit(cache=True, error_model="numpy")
+def path_integrals(start: ComplexArray, end: ComplexArray, poles: ComplexArray) -> ComplexArray:
+    """Integrals of X along straight chords: log((end - p)/(start - p)).
 
     The argument is the exact angle that the chord subtends at the pole, in (-pi, pi].
-    Returns shape (n, owner_count) [m2/s]; nan if a chord ends on a pole.
+    Returns shape (n, m) [-]; not finite if a chord ends on a pole.
     """
-    n = start.shape[0]
-    sums = np.zeros((n, owner_count), np.complex128)
-    for i in range(n):
+    integrals = np.empty((start.shape[0], poles.shape[0]), np.complex128)
+    for i in range(start.shape[0]):
         for j in range(poles.shape[0]):
             ax = start[i].real - poles[j].real
             ay = start[i].imag - poles[j].imag
@@ -117,11 +111,11 @@ def chord_sums(
             by = end[i].imag - poles[j].imag
             modulus = 0.5 * math.log((bx * bx + by * by) / (ax * ax + ay * ay))
             angle = math.atan2(ax * by - ay * bx, ax * bx + ay * by)
-            sums[i, owners[j]] += strengths[j] * complex(modulus, angle)
-    return sums
+            integrals[i, j] = complex(modulus, angle)
+    return integrals
 
 
-@njit(cache=True, error_model="numpy")  # type: ignore[untyped-decorator]
+@njit(cache=True, error_model="numpy")
 def magnitude_sums(tau: ComplexArray, poles: ComplexArray, strengths: ComplexArray) -> FloatArray:
     """Sum of |g X| over the poles, shape (n,) [m2/s]."""
     sums = np.zeros(tau.shape[0])
