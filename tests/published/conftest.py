@@ -1,0 +1,14 @@
+from collections.abc import Iterator
+
+import pytest
+from starlette.testclient import TestClient
+
+from support.service import Service
+
+
+@pytest.fixture(scope="session")
+def service() -> Iterator[Service]:
+    from forebay.app import create_app
+
+    with TestClient(create_app()) as client:
+        yield Service(client)
