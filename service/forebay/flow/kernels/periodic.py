@@ -34,8 +34,14 @@ def kernel(d: complex, offset: float) -> tuple[complex, complex]:
         real += sign * denominator
     elif offset * sign < 0.0:
         real = -sign * 2.0 * e * (2.0 * s * s - m)
-    sinh = complex(sign * m * c, (1.0 + e) * s)  # 2 exp(-|a|) sinh(d/2)
-    return complex(0.5 * real / denominator, -2.0 * e * s * c / denominator), -e / (sinh * sinh)
+    # 2 exp(-|a|) sinh(d/2) = sinh_re + i sinh_im, of squared modulus `denominator`
+    sinh_re = sign * m * c
+    sinh_im = (1.0 + e) * s
+    shrink = e / (denominator * denominator)
+    slope_re = (sinh_im * sinh_im - sinh_re * sinh_re) * shrink
+    slope_im = 2.0 * sinh_re * sinh_im * shrink
+    value = complex(0.5 * real / denominator, -2.0 * e * s * c / denominator)
+    return value, complex(slope_re, slope_im)
 
 
 @njit(cache=True, error_model="numpy")
