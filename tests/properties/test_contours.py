@@ -48,10 +48,11 @@ def _block(shore_name: str, rows: tuple[int, int], columns: tuple[int, int], ste
     """Border of a block of cells, anticlockwise in the frame of the shore, each side in `steps` chords."""
     (low, high), (left, right) = rows, columns
     corners = [(low, left), (low, right), (high, right), (high, left)]
-    ring = []
-    for (r1, c1), (r2, c2) in zip(corners, corners[1:] + corners[:1], strict=True):
-        for k in range(steps):
-            ring.append(((r1 + (r2 - r1) * k / steps) / CELLS, (c1 + (c2 - c1) * k / steps) / CELLS))
+    ring = [
+        ((r1 + (r2 - r1) * k / steps) / CELLS, (c1 + (c2 - c1) * k / steps) / CELLS)
+        for (r1, c1), (r2, c2) in zip(corners, corners[1:] + corners[:1], strict=True)
+        for k in range(steps)
+    ]
     return np.array([place(SHORES[shore_name], row, column) for row, column in ring])
 
 
@@ -79,8 +80,8 @@ def test_contour_independent_of_its_shape(named, block):
     # the same cells, their border drawn with bends: lines and cores are whole inside or whole outside
     shore_name, layout = named
     model = compile_layout(layout)
-    straight = _block(shore_name, *block)
-    fine = _block(shore_name, *block, steps=24)
+    straight = _block(shore_name, block[0], block[1])
+    fine = _block(shore_name, block[0], block[1], steps=24)
     # lamb-oseen vorticity outside its cell is exp(-(2 m / 0.2 m)^2): nothing
     assert abs(_closed(model, straight) - _closed(model, fine)) <= ROUNDING
 

@@ -4,7 +4,7 @@ import numpy as np
 import pytest
 from hypothesis import given, settings
 
-from forebay.flow.layout import Channel, Corner, DeadEnd, outflow
+from forebay.flow.layout import Channel, Corner, DeadEnd, Layout, outflow
 from forebay.flow.model import compile_layout
 from support.sites import SPAN
 from support.strategies import layouts
@@ -17,7 +17,7 @@ FAR = 40 * SPAN
 ROUNDING = 1e-11
 
 
-def _net(layout) -> float:
+def _net(layout: Layout) -> float:
     return sum(outflow(element) for element in layout.elements) / layout.depth
 
 
@@ -91,5 +91,6 @@ def test_corner_lets_the_net_discharge_out_evenly(named):
     reach = 1e6 * SPAN
     (velocity,) = model.velocity(np.array([shore.vertex + reach * radial]))
     expected = _net(layout) / (shore.interior_angle * reach)
-    # the next term is smaller by (SPAN / reach)^(pi / alpha): 1e-6^0.72 = 5e-5 at 250 degrees, of order one strengths
+    # the next term is smaller by (SPAN / reach)^(pi / alpha): 1e-6^0.72 = 5e-5 at 250 degrees, of order one
+    # strengths
     assert abs(velocity * radial - expected) <= 1e-3 / reach

@@ -6,6 +6,7 @@ import numpy as np
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
+from forebay.flow.arrays import FloatArray
 from forebay.flow.layout import Layout
 from forebay.flow.model import FlowModel, compile_layout
 from support.layouts import balanced
@@ -22,7 +23,7 @@ SOLVED = 1e-9
 """With piers the moments are solved for, to a boundary residual of this order."""
 
 
-def _tolerance(model: FlowModel, z: ComplexArray) -> ComplexArray:
+def _tolerance(model: FlowModel, z: ComplexArray) -> FloatArray:
     relative = max(ROUNDING, 20 * model.boundary_residual) if model.piers else ROUNDING
     assert relative <= SOLVED
     return relative * model.magnitude(z)

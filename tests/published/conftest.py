@@ -9,6 +9,7 @@ from support.service import Service
 @pytest.fixture(scope="session")
 def service() -> Iterator[Service]:
     from forebay.app import create_app
+    from forebay.settings import Settings
 
-    with TestClient(create_app()) as client:
+    with TestClient(create_app(Settings())) as client:
         yield Service(client)

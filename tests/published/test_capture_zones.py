@@ -1,12 +1,13 @@
 """Capture zones, recirculation and travel times of the trade, through the routes.
 
-Sources: J. Kuo, *Practical Design Calculations for Groundwater and Soil Remediation*, 2nd ed., section 6.2.2.1 (read);
-I. Javandel and C.-F. Tsang 1986, Ground Water 24(5) 616-625 (memory); J. Bear 1979 (memory). Formulae of recirculation
-(compare Lippmann and Tsang 1980, Gringarten and Sauty 1975; D. Banks 2011, Q. J. Eng. Geol. Hydrogeol. 44) are derived
-for this project and checked by tracing. An aquifer's u, B, Q stand for the current, depth and discharge of open water.
+Sources: J. Kuo, *Practical Design Calculations for Groundwater and Soil Remediation*, 2nd ed., section
+6.2.2.1 (read); I. Javandel and C.-F. Tsang 1986, Ground Water 24(5) 616-625 (memory); J. Bear 1979 (memory).
+Formulae of recirculation (compare Lippmann and Tsang 1980, Gringarten and Sauty 1975; D. Banks 2011, Q. J.
+Eng. Geol. Hydrogeol. 44) are derived for this project and checked by tracing. An aquifer's u, B, Q stand for
+the current, depth and discharge of open water.
 """
 
-from math import atan, atan2, log, pi, sin, sqrt
+from math import atan, atan2, log, pi, sin, sqrt, tan
 
 import numpy as np
 import pytest
@@ -23,7 +24,7 @@ SIX_DIGITS = 6e-7
 
 
 KUO_TABLE = [(0.1, -13.74), (1, -13.73), (5, -13.14), (10, -11.24), (20, -2.34), (30, 21.01), (40, 168.78)]
-"""Kuo p. 226, data of Fig. 6.2 [ft]; b = 13.751 ft returns every entry within 0.02 but the first (13.7508)."""
+"""Kuo p. 226, data of Fig. 6.2 [ft]; b = 13.751 ft returns all but the first within 0.02 (13.7508)."""
 
 KUO_B = 13.751
 KUO_LAYOUT = open_water_body([sink(0j, 2 * pi * KUO_B)], ambient={"velocity": [-1.0, 0.0]})
@@ -31,7 +32,7 @@ KUO_LAYOUT = open_water_body([sink(0j, 2 * pi * KUO_B)], ambient={"velocity": [-
 
 def _dividing_line(x_b: float) -> float:
     """x = -y / tan(2 pi B U y / Q), with y = x_b."""
-    return -x_b / np.tan(x_b / KUO_B)
+    return -x_b / tan(x_b / KUO_B)
 
 
 @pytest.mark.parametrize(("y", "x"), KUO_TABLE)
@@ -46,7 +47,8 @@ def test_kuo_table_lies_on_the_line_that_is_answered(service):
     lines = service.withdrawal(KUO_LAYOUT, unit_system="us")["intake"]["dividing_streamlines"]
     upper = max(lines, key=lambda line: max(y for _, y in line))
     for y, x in KUO_TABLE[2:6]:
-        # 0.1 % for the table, and chords of the polyline, whose steps are a fraction of the distance to the sink
+        # 0.1 % for the table, and chords of the polyline, whose steps are a fraction of the distance to the
+        # sink
         assert min(abs(found - x) for found in crossing_at_y(upper, y)) < 0.02 * KUO_B
 
 
@@ -78,7 +80,7 @@ def _kuo_wells(*places: float) -> dict:
 def test_kuo_examples(service, places, abeam, far):
     # p. 228-231: stagnation 9.6 ft downstream; lines +-15 and +-30 ft abeam, +-30 and +-60 ft far upstream
     layout = _kuo_wells(*places)
-    assert KUO_CURRENT * 60 == pytest.approx(1.39e-3, abs=5e-6)
+    assert pytest.approx(1.39e-3, abs=5e-6) == KUO_CURRENT * 60
     stagnation = service.stagnation_places(layout, unit_system="us")
     assert max(z.real for z in stagnation) == pytest.approx(9.6, abs=0.05)
     intakes = service.withdrawal(layout, unit_system="us").values()
@@ -115,8 +117,8 @@ def test_spacing_that_lets_nothing_pass_on_the_axis(service, count, closed, pass
 
 @pytest.mark.parametrize(("spacing", "passes"), [(0.39, False), (0.40, False), (0.405, True), (0.42, True)])
 def test_spacing_of_three_sinks(service, spacing, passes):
-    # Kuo table 6.1: 0.40. What passes between is the flux between the saddles behind neighbouring sinks: it changes
-    # sign at 0.40255 (a closed form 2^(1/3) / pi = 0.401045 is remembered; it is 0.4 % lower)
+    # Kuo table 6.1: 0.40. What passes between is the flux between the saddles behind neighbouring sinks: it
+    # changes sign at 0.40255 (a closed form 2^(1/3) / pi = 0.401045 is remembered; it is 0.4 % lower)
     layout = _abreast(3, spacing)
     places = sorted(service.stagnation_places(layout), key=lambda z: z.imag)
     gap = service.flux(layout, [places[1], places[2]])
@@ -149,7 +151,9 @@ def test_type_curve(service, count):
     lines = [line for intake in intakes for line in intake["dividing_streamlines"]]
     for z in (near, far):
         # chords of the polyline stay within a hundredth of the width of the zone
-        assert max(y for line in lines for y in crossing_at_x(line, z.real)) == pytest.approx(z.imag, abs=0.01 * count)
+        assert max(y for line in lines for y in crossing_at_x(line, z.real)) == pytest.approx(
+            z.imag, abs=0.01 * count
+        )
 
 
 def _type_curve(x: float, places: list[float]) -> float:

@@ -1,7 +1,8 @@
 """Newtonian stress, strain rate, dissipation and G, through `stress/tensor`.
 
-Formulae of Batchelor, Panton and White (memory); the table and the numbers of plane and pipe flow were recomputed by a
-second route. G = sqrt(dissipation / viscosity): T. R. Camp and P. C. Stein 1943, J. Boston Soc. Civ. Eng. 30, 203-221.
+Formulae of Batchelor, Panton and White (memory); the table and the numbers of plane and pipe flow were
+recomputed by a second route. G = sqrt(dissipation / viscosity): T. R. Camp and P. C. Stein 1943, J. Boston
+Soc. Civ. Eng. 30, 203-221.
 """
 
 from math import pi, sqrt
@@ -30,8 +31,9 @@ def _state(service, gradient, fluid=MILLI, **extra):
     return state
 
 
-@pytest.mark.parametrize(("gradient", "rate", "stress", "dissipation", "mean_gradient", "vorticity"), TABLE.values(), ids=TABLE)
-def test_table_of_gradients(service, gradient, rate, stress, dissipation, mean_gradient, vorticity):
+@pytest.mark.parametrize("row", TABLE.values(), ids=TABLE)
+def test_table_of_gradients(service, row):
+    gradient, rate, stress, dissipation, mean_gradient, vorticity = row
     state = _state(service, gradient)
     tensor = np.array(state["viscous_stress"])
     assert tensor.shape == (3, 3)
@@ -78,7 +80,8 @@ def _mean_dissipation(service, rates, weights) -> float:
 
 
 def test_plane_poiseuille(service):
-    # U_m = 0.1, h = 0.02: wall rate 6 U_m / h = 30, rms G = sqrt(12) U_m / h = 17.320508, -dp/dx = 3.0048 Pa/m
+    # U_m = 0.1, h = 0.02: wall rate 6 U_m / h = 30, rms G = sqrt(12) U_m / h = 17.320508, -dp/dx = 3.0048
+    # Pa/m
     nodes, weights = np.polynomial.legendre.leggauss(4)  # the dissipation is a polynomial of degree 2
     mean = _mean_dissipation(service, 30.0 * nodes, weights / 2)
     assert sqrt(mean / 1.0016e-3) == pytest.approx(17.320508, abs=6e-7)
@@ -91,7 +94,9 @@ def test_pipe_flow(service):
     # U = 0.05, D = 0.02: wall rate 8 U / D = 20, rms G = sqrt(32) U / D = 14.142136, -dp/dx = 4.0064 Pa/m
     nodes, weights = np.polynomial.legendre.leggauss(4)
     radius = (nodes + 1) / 2
-    mean = _mean_dissipation(service, 20.0 * radius, weights * radius)  # area weights 2 r dr over the unit pipe
+    mean = _mean_dissipation(
+        service, 20.0 * radius, weights * radius
+    )  # area weights 2 r dr over the unit pipe
     assert sqrt(mean / 1.0016e-3) == pytest.approx(14.142136, abs=6e-7)
     assert mean / 0.05 == pytest.approx(4.0064, rel=1e-12)
 
@@ -110,7 +115,8 @@ def test_camp_and_stein(service, power, volume, viscosity, expected):
 
 
 def test_strain_near_a_sink_reaches_the_fish_threshold(service):
-    # G = q / (pi r^2): q = 0.1 m2/s reaches 517 1/s (Neitzel et al. 2004: no injury of juvenile salmonids) at 7.8 mm
+    # G = q / (pi r^2): q = 0.1 m2/s reaches 517 1/s (Neitzel et al. 2004: no injury of juvenile salmonids) at
+    # 7.8 mm
     layout = open_water_body([sink(0j, 0.1)])
     body = {"layout": layout, "at": {"points": [[0.0078, 0.0], [0.0079, 0.0]]}, "fluid": MILLI}
     near, away = service.post("stress/tensor", body)["result"]["states"]
@@ -120,7 +126,9 @@ def test_strain_near_a_sink_reaches_the_fish_threshold(service):
 
 def test_gradient_of_a_layout_is_four_times_its_strain(service):
     # plane potential flow: principal strain rates +-|w''|, G = 2 |w''|, dissipation 4 mu |w''|^2
-    layout = open_water_body([sink(1j, 0.7), line_sink(-2 + 0j, 2 + 1j, 1.0)], ambient={"velocity": [0.3, 0.1]})
+    layout = open_water_body(
+        [sink(1j, 0.7), line_sink(-2 + 0j, 2 + 1j, 1.0)], ambient={"velocity": [0.3, 0.1]}
+    )
     body = {"layout": layout, "at": {"points": [[2.0, 3.0]]}, "fluid": WATER_20}
     (state,) = service.post("stress/tensor", body)["result"]["states"]
     rates = np.linalg.eigvalsh(state["strain_rate"])

@@ -1,8 +1,9 @@
 """Water properties through `GET /v1/water`, against IAPWS and TEOS-10 and the published tables.
 
-Fresh water: library iapws (IAPWS-95, R12-08, R1-76, IF97). Saline density: TEOS-10, library gsw. Saline viscosity:
-Sharqawy, Lienhard and Zubair 2010, Desalination and Water Treatment 16, 354, equations 22 and 23 (read in several codes).
-Density of fresh water: G. S. Kell 1975, J. Chem. Eng. Data 20, 97 (read in several codes).
+Fresh water: library iapws (IAPWS-95, R12-08, R1-76, IF97). Saline density: TEOS-10, library gsw. Saline
+viscosity: Sharqawy, Lienhard and Zubair 2010, Desalination and Water Treatment 16, 354, equations 22 and 23
+(read in several codes). Density of fresh water: G. S. Kell 1975, J. Chem. Eng. Data 20, 97 (read in several
+codes).
 """
 
 import gsw
@@ -23,7 +24,17 @@ FRESH = [
     (40, 992.2164, 652.73, 0.657849, 69.596, 7384.4),
 ]
 
-KELL = {0: 999.83952, 4: 999.97199, 5: 999.96382, 10: 999.69963, 15: 999.09961, 20: 998.20413, 25: 997.04490, 30: 995.64726, 40: 992.21577}
+KELL = {
+    0: 999.83952,
+    4: 999.97199,
+    5: 999.96382,
+    10: 999.69963,
+    15: 999.09961,
+    20: 998.20413,
+    25: 997.04490,
+    30: 995.64726,
+    40: 992.21577,
+}
 
 SALINE = {
     0: (999.8445, 999.9678, 999.7032, 999.1032, 998.2077, 997.0482, 995.6500, 992.2173),
@@ -48,18 +59,24 @@ STANDARDS_AGREE = 3e-5
 """Industrial formulations of density and viscosity agree to 0.003 % between 0 and 40 degC."""
 
 
-def _water(service, temperature: float, salinity: float = 0.0) -> dict:
-    return service.get("water", temperature=temperature, salinity=salinity)["result"]
+def _water(service, temperature: float, salinity: float = 0.0) -> dict[str, float]:
+    result: dict[str, float] = service.get("water", temperature=temperature, salinity=salinity)["result"]
+    return result
 
 
-@pytest.mark.parametrize(("temperature", "density", "viscosity", "kinematic", "tension", "vapour"), FRESH)
-def test_fresh_water_table(service, temperature, density, viscosity, kinematic, tension, vapour):
+@pytest.mark.parametrize("row", FRESH, ids=lambda row: f"{row[0]} degC")
+def test_fresh_water_table(service, row):
+    temperature, density, viscosity, kinematic, tension, vapour = row
     water = _water(service, temperature)
-    assert water["density"] == pytest.approx(density, abs=1.5e-3)  # TEOS-10 against IAPWS-95: 1.3e-3 kg/m3 at 5 degC
+    assert water["density"] == pytest.approx(
+        density, abs=1.5e-3
+    )  # TEOS-10 against IAPWS-95: 1.3e-3 kg/m3 at 5 degC
     assert water["dynamic_viscosity"] == pytest.approx(viscosity * 1e-6, rel=STANDARDS_AGREE)
     assert water["kinematic_viscosity"] == pytest.approx(kinematic * 1e-6, rel=STANDARDS_AGREE)
     assert water["surface_tension"] == pytest.approx(tension * 1e-3, abs=6e-7)
-    assert water["vapour_pressure"] == pytest.approx(vapour, rel=2e-4)  # five digits printed; IF97 against IAPWS-95
+    assert water["vapour_pressure"] == pytest.approx(
+        vapour, rel=2e-4
+    )  # five digits printed; IF97 against IAPWS-95
 
 
 @pytest.mark.parametrize("temperature", [0.5, 7.3, 18.9, 33.3, 39.5])
@@ -68,7 +85,9 @@ def test_fresh_water_against_iapws(service, temperature):
     reference = iapws.IAPWS95(T=kelvin, P=0.101325)
     assert water["density"] == pytest.approx(reference.rho, abs=1.5e-3)
     assert water["dynamic_viscosity"] == pytest.approx(reference.mu, rel=STANDARDS_AGREE)
-    assert water["surface_tension"] == pytest.approx(iapws._iapws._Tension(kelvin), rel=1e-9)  # the same formula
+    assert water["surface_tension"] == pytest.approx(
+        iapws._iapws._Tension(kelvin), rel=1e-9
+    )  # the same formula
     assert water["vapour_pressure"] == pytest.approx(iapws.iapws97._PSat_T(kelvin) * 1e6, rel=1e-9)
 
 

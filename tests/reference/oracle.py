@@ -1,8 +1,9 @@
 """Velocity of a layout in 40 digits by routes of its own: half-plane maps and image pairs, or quadrature.
 
-Nothing of `forebay.flow` but the description of the layout is used. The program works with hyperbolic cotangents
-(period 2 pi i); here every bounded shore is mapped to the half plane (exp, power, cosh, Jacobi sn), where an element
-has one mirror image. Line elements are integrals of point sources over their length. See README.md.
+Nothing of `forebay.flow` but the description of the layout is used. The program works with hyperbolic
+cotangents (period 2 pi i); here every bounded shore is mapped to the half plane (exp, power, cosh, Jacobi
+sn), where an element has one mirror image. Line elements are integrals of point sources over their length.
+See README.md.
 """
 
 from dataclasses import dataclass
@@ -87,6 +88,8 @@ class HalfPlaneMap:
     def __call__(self, z: Number) -> tuple[Number, Number]:
         """t(z) and dt/dz."""
         local = self.local(z)
+        t: Number
+        slope: Number
         match self.shore:
             case OpenWater() | StraightBank():
                 t, slope = local, CONTEXT.mpc(1)
@@ -204,6 +207,7 @@ class Oracle:
         """Vortex and its mirror images with their signs, as far as they are within reach of z."""
         local = self.map.local(at)
         flip = CONTEXT.conj
+        found: list[tuple[Number, int]]
         match self.layout.shore:
             case OpenWater():
                 found = [(local, 1)]
@@ -211,7 +215,9 @@ class Oracle:
                 found = [(local, 1), (flip(local), -1)]
             case Channel(width=width):
                 period = CONTEXT.mpc(0, 2 * CONTEXT.mpf(width))
-                found = [(s + k * period, sign) for s, sign in ((local, 1), (flip(local), -1)) for k in (-1, 0, 1)]
+                found = [
+                    (s + k * period, sign) for s, sign in ((local, 1), (flip(local), -1)) for k in (-1, 0, 1)
+                ]
             case Corner():
                 found = [(local, 1)]
             case DeadEnd(width=width):
@@ -249,7 +255,7 @@ class Oracle:
         return Sum.of(*terms)
 
     def _end_correction(self, shore: Channel) -> Number:
-        """Shift so that the end given by the current is undisturbed; the pairs leave the end against `along` so."""
+        """Shift so that the end the current comes from is left alone, and not the one against `along`."""
         net = CONTEXT.fsum(self._per_depth(element) for element in self.layout.elements)
         speed = (self.layout.ambient.velocity * shore.along.conjugate()).real
         share = CONTEXT.mpf(0) if speed > 0 else CONTEXT.mpf(1) if speed < 0 else CONTEXT.mpf(1) / 2

@@ -1,9 +1,10 @@
 """Velocity round circular piers in open water and beside a straight bank, by two routes of its own.
 
 One pier: the circle theorem of Milne-Thomson in 45 digits, every pole with its inverse point.
-Several piers, or a pier beside a bank: Schwarz's alternating method in 80-bit floats. Each circle in turn answers the
-Taylor series that it sees of all the rest by a multipole series; the coefficients come from a discrete Fourier
-transform over the circle. A bank is the real axis: each pier and element gets its mirror image. See README.md.
+Several piers, or a pier beside a bank: Schwarz's alternating method in 80-bit floats. Each circle in turn
+answers the Taylor series that it sees of all the rest by a multipole series; the coefficients come from a
+discrete Fourier transform over the circle. A bank is the real axis: each pier and element gets its mirror
+image. See README.md.
 """
 
 from dataclasses import dataclass
@@ -61,8 +62,8 @@ def _poles(layout: Layout) -> list[tuple[Number, Number, int]]:
 def circle_theorem(layout: Layout, place: complex) -> Sum:
     """Round the one pier of a layout in open water: w = f(z) + conj f(a^2 / conj z), z from the centre.
 
-    For W this adds -(a/z)^2 conj(W0(c + a^2 / conj z)), W0 the velocity without the pier. Cancelling the pole of
-    the fraction analytically is left out: 45 digits bear it.
+    For W this adds -(a/z)^2 conj(W0(c + a^2 / conj z)), W0 the velocity without the pier. Cancelling the pole
+    of the fraction analytically is left out: 45 digits bear it.
     """
     (pier,) = layout.structures
     centre, radius = exact(pier.at), CONTEXT.mpf(pier.radius)
@@ -89,7 +90,9 @@ def _strain(layout: Layout, z: Number) -> list[Number]:
 
 
 def _long(value: Number) -> np.clongdouble:
-    real, imaginary = (np.longdouble(CONTEXT.nstr(part, 25)) for part in (CONTEXT.re(value), CONTEXT.im(value)))
+    real, imaginary = (
+        np.longdouble(CONTEXT.nstr(part, 25)) for part in (CONTEXT.re(value), CONTEXT.im(value))
+    )
     return np.clongdouble(real + 1j * imaginary)
 
 
@@ -105,7 +108,10 @@ class Schwarz:
             self.origin = np.clongdouble(shore.point)
             self.along = np.clongdouble(shore.along) / np.abs(np.clongdouble(shore.along))
         poles = [(self._local(_long(s)), self._turned(g, k), k) for s, g, k in _poles(layout)]
-        piers = [(self._local(np.clongdouble(p.at)), np.longdouble(p.radius), p.circulation) for p in layout.structures]
+        piers = [
+            (self._local(np.clongdouble(p.at)), np.longdouble(p.radius), p.circulation)
+            for p in layout.structures
+        ]
         if mirrored:
             poles += [(np.conj(s), np.conj(g), order) for s, g, order in poles]
             piers += [(np.conj(c), a, -circulation) for c, a, circulation in piers]
@@ -168,4 +174,5 @@ class Schwarz:
 
 def rim(pier: Pier, count: int = 97) -> NDArray[np.complex128]:
     """Points on the wall of a pier; a prime count, so that they are nobody's collocation points."""
-    return pier.at + pier.radius * np.exp(2j * np.pi * np.arange(count) / count)
+    turns = np.exp(2j * np.pi * np.arange(count) / count)
+    return np.asarray(pier.at + pier.radius * turns, dtype=np.complex128)

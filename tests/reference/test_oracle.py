@@ -2,9 +2,9 @@
 
 import mpmath
 import pytest
-from reference.oracle import CONTEXT, HalfPlaneMap, Oracle, exact
 
 from forebay.flow.layout import Basin, Channel, DeadEnd, Doublet, Layout, LineSource, Sink, Source, Vortex
+from reference.oracle import CONTEXT, HalfPlaneMap, Oracle, exact
 from support.sites import SHORES, place, wall_samples
 
 DIGITS = 1e-35
@@ -16,7 +16,9 @@ BOUNDED = [name for name in SHORES if name != "open-water"]
 @pytest.mark.parametrize("name", BOUNDED)
 def test_walls_are_mapped_to_the_real_axis(name):
     mapping = HalfPlaneMap(SHORES[name])
-    for wall in wall_samples(SHORES[name], 8):  # even: the middle of a basin's left bank is mapped to infinity
+    for wall in wall_samples(
+        SHORES[name], 8
+    ):  # even: the middle of a basin's left bank is mapped to infinity
         for point in wall.points:
             t, _ = mapping(exact(complex(point)))
             # the wall points are doubles: off the wall by 1e-16 of the coordinates, here at most 500
@@ -49,8 +51,8 @@ def test_channel_equals_rows_of_images(strength):
     shore = Channel(point=0j, along=1 + 0j, width=20.0)
     g = exact(complex(strength)) / (2 * CONTEXT.pi)
     at, z = 4 + 7j, 9 + 15j
-    elements = (Source("s", at, strength.real * 2),) if complex(strength).real else ()
-    elements += (Vortex("v", at, -complex(strength).imag * 2),) if complex(strength).imag else ()
+    both = (Source("s", at, 2 * complex(strength).real), Vortex("v", at, -2 * complex(strength).imag))
+    elements = tuple(e for e in both if e != Source("s", at, 0.0))
     layout = Layout(1.0, shore=shore, elements=elements)
     expected = _image_rows(exact(z), exact(at), 2 * g, width, [0])
     assert abs(Oracle(layout).velocity(z).value - expected) < DIGITS

@@ -4,11 +4,11 @@ from dataclasses import replace
 
 import numpy as np
 import pytest
-from reference.piers import ORDER, Schwarz, circle_theorem, rim
-from reference.test_piers import CROWD, ONE
 
 from forebay.flow.layout import Ambient, Layout, Pier, Sink, Source, Vortex
 from forebay.flow.model import compile_layout
+from reference.piers import ORDER, Schwarz, circle_theorem, rim
+from reference.test_piers import CROWD, ONE
 from support.layouts import ALL_KINDS, POINT_KINDS, random_layout
 from support.sites import SHORES, wall_samples
 
@@ -75,7 +75,7 @@ def test_several_piers(layout):
 @pytest.mark.parametrize("piers", [1, 3])
 @pytest.mark.parametrize("shore_name", SHORES)
 def test_flow_round_piers_meets_what_determines_it(shore_name, piers, seed):
-    """No flow through piers and banks, the given circulation, no net discharge: there is only one such flow."""
+    """No flow through piers and banks, the given circulation, no discharge: there is only one such flow."""
     layout = random_layout(shore_name, seed, kinds=ALL_KINDS, count=7, piers=piers)
     model = compile_layout(layout)
     residual = max(ROUNDING, 2 * model.boundary_residual)

@@ -1,16 +1,25 @@
-"""Velocity, derivatives and chord integrals of the model against the 40-digit oracle; no flow through walls."""
+"""Velocity, derivatives and chord integrals against the 40-digit oracle; no flow through walls."""
 
 import numpy as np
 import pytest
-from reference.oracle import CONTEXT, Oracle, exact
 
-from forebay.flow.layout import Ambient, Layout, Sink, StraightBank, Vortex
+from forebay.flow.layout import (
+    Ambient,
+    Core,
+    CoreModel,
+    Layout,
+    Sink,
+    Source,
+    StraightBank,
+    Vortex,
+)
 from forebay.flow.model import compile_layout
-from support.layouts import ALL_KINDS, BANK_KINDS, LINE_KINDS, element_of, random_layout
+from reference.oracle import CONTEXT, Oracle, exact
+from support.layouts import ALL_KINDS, BANK_KINDS, LINE_KINDS, random_layout
 from support.sites import SHORES, place, wall_samples
 
 ROUNDING = 1e-12
-"""Asked for: relative to the sum of the terms' magnitudes, a few hundred roundings of 1e-16 on paths of log and coth."""
+"""Asked for, relative to the sum of the terms: some roundings of 1e-16 in the chain of log and coth."""
 
 PLACES = [(0.05, 0.13), (0.33, 0.61), (0.52, 0.47), (0.71, 0.92), (0.97, 0.27)]
 
@@ -69,9 +78,12 @@ def test_velocity_in_and_about_a_core(shore_name, kind, distance):
     layout = random_layout(shore_name, 5, kinds=[kind], count=1)
     (vortex,) = [element for element in layout.elements if isinstance(element, Vortex)]
     assert vortex.core is not None
-    z = np.array([vortex.at + distance * vortex.core.radius * direction for direction in (1, 1j, -0.6 - 0.8j)])
+    z = np.array(
+        [vortex.at + distance * vortex.core.radius * direction for direction in (1, 1j, -0.6 - 0.8j)]
+    )
     if distance == 0.0:
-        # the free vortex and its core cancel: what is left is the rest of the flow, to the rounding of the swirl
+        # the free vortex and its core cancel: what is left is the rest of the flow, to the rounding of the
+        # swirl
         swirl = abs(vortex.circulation) / (2 * np.pi * vortex.core.radius)
         still = Oracle(layout).velocity(exact(vortex.at) + CONTEXT.mpf("1e-22")).value
         computed = compile_layout(layout).velocity(z)
@@ -85,10 +97,8 @@ def test_velocity_in_and_about_a_core(shore_name, kind, distance):
 def test_core_beside_a_wall_lets_no_water_through(shore_name, kind):
     wall = wall_samples(SHORES[shore_name])[0]
     near = complex(wall.points[20] + 1j * wall.along * 1.5)
-    vortex = element_of(kind, "gyre", near, 2.0)
-    assert isinstance(vortex, Vortex)
-    core = type(vortex.core)(vortex.core.model, 1.2)
-    layout = Layout(1.0, shore=SHORES[shore_name], elements=(Vortex("gyre", near, 2.0, core),))
+    vortex = Vortex("gyre", near, 2.0, Core(CoreModel(kind), 1.2))
+    layout = Layout(1.0, shore=SHORES[shore_name], elements=(vortex,))
     model = compile_layout(layout)
     normal = (model.velocity(wall.points) * wall.along).imag
     assert np.abs(normal / model.magnitude(wall.points)).max() <= ROUNDING
@@ -120,14 +130,14 @@ def test_ambient_gradient_in_open_water(gradient):
 
 def test_shear_along_a_bank():
     # in the frame of the bank u = S y: no flow through the bank y = 0
-    along = SHORES["straight-bank"].along
+    shore = SHORES["straight-bank"]
+    assert isinstance(shore, StraightBank)
+    along = shore.along
     rate = 0.05
     normal = 1j * along
     rows = [[rate * a * n for n in (normal.real, normal.imag)] for a in (along.real, along.imag)]
     trace = rows[0][0] + rows[1][1]
     gradient = ((rows[0][0] - trace / 2, rows[0][1]), (rows[1][0], rows[1][1] - trace / 2))
-    shore = SHORES["straight-bank"]
-    assert isinstance(shore, StraightBank)
     layout = Layout(
         2.0,
         ambient=Ambient(0.2 * along, gradient, shore.point),
@@ -152,11 +162,14 @@ def test_jet_is_the_derivative_of_the_velocity(shore_name, seed):
 
 
 def _derivatives(oracle: Oracle, z: complex) -> tuple[complex, complex, float]:
-    """W_z and W_zbar by fourth-order differences over a millimetre in 40 digits, and a scale for their error."""
+    """W_z and W_zbar by fourth-order differences over a millimetre, and a scale for their error."""
     step = CONTEXT.mpf("1e-3")
 
     def across(unit: complex) -> complex:
-        far = oracle.velocity(exact(z) + 2 * step * unit).value - oracle.velocity(exact(z) - 2 * step * unit).value
+        far = (
+            oracle.velocity(exact(z) + 2 * step * unit).value
+            - oracle.velocity(exact(z) - 2 * step * unit).value
+        )
         near = oracle.velocity(exact(z) + step * unit).value - oracle.velocity(exact(z) - step * unit).value
         return complex((8 * near - far) / (12 * step))
 
@@ -168,7 +181,7 @@ def _derivatives(oracle: Oracle, z: complex) -> tuple[complex, complex, float]:
 @pytest.mark.parametrize("kind", ["rankine", "lamb-oseen"])
 def test_jet_inside_a_core(kind):
     layout = random_layout("channel", 5, kinds=[kind], count=1)
-    (vortex,) = layout.elements
+    vortex = next(element for element in layout.elements if isinstance(element, Vortex))
     at = vortex.at + 0.07 * np.exp(0.4j)
     jet = compile_layout(layout).jet(np.array([at]))
     slope, skew, scale = _derivatives(Oracle(layout), complex(at))
@@ -188,7 +201,9 @@ def test_chord_is_the_integral_of_the_velocity(shore_name, kind):
     assert np.abs(by_owner.sum(axis=1) - computed).max() <= 1e-12 * (1 + np.abs(computed).max())
     for a, b, value in zip(starts, ends, computed, strict=True):
         expected = _quadrature(model, complex(a), complex(b))
-        assert abs(complex(value) - expected) <= 2e-11  # discharges of order one; quadrature converged to 1e-12
+        assert (
+            abs(complex(value) - expected) <= 2e-11
+        )  # discharges of order one; quadrature converged to 1e-12
 
 
 def _chords(shore_name: str, layout: Layout) -> tuple[np.ndarray, np.ndarray]:
@@ -208,11 +223,14 @@ def _quadrature(model, a: complex, b: complex) -> complex:
 
 
 @pytest.mark.parametrize("kind", BANK_KINDS)
-@pytest.mark.parametrize("shore_name", [name for name in SHORES if name not in {"open-water", "basin", "basin-long"}])
+@pytest.mark.parametrize(
+    "shore_name", [name for name in SHORES if name not in {"open-water", "basin", "basin-long"}]
+)
 def test_element_on_a_bank_gives_its_whole_discharge_to_the_water(shore_name, kind):
     layout = random_layout(shore_name, 4, kinds=[kind], count=1)
     model = compile_layout(layout)
     (element,) = layout.elements
+    assert isinstance(element, Source | Sink)
     along = wall_samples(SHORES[shore_name])[0].along
     turns = np.exp(1j * np.pi * np.linspace(0, 1, 201)) * along  # half circle on the water side
     ring = element.at + 0.5 * turns

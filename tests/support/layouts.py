@@ -37,7 +37,9 @@ CORE_RADIUS = 0.2
 """Small, so that the vorticity of a lamb-oseen core has died out (exp(-30)) at every wall of `place` [m]."""
 
 
-def element_of(kind: str, name: str, at: complex, strength: float, end: complex | None = None) -> Element:
+def element_of(  # noqa: PLR0911 - one return a kind
+    kind: str, name: str, at: complex, strength: float, end: complex | None = None
+) -> Element:
     """One element of a kind; `end` is where a line element ends."""
     discharge = abs(strength)
     tip = at + 0.05 * SPAN if end is None else end
@@ -76,11 +78,15 @@ def balanced(elements: Sequence[Element], at: complex, name: str = "balance") ->
 
 
 def assemble(
-    shore_name: str, things: Sequence[tuple[str, int, float]], *, speed: float = 0.0, piers: Sequence[int] = ()
+    shore_name: str,
+    things: Sequence[tuple[str, int, float]],
+    *,
+    speed: float = 0.0,
+    piers: Sequence[int] = (),
 ) -> Layout:
     """Build a layout from (kind, cell, strength) triples; no two share a cell.
 
-    Bank elements use the column of their cell as their place along the first wall; a basin is balanced in cell 0.
+    Bank elements stand along the first wall in the order of their cells; a basin is balanced in cell 0.
     """
     shore = SHORES[shore_name]
     elements = [
@@ -108,7 +114,7 @@ def _thing(shore: Shore, kind: str, cell: int, strength: float, name: str) -> El
 def random_layout(
     shore_name: str, seed: int, *, kinds: Sequence[str] = ALL_KINDS, count: int = 6, piers: int = 0
 ) -> Layout:
-    """Random layout of `count` elements of the given kinds, each strength between 0.3 and 3, and a current."""
+    """Random layout of `count` elements of the given kinds, strengths between 0.3 and 3, and a current."""
     generator = np.random.default_rng(seed)
     cells = 1 + generator.permutation(CELLS**2 - 1)[: count + piers]
     things = [

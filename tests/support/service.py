@@ -1,6 +1,7 @@
 """The service as a client sees it: posts to the routes and hands back results as arrays."""
 
 from collections.abc import Sequence
+from itertools import pairwise
 from typing import Any
 
 import numpy as np
@@ -95,7 +96,7 @@ def share_of(intake: Json, origin: str) -> float:
 def crossing_at_x(line: Sequence[Sequence[float]], x: float) -> list[float]:
     """y of every crossing of a polyline with the vertical through x."""
     found = []
-    for (x1, y1), (x2, y2) in zip(line[:-1], line[1:], strict=True):
+    for (x1, y1), (x2, y2) in pairwise(line):
         if (x1 - x) * (x2 - x) <= 0 and x1 != x2:
             found.append(y1 + (y2 - y1) * (x - x1) / (x2 - x1))
     return found

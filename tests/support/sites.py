@@ -70,6 +70,7 @@ def place(shore: Shore, across: float, along: float) -> complex:
     """Map two fractions in [0, 1] to a place in the water, at least a little off every wall."""
     a, s = _inset(across), _inset(along)
     origin, unit = _frame(shore)
+    local: complex
     match shore:
         case OpenWater():
             local = complex((s - 0.5) * SPAN, (a - 0.5) * SPAN)
@@ -97,7 +98,8 @@ class WallSample:
 
 def _line(name: str, start: complex, end: complex, fractions: NDArray[np.float64]) -> WallSample:
     step = end - start
-    return WallSample(name, start + step * fractions, step / abs(step))
+    points = np.asarray(start + step * fractions, dtype=np.complex128)
+    return WallSample(name, points, step / abs(step))
 
 
 def wall_samples(shore: Shore, count: int = 41) -> tuple[WallSample, ...]:
@@ -115,7 +117,10 @@ def wall_samples(shore: Shore, count: int = 41) -> tuple[WallSample, ...]:
             return (line("bank", -SPAN, SPAN),)
         case Channel():
             top = 1j * shore.width
-            return (line("right bank", -2 * SPAN, 2 * SPAN), line("left bank", 2 * SPAN + top, -2 * SPAN + top))
+            return (
+                line("right bank", -2 * SPAN, 2 * SPAN),
+                line("left bank", 2 * SPAN + top, -2 * SPAN + top),
+            )
         case Corner():
             second = cmath.rect(2 * SPAN, shore.interior_angle)
             return (line("first bank", 0, 2 * SPAN), line("second bank", second, 0))

@@ -33,8 +33,8 @@ def _moved_element(element: Element, move: Move, turn: Move, spin: float, scale:
         case Source() | Sink():
             return replace(element, at=move(element.at), discharge=element.discharge * scale)
         case LineSource() | LineSink():
-            ends = {"start": move(element.start), "end": move(element.end)}
-            return replace(element, discharge=element.discharge * scale, **ends)
+            start, end = move(element.start), move(element.end)
+            return replace(element, start=start, end=end, discharge=element.discharge * scale)
         case Vortex():
             core = element.core and Core(element.core.model, element.core.radius * scale)
             circulation = spin * element.circulation * scale
@@ -43,7 +43,9 @@ def _moved_element(element: Element, move: Move, turn: Move, spin: float, scale:
             return replace(element, at=move(element.at), moment=turn(element.moment) * scale**2)
 
 
-def _moved(layout: Layout, shore: Shore, move: Move, turn: Move, *, spin: float = 1.0, scale: float = 1.0) -> Layout:
+def _moved(
+    layout: Layout, shore: Shore, move: Move, turn: Move, *, spin: float = 1.0, scale: float = 1.0
+) -> Layout:
     if layout.ambient.has_gradient:
         raise NotImplementedError
     elements = tuple(_moved_element(element, move, turn, spin, scale) for element in layout.elements)

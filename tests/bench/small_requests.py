@@ -1,0 +1,72 @@
+"""Small validated requests against an empty one of the same application, requests per second."""
+
+import orjson
+from starlette.requests import Request
+from starlette.responses import Response
+
+from forebay.app import create_app
+from forebay.settings import Settings
+
+from .client import InProcess
+from .timing import Measure, interleaved
+
+COUNT = 300
+
+KINDS = ("sink", "source", "vortex", "doublet")
+
+
+def _element(number: int) -> dict[str, object]:
+    at: dict[str, object] = {"name": f"e{number}", "at": [10.0 * number, 3.0 * number]}
+    kind = KINDS[number % 4]
+    strengths: dict[str, dict[str, object]] = {
+        "sink": {"discharge": 1.5},
+        "source": {"discharge": 0.9},
+        "vortex": {"circulation": -0.4},
+        "doublet": {"moment": [1.0, 0.5]},
+    }
+    return {"kind": kind, **at, **strengths[kind]}
+
+
+BODY = {
+    "layout": {
+        "depth": 4.0,
+        "ambient": {"velocity": [0.3, 0.0]},
+        "elements": [_element(number) for number in range(10)],
+    },
+    "at": {"points": [[1.5 * k, 40.0 - 0.25 * k] for k in range(100)]},
+}
+"""Ten elements of four kinds and a hundred points, some two kilobytes."""
+
+
+async def _empty(request: Request) -> Response:
+    await request.body()
+    return Response(b"", media_type="application/json")
+
+
+def measure() -> list[Measure]:
+    """Rate of a field sample of 2 kB and of an empty answer to the same body, without sockets."""
+    app = create_app(Settings())
+    app.add_route("/bench/empty", _empty, methods=["POST"])
+    client = InProcess(app)
+    body = orjson.dumps(BODY)
+    try:
+        status, answer = client.post("/v1/field/sample", body)
+        assert status == 200, answer
+        small, empty = interleaved(
+            lambda: client.many("/v1/field/sample", body, COUNT),
+            lambda: client.many("/bench/empty", body, COUNT),
+            repeats=7,
+        )
+    finally:
+        client.close()
+    remark = f"{COUNT / small:.0f} against {COUNT / empty:.0f} requests/s, no sockets"
+    return [
+        Measure(
+            "small field sample over an empty POST, requests/s",
+            empty / small,
+            "-",
+            0.6,
+            more_is_better=True,
+            remark=remark,
+        )
+    ]
