@@ -4,11 +4,10 @@ import numpy as np
 import pytest
 from numpy.testing import assert_allclose
 
-from forebay.flow.maps import AffineMap, LogarithmMap
+from forebay.flow.maps import AffineMap, ConformalMap, LogarithmMap
 
-ALONG = np.exp(0.4j)
-MAPS = {
-    "affine": AffineMap(100 + 50j, 0.7 * np.exp(-0.4j)),
+ALONG = complex(np.exp(0.4j))
+CORNERS = {
     "acute corner": LogarithmMap(100 + 50j, ALONG, np.pi / 5, 3.0),
     "right corner": LogarithmMap(100 + 50j, ALONG, np.pi / 2, 3.0),
     "reentrant corner": LogarithmMap(100 + 50j, ALONG, 1.6 * np.pi, 3.0),
@@ -16,7 +15,10 @@ MAPS = {
 }
 
 
-@pytest.fixture(params=MAPS.values(), ids=MAPS.keys())
+MAPS: dict[str, ConformalMap] = {"affine": AffineMap(100 + 50j, 0.7 * complex(np.exp(-0.4j))), **CORNERS}
+
+
+@pytest.fixture(params=list(MAPS.values()), ids=list(MAPS))
 def map_and_points(request):
     """Return a map and points strictly inside its water."""
     tau = request.param
@@ -48,8 +50,8 @@ def test_derivatives_agree_with_a_contour_average(map_and_points):
 
 @pytest.mark.parametrize("name", ["acute corner", "right corner", "reentrant corner"])
 def test_banks_of_a_corner_lie_on_the_edges_of_the_strip(name):
-    tau = MAPS[name]
-    distance = np.geomspace(1e-3, 1e3, 13)
+    tau = CORNERS[name]
+    distance = np.geomspace(1e-3, 1e3, 13).astype(np.complex128)
     first = tau.forward(tau.vertex + distance * tau.along)
     second = tau.forward(tau.vertex + distance * tau.along * np.exp(1j * tau.angle))
     # position rounding 1.4e-14 m at 1e-3 m, times n <= 5
@@ -58,7 +60,7 @@ def test_banks_of_a_corner_lie_on_the_edges_of_the_strip(name):
 
 
 def test_cut_lies_on_the_bisector_of_the_land():
-    tau = MAPS["reentrant corner"]
+    tau = CORNERS["reentrant corner"]
     bisector = tau.angle / 2 + np.pi
     either = tau.forward(tau.vertex + ALONG * np.exp(1j * (bisector + np.array([-1e-6, 1e-6]))))
     assert abs(either[1].imag - either[0].imag) == pytest.approx(

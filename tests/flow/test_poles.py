@@ -31,7 +31,7 @@ def a_field(kappa, offset):
         numbers(5),
         np.arange(5),
         numbers(2),
-        np.array([[0.3 + 0.1j, 0.05j, 0.02], [0.1, 0, 0]]),
+        np.array([[0.3 + 0.1j, 0.05j, 0.02], [0.1 + 0j, 0j, 0j]]),
         np.array([1, 2]),
     )
 
@@ -95,7 +95,7 @@ class TestVelocity:
     def test_right_end_keeps_small_velocities_upstream(self):
         """With offset 1/2 the field decays like exp(Re tau) on the left: no digit is lost to 1/2 - 1/2."""
         tau, pole = -60 + 1j, 0.5j
-        none = np.empty(0, np.complex128)
+        none, nobody = np.empty(0, np.complex128), np.empty(0, np.int64)
         field = PoleField(
             PERIODIC,
             0.5,
@@ -104,8 +104,8 @@ class TestVelocity:
             np.array([1 + 0j]),
             np.array([1]),
             none,
-            np.empty((0, 0)),
-            none,
+            none.reshape(0, 0),
+            nobody,
         )
         with mpmath.workdps(60):
             d = mpmath.mpc(tau - pole)
