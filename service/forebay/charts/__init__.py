@@ -1,0 +1,1 @@
+"""Pictures of results, the same bytes for the same input."""
