@@ -37,7 +37,7 @@ DEFINITIONS = {
     ),
     Quantity.MIN_SWEEPING: "velocity component along the screen face, with the pump off",
     Quantity.MIN_SWEEPING_RATIO: "sweeping velocity over approach velocity at the same place of the face",
-    Quantity.MAX_EXPOSURE_TIME: "time along the face to its end or a bypass: integral of ds / sweeping velocity",
+    Quantity.MAX_EXPOSURE_TIME: "time along the face to its end or a bypass: integral of ds / sweeping speed",
     Quantity.MAX_NONUNIFORMITY: "largest excess of approach velocity over its limit, as a share of the limit",
     Quantity.MAX_OPENING: "width of slots, or diameter of holes, of the screen",
     Quantity.MIN_OPEN_FRACTION: "open over total area of the screen: slot / (slot + wire) for wedge wire",

@@ -1,0 +1,1 @@
+"""Where depth-mean plane potential flow stops being believable: the warnings, as data and as rules."""

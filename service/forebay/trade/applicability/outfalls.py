@@ -1,0 +1,102 @@
+"""An outfall is taken as a passive source: it pushes water aside but throws no jet."""
+
+import math
+from collections.abc import Iterator
+
+from forebay.flow.layout import LineSource, Source
+from forebay.trade.applicability.geometry import distance_to, ends_of
+from forebay.trade.applicability.site import Site
+from forebay.trade.applicability.warning import ApplicabilityWarning, Severity, WarningKind
+
+SPEED_RATIO = 1.0
+"""Port speed over current above which the jet shapes the flow [-]."""
+
+JET_LENGTHS = 5.0
+"""Distance, in momentum lengths, within which an outfall is a jet [-]."""
+
+JETS = "Fischer et al. 1979, Mixing in Inland and Coastal Waters, chapter 9; Jirka 2004"
+
+OUTFALL_PASSIVE = WarningKind(
+    code="outfall-passive",
+    severity=Severity.NOTE,
+    meaning="inflow to an intake is like a potential sink, outflow is a jet: a source only displaces water",
+    threshold="always, for every source and line source",
+    formula="momentum of the discharge left out",
+    source=JETS,
+)
+
+OUTFALL_JET_SPEED = WarningKind(
+    code="outfall-jet-speed",
+    severity=Severity.CAUTION,
+    meaning="the discharge leaves its port faster than the current: a jet",
+    threshold="U0 / Ua > 1",
+    formula="U0 = Q / port area, Ua the current",
+    source=JETS,
+)
+
+OUTFALL_JET_REACH = WarningKind(
+    code="outfall-jet-reach",
+    severity=Severity.CAUTION,
+    meaning="something of interest lies where the outfall's momentum still rules",
+    threshold="distance < 5 l_M",
+    formula="l_M = sqrt(Q U0) / Ua, U0 = Q / port area",
+    source=JETS,
+)
+
+
+def outfall_passive(site: Site) -> Iterator[ApplicabilityWarning]:
+    """Every outfall."""
+    for path, element in site.outfalls():
+        yield OUTFALL_PASSIVE.raised(
+            f"{element.name!r} only displaces water here: its momentum, buoyancy and mixing are left out.",
+            path,
+        )
+
+
+def outfall_jet_speed(site: Site) -> Iterator[ApplicabilityWarning]:
+    """Outfalls of known port area that are faster than the current."""
+    for path, element, area in _ports(site):
+        speed, current = element.discharge / area, site.current
+        if speed > SPEED_RATIO * current:
+            yield OUTFALL_JET_SPEED.raised(
+                f"{element.name!r} leaves its port at {speed:.2g} m/s into a current of {current:.2g} "
+                "m/s: a jet.",
+                (*path,),
+                value=speed / current if current > 0.0 else None,
+                limit=SPEED_RATIO,
+            )
+
+
+def outfall_jet_reach(site: Site) -> Iterator[ApplicabilityWarning]:
+    """Outfalls of known port area with something within five momentum lengths."""
+    for path, element, area in _ports(site):
+        nearest = _nearest(site, element)
+        current = site.current
+        limit = JET_LENGTHS * element.discharge / math.sqrt(area) / current if current > 0.0 else math.inf
+        if nearest is not None and nearest[0] < limit:
+            reach = (
+                f"closer than {limit:.3g} m, where its jet rules" if current > 0.0 else "in still water a jet"
+            )
+            yield OUTFALL_JET_REACH.raised(
+                f"{nearest[1]} is {nearest[0]:.3g} m from {element.name!r}: {reach}.",
+                path,
+                value=nearest[0],
+                limit=limit if current > 0.0 else None,
+            )
+
+
+def _ports(site: Site) -> Iterator[tuple[tuple[str | int, ...], Source | LineSource, float]]:
+    for path, element in site.outfalls():
+        area = site.data.port_areas.get(element.name)
+        if area is not None:
+            yield path, element, area
+
+
+def _nearest(site: Site, element: Source | LineSource) -> tuple[float, str] | None:
+    """Distance [m] to the nearest other element, pier or point of the answer, and what it is."""
+    found = [site.nearest_thing(end, besides=element) for end in ends_of(element)]
+    near = [(distance, repr(name)) for distance, name in filter(None, found)]
+    points = site.readings.points
+    if points is not None and points.size > 0:
+        near.append((min(distance_to(element, complex(z)) for z in points.ravel()), "a point of the answer"))
+    return min(near, default=None)

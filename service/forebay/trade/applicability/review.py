@@ -1,0 +1,53 @@
+"""The registry: every kind of warning with the rule that raises it, and their evaluation."""
+
+from collections.abc import Callable, Iterator
+
+from forebay.trade.applicability import banks, friction, ideal, missing, near_field, outfalls, surface, wakes
+from forebay.trade.applicability.site import Site
+from forebay.trade.applicability.warning import ApplicabilityWarning, Severity, WarningKind
+
+Rule = Callable[[Site], Iterator[ApplicabilityWarning]]
+
+RULES: tuple[tuple[WarningKind, Rule], ...] = (
+    (surface.RIGID_LID_FAILED, surface.rigid_lid_failed),
+    (surface.RIGID_LID, surface.rigid_lid),
+    (near_field.NEAR_FIELD_RESULT, near_field.near_field_result),
+    (near_field.NEAR_FIELD_OVERLAP, near_field.near_field_overlap),
+    (near_field.NEAR_FIELD, near_field.near_field),
+    (wakes.PIER_LEE, wakes.pier_lee),
+    (wakes.SHALLOW_WAKE, wakes.shallow_wake),
+    (outfalls.OUTFALL_JET_SPEED, outfalls.outfall_jet_speed),
+    (outfalls.OUTFALL_JET_REACH, outfalls.outfall_jet_reach),
+    (outfalls.OUTFALL_PASSIVE, outfalls.outfall_passive),
+    (banks.SALIENT_CORNER, banks.salient_corner),
+    (banks.CORE_NEAR_WALL, banks.core_near_wall),
+    (banks.BANK_SHEAR, banks.bank_shear),
+    (banks.CHANNEL_END_SPLIT, banks.channel_end_split),
+    (friction.FRICTION_LENGTH, friction.friction_length),
+    (friction.TRANSVERSE_MIXING, friction.transverse_mixing),
+    (friction.MIXING_LEFT_OUT, friction.mixing_left_out),
+    (friction.TURBULENCE_LEFT_OUT, friction.turbulence_left_out),
+    (surface.WIND_DRIFT, surface.wind_drift),
+    (surface.UNEVEN_DEPTH, surface.uneven_depth),
+    (ideal.ROTATIONAL_FIELD, ideal.rotational_field),
+    (ideal.LINE_ENDS, ideal.line_ends),
+    (ideal.AMBIENT_ZERO, ideal.ambient_zero),
+    (missing.BED_FRICTION_UNKNOWN, missing.bed_friction_unknown),
+    (missing.PORT_AREA_UNKNOWN, missing.port_area_unknown),
+    (missing.INTAKE_ELEVATION_UNKNOWN, missing.intake_elevation_unknown),
+    (missing.DEPTH_RANGE_UNKNOWN, missing.depth_range_unknown),
+    (missing.DENSITY_DIFFERENCE_UNKNOWN, missing.density_difference_unknown),
+    (missing.WIND_UNKNOWN, missing.wind_unknown),
+)
+"""Each kind with its own rule."""
+
+CATALOGUE: tuple[WarningKind, ...] = tuple(kind for kind, _ in RULES)
+"""Every kind of warning, for GET /v1/warnings."""
+
+_ORDER = tuple(reversed(Severity))
+
+
+def evaluate(site: Site) -> tuple[ApplicabilityWarning, ...]:
+    """Every warning that a site raises, the most serious first, otherwise in the order of the catalogue."""
+    raised = [warning for _, rule in RULES for warning in rule(site)]
+    return tuple(sorted(raised, key=lambda warning: _ORDER.index(warning.severity)))

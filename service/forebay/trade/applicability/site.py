@@ -1,0 +1,147 @@
+"""A site under review: its layout, what else is known of it, and the answer at hand."""
+
+import math
+from collections.abc import Iterator, Mapping
+from dataclasses import dataclass, field
+
+from forebay.flow.arrays import ComplexArray
+from forebay.flow.errors import Path
+from forebay.flow.layout import (
+    Channel,
+    DeadEnd,
+    Doublet,
+    Element,
+    Layout,
+    LineSink,
+    LineSource,
+    Pier,
+    Sink,
+    Source,
+    Vortex,
+    outflow,
+)
+from forebay.trade.applicability.geometry import distance_to
+
+
+@dataclass(frozen=True, slots=True)
+class SiteData:
+    """What a layout does not say; None or a missing name stands for unknown.
+
+    bed_friction : c_f = (friction velocity / speed)^2 [-]
+    port_areas : area of an outfall's port by its name [m2]
+    wind_speed : at 10 m [m/s]
+    density_difference : between layers [kg/m3]
+    depth_range : least and largest depth [m]
+    """
+
+    bed_friction: float | None = None
+    port_areas: Mapping[str, float] = field(default_factory=dict)
+    wind_speed: float | None = None
+    density_difference: float | None = None
+    depth_range: tuple[float, float] | None = None
+
+
+@dataclass(frozen=True, slots=True)
+class Readings:
+    """The answer at hand.
+
+    points : where values were asked for [m];  max_speed : largest speed among them [m/s]
+    has_dissipation : whether strain, dissipation or G are in it
+    """
+
+    points: ComplexArray | None = None
+    max_speed: float | None = None
+    has_dissipation: bool = False
+
+
+Thing = Element | Pier
+
+
+@dataclass(frozen=True, slots=True)
+class Site:
+    """What the rules look at."""
+
+    layout: Layout
+    data: SiteData = field(default_factory=SiteData)
+    readings: Readings = field(default_factory=Readings)
+
+    def elements(self) -> Iterator[tuple[Path, Element]]:
+        """Elements with their paths."""
+        for index, element in enumerate(self.layout.elements):
+            yield ("elements", index), element
+
+    def piers(self) -> Iterator[tuple[Path, Pier]]:
+        """Piers with their paths."""
+        for index, pier in enumerate(self.layout.structures):
+            yield ("structures", index), pier
+
+    def compact(self) -> Iterator[tuple[Path, Source | Sink]]:
+        """Sources and sinks at a point."""
+        for path, element in self.elements():
+            if isinstance(element, Source | Sink):
+                yield path, element
+
+    def outfalls(self) -> Iterator[tuple[Path, Source | LineSource]]:
+        """Elements that give water."""
+        for path, element in self.elements():
+            if isinstance(element, Source | LineSource):
+                yield path, element
+
+    def intakes(self) -> Iterator[tuple[Path, Sink | LineSink]]:
+        """Elements that take water."""
+        for path, element in self.elements():
+            if isinstance(element, Sink | LineSink):
+                yield path, element
+
+    def nearest_thing(self, z: complex, *, besides: Thing) -> tuple[float, str] | None:
+        """Distance [m] and name of the nearest other element or pier."""
+        others = [t for t in (*self.layout.elements, *self.layout.structures) if t is not besides]
+        return min(((distance_to(other, z), other.name) for other in others), default=None)
+
+    @property
+    def net_outflow(self) -> float:
+        """Water that the elements add, all together [m3/s]."""
+        return math.fsum(outflow(element) for element in self.layout.elements)
+
+    @property
+    def far_speeds(self) -> dict[str, float]:
+        """Speed [m/s] at each far end by its name, by continuity in a channel."""
+        layout, ambient = self.layout, abs(self.layout.ambient.velocity)
+        match layout.shore:
+            case Channel(width=width):
+                gain = self.net_outflow / (layout.depth * width)
+                if ambient == 0.0:
+                    return {"upstream": abs(0.5 * gain), "downstream": abs(0.5 * gain)}
+                return {"upstream": ambient, "downstream": abs(ambient + gain)}
+            case DeadEnd(width=width):
+                return {"open-end": abs(self.net_outflow) / (layout.depth * width)}
+            case _:
+                return {"ambient": ambient}
+
+    @property
+    def current(self) -> float:
+        """Largest speed at a far end [m/s]: the current that the elements are in."""
+        return max(self.far_speeds.values())
+
+    def speed_scale(self, z: complex, *, besides: Thing) -> float:
+        """Bound on the speed at a place without banks, the part of `besides` left out [m/s]."""
+        ambient = self.layout.ambient
+        (a, b), (c, d) = ambient.gradient
+        away = z - ambient.at
+        shear = complex(a * away.real + b * away.imag, c * away.real + d * away.imag)
+        local = max(self.current, abs(ambient.velocity + shear))
+        others = [element for element in self.layout.elements if element is not besides]
+        return local + math.fsum(_induced(element, z, self.layout.depth) for element in others)
+
+
+def _induced(element: Element, z: complex, depth: float) -> float:
+    """Speed that one element alone makes at a distance, or a bound on it [m/s]."""
+    distance = distance_to(element, z)
+    match element:
+        case Vortex():
+            strength = abs(element.circulation)
+        case Doublet():
+            strength = abs(element.moment) / distance
+        case _:
+            strength = element.discharge / depth
+    return strength / (2.0 * math.pi * distance)

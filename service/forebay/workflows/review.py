@@ -1,0 +1,37 @@
+"""Review of a layout: where its numbers should not be trusted."""
+
+from forebay.flow.layout import Layout
+from forebay.flow.placement import check_layout, scale_of
+from forebay.flow.shores import frame_of
+from forebay.trade.applicability.review import evaluate
+from forebay.trade.applicability.site import Readings, Site, SiteData
+from forebay.trade.applicability.warning import ApplicabilityWarning
+
+
+def review_layout(
+    layout: Layout, readings: Readings | None = None, *, data: SiteData | None = None
+) -> tuple[ApplicabilityWarning, ...]:
+    """Applicability warnings of a layout, and of an answer where one is at hand.
+
+    Parameters
+    ----------
+    layout : Layout
+        The site; nothing is computed of its flow.
+    readings : Readings, optional
+        Points, largest speed [m/s] and kind of the answer at hand.
+    data : SiteData, optional
+        Bed friction, port areas, wind and so on; what is missing is itself a note.
+
+    Returns
+    -------
+    tuple of ApplicabilityWarning
+        The most serious first; paths are steps from the layout, values and limits in SI.
+
+    Raises
+    ------
+    LayoutError
+        If the layout describes something that cannot be, as `check_layout`.
+    """
+    middle, scale = scale_of(layout)
+    check_layout(layout, frame_of(layout.shore, middle, scale), scale)
+    return evaluate(Site(layout, data or SiteData(), readings or Readings()))

@@ -1,0 +1,357 @@
+"""Every warning at, just below and just above its threshold, and that none is left out of this table."""
+
+import math
+from dataclasses import replace
+
+import numpy as np
+import pytest
+
+from forebay.flow.layout import (
+    Ambient,
+    Channel,
+    Core,
+    CoreModel,
+    Corner,
+    DeadEnd,
+    Doublet,
+    Layout,
+    LineSink,
+    LineSource,
+    Pier,
+    Sink,
+    Source,
+    StraightBank,
+    Vortex,
+)
+from forebay.trade.applicability.ideal import END_SHARE
+from forebay.trade.applicability.review import CATALOGUE, RULES
+from forebay.trade.applicability.site import Readings, Site, SiteData
+
+RULE = {kind.code: rule for kind, rule in RULES}
+BANK = StraightBank(0j, 1 + 0j)
+ABOVE, BELOW = 1.0 + 1e-9, 1.0 - 1e-9
+DEPTH = 4.0
+STILL = Layout(DEPTH)
+CURRENT = Layout(DEPTH, ambient=Ambient(0.5 + 0j))
+
+
+def site(layout, data=None, readings=None):
+    return Site(layout, data or SiteData(), readings or Readings())
+
+
+def raised(code, at):
+    return list(RULE[code](at))
+
+
+def flowing(speed, depth=DEPTH):
+    return site(Layout(depth, ambient=Ambient(speed * np.exp(0.3j))))
+
+
+def critical(froude, depth=DEPTH):
+    return froude * math.sqrt(9.80665 * depth)
+
+
+def pair(distance, layout=CURRENT):
+    return site(replace(layout, elements=(Sink("a", 0j, 1.0), Vortex("b", distance + 0j, 1.0))))
+
+
+def asked(distance):
+    points = np.array([50.0 + 0j, 0.6 * distance + 0.8j * distance])
+    return site(replace(CURRENT, elements=(Source("a", 0j, 1.0),)), readings=Readings(points))
+
+
+def pier_in(speed):
+    return site(Layout(DEPTH, ambient=Ambient(speed + 0j), structures=(Pier("P", 0j, 1.5),)))
+
+
+def wake(number):
+    data = SiteData(bed_friction=number * DEPTH / 3.0)
+    return site(replace(CURRENT, structures=(Pier("P", 0j, 1.5),)), data)
+
+
+def outfall(area=None, distance=50.0, current=0.5):
+    elements = (Source("works", 0j, 2.0), Sink("town", distance + 0j, 1.0))
+    data = SiteData(port_areas={} if area is None else {"works": area})
+    return site(Layout(DEPTH, ambient=Ambient(current + 0j), elements=elements), data)
+
+
+def jet(share):
+    # l_M = Q / sqrt(A) / Ua = 2 / 1 / 0.5 = 4 m: five of them are 20 m
+    return outfall(area=1.0, distance=20.0 * share)
+
+
+def corner(degrees):
+    return site(Layout(DEPTH, shore=Corner(0j, 1 + 0j, math.radians(degrees))))
+
+
+def cored(model, distance):
+    vortex = Vortex("g", 1j * distance, 1.0, Core(model, 2.0))
+    return site(Layout(DEPTH, shore=BANK, elements=(vortex,)))
+
+
+def bank_intake(distance, discharge=1.0, current=0.5):
+    sink = Sink("a", 1j * distance, discharge)
+    return site(Layout(DEPTH, ambient=Ambient(current + 0j), shore=BANK, elements=(sink,)))
+
+
+def still_channel(net, velocity=0j):
+    elements = (Source("a", 5j, 2.0), Sink("b", 9 + 5j, 2.0 - net))
+    return site(Layout(DEPTH, ambient=Ambient(velocity), shore=Channel(0j, 1 + 0j, 20.0), elements=elements))
+
+
+def long_layout(extent):
+    # 0.3 h / c_f = 0.3 * 4 / 0.005 = 240 m
+    elements = (Sink("a", 0j, 1.0), Sink("b", 10 + 5j, 1.0))
+    layout = replace(CURRENT, elements=elements, structures=(Pier("P", extent + 0j, 1.0),))
+    return site(layout, SiteData(bed_friction=0.005))
+
+
+def mixing(share):
+    # c_f = 0.01, h = 4: sigma = sqrt(2 * 0.6 * 4 * 0.1 * 100) = sqrt(48) m over 100 m; w / 4 = Q / 8 m
+    discharge = 8.0 * math.sqrt(48.0) / share
+    elements = (Source("works", 0j, 1.0), Sink("town", 100 + 0j, discharge))
+    return site(replace(CURRENT, elements=elements), SiteData(bed_friction=0.01))
+
+
+def windy(speed):
+    return site(CURRENT, SiteData(wind_speed=speed))
+
+
+def uneven(largest):
+    return site(CURRENT, SiteData(depth_range=(3.5, largest)))
+
+
+def turning(vorticity):
+    return site(Layout(DEPTH, ambient=Ambient(gradient=((0.0, 0.1), (0.1 + vorticity, 0.0)))))
+
+
+def lined(cls=LineSink):
+    return site(replace(CURRENT, elements=(cls("bay", 0j, 6 + 8j, 1.0),)))
+
+
+THRESHOLDS = [
+    # code, below, at, above: how many warnings each raises
+    ("rigid-lid", flowing(critical(0.3) * BELOW), flowing(critical(0.3) * ABOVE), 0.3),
+    ("rigid-lid-failed", flowing(critical(0.5) * BELOW), flowing(critical(0.5) * ABOVE), 0.5),
+    ("near-field-overlap", pair(8.0), pair(8.0 * BELOW), 8.0),
+    ("near-field-result", asked(8.0 * ABOVE), asked(8.0 * BELOW), 8.0),
+    ("pier-lee", pier_in(50 * 1.8e-6 / 3.0 * BELOW), pier_in(50 * 1.8e-6 / 3.0 * ABOVE), 50.0),
+    ("outfall-jet-speed", outfall(area=4.0), outfall(area=4.0 * BELOW), 1.0),
+    ("outfall-jet-reach", jet(1.0), jet(BELOW), 20.0),
+    ("salient-corner", corner(180.0), corner(180.0 * ABOVE), 180.0),
+    ("core-near-wall", cored(CoreModel.LAMB_OSEEN, 6.0), cored(CoreModel.LAMB_OSEEN, 6.0 * BELOW), 6.0),
+    ("core-near-wall", cored(CoreModel.RANKINE, 4.0), cored(CoreModel.RANKINE, 4.0 * BELOW), 4.0),
+    ("bank-shear", bank_intake(4.0 * ABOVE), bank_intake(4.0), 4.0),
+    ("friction-length", long_layout(240.0), long_layout(240.0 * ABOVE), 240.0),
+    ("transverse-mixing", mixing(BELOW), mixing(ABOVE), math.sqrt(48.0)),
+    ("wind-drift", windy(5.0 * BELOW), windy(5.0 * ABOVE), 0.15),
+    ("uneven-depth", uneven(4.3 * BELOW), uneven(4.3 * ABOVE), 0.2),
+    ("rotational-field", turning(0.0), turning(1e-6), 0.0),
+]
+
+
+@pytest.mark.parametrize(("code", "silent", "loud", "limit"), THRESHOLDS, ids=[row[0] for row in THRESHOLDS])
+def test_threshold(code, silent, loud, limit):
+    assert raised(code, silent) == []
+    (warning,) = raised(code, loud)
+    assert warning.code == code
+    assert warning.limit == pytest.approx(limit, rel=1e-8)  # ABOVE and BELOW lie 1e-9 from the limits
+    assert warning.value == pytest.approx(limit, rel=1e-8, abs=2e-6)
+
+
+AT_THE_LIMIT = [
+    # just on a limit whose side is decided by <, not by rounding
+    ("near-field-overlap", pair(8.0)),
+    ("outfall-jet-speed", outfall(area=4.0)),
+    ("outfall-jet-reach", jet(1.0)),
+    ("core-near-wall", cored(CoreModel.LAMB_OSEEN, 6.0)),
+    ("friction-length", long_layout(240.0)),
+    ("salient-corner", corner(180.0)),
+]
+
+
+@pytest.mark.parametrize(("code", "at"), AT_THE_LIMIT, ids=[row[0] for row in AT_THE_LIMIT])
+def test_limit_itself_is_still_believed(code, at):
+    assert raised(code, at) == []
+
+
+def test_intake_on_the_limit_still_draws_from_the_bank():
+    assert len(raised("bank-shear", bank_intake(4.0))) == 1
+
+
+def test_rigid_lid_gives_way_to_its_failure():
+    assert raised("rigid-lid", flowing(critical(0.5) * ABOVE)) == []
+    assert len(raised("rigid-lid", flowing(critical(0.5) * BELOW))) == 1
+
+
+ALWAYS = [
+    # code, a site where it is not raised, a site where it is, how often
+    ("near-field", lined(), pair(30.0), 1),
+    ("outfall-passive", pair(30.0), outfall(), 1),
+    ("outfall-passive", pair(30.0), lined(LineSource), 1),
+    ("shallow-wake", pier_in(0.5), wake(0.1), 1),
+    ("channel-end-split", still_channel(0.0), still_channel(1.0), 1),
+    ("channel-end-split", still_channel(1.0, 0.1 + 0j), still_channel(-1.0), 1),
+    ("mixing-left-out", pair(30.0), outfall(), 1),
+    ("turbulence-left-out", site(CURRENT), site(CURRENT, readings=Readings(has_dissipation=True)), 1),
+    ("rotational-field", pair(30.0), cored(CoreModel.RANKINE, 50.0), 1),
+    ("line-ends", pair(30.0), lined(), 1),
+    ("ambient-zero", pair(30.0), pair(30.0, STILL), 1),
+    ("ambient-zero", site(STILL), pair(30.0, STILL), 1),
+    ("bed-friction-unknown", site(STILL, SiteData(bed_friction=0.003)), site(STILL), 1),
+    ("port-area-unknown", outfall(area=1.0), outfall(), 1),
+    ("wind-unknown", windy(0.0), site(STILL), 1),
+    ("density-difference-unknown", site(STILL, SiteData(density_difference=0.0)), site(STILL), 1),
+    ("depth-range-unknown", uneven(4.0), site(STILL), 1),
+    ("intake-elevation-unknown", lined(), pair(30.0), 1),
+]
+
+
+@pytest.mark.parametrize(("code", "silent", "loud", "count"), ALWAYS, ids=[row[0] for row in ALWAYS])
+def test_condition(code, silent, loud, count):
+    assert raised(code, silent) == []
+    assert [warning.code for warning in raised(code, loud)] == [code] * count
+
+
+def test_every_warning_is_tested():
+    assert {row[0] for row in (*THRESHOLDS, *ALWAYS)} == {kind.code for kind in CATALOGUE}
+
+
+class TestWakes:
+    @pytest.mark.parametrize(
+        ("number", "kind"),
+        [
+            (0.2 * BELOW, "a vortex street"),
+            (0.2, "an unsteady bubble"),
+            (0.5 * BELOW, "an unsteady bubble"),
+            (0.5 * ABOVE, "a steady bubble"),
+        ],
+    )
+    def test_kind_of_shallow_wake(self, number, kind):
+        (warning,) = raised("shallow-wake", wake(number))
+        assert kind in warning.message
+        assert warning.value == pytest.approx(number, rel=1e-12)
+
+    # c_f, D, h and S of the shallow-wake number
+    @pytest.mark.parametrize(
+        ("friction", "diameter", "depth", "number"),
+        [(0.005, 10, 2, 0.025), (0.005, 100, 2, 0.25), (0.01, 200, 5, 0.4)],
+    )
+    def test_table_of_shallow_wake_numbers(self, friction, diameter, depth, number):
+        layout = Layout(depth, ambient=Ambient(1 + 0j), structures=(Pier("P", 0j, diameter / 2),))
+        (warning,) = raised("shallow-wake", site(layout, SiteData(bed_friction=friction)))
+        assert warning.value == pytest.approx(number, rel=1e-12)
+
+    def test_shedding_frequency(self):
+        # f = 0.2 U / D = 0.2 * 0.6 / 3 = 0.04 1/s, every 25 s
+        (warning,) = raised("pier-lee", pier_in(0.6))
+        assert "every 25 s (0.04 1/s)" in warning.message
+        assert "at least 15 m" in warning.message
+
+    def test_pier_in_still_water_without_elements(self):
+        assert raised("pier-lee", pier_in(0.0)) == []
+
+    @pytest.mark.parametrize(
+        "element",
+        [
+            Sink("a", 20 + 0j, 2.0),
+            Vortex("a", 20 + 0j, 0.5),
+            Doublet("a", 20 + 0j, 10 + 0j),
+            LineSource("a", 20 - 5j, 20 + 5j, 2.0),
+        ],
+        ids=lambda element: type(element).__name__,
+    )
+    def test_elements_move_water_past_a_pier_too(self, element):
+        # 2 m3/s over 4 m: 0.5 m2/s / (2 pi 20 m) = 0.004 m/s
+        layout = Layout(DEPTH, elements=(element,), structures=(Pier("P", 0j, 1.5),))
+        (warning,) = raised("pier-lee", site(layout))
+        assert warning.value == pytest.approx(0.5 / (40 * math.pi) * 3.0 / 1.8e-6, rel=1e-12)
+
+    def test_ambient_gradient_moves_water_past_a_pier(self):
+        ambient = Ambient(gradient=((0.0, 0.01), (0.0, 0.0)), at=-10j)
+        layout = Layout(DEPTH, ambient=ambient, structures=(Pier("P", 0j, 1.5),))
+        (warning,) = raised("pier-lee", site(layout))
+        assert warning.value == pytest.approx(0.1 * 3.0 / 1.8e-6, rel=1e-12)
+
+
+class TestSpeeds:
+    # speed at which F = 0.3 and 0.5 in 1, 2, 5 m of water [m/s]
+    @pytest.mark.parametrize(
+        ("depth", "strained", "failed"), [(1, 0.940, 1.566), (2, 1.329, 2.215), (5, 2.101, 3.502)]
+    )
+    def test_table_of_critical_speeds(self, depth, strained, failed):
+        # printed for g = 9.81 m/s2: 2e-4 more than with the standard acceleration
+        assert raised("rigid-lid", flowing(strained * 0.999, depth)) == []
+        assert len(raised("rigid-lid", flowing(strained * 1.001, depth))) == 1
+        assert raised("rigid-lid-failed", flowing(failed * 0.999, depth)) == []
+        assert len(raised("rigid-lid-failed", flowing(failed * 1.001, depth))) == 1
+
+    def test_speed_in_the_answer(self):
+        (warning,) = raised("rigid-lid-failed", site(STILL, readings=Readings(max_speed=5.0)))
+        assert warning.message.startswith("The largest speed in the answer, 5 m/s")
+
+    def test_channel_speeds_up_behind_an_outfall(self):
+        # 20 m by 4 m: 80 m3/s more is 1 m/s more
+        shore, outfall_ = Channel(0j, 1 + 0j, 20.0), Source("a", 10j, 80.0)
+        at = site(Layout(DEPTH, ambient=Ambient(-1.0 + 0j), shore=shore, elements=(outfall_,)))
+        assert at.far_speeds == {"upstream": 1.0, "downstream": 2.0}
+        (warning,) = raised("rigid-lid", at)
+        assert "downstream end" in warning.message
+
+    def test_still_channel_shares_the_net_exchange(self):
+        at = site(Layout(DEPTH, shore=Channel(0j, 1 + 0j, 20.0), elements=(Sink("a", 10j, 80.0),)))
+        assert at.far_speeds == {"upstream": 0.5, "downstream": 0.5}
+
+    def test_dead_end_is_fed_through_its_open_end(self):
+        at = site(Layout(DEPTH, shore=DeadEnd(0j, 1 + 0j, 20.0), elements=(Sink("a", 5 + 10j, 80.0),)))
+        assert at.far_speeds == {"open-end": 1.0}
+
+
+class TestOutfalls:
+    def test_jet_in_still_water_reaches_everything(self):
+        (warning,) = raised("outfall-jet-reach", outfall(area=1.0, distance=5000.0, current=0.0))
+        assert warning.limit is None
+        (speed,) = raised("outfall-jet-speed", outfall(area=1.0, current=0.0))
+        assert speed.value is None
+
+    def test_point_of_the_answer_counts(self):
+        at = replace(outfall(area=1.0, distance=500.0), readings=Readings(np.array([0 + 3j])))
+        (warning,) = raised("outfall-jet-reach", at)
+        assert warning.message.startswith("a point of the answer is 3 m")
+
+    def test_lone_outfall_reaches_nothing(self):
+        layout = replace(CURRENT, elements=(Source("works", 0j, 2.0),))
+        assert raised("outfall-jet-reach", site(layout, SiteData(port_areas={"works": 1.0}))) == []
+
+
+class TestBanks:
+    def test_wide_strip_reaches_the_bank(self):
+        # Q / (2 pi h U) = 40 pi / (2 pi 4 0.5) = 10 m, beyond the depth
+        assert len(raised("bank-shear", bank_intake(10.0 * BELOW, 40 * math.pi))) == 1
+        assert raised("bank-shear", bank_intake(10.0 * ABOVE, 40 * math.pi)) == []
+
+    def test_without_current_every_strip_reaches_it(self):
+        (warning,) = raised("bank-shear", bank_intake(1000.0, current=0.0))
+        assert warning.limit is None
+
+    def test_no_bank_no_warning(self):
+        assert raised("bank-shear", pair(30.0)) == []
+
+    def test_core_near_a_pier(self):
+        vortex = Vortex("g", 7 + 0j, 1.0, Core(CoreModel.LAMB_OSEEN, 2.0))
+        layout = Layout(DEPTH, elements=(vortex,), structures=(Pier("P", 0j, 1.5),))
+        (warning,) = raised("core-near-wall", site(layout))
+        assert warning.value == 5.5
+
+
+class TestIdeal:
+    def test_reach_of_line_ends_is_where_both_speeds_are_equal(self):
+        (warning,) = raised("line-ends", lined())
+        x, length = warning.value, 10.0
+        along, across = math.log((length - x) / x) / (2 * math.pi), 0.5
+        assert along == pytest.approx(across, rel=1e-12)
+        assert pytest.approx(0.0414, abs=5e-5) == END_SHARE
+
+    def test_vorticity_of_a_core(self):
+        (warning,) = raised("rotational-field", cored(CoreModel.RANKINE, 50.0))
+        assert warning.value == pytest.approx(1.0 / (4 * math.pi))
