@@ -131,6 +131,10 @@ def _check_ambient(ambient: Ambient, frame: Frame, scale: float) -> None:
         raise DivergentAmbientError(
             f"du/dx + dv/dy is {xx + yy:.3g} 1/s, not 0", ("ambient", "gradient"), trace=xx + yy
         )
+    if ambient.velocity != 0 and not frame.map.affine:
+        raise CurrentThroughWallError(
+            "a corner has no uniform current along both its banks", ("ambient", "velocity")
+        )
     speed = abs(ambient.velocity) + size * scale
     for wall in frame.walls:
         through = _through(ambient, wall)

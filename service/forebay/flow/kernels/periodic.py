@@ -11,56 +11,75 @@ import numpy as np
 from numba import njit
 
 from forebay.flow.arrays import ComplexArray, FloatArray
+from forebay.flow.kernels.elementary import angle, decay, logarithm, sine_cosine
 
+_BLOCK = 64
+"""Points in one block: 64 doubles a column stay in the first-level cache."""
 _TURN = 2.0 * math.pi
 
 
-@njit(cache=True, error_model="numpy", inline="always")
-def kernel(d: complex, offset: float) -> tuple[complex, complex]:
-    """X(d) + offset, for offset -1/2, 0 or 1/2, and X'(d) = -1/(4 sinh^2(d/2)); no cancellation far away."""
-    a = 0.5 * d.real
-    sign = 1.0 if a >= 0.0 else -1.0
-    if abs(a) > 0.5:
-        e = math.exp(-2.0 * abs(a))
-        m = 1.0 - e
-    else:
-        m = -math.expm1(-2.0 * abs(a))
-        e = 1.0 - m
-    s = math.sin(0.5 * d.imag)
-    c = math.cos(0.5 * d.imag)
-    denominator = m * m + 4.0 * e * s * s
-    real = sign * m * (1.0 + e)
-    if offset * sign > 0.0:
-        real += sign * denominator
-    elif offset * sign < 0.0:
-        real = -sign * 2.0 * e * (2.0 * s * s - m)
-    # 2 exp(-|a|) sinh(d/2) = sinh_re + i sinh_im, of squared modulus `denominator`
-    sinh_re = sign * m * c
-    sinh_im = (1.0 + e) * s
-    shrink = e / (denominator * denominator)
-    slope_re = (sinh_im * sinh_im - sinh_re * sinh_re) * shrink
-    slope_im = 2.0 * sinh_re * sinh_im * shrink
-    value = complex(0.5 * real / denominator, -2.0 * e * s * c / denominator)
-    return value, complex(slope_re, slope_im)
+@njit(inline="always", error_model="numpy")
+def _kernel(dx: float, dy: float, offset: float) -> tuple[float, float, float, float, float, float]:
+    """Real and imaginary part of X(d) + offset, then E, sinh_re, sinh_im and the denominator.
+
+    2 exp(-|a|) sinh(d/2) = sinh_re + i sinh_im, whose squared modulus is the denominator.
+    """
+    e, m = decay(abs(dx))
+    sine, cosine = sine_cosine(0.5 * dy)
+    sign = 1.0 if dx >= 0.0 else -1.0
+    denominator = m * m + 4.0 * e * sine * sine
+    odd = m * (1.0 + e)
+    towards = offset * sign
+    real = odd + denominator if towards > 0.0 else odd
+    real = -2.0 * e * (2.0 * sine * sine - m) if towards < 0.0 else real
+    q = 1.0 / denominator
+    return 0.5 * sign * real * q, -2.0 * e * sine * cosine * q, e, sign * m * cosine, (1.0 + e) * sine, q
 
 
 @njit(cache=True, error_model="numpy")
 def pole_sums(
     tau: ComplexArray, poles: ComplexArray, strengths: ComplexArray, offset: float
 ) -> tuple[ComplexArray, ComplexArray]:
-    """Sums of g (X + offset) and of g X' over the poles.
+    """Sums of g (X + offset) and of g X' over the poles, X' = -1/(4 sinh^2(d/2)).
 
     tau : shape (n,), points [-];  poles, strengths : shape (m,), positions [-] and g [m2/s]
     Returns two arrays of shape (n,) [m2/s]; nan at a pole.
     """
     n = tau.shape[0]
-    velocity = np.zeros(n, np.complex128)
-    slope = np.zeros(n, np.complex128)
-    for i in range(n):
+    velocity = np.empty(n, np.complex128)
+    slope = np.empty(n, np.complex128)
+    x = np.zeros(_BLOCK)
+    y = np.zeros(_BLOCK)
+    w_re = np.zeros(_BLOCK)
+    w_im = np.zeros(_BLOCK)
+    s_re = np.zeros(_BLOCK)
+    s_im = np.zeros(_BLOCK)
+    for start in range(0, n, _BLOCK):
+        count = min(_BLOCK, n - start)
+        for k in range(count):
+            x[k] = tau[start + k].real
+            y[k] = tau[start + k].imag
+        w_re[:] = 0.0
+        w_im[:] = 0.0
+        s_re[:] = 0.0
+        s_im[:] = 0.0
         for j in range(poles.shape[0]):
-            value, change = kernel(tau[i] - poles[j], offset)
-            velocity[i] += strengths[j] * value
-            slope[i] += strengths[j] * change
+            px = poles[j].real
+            py = poles[j].imag
+            g_re = strengths[j].real
+            g_im = strengths[j].imag
+            for k in range(_BLOCK):
+                k_re, k_im, e, sh_re, sh_im, q = _kernel(x[k] - px, y[k] - py, offset)
+                w_re[k] += g_re * k_re - g_im * k_im
+                w_im[k] += g_re * k_im + g_im * k_re
+                shrink = e * q * q
+                d_re = (sh_im * sh_im - sh_re * sh_re) * shrink
+                d_im = 2.0 * sh_re * sh_im * shrink
+                s_re[k] += g_re * d_re - g_im * d_im
+                s_im[k] += g_re * d_im + g_im * d_re
+        for k in range(count):
+            velocity[start + k] = complex(w_re[k], w_im[k])
+            slope[start + k] = complex(s_re[k], s_im[k])
     return velocity, slope
 
 
@@ -69,23 +88,44 @@ def velocity_sums(
     tau: ComplexArray, poles: ComplexArray, strengths: ComplexArray, offset: float
 ) -> ComplexArray:
     """Sum of g (X + offset) over the poles: as `pole_sums` without the derivative."""
-    velocity = np.zeros(tau.shape[0], np.complex128)
-    for i in range(tau.shape[0]):
+    n = tau.shape[0]
+    velocity = np.empty(n, np.complex128)
+    x = np.zeros(_BLOCK)
+    y = np.zeros(_BLOCK)
+    w_re = np.zeros(_BLOCK)
+    w_im = np.zeros(_BLOCK)
+    for start in range(0, n, _BLOCK):
+        count = min(_BLOCK, n - start)
+        for k in range(count):
+            x[k] = tau[start + k].real
+            y[k] = tau[start + k].imag
+        w_re[:] = 0.0
+        w_im[:] = 0.0
         for j in range(poles.shape[0]):
-            velocity[i] += strengths[j] * kernel(tau[i] - poles[j], offset)[0]
+            px = poles[j].real
+            py = poles[j].imag
+            g_re = strengths[j].real
+            g_im = strengths[j].imag
+            for k in range(_BLOCK):
+                k_re, k_im, _, _, _, _ = _kernel(x[k] - px, y[k] - py, offset)
+                w_re[k] += g_re * k_re - g_im * k_im
+                w_im[k] += g_re * k_im + g_im * k_re
+        for k in range(count):
+            velocity[start + k] = complex(w_re[k], w_im[k])
     return velocity
 
 
-@njit(cache=True, error_model="numpy", inline="always")
-def _logarithm(d: complex, side: float) -> complex:
-    """Log(2 sinh(d/2)) as side d/2 + log(1 - exp(-side d)), continuous while side Re d > 0."""
-    x = side * d.real
-    y = side * d.imag
-    decay = math.exp(-x)
-    half = math.sin(0.5 * y)
-    re = -math.expm1(-x) + 2.0 * decay * half * half
-    im = decay * math.sin(y)
-    return complex(0.5 * x + 0.5 * math.log(re * re + im * im), 0.5 * y + math.atan2(im, re))
+@njit(inline="always", error_model="numpy")
+def _potential(dx: float, dy: float) -> tuple[float, float]:
+    """Log(2 sinh(d/2)) = side d/2 + log(1 - exp(-side d)), side = sign(Re d): real and imaginary part."""
+    side = 1.0 if dx >= 0.0 else -1.0
+    x = side * dx
+    y = side * dy
+    e, m = decay(x)
+    half_sine, half_cosine = sine_cosine(0.5 * y)
+    re = m + 2.0 * e * half_sine * half_sine
+    im = 2.0 * e * half_sine * half_cosine
+    return 0.5 * (x + logarithm(re * re + im * im)), 0.5 * y + angle(im, re)
 
 
 @njit(cache=True, error_model="numpy")
@@ -99,25 +139,31 @@ def path_integrals(
 
     crossing : shape (n, m) or (0, 0), Im tau where path i meets Re tau = Re p_j; (0, 0) means
         straight paths, on which it is interpolated.
-    Returns shape (n, m) [-]; not finite if a path ends on a pole.
+    Returns shape (n, m) [-]; huge if a path ends on a pole.
     """
-    integrals = np.empty((start.shape[0], poles.shape[0]), np.complex128)
     straight = crossing.shape[0] == 0
+    integrals = np.empty((start.shape[0], poles.shape[0]), np.complex128)
     for i in range(start.shape[0]):
+        ax = start[i].real
+        ay = start[i].imag
+        bx = end[i].real
+        by = end[i].imag
         for j in range(poles.shape[0]):
-            a = start[i] - poles[j]
-            b = end[i] - poles[j]
-            side_a = 1.0 if a.real >= 0.0 else -1.0
-            side_b = 1.0 if b.real >= 0.0 else -1.0
-            value = _logarithm(b, side_b) - _logarithm(a, side_a)
-            if side_a != side_b:
-                if straight:
-                    height = a.imag - a.real * (b.imag - a.imag) / (b.real - a.real)
-                else:
+            dax = ax - poles[j].real
+            day = ay - poles[j].imag
+            dbx = bx - poles[j].real
+            dby = by - poles[j].imag
+            a_re, a_im = _potential(dax, day)
+            b_re, b_im = _potential(dbx, dby)
+            re = b_re - a_re + offset * (bx - ax)
+            im = b_im - a_im + offset * (by - ay)
+            if (dax >= 0.0) != (dbx >= 0.0):
+                height = day - dax * (dby - day) / (dbx - dax)
+                if not straight:
                     height = crossing[i, j] - poles[j].imag
                 jump = math.pi * (1.0 + 2.0 * math.floor(height / _TURN))
-                value += complex(0.0, -jump * side_b)
-            integrals[i, j] = value + offset * (b - a)
+                im += -jump if dbx >= 0.0 else jump
+            integrals[i, j] = complex(re, im)
     return integrals
 
 
@@ -129,5 +175,7 @@ def magnitude_sums(
     sums = np.zeros(tau.shape[0])
     for i in range(tau.shape[0]):
         for j in range(poles.shape[0]):
-            sums[i] += abs(strengths[j]) * abs(kernel(tau[i] - poles[j], offset)[0])
+            d = tau[i] - poles[j]
+            k_re, k_im, _, _, _, _ = _kernel(d.real, d.imag, offset)
+            sums[i] += abs(strengths[j]) * math.hypot(k_re, k_im)
     return sums

@@ -1,11 +1,10 @@
 """Kernel X(d) = 1/d: open water and straight bank."""
 
-import math
-
 import numpy as np
 from numba import njit
 
 from forebay.flow.arrays import ComplexArray, FloatArray
+from forebay.flow.kernels.elementary import angle, logarithm
 
 _BLOCK = 64
 """Points in one block: 64 doubles a column stay in the first-level cache."""
@@ -100,7 +99,7 @@ def path_integrals(start: ComplexArray, end: ComplexArray, poles: ComplexArray) 
     """Integrals of X along straight chords: log((end - p)/(start - p)).
 
     The argument is the exact angle that the chord subtends at the pole, in (-pi, pi].
-    Returns shape (n, m) [-]; not finite if a chord ends on a pole.
+    Returns shape (n, m) [-]; huge or nan if a chord ends on a pole.
     """
     integrals = np.empty((start.shape[0], poles.shape[0]), np.complex128)
     for i in range(start.shape[0]):
@@ -109,9 +108,8 @@ def path_integrals(start: ComplexArray, end: ComplexArray, poles: ComplexArray) 
             ay = start[i].imag - poles[j].imag
             bx = end[i].real - poles[j].real
             by = end[i].imag - poles[j].imag
-            modulus = 0.5 * math.log((bx * bx + by * by) / (ax * ax + ay * ay))
-            angle = math.atan2(ax * by - ay * bx, ax * bx + ay * by)
-            integrals[i, j] = complex(modulus, angle)
+            modulus = 0.5 * logarithm((bx * bx + by * by) / (ax * ax + ay * ay))
+            integrals[i, j] = complex(modulus, angle(ax * by - ay * bx, ax * bx + ay * by))
     return integrals
 
 
