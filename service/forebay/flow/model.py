@@ -33,6 +33,7 @@ from forebay.flow.layout import (
     Vortex,
     outflow,
 )
+from forebay.flow.maps import LogarithmMap
 from forebay.flow.piers import solve_piers
 from forebay.flow.placement import TOUCHING, check_layout, scale_of
 from forebay.flow.poles import PoleField
@@ -41,6 +42,8 @@ from forebay.flow.terms import Jet, Term
 
 AMBIENT = "ambient"
 """Owner of everything that is there without the elements."""
+_CENTRE = 1e-8
+"""A core's centre is looked at this part of its radius away, where its point vortex is finite [-]."""
 
 
 @dataclass(frozen=True)
@@ -95,24 +98,28 @@ class FlowModel:
     def _moved(self, z: ComplexArray) -> ComplexArray:
         """Points at a corner's vertex or a core's centre moved to where every part is finite."""
         at = np.array(z, dtype=np.complex128)
-        if not self.frame.map.affine:
-            first, second = self.frame.walls
-            inward = first.direction - second.direction
-            inward = inward / abs(inward) if abs(inward) > TOUCHING else 1j * first.direction
-            at = np.where(
-                np.abs(at - first.point) < 1e-9 * self.scale, first.point + 1e-9 * self.scale * inward, at
-            )
+        if self._corner:
+            beside = TOUCHING * self.scale * self._corner.along * np.exp(0.5j * self._corner.angle)
+            at = np.where(self._at_vertex(at), self._corner.vertex + beside, at)
         for vortex in self.cores:
-            reach = 1e-8 * vortex.core.radius
+            reach = _CENTRE * vortex.core.radius
             at = np.where(np.abs(at - vortex.at) < reach, vortex.at + reach, at)
         return np.asarray(at, dtype=np.complex128)
 
+    @property
+    def _corner(self) -> LogarithmMap | None:
+        return self.frame.map if isinstance(self.frame.map, LogarithmMap) else None
+
+    def _at_vertex(self, z: ComplexArray) -> BoolArray:
+        if not self._corner:
+            return np.zeros(np.shape(z), dtype=np.bool_)
+        return np.abs(np.asarray(z) - self._corner.vertex) < TOUCHING * self.scale
+
     def _still_at_vertex(self, z: ComplexArray, velocity: ComplexArray) -> ComplexArray:
         """At the vertex of a corner below 180 degrees the water stands still."""
-        if self.frame.map.affine or self.layout.shore.interior_angle >= np.pi:  # type: ignore[union-attr]
+        if not self._corner or self._corner.angle >= np.pi:
             return velocity
-        at_vertex = np.abs(np.asarray(z) - self.frame.walls[0].point) < 1e-9 * self.scale
-        return np.where(at_vertex, 0.0, velocity)
+        return np.where(self._at_vertex(z), 0.0, velocity)
 
     def potential(self, z: ComplexArray) -> ComplexArray:
         """Complex potential phi + i psi [m2/s] with principal branches: it jumps across cuts.
@@ -190,8 +197,7 @@ class FlowModel:
         reach = TOUCHING * self.scale
         with np.errstate(invalid="ignore"):
             inside = self.frame.wet(self.frame.map.forward(at), reach * np.abs(self.frame.map.slope(at)))
-        if not self.frame.map.affine:
-            inside = inside | (np.abs(at - self.frame.walls[0].point) < reach)
+        inside = inside | self._at_vertex(at)
         for pier in self.piers:
             inside = inside & (np.abs(at - pier.at) >= pier.radius - reach)
         return np.asarray(inside, dtype=np.bool_)
@@ -215,8 +221,8 @@ class FlowModel:
         cored = {vortex.owner for vortex in self.cores}
         places = [complex(np.nan, np.nan) if s.owner in cored else s.at for s in self.singularities]
         places += [end for line in self.lines for end in (line.start, line.end)]
-        if not self.frame.map.affine and self.layout.shore.interior_angle > np.pi:  # type: ignore[union-attr]
-            places.append(self.frame.walls[0].point)
+        if self._corner and self._corner.angle > np.pi:
+            places.append(self._corner.vertex)
         return np.array(places, dtype=np.complex128)
 
     @cached_property
@@ -321,8 +327,6 @@ def _terms(layout: Layout, frame: Frame, scale: float) -> tuple[Term, ...]:
     for k, element in enumerate(layout.elements):
         match element:
             case LineSource() | LineSink():
-                from forebay.flow.lines import line_term
-
                 start, end = (
                     onto_wall(at, frame.walls, TOUCHING * scale) for at in (element.start, element.end)
                 )
