@@ -96,6 +96,9 @@ def test_record_is_complete(criterion: Criterion):
     assert criterion.applies_to
     assert criterion.definition == DEFINITIONS[criterion.quantity]
     assert criterion.limit_si > 0.0
+    assert criterion.limit_own == pytest.approx(
+        criterion.limit_si / float(SI_FACTORS[criterion.unit][1]), rel=1e-15
+    )
     assert criterion.unit in SI_FACTORS
     assert criterion.year is None or str(criterion.year) in criterion.source
     assert criterion.source.startswith(criterion.body)

@@ -5,7 +5,7 @@ from enum import StrEnum
 
 import numpy as np
 
-from forebay.flow.arrays import BoolArray, FloatArray
+from forebay.flow.arrays import FloatArray
 from forebay.flow.gradient_fit import GradientFit, StandardErrors
 from forebay.flow.principal import principal_axes
 from forebay.flow.stress import (
@@ -109,21 +109,25 @@ class StrainedPlace:
     standard_errors: StandardErrors | None = None
 
 
+NO_PLANES = Tractions(np.empty((0, 3)), np.empty(0), np.empty(0))
+"""Tractions of a state of which none were asked for."""
+
+
 @dataclass(frozen=True, slots=True)
 class _Columns:
-    """Values of n places, nan where there are none."""
+    """Values of n places, nan where there are none; scalars as lists, which are taken apart faster."""
 
     viscous: FloatArray
     stress: FloatArray
     principal: FloatArray
     directions: FloatArray
-    plane: Circles
-    three: Circles
-    shear: FloatArray
-    dilatation: FloatArray
-    dissipation: FloatArray
-    gradient: FloatArray
-    sound: BoolArray
+    plane: list[Circle]
+    three: list[tuple[Circle, Circle, Circle]]
+    shear: list[float]
+    dilatation: list[float]
+    dissipation: list[float]
+    gradient: list[float]
+    sound: list[bool]
 
 
 def stress_states(fluid: Fluid, places: tuple[StrainedPlace, ...]) -> tuple[StressState, ...]:
@@ -162,30 +166,35 @@ def _columns(fluid: Fluid, rates: FloatArray, pressures: FloatArray) -> _Columns
     viscous[~sound], dissipated[~sound] = np.nan, np.nan
     axes = principal_axes(np.where(sound[:, None, None], viscous, 0.0))
     own = np.where(sound[:, None], axes.values, np.nan)
-    three = three_circles(own)
-    plane = plane_circle(viscous)
+    plane, three = plane_circle(viscous), three_circles(own)
+    first, second, third = (_circles(three, pressures, k) for k in range(3))
     return _Columns(
         viscous=viscous,
         stress=viscous - pressures[:, None, None] * np.eye(3),
         principal=own - pressures[:, None],
         directions=np.where(sound[:, None, None], axes.directions, np.nan),
-        plane=Circles(plane.centre - pressures, plane.radius),
-        three=Circles(three.centre - pressures[:, None], three.radius),
-        shear=max_shear(own),
-        dilatation=dilatation(rates),
-        dissipation=dissipated,
-        gradient=mean_velocity_gradient(dissipated, fluid),
-        sound=sound,
+        plane=_circles(plane, pressures),
+        three=list(zip(first, second, third, strict=True)),
+        shear=max_shear(own).tolist(),
+        dilatation=np.where(sound, dilatation(rates), np.nan).tolist(),
+        dissipation=dissipated.tolist(),
+        gradient=mean_velocity_gradient(dissipated, fluid).tolist(),
+        sound=sound.tolist(),
     )
+
+
+def _circles(circles: Circles, pressures: FloatArray, k: int | None = None) -> list[Circle]:
+    """Circles of n places, or the k-th of their three, shifted by the pressure."""
+    column = slice(None) if k is None else (slice(None), k)
+    centre, radius = circles.centre[column] - pressures, circles.radius[column]
+    return [Circle(c, r) for c, r in zip(centre.tolist(), radius.tolist(), strict=True)]
 
 
 def _state(place: StrainedPlace, columns: _Columns, n: int) -> StressState:
-    sound = bool(columns.sound[n])
+    sound, normals = columns.sound[n], place.normals
     status = (
         StressStatus.OUT_OF_RANGE if place.status is StressStatus.COMPUTED and not sound else place.status
     )
-    normals = np.empty((0, 3)) if place.normals is None else place.normals
-    circles = [Circle(float(columns.three.centre[n, k]), float(columns.three.radius[n, k])) for k in range(3)]
     return StressState(
         name=place.name,
         status=status,
@@ -193,17 +202,17 @@ def _state(place: StrainedPlace, columns: _Columns, n: int) -> StressState:
         at=place.at,
         strain_rate=place.strain_rate if sound else np.full((3, 3), np.nan),
         vorticity=place.vorticity if sound else np.full(3, np.nan),
-        dilatation=float(columns.dilatation[n]) if sound else float("nan"),
+        dilatation=columns.dilatation[n],
         viscous_stress=columns.viscous[n],
         stress=columns.stress[n],
         principal_stresses=columns.principal[n],
         principal_directions=columns.directions[n],
-        max_shear=float(columns.shear[n]),
-        mohr_circle=Circle(float(columns.plane.centre[n]), float(columns.plane.radius[n])),
-        mohr_circles=(circles[0], circles[1], circles[2]),
-        dissipation=float(columns.dissipation[n]),
-        mean_velocity_gradient=float(columns.gradient[n]),
-        tractions=tractions(columns.viscous[n], place.pressure, normals),
+        max_shear=columns.shear[n],
+        mohr_circle=columns.plane[n],
+        mohr_circles=columns.three[n],
+        dissipation=columns.dissipation[n],
+        mean_velocity_gradient=columns.gradient[n],
+        tractions=NO_PLANES if normals is None else tractions(columns.viscous[n], place.pressure, normals),
         fit=place.fit if sound else None,
         standard_errors=place.standard_errors if sound else None,
     )
