@@ -50,7 +50,7 @@ class _Document:
 SLOT_HALF_FOOT = (Quantity.MAX_THROUGH_SLOT, "0.5", "ft/s")
 
 
-def _epa() -> Iterator[Criterion]:
+def _epa_new() -> Iterator[Criterion]:
     new = _Document("US EPA", "40 CFR 125.84", 2001, "United States")
     large = "new cooling-water intakes of 10 MGD and more"
     yield new.limit("epa-new-10mgd-through-slot", SLOT_HALF_FOOT, large, READ, note="(b)(2), design velocity")
@@ -76,6 +76,9 @@ def _epa() -> Iterator[Criterion]:
         READ,
         note="(b)(3), volume over one tide cycle as a share of the water in one tidal excursion",
     )
+
+
+def _epa_existing() -> Iterator[Criterion]:
     existing = _Document("US EPA", "40 CFR 125.94(c)", 2014, "United States")
     facilities = "existing facilities of 2 MGD and more"
     quoted = "seen as mirrored by a state rule; clause numbers from memory"
@@ -294,7 +297,8 @@ def _elsewhere() -> Iterator[Criterion]:
 
 
 CRITERIA: tuple[Criterion, ...] = (
-    *_epa(),
+    *_epa_new(),
+    *_epa_existing(),
     *_nmfs_southwest(),
     *_nmfs_west_coast(),
     *_california(),
