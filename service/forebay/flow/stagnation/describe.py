@@ -1,0 +1,133 @@
+"""From a proven zero to what an engineer reads: kind, wall, strain rate, direction of outflow."""
+
+from dataclasses import dataclass
+
+import numpy as np
+
+from forebay.flow.model import FlowModel
+from forebay.flow.placement import TOUCHING
+from forebay.flow.stagnation.result import WATER, StagnationKind, StagnationPoint
+from forebay.flow.terms import Jet
+
+VERTEX = "vertex"
+"""Name of the corner's vertex as a wall."""
+
+EPS = float(np.finfo(np.float64).eps)
+
+
+@dataclass(frozen=True, slots=True)
+class Zero:
+    """A zero of the velocity whose existence and surroundings are proven.
+
+    at : x + iy [m];  on : wall, pier or "water";  radius : of inclusion [m];  multiplicity : of the zero
+    weight : what it adds to the count on the mirror-closed water
+    is_artefact : it belongs to the end of a line element
+    """
+
+    at: complex
+    on: str
+    radius: float
+    multiplicity: int
+    weight: int
+    is_artefact: bool = False
+
+
+def wall_name(model: FlowModel, at: complex) -> str:
+    """Name of the straight wall at a place, of both walls in a corner: "right bank/closed end"; else "water"."""
+    reach = TOUCHING * model.scale
+    names = [wall.name for wall in model.walls if float(wall.distance(np.asarray(at))) <= reach]
+    if len(names) > 1 and "first bank" in names:
+        return VERTEX
+    return "/".join(names) if names else WATER
+
+
+def describe(model: FlowModel, zero: Zero) -> StagnationPoint:
+    """Stagnation point at a proven zero."""
+    jet = model.jet(np.array([zero.at]))
+    speed = float(np.abs(model.velocity(np.array([zero.at])))[0])
+    slope, skew = complex(jet.slope[0]), complex(jet.skew[0])
+    strain = abs(slope)
+    if zero.on == VERTEX:
+        strain, speed = vertex_strain(model, jet), 0.0
+    kind = _kind(zero, slope, skew)
+    outflow = np.nan
+    if kind in (StagnationKind.SADDLE, StagnationKind.WALL):
+        outflow = _outflow(model, zero, slope, skew)
+    return StagnationPoint(
+        at=zero.at,
+        kind=kind,
+        on=zero.on,
+        residual_speed=speed,
+        strain_rate=strain,
+        outflow_deg=float(outflow),
+        stream_function=float(model.potential(np.array([zero.at])).imag[0]),
+        inclusion_radius=zero.radius,
+        multiplicity=zero.multiplicity,
+        is_artefact=zero.is_artefact,
+    )
+
+
+def _kind(zero: Zero, slope: complex, skew: complex) -> StagnationKind:
+    if zero.multiplicity > 1:
+        return StagnationKind.DEGENERATE
+    if zero.on != WATER:
+        return StagnationKind.WALL
+    return StagnationKind.SADDLE if abs(slope) > abs(skew) else StagnationKind.CENTRE
+
+
+def vertex_strain(model: FlowModel, jet: Jet) -> float:
+    """|dW/dz| at the vertex, W ~ (z - vertex)^(k pi/alpha - 1): finite at 90 degrees, 0 below, unbounded above."""
+    near_vertex = abs(complex(jet.slope[0]))
+    exponent = np.pi / _angle(model)
+    if exponent > 2.0 + 1e-9:
+        return 0.0
+    return near_vertex if exponent > 2.0 - 1e-9 else float(np.nan)
+
+
+def _angle(model: FlowModel) -> float:
+    first, second = model.walls
+    turn = float(np.angle(-second.direction / first.direction))
+    return turn if turn > 0.0 else turn + 2.0 * np.pi
+
+
+def _outflow(model: FlowModel, zero: Zero, slope: complex, skew: complex) -> float:
+    """Angle of the eigenvector of the velocity gradient along which water leaves [deg].
+
+    With W = a d + b conj(d) and b imaginary, velocity along d = exp(i t) is real multiple of d where
+    |a| sin(arg a + 2 t) = Im b.
+    """
+    if zero.on == VERTEX:
+        return _vertex_outflow(model)
+    sine = np.clip(skew.imag / abs(slope), -1.0, 1.0)
+    angle = 0.5 * (np.arcsin(sine) - np.angle(slope))
+    forward = complex(np.exp(1j * angle))
+    turned = _points_into_land(model, zero, forward)
+    degrees = float(np.degrees(angle)) % 180.0
+    if turned is None:
+        return degrees if degrees < 180.0 else 0.0
+    return float(np.degrees(np.angle(-forward if turned else forward))) % 360.0
+
+
+def _points_into_land(model: FlowModel, zero: Zero, direction: complex) -> bool | None:
+    """Whether a direction points into the wall; None in the water and where it runs along the wall."""
+    for pier in model.piers:
+        if pier.name == zero.on:
+            inward = ((zero.at - pier.at) / pier.radius * direction.conjugate()).real
+            return None if abs(inward) < 0.5 else bool(inward < 0.0)
+    names = zero.on.split("/")
+    heads = [(direction / wall.direction).imag for wall in model.walls if wall.name in names]
+    leaving = [head for head in heads if abs(head) > 0.5]
+    return bool(leaving[0] < 0.0) if leaving else None
+
+
+def _vertex_outflow(model: FlowModel) -> float:
+    """Bank of a corner along which water leaves the vertex [deg]; the bisector if it comes along both."""
+    first, second = model.walls
+    reach = 1e-6 * model.scale
+    away = [first.direction, -second.direction]
+    for direction in away:
+        along = model.velocity(np.array([first.point + reach * direction]))[0] * direction
+        if along.real > 0.0:
+            return float(np.degrees(np.angle(direction))) % 360.0
+    bisector = first.direction * np.exp(0.5j * _angle(model))
+    return float(np.degrees(np.angle(bisector))) % 360.0
