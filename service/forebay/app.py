@@ -19,6 +19,7 @@ from forebay.api.metrics import Measured, Metrics
 from forebay.api.openapi import build_document
 from forebay.api.problems import from_status
 from forebay.api.readiness import Readiness
+from forebay.api.routers.documents import page_router
 from forebay.api.routers.registry import ROUTERS
 from forebay.api.validation import problem_of_query
 from forebay.api.work import Workshop
@@ -39,8 +40,9 @@ class Application(FastAPI):
         return self.document
 
 
-def create_app(settings: Settings) -> FastAPI:
-    """Application under the given settings; its own documents, counters and workers."""
+def create_app(settings: Settings | None = None) -> Application:
+    """Application under the given settings, by default those of the environment."""
+    settings = Settings.from_environment() if settings is None else settings
     limits, metrics = Limits.of(settings), Metrics()
     app = Application(
         title="Forebay",
@@ -55,6 +57,8 @@ def create_app(settings: Settings) -> FastAPI:
     )
     for router in ROUTERS:
         app.include_router(router)
+    if settings.docs:
+        app.include_router(page_router)
     app.state.limits, app.state.metrics, app.state.settings = limits, metrics, settings
     app.state.workshop = Workshop(limits)
     app.state.readiness = Readiness(app.state.workshop)
@@ -78,9 +82,9 @@ async def _lifespan(app: FastAPI) -> AsyncIterator[None]:
         app.state.workshop.close()
 
 
-def _raise_status(_request: Request, error: Any) -> Response:  # noqa: ANN401  (the framework's own signature)
+async def _raise_status(_request: Request, error: Any) -> Response:  # noqa: ANN401  (the framework's own signature)
     raise from_status(error.status_code, error.headers)
 
 
-def _raise_query(_request: Request, error: Any) -> Response:  # noqa: ANN401  (the framework's own signature)
+async def _raise_query(_request: Request, error: Any) -> Response:  # noqa: ANN401  (the framework's own signature)
     raise problem_of_query(error.errors())

@@ -8,7 +8,7 @@ from forebay.api.media import CSV
 
 
 def encode_csv(document: dict[str, Any]) -> tuple[bytes, dict[str, str]]:
-    """Table of an envelope's one-dimensional columns with a last column `status`, and headers that say the rest.
+    """Table of an envelope's one-dimensional columns and a column `status`; headers say the rest.
 
     An empty cell is a value that does not exist; `status` then says why. Units and warning codes do not fit
     into a table, so they travel in the headers Forebay-Units and Forebay-Warnings.

@@ -16,8 +16,12 @@ from forebay.api.schemas.common import Answer, ComputeRequest
 from forebay.api.units import UnitSystem
 from forebay.api.warnings import Notice, written_warnings
 from forebay.flow.layout import Layout
+from forebay.trade.applicability.site import SiteData
 
 Json = dict[str, Any]
+
+Site = tuple[Layout, SiteData | None]
+"""A layout, and what else is known of the site."""
 
 Notices = tuple[Notice, ...]
 
@@ -65,7 +69,7 @@ class Presenter:
         self.units: dict[str, str] = {}
 
     def present(self, value: Any, name: str = "") -> Any:  # noqa: ANN401
-        """Value of the field `name` in the client's units: arrays stay arrays, NaN becomes null on encoding."""
+        """Value of the field `name` in the client's units; arrays stay arrays, NaN is null once encoded."""
         if name in self._si_units:
             self.units[name] = self._system.code(self._si_units[name])
         match value:
@@ -79,10 +83,8 @@ class Presenter:
                 return self._array(value, name)
             case complex():
                 return [self._number(value.real, name), self._number(value.imag, name)]
-            case int() | np.integer():
-                return int(value)
             case _:
-                return self._number(float(value), name)
+                return int(value) if isinstance(value, int | np.integer) else self._number(float(value), name)
 
     def _number(self, value: float, name: str) -> float | None:
         return round_number(self._system.write(value, self._si_units[name]), self._digits)
@@ -96,11 +98,10 @@ class Presenter:
         return round_array(written, self._digits)
 
 
-def digest(layout: Layout) -> str:
-    """Digest of a layout in SI: the same for every way of writing the same layout in one unit system."""
-    return (
-        "sha256:" + hashlib.sha256(orjson.dumps(_canonical(layout), option=orjson.OPT_SORT_KEYS)).hexdigest()
-    )
+def digest(site: Site) -> str:
+    """Digest of a site in SI: the same for every way of writing the same site in one unit system."""
+    text = orjson.dumps(_canonical(site), option=orjson.OPT_SORT_KEYS)
+    return "sha256:" + hashlib.sha256(text).hexdigest()
 
 
 def _canonical(value: Any) -> Any:  # noqa: ANN401
@@ -108,6 +109,8 @@ def _canonical(value: Any) -> Any:  # noqa: ANN401
         fields = {field.name: _canonical(getattr(value, field.name)) for field in dataclasses.fields(value)}
         return {"kind": type(value).__name__, **fields}
     match value:
+        case Mapping():
+            return {str(key): _canonical(item) for key, item in value.items()}
         case tuple():
             return [_canonical(item) for item in value]
         case complex():
@@ -118,10 +121,10 @@ def _canonical(value: Any) -> Any:  # noqa: ANN401
             return value
 
 
-def provenance(layout: Layout | None) -> Json:
+def provenance(site: Site | None) -> Json:
     """Which service and version computed the answer, and of which layout."""
     facts = {"service": "forebay", "version": __version__}
-    return facts if layout is None else {**facts, "layout_digest": digest(layout)}
+    return facts if site is None else {**facts, "layout_digest": digest(site)}
 
 
 def document(
@@ -129,7 +132,7 @@ def document(
     result: Json,
     *,
     request: Written | ComputeRequest,
-    layout: Layout | None = None,
+    site: Site | None = None,
     notices: Notices = (),
 ) -> Json:
     """The whole envelope of a result in SI, in the units and digits that the request asks for."""
@@ -139,7 +142,7 @@ def document(
         "result": presented,
         "units": dict(sorted(presenter.units.items())),
         "warnings": written_warnings(notices, request.digits),
-        "provenance": provenance(layout),
+        "provenance": provenance(site),
     }
 
 

@@ -20,3 +20,8 @@ def request_example(operation_id: str) -> dict[str, Any]:
     path = PACKAGE / "examples" / f"{operation_id}.json"
     request: dict[str, Any] = json.loads(path.read_text(encoding="utf-8"))
     return request | {"layout": example_layout()} if request.get("layout") == "site" else request
+
+
+def file_name(path: str) -> str:
+    """Name of the file that holds the example of a route: `/v1/field/sample` is in `field-sample.json`."""
+    return "-".join(path.split("/")[2:]) + ".json"

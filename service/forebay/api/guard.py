@@ -1,4 +1,4 @@
-"""Guards round the application, pure ASGI: body limit, request ids, security headers, HEAD, last errors, CORS."""
+"""Guards round the application, pure ASGI: body limit, request ids, standing headers, last errors, CORS."""
 
 import logging
 import re
@@ -55,6 +55,7 @@ class RequestIds:
         self.app = app
 
     async def __call__(self, scope: Scope, receive: Receive, send: Send) -> None:
+        """Answer one request with its id and standing headers."""
         if scope["type"] != "http":
             await self.app(scope, receive, send)
             return
@@ -85,6 +86,7 @@ class LastErrors:
         self.app = app
 
     async def __call__(self, scope: Scope, receive: Receive, send: Send) -> None:
+        """Answer one request, whatever happens."""
         started = False
 
         async def watched(message: Message) -> None:
@@ -121,6 +123,7 @@ class BodyLimit:
         self.limit = limit
 
     async def __call__(self, scope: Scope, receive: Receive, send: Send) -> None:
+        """Answer one request whose body stays within the limit."""
         if scope["type"] != "http":
             await self.app(scope, receive, send)
             return
@@ -144,7 +147,7 @@ class BodyLimit:
             "body-too-large",
             f"The body exceeds {self.limit} bytes",
             headers={"Connection": "close"},
-            limit=self.limit,
+            facts={"limit": self.limit},
         )
 
 
@@ -156,6 +159,7 @@ class CrossOrigin:
         self.origins = frozenset(origins)
 
     async def __call__(self, scope: Scope, receive: Receive, send: Send) -> None:
+        """Answer one request, readable for its origin if allowed."""
         headers = Headers(scope=scope) if scope["type"] == "http" else Headers()
         origin = headers.get("origin")
         allowed = origin is not None and ("*" in self.origins or origin in self.origins)

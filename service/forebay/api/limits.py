@@ -12,6 +12,7 @@ class Price(NamedTuple):
     points : points at which the field is wanted
     elements : elements and structures of the layout
     values : numbers in the answer
+    effort : further work, counted as the pairs of element and point that take as long
     lengthy : whether the work may last seconds whatever its size
     path : where the request says how many points it wants
     """
@@ -19,6 +20,7 @@ class Price(NamedTuple):
     points: int = 0
     elements: int = 1
     values: int = 0
+    effort: int = 0
     lengthy: bool = False
     path: Path = ()
 
@@ -26,6 +28,11 @@ class Price(NamedTuple):
     def pairs(self) -> int:
         """Evaluations of one element at one point."""
         return self.points * max(self.elements, 1)
+
+    @property
+    def work(self) -> int:
+        """All work in pairs; a number in the answer takes as long as ten of them."""
+        return self.pairs + 10 * self.values + self.effort
 
 
 class Limits(NamedTuple):

@@ -22,7 +22,7 @@ def negotiate(accept: str | None, offered: tuple[str, ...]) -> str:
         raise Problem(
             "not-acceptable",
             "This route answers none of the media types in Accept",
-            offered=list(offered),
+            facts={"offered": list(offered)},
         )
     return best
 

@@ -39,6 +39,7 @@ class Measured:
         self.metrics = metrics
 
     async def __call__(self, scope: Scope, receive: Receive, send: Send) -> None:
+        """Answer one request and count it."""
         if scope["type"] != "http":
             await self.app(scope, receive, send)
             return

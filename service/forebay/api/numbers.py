@@ -21,14 +21,20 @@ def round_number(value: float, digits: int) -> float | None:
     """Round to `digits` significant digits; None for NaN and infinities."""
     if not math.isfinite(value):
         return None
-    return value if digits >= EVERY_DIGIT else float(f"{value:.{digits}g}")
+    return value if digits >= EVERY_DIGIT else _round_text(value, digits)
+
+
+def _round_text(value: float, digits: int) -> float:
+    """Round through text; the largest doubles, which would round up to infinity, stay as they are."""
+    rounded = float(f"{value:.{digits}g}")
+    return rounded if math.isfinite(rounded) else value
 
 
 def round_array(values: FloatArray, digits: int) -> FloatArray:
     """Round every finite value to `digits` significant digits; NaN stays, infinities become NaN.
 
-    Powers of ten up to 1e22 are exact, so that n / 10^k is the double nearest to the decimal number and prints
-    short; the rare values beyond are rounded through text.
+    Powers of ten up to 1e22 are exact, so that n / 10^k is the double nearest to the decimal number and
+    prints short; the rare values beyond are rounded through text.
     """
     flat = np.array(values, dtype=np.float64).ravel()
     if digits < EVERY_DIGIT:
@@ -45,5 +51,5 @@ def _round_block(block: FloatArray, digits: int) -> None:
         scale = 10.0 ** np.where(usual, np.abs(power), 0.0)
         rounded = np.where(power >= 0, np.rint(block * scale) / scale, np.rint(block / scale) * scale)
     far = ~usual & np.isfinite(block) & (block != 0.0)
-    rounded[far] = [float(f"{value:.{digits}g}") for value in block[far]]
+    rounded[far] = [_round_text(value, digits) for value in block[far].tolist()]
     np.copyto(block, rounded, where=usual | far)

@@ -15,17 +15,19 @@ from forebay.api.schemas.catalogues import ProblemDocument, ProblemExplanation, 
 REFERENCE = "#/components/schemas/{model}"
 
 DESCRIPTION = """\
-Forebay screens sites for water intakes and outfalls by depth-mean plane potential flow: where each intake's water
-comes from, how much outfall water comes back, what the screens see, where the water stands still.
+Forebay screens sites for water intakes and outfalls by depth-mean plane potential flow: where each
+intake's water comes from, how much outfall water comes back, what the screens see, where the water stands
+still.
 
-**Screening level.** The flow is steady, inviscid and uniform over the depth. Answers are not for the safety of
-divers, swimmers or craft. Regulators' criteria and licensed engineers decide; a warning in an answer says where its
-numbers should not be trusted.
+**Screening level.** The flow is steady, inviscid and uniform over the depth. Answers are not for the safety
+of divers, swimmers or craft. Regulators' criteria and licensed engineers decide; a warning in an answer says
+where its numbers should not be trusted.
 
-Conventions: x, y in a local plan grid; angles anticlockwise from +x; circulation anticlockwise positive; flux positive
-towards the right of the direction of travel; stress positive in tension. `"unit_system": "us"` reads and answers in
-ft, ft/s, ft3/s, lbf/ft2, degF; `units` in every answer names the unit of every number in UCUM codes.
-A value that does not exist is `null` with a status. Errors are problem details (RFC 9457) whose `type` can be read.
+Conventions: x, y in a local plan grid; angles anticlockwise from +x; circulation anticlockwise positive; flux
+positive towards the right of the direction of travel; stress positive in tension. The schemas give SI units;
+`"unit_system": "us"` reads and answers in ft, ft/s, ft3/s, lbf/ft2, degF. `units` in every answer names the
+unit of every number in UCUM codes. A value that does not exist is `null` with a status. Errors are problem
+details (RFC 9457) whose `type` can be read.
 """
 
 

@@ -21,6 +21,7 @@ from forebay.api.validation import problem_of
 from forebay.api.warnings import Notice
 from forebay.flow.errors import FlowError
 from forebay.flow.layout import Layout
+from forebay.trade.applicability.site import SiteData
 
 R = TypeVar("R", bound=ComputeRequest)
 
@@ -30,15 +31,21 @@ class Outcome:
     """What a computation hands back.
 
     result : fields of the answer in SI; complex values are positions
-    layout : the layout it was computed for
+    layout : the layout it was computed for;  data : what else is known of the site
     warnings : where the numbers should not be trusted
     picture : encoded picture instead of a result
     """
 
     result: dict[str, Any] = field(default_factory=dict)
     layout: Layout | None = None
+    data: SiteData | None = None
     warnings: tuple[Notice, ...] = ()
     picture: bytes | None = None
+
+    @property
+    def site(self) -> tuple[Layout, SiteData | None] | None:
+        """What the digest is of."""
+        return None if self.layout is None else (self.layout, self.data)
 
 
 @dataclass(frozen=True)
@@ -76,13 +83,13 @@ class Deferred(NamedTuple):
 def perform(
     operation: Operation[Any], body: bytes, media_type: str, *, limits: Limits, allowance: int | None = None
 ) -> Reply | Problem | Deferred:
-    """Answer of a body, the problem that stands in its way, or Deferred if it exceeds `allowance` pairs."""
+    """Answer of a body, the problem that stands in its way, or Deferred if its work exceeds `allowance`."""
     started = perf_counter()
     try:
         request = operation.request.model_validate_json(body)
         price = operation.price(request)
         limits.check(price)
-        if allowance is not None and (price.lengthy or price.pairs > allowance):
+        if allowance is not None and (price.lengthy or price.work > allowance):
             return Deferred()
         parsed = perf_counter()
         outcome = operation.compute(request, media_type)
@@ -104,7 +111,7 @@ def _encode(operation: Operation[Any], request: ComputeRequest, outcome: Outcome
     if operation.result is None:
         raise TypeError(f"{operation.operation_id} gave neither a result nor a picture")
     document = envelope.document(
-        operation.result, outcome.result, request=request, layout=outcome.layout, notices=outcome.warnings
+        operation.result, outcome.result, request=request, site=outcome.site, notices=outcome.warnings
     )
     if media_type == CSV:
         return Reply(CSV_SENT, *encode_csv(document))

@@ -1,7 +1,11 @@
 """Problems (RFC 9457): every way a request can fail, its status, and its body."""
 
+from collections.abc import Mapping
 from http import HTTPStatus
+from types import MappingProxyType
 from typing import Any, NamedTuple
+
+from typing_extensions import override
 
 from forebay.flow.errors import FlowError, Path
 
@@ -97,6 +101,9 @@ def catalogue() -> dict[str, ProblemKind]:
     return HTTP_PROBLEMS | flow
 
 
+NOTHING: Mapping[str, Any] = MappingProxyType({})
+
+
 class Problem(Exception):  # noqa: N818  (RFC 9457's own word)
     """A problem on its way to the client."""
 
@@ -106,16 +113,17 @@ class Problem(Exception):  # noqa: N818  (RFC 9457's own word)
         detail: str,
         *,
         errors: tuple[dict[str, str], ...] = (),
-        headers: dict[str, str] | None = None,
-        **facts: Any,  # noqa: ANN401
+        headers: Mapping[str, str] = NOTHING,
+        facts: Mapping[str, Any] = NOTHING,
     ) -> None:
         super().__init__(code, detail)
         self.code = code
         self.detail = detail
         self.errors = errors
-        self.headers = headers or {}
-        self.facts = facts
+        self.headers = dict(headers)
+        self.facts = dict(facts)
 
+    @override
     def __reduce__(self) -> tuple[Any, ...]:
         return _rebuild, (self.code, self.detail, self.errors, self.headers, self.facts)
 
@@ -146,7 +154,7 @@ def _rebuild(
     headers: dict[str, str],
     facts: dict[str, Any],
 ) -> Problem:
-    return Problem(code, detail, errors=errors, headers=headers, **facts)
+    return Problem(code, detail, errors=errors, headers=headers, facts=facts)
 
 
 def pointer(path: Path) -> str:
@@ -165,13 +173,21 @@ def from_flow(error: FlowError) -> Problem:
     steps = tuple(API_NAMES.get(step, step) if isinstance(step, str) else step for step in error.path)
     path = ("layout", *steps) if error.in_layout else steps
     errors = ({"pointer": pointer(path), "detail": error.detail},) if path else ()
-    return Problem(error.code, error.detail, errors=errors, **error.facts)
+    return Problem(error.code, error.detail, errors=errors, facts=error.facts)
 
 
-def from_status(status: int, headers: dict[str, str] | None = None) -> Problem:
+def from_status(status: int, headers: Mapping[str, str] | None = None) -> Problem:
     """Problem of a bare HTTP status that the router raised."""
     codes = {404: "not-found", 405: "method-not-allowed"}
     code = codes.get(
         status, "malformed-json" if status < HTTPStatus.INTERNAL_SERVER_ERROR else "internal-error"
     )
-    return Problem(code, HTTP_PROBLEMS[code].explanation, headers=headers)
+    return Problem(code, HTTP_PROBLEMS[code].explanation, headers=_with_head(headers or NOTHING))
+
+
+def _with_head(headers: Mapping[str, str]) -> dict[str, str]:
+    """Headers whose Allow lists HEAD beside GET, which the guards answer for every GET route."""
+    methods = {method.strip() for method in headers.get("Allow", "").split(",")} - {""}
+    if "GET" in methods:
+        methods.add("HEAD")
+    return {**headers, "Allow": ", ".join(sorted(methods))} if methods else dict(headers)

@@ -3,12 +3,13 @@
 import asyncio
 import logging
 from functools import partial
+from typing import Any
 
 import orjson
 
 from forebay.api.examples import request_example
 from forebay.api.media import JSON
-from forebay.api.operation import Reply, perform
+from forebay.api.operation import Operation, Reply, perform
 from forebay.api.routers.registry import OPERATIONS
 from forebay.api.work import Workshop
 
@@ -38,16 +39,19 @@ class Readiness:
     async def _prepare(self) -> None:
         try:
             for operation in OPERATIONS.values():
-                body = orjson.dumps(request_example(operation.operation_id))
-                media_type = operation.media_types[0]
-                reply = await self._workshop.in_process(operation.operation_id, body, media_type)
-                if JSON in operation.media_types:
-                    work = partial(perform, operation, body, media_type, limits=self._workshop.limits)
-                    await self._workshop.in_thread(work)
-                if not isinstance(reply, Reply):
-                    raise TypeError(f"the example of {operation.operation_id} is refused: {reply}")
+                await self._rehearse(operation)
         except Exception:
             self.detail = "Preparation failed; the log says why"
             LOG.exception("preparation failed")
             return
         self.is_ready = True
+
+    async def _rehearse(self, operation: Operation[Any]) -> None:
+        body = orjson.dumps(request_example(operation.operation_id))
+        media_type = operation.media_types[0]
+        reply = await self._workshop.in_process(operation.operation_id, body, media_type)
+        if JSON in operation.media_types:  # pictures are drawn in worker processes only
+            work = partial(perform, operation, body, media_type, limits=self._workshop.limits)
+            await self._workshop.in_thread(work)
+        if not isinstance(reply, Reply):
+            raise TypeError(f"the example of {operation.operation_id} is refused: {reply}")

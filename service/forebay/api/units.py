@@ -44,7 +44,7 @@ US_UNITS = {
 }
 """SI unit (UCUM) to its US counterpart."""
 
-SHARED_UNITS = frozenset({"1", "deg", "s", "1/s", "g/kg", "By"})
+SHARED_UNITS = frozenset({"1", "deg", "s", "1/s", "1/s2", "g/kg", "By", "{unit}", "a"})
 """Units that are the same in both systems."""
 
 

@@ -9,6 +9,9 @@ from pydantic_core import ErrorDetails, from_json
 from forebay.api.problems import MOST_ERRORS, Problem, pointer
 from forebay.flow.errors import Path
 
+MISSING = object()
+"""Stands for a member that a document does not have."""
+
 LONGEST_DETAIL = 300
 """Characters of one error's text."""
 
@@ -46,14 +49,21 @@ def locate(location: Path, document: Any) -> Path:  # noqa: ANN401
     here = document
     last = len(location) - 1
     for i, step in enumerate(location):
-        if (isinstance(here, dict) and step in here) or (
-            isinstance(here, list) and isinstance(step, int) and 0 <= step < len(here)
-        ):
-            here = here[step]
+        inner = _member(here, step)
+        if inner is not MISSING:
+            here = inner
             steps.append(step)
         elif i == last and isinstance(here, dict) and isinstance(step, str):
             steps.append(step)
     return tuple(steps)
+
+
+def _member(value: Any, step: str | int) -> Any:  # noqa: ANN401
+    if isinstance(value, dict) and isinstance(step, str):
+        return value.get(step, MISSING)
+    if isinstance(value, list) and isinstance(step, int) and 0 <= step < len(value):
+        return value[step]
+    return MISSING
 
 
 def _place(detail: ErrorDetails, document: Any) -> Path:  # noqa: ANN401

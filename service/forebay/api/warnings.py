@@ -48,7 +48,7 @@ class Notice(Protocol):
 
 
 def written_warnings(notices: Iterable[Notice], digits: int) -> list[dict[str, Any]]:
-    """Warnings of an answer; `pointer` leads into the request, value and limit stay in SI as the message says."""
+    """Warnings of an answer; `pointer` leads into the request, numbers are in SI as in the message."""
     return [
         {
             "code": notice.code,

@@ -17,14 +17,14 @@ from forebay.api.problems import Problem
 INLINE_BODY = 16 * 1024
 """Bytes of a body that is read and answered in the event loop, if its computation is short too."""
 
-INLINE_PAIRS = 20_000
-"""Pairs of element and point computed in the event loop: well under a millisecond."""
+INLINE_WORK = 100_000
+"""Work done in the event loop, in pairs of element and point: a millisecond."""
 
 THREAD_BODY = 1024 * 1024
 """Bytes of a body that is read in a thread."""
 
-THREAD_PAIRS = 5_000_000
-"""Pairs computed in a thread, which nothing can stop: a fraction of a second."""
+THREAD_WORK = 20_000_000
+"""Work done in a thread, which nothing can stop, in pairs: a fraction of a second."""
 
 THREADS = 4
 """Computations in threads at a time; the framework's own threads stay free."""
@@ -60,9 +60,9 @@ class Workshop:
         attempt = partial(perform, operation, body, media_type, limits=self.limits)
         reply: Reply | Problem | Deferred = Deferred()
         if len(body) <= INLINE_BODY:
-            reply = attempt(allowance=INLINE_PAIRS)
+            reply = attempt(allowance=INLINE_WORK)
         if isinstance(reply, Deferred) and len(body) <= THREAD_BODY:
-            reply = await self.in_thread(partial(attempt, allowance=THREAD_PAIRS))
+            reply = await self.in_thread(partial(attempt, allowance=THREAD_WORK))
         if isinstance(reply, Deferred):
             reply = await self.in_process(operation.operation_id, body, media_type)
         return reply
@@ -91,12 +91,16 @@ class Workshop:
             reply: Reply | Problem = await asyncio.wrap_future(future)
         except TimeoutError:
             seconds = self.limits.deadline
-            raise Problem("deadline-exceeded", f"Stopped after {seconds:g} s", deadline=seconds) from None
+            raise Problem(
+                "deadline-exceeded", f"Stopped after {seconds:g} s", facts={"deadline": seconds}
+            ) from None
         except (ProcessExpired, CancelledError) as error:
             raise RuntimeError(f"a worker process ended during {operation_id}") from error
         return reply
 
     def _open_pool(self) -> ProcessPool:
+        if self._pool is not None and not self._pool.active:
+            self.close()  # a pool whose workers could not start never recovers
         if self._pool is None:
             context = multiprocessing.get_context("forkserver")
             context.set_forkserver_preload(["forebay.api.routers.registry"])
@@ -106,6 +110,6 @@ class Workshop:
     def close(self) -> None:
         """Stop every worker at once."""
         if self._pool is not None:
-            self._pool.stop()
+            self._pool.stop()  # type: ignore[no-untyped-call]
             self._pool.join()
             self._pool = None

@@ -10,10 +10,14 @@ from forebay.api import envelope
 from forebay.api.media import JSON, negotiate
 from forebay.api.problems import Problem
 from forebay.api.routers.serving import documented
-from forebay.api.schemas.catalogues import LimitsResult, WaterResult
+from forebay.api.schemas.catalogues import CriteriaResult, LimitsResult, WaterResult
 from forebay.api.schemas.common import Answer
+from forebay.api.schemas.review import WarningsResult
 from forebay.api.units import UnitSystem
 from forebay.flow.errors import FlowError
+from forebay.trade.applicability.review import CATALOGUE
+from forebay.trade.criteria import NOT_LISTED, Criterion
+from forebay.trade.criteria_catalogue import list_criteria
 from forebay.trade.water import LEFT_OUT, SOURCES, water_properties
 
 router = APIRouter(tags=["catalogues"])
@@ -68,8 +72,43 @@ def water(temperature: float, salinity: float) -> dict[str, Any]:
         properties = water_properties(temperature, salinity)
     except FlowError as error:
         errors = ({"parameter": str(error.path[0]), "detail": error.detail},)
-        raise Problem(error.code, error.detail, errors=errors, **error.facts) from None
+        raise Problem(error.code, error.detail, errors=errors, facts=error.facts) from None
     return {**asdict(properties), "sources": SOURCES, "left_out": LEFT_OUT}
+
+
+@router.get(
+    "/v1/criteria",
+    operation_id="listCriteria",
+    summary="Published limits for fish-protection screens",
+    **documented(CriteriaResult),
+)
+async def read_criteria(request: Request) -> Response:
+    result = {"criteria": [criterion(record) for record in list_criteria()], "not_listed": NOT_LISTED}
+    return answer(request, CriteriaResult, result, UnitSystem.SI)
+
+
+def criterion(record: Criterion) -> dict[str, Any]:
+    """Fields of one limit."""
+    copied = ("id", "body", "document", "year", "jurisdiction", "applies_to", "quantity", "definition")
+    fields = {name: getattr(record, name) for name in copied}
+    return fields | {
+        "limit": record.limit_si,
+        "unit": record.unit_si,
+        "published_limit": f"{record.limit} {record.unit}",
+        "confidence": record.confidence,
+        "note": record.note,
+        "source": record.source,
+    }
+
+
+@router.get(
+    "/v1/warnings",
+    operation_id="listWarnings",
+    summary="Every kind of warning with its threshold and source",
+    **documented(WarningsResult),
+)
+async def read_warnings(request: Request) -> Response:
+    return answer(request, WarningsResult, {"warnings": [asdict(kind) for kind in CATALOGUE]}, UnitSystem.SI)
 
 
 @router.get(

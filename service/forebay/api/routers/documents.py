@@ -30,13 +30,16 @@ ASSETS = {
 
 router = APIRouter()
 
+page_router = APIRouter()
+"""Routes of the documentation page, which a setting can leave out."""
+
 
 def page(text: str) -> Response:
     """An HTML page under the page policy."""
     return Response(text, media_type=HTML, headers={"Content-Security-Policy": PAGE_POLICY})
 
 
-@router.get("/docs", include_in_schema=False)
+@page_router.get("/docs", include_in_schema=False)
 async def docs() -> Response:
     return page((PAGES / "docs.html").read_text(encoding="utf-8"))
 
@@ -92,10 +95,10 @@ def explanation(code: str, media_type: str) -> Response:
         for name, value in facts.items():
             text = text.replace("{" + name + "}", escape(value))
         return page(text)
-    facts = {
+    document = {
         "type": f"/problems/{code}",
         "title": kind.title,
         "status": kind.status,
         "explanation": kind.explanation,
     }
-    return Response(orjson.dumps(facts), media_type=JSON)
+    return Response(orjson.dumps(document), media_type=JSON)

@@ -5,6 +5,7 @@ from fastapi import APIRouter
 from forebay.api.limits import Price
 from forebay.api.media import CSV, JSON
 from forebay.api.operation import Operation, Outcome
+from forebay.api.review import readings_of, reviewed
 from forebay.api.routers.serving import serve
 from forebay.api.schemas.field import FieldResult, SampleRequest
 from forebay.workflows.sample import sample_field
@@ -15,13 +16,14 @@ def compute(request: SampleRequest, _media_type: str) -> Outcome:
     samples = sample_field(layout, request.at.positions(request.unit_system), request.wanted())
     flagged = [{"index": flag.index, "status": flag.status} for flag in samples.flagged]
     result = {**samples.columns, "shape": request.at.shape, "flagged": flagged}
-    return Outcome(result, layout)
+    return reviewed(request, layout, result, readings_of(samples.columns))
 
 
 def price(request: SampleRequest) -> Price:
     count = request.at.count
     columns = 5 + len(request.wanted())
-    return Price(count, request.layout.size, values=columns * count, path=("at",))
+    layout = request.layout
+    return Price(count, layout.size, values=columns * count, effort=layout.effort, path=("at",))
 
 
 SAMPLE = Operation(
@@ -29,9 +31,10 @@ SAMPLE = Operation(
     path="/v1/field/sample",
     summary="Velocity and derived quantities at points, along a line or on a grid",
     description=(
-        "Columns of the same length as the points. A point on land or on a singularity has null values and is "
-        "listed in `flagged`. Derivatives are exact, not differences. `head_change` and `pressure_coefficient` are "
-        "Bernoulli against the ambient speed. With `Accept: text/csv` the columns come as a table."
+        "Columns of the same length as the points. A point on land or on a singularity has null "
+        "values and is listed in `flagged`. Derivatives are exact, not differences. `head_change` and "
+        "`pressure_coefficient` are Bernoulli against the ambient speed. With `Accept: text/csv` the "
+        "columns come as a table."
     ),
     request=SampleRequest,
     result=FieldResult,

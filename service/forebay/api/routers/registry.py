@@ -5,13 +5,38 @@ from typing import Any
 from fastapi import APIRouter
 
 from forebay.api.operation import Operation
-from forebay.api.routers import catalogues, documents, field, operation
+from forebay.api.routers import (
+    catalogues,
+    chart,
+    documents,
+    field,
+    operation,
+    review,
+    stagnation,
+    stress,
+    withdrawal,
+)
 
-OPERATIONS: dict[str, Operation[Any]] = {known.operation_id: known for known in (field.SAMPLE,)}
+OPERATIONS: dict[str, Operation[Any]] = {
+    known.operation_id: known
+    for known in (
+        field.SAMPLE,
+        stagnation.SEARCH,
+        stress.TENSOR,
+        withdrawal.TRACE,
+        review.REVIEW,
+        chart.FLOW_NET,
+    )
+}
 """Compute operations, as the worker processes look them up."""
 
 ROUTERS: tuple[APIRouter, ...] = (
     field.router,
+    stagnation.router,
+    stress.router,
+    withdrawal.router,
+    review.router,
+    chart.router,
     catalogues.router,
     operation.router,
     documents.router,

@@ -88,7 +88,7 @@ def envelope_reference(result: type[Answer]) -> dict[str, str]:
 
 
 def problem_responses(statuses: tuple[int, ...]) -> dict[int | str, dict[str, Any]]:
-    """Problems with these statuses as OpenAPI says them; the document names their codes once all are known."""
+    """Problems with these statuses; the document names their codes once all routers are known."""
     schema = {"$ref": "#/components/schemas/Problem"}
     return {
         status: {"description": "Problem", "content": {MEDIA_TYPE: {"schema": schema}}} for status in statuses

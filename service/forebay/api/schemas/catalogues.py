@@ -11,6 +11,7 @@ from forebay.api.schemas.quantities import (
     CountValue,
     DensityValue,
     KinematicValue,
+    OwnUnitValue,
     PressureValue,
     RatioValue,
     SalinityValue,
@@ -47,6 +48,32 @@ class LimitsResult(Answer):
     deadline: Annotated[TimeValue, Field(description="Longest computation")]
     workers: Annotated[CountValue, Field(description="Processes for large computations")]
     queue: Annotated[CountValue, Field(description="Large computations that may wait")]
+
+
+class CriterionValue(Answer):
+    """One published limit for fish-protection screens."""
+
+    id: Annotated[str, Field(examples=["epa-new-large-through-slot"])]
+    body: Annotated[str, Field(description="Who issued it")]
+    document: str
+    year: Annotated[int | None, Field(examples=[1997], json_schema_extra={"unit": "a"})]
+    jurisdiction: str
+    applies_to: str
+    quantity: Annotated[str, Field(description="What is limited", examples=["max-approach"])]
+    definition: Annotated[str, Field(description="What exactly is limited")]
+    limit: OwnUnitValue
+    unit: Annotated[str, Field(description="UCUM code of the unit of `limit`", examples=["m/s"])]
+    published_limit: Annotated[str, Field(description="As the document writes it", examples=["0.4 ft/s"])]
+    confidence: Annotated[str, Field(description="Whether the document was read", examples=["document-read"])]
+    note: str
+    source: str
+
+
+class CriteriaResult(Answer):
+    """Published limits, and documents from which none is listed."""
+
+    criteria: list[CriterionValue]
+    not_listed: Annotated[dict[str, str], Field(description="Document, and why it is not listed")]
 
 
 class WarningValue(Answer):

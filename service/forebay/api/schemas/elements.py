@@ -8,6 +8,7 @@ from forebay.api.schemas.common import Name, Strict
 from forebay.api.schemas.quantities import (
     CubicMetresPerSecond,
     Moment,
+    PortArea,
     Position,
     PositiveMetres,
     SquareMetresPerSecond,
@@ -31,10 +32,16 @@ class _Discharging(Strict):
     discharge: Annotated[CubicMetresPerSecond, Field(description="Discharge over the whole depth, positive")]
 
 
+PortAreaField = Annotated[
+    PortArea | None, Field(description="Area of the port; known, its jet can be judged")
+]
+
+
 class Source(_Discharging):
     """Point outfall."""
 
     kind: Literal["source"]
+    port_area: PortAreaField = None
 
     def to_flow(self, units: UnitSystem) -> flow.Source:
         """Source in SI."""
@@ -62,6 +69,7 @@ class LineSource(_Spread):
     """Diffuser: a source spread evenly along a line."""
 
     kind: Literal["line-source"]
+    port_area: PortAreaField = None
 
     def to_flow(self, units: UnitSystem) -> flow.LineSource:
         """Line source in SI."""
@@ -91,7 +99,7 @@ class Vortex(Strict):
 
     def to_flow(self, units: UnitSystem) -> flow.Vortex:
         """Vortex in SI."""
-        core = self.core and flow.Core(self.core.model, units.read(self.core.radius, "m"))
+        core = None if self.core is None else flow.Core(self.core.model, units.read(self.core.radius, "m"))
         return flow.Vortex(self.name, units.position(self.at), units.read(self.circulation, "m2/s"), core)
 
 
@@ -103,6 +111,7 @@ class Doublet(Strict):
     at: Annotated[Position, Field(description="Position")]
     moment: Annotated[
         Moment,
+        PortArea,
         Field(
             description="Strength per unit depth times spacing, from the sink to the source of the pair",
             examples=[[-1.2, 0.0]],

@@ -29,7 +29,8 @@ class Line(Strict):
 
     def positions(self, units: UnitSystem) -> ComplexArray:
         """Points in SI."""
-        return np.linspace(units.position(self.start), units.position(self.end), self.count)
+        ends = units.position(self.start), units.position(self.end)
+        return np.linspace(*ends, self.count).astype(np.complex128)
 
 
 class Grid(Strict):

@@ -11,7 +11,7 @@ from pydantic import AfterValidator, BeforeValidator, Field
 from pydantic_core import PydanticCustomError
 
 
-def given(unit: str, example: float, low: float, high: float) -> Any:
+def given(unit: str, example: float, low: float, high: float) -> Any:  # noqa: ANN401  (as the library declares it)
     """Field of a request: a strict finite number in `unit` between `low` and `high`."""
     return Field(
         strict=True,
@@ -23,19 +23,19 @@ def given(unit: str, example: float, low: float, high: float) -> Any:
     )
 
 
-def measured(unit: str, example: float) -> Any:
+def measured(unit: str, example: float) -> Any:  # noqa: ANN401
     """Field of an answer: a number in `unit`, or null where there is none."""
     return Field(examples=[example], json_schema_extra={"unit": unit})
 
 
-def _whole(value: Any) -> Any:
+def _whole(value: Any) -> Any:  # noqa: ANN401
     """Refuse booleans and strings, accept 19.0 as JSON Schema does."""
     if isinstance(value, bool) or not isinstance(value, int | float):
         raise PydanticCustomError("int_type", "Input should be a whole number")
     return value
 
 
-def counted(example: int, low: int, high: int) -> Any:
+def counted(example: int, low: int, high: int) -> Any:  # noqa: ANN401
     """Field of a request: a whole number between `low` and `high`."""
     return Field(ge=low, le=high, examples=[example], json_schema_extra={"unit": "1"})
 
@@ -51,6 +51,10 @@ DoubletMoment = Annotated[float, given("m3/s", -1.2, -1e9, 1e9)]
 PerSecond = Annotated[float, given("1/s", 0.002, -1e6, 1e6)]
 Degrees = Annotated[float, given("deg", 90.0, -3600.0, 3600.0)]
 InteriorDegrees = Annotated[float, given("deg", 90.0, 1.0, 360.0)]
+BedFriction = Annotated[float, given("1", 0.003, 1e-6, 1.0)]
+PortArea = Annotated[float, given("m2", 1.2, 1e-6, 1e6)]
+WindSpeed = Annotated[float, given("m/s", 8.0, 0.0, 300.0)]
+DensityDifference = Annotated[float, given("kg/m3", 1.5, 0.0, 500.0)]
 PureNumber = Annotated[float, given("1", 1.0, -1e9, 1e9)]
 WaterTemperature = Annotated[float, given("Cel", 12.0, -50.0, 200.0)]
 Salinity = Annotated[float, given("g/kg", 0.0, 0.0, 100.0)]
@@ -59,8 +63,7 @@ DynamicViscosity = Annotated[float, given("Pa.s", 0.0013, 1e-9, 1e9)]
 SecondViscosity = Annotated[float, given("Pa.s", -0.0009, -1e9, 1e9)]
 Density = Annotated[float, given("kg/m3", 999.7, 1e-6, 1e6)]
 PointCount = Annotated[int, BeforeValidator(_whole), counted(101, 1, 1_000_000_000)]
-LevelCount = Annotated[int, BeforeValidator(_whole), counted(24, 2, 200)]
-PixelCount = Annotated[int, BeforeValidator(_whole), counted(1200, 200, 4000)]
+PixelCount = Annotated[int, BeforeValidator(_whole), counted(1200, 520, 4000)]
 Digits = Annotated[int, BeforeValidator(_whole), counted(9, 4, 17)]
 
 Position = Annotated[list[Metres], Field(min_length=2, max_length=2, fail_fast=True, examples=[[120.0, 6.0]])]
@@ -106,6 +109,11 @@ TemperatureValue = Annotated[float | None, measured("Cel", 12.0)]
 SalinityValue = Annotated[float | None, measured("g/kg", 0.0)]
 PressureGradientValue = Annotated[float | None, measured("Pa/m", 0.4)]
 SurfaceTensionValue = Annotated[float | None, measured("N/m", 0.074)]
+CovarianceValue = Annotated[float | None, measured("1/s2", 1e-6)]
+TurnsValue = Annotated[float | None, measured("1", 1)]
+OwnUnitValue = Annotated[float | None, measured("{unit}", 0.12192)]
+"""Number whose unit stands beside it in `unit`."""
+
 PowerValue = Annotated[float | None, measured("W/m3", 0.0021)]
 TimeValue = Annotated[float | None, measured("s", 30.0)]
 CountValue = Annotated[int | None, measured("1", 3)]

@@ -23,10 +23,10 @@ def unit_direction(pair: list[float]) -> complex:
 class OpenWater(Strict):
     """No bank anywhere."""
 
-    kind: Literal["open-water"] = "open-water"
+    kind: Literal["open-water"]
 
-    def to_flow(self, units: UnitSystem) -> flow.OpenWater:
-        """Open water; it has no numbers, so the units do not matter."""
+    def to_flow(self, _units: UnitSystem) -> flow.OpenWater:
+        """Open water, which has no numbers."""
         return flow.OpenWater()
 
 

@@ -1,0 +1,26 @@
+"""An outcome with the warnings that its layout and its numbers raise."""
+
+from typing import Any
+
+import numpy as np
+
+from forebay.api.operation import Outcome
+from forebay.api.schemas.layout import LayoutRequest
+from forebay.flow.layout import Layout
+from forebay.trade.applicability.site import Readings
+from forebay.workflows.review import review_layout
+
+
+def reviewed(
+    request: LayoutRequest, layout: Layout, result: dict[str, Any], readings: Readings | None = None
+) -> Outcome:
+    """Outcome of a request about a layout."""
+    data = request.site_data()
+    return Outcome(result, layout, data, review_layout(layout, readings, data=data))
+
+
+def readings_of(columns: dict[str, Any]) -> Readings:
+    """What a review looks at of sampled columns; points without a value do not count."""
+    points, speeds = columns["x"] + 1j * columns["y"], columns["speed"]
+    known = np.isfinite(speeds)
+    return Readings(points=points[known], max_speed=float(speeds[known].max()) if known.any() else None)

@@ -1,0 +1,88 @@
+"""stress/tensor: stress from velocity gradients, measured velocities, or a layout."""
+
+from dataclasses import asdict
+from typing import Any
+
+from fastapi import APIRouter
+
+from forebay.api.limits import Price
+from forebay.api.operation import Operation, Outcome
+from forebay.api.routers.serving import serve
+from forebay.api.schemas.stress import StressRequest, StressResult
+from forebay.flow.stress_state import StressState
+from forebay.trade.applicability.site import Readings
+from forebay.workflows.layout_stress import compute_layout_stress
+from forebay.workflows.review import review_layout
+from forebay.workflows.stress import compute_stress
+
+VALUES_A_STATE = 70
+"""Numbers in the answer for one state."""
+
+EFFORT_A_STATE = 10_000
+"""Work for one state, counted in pairs of element and point."""
+
+
+def compute(request: StressRequest, _media_type: str) -> Outcome:
+    fluid = request.flow_fluid()
+    if request.layout is None or request.at is None:
+        states = tuple(state.to_flow(request.unit_system) for state in request.states or ())
+        return Outcome({"states": [written(state) for state in compute_stress(fluid, states)]})
+    layout = request.layout.to_flow(request.unit_system)
+    found = compute_layout_stress(fluid, layout, request.at.positions(request.unit_system))
+    data = request.layout.site_data(request.unit_system)
+    notices = review_layout(layout, Readings(has_dissipation=True), data=data)
+    return Outcome({"states": [written(state) for state in found]}, layout, data, notices)
+
+
+def written(state: StressState) -> dict[str, Any]:
+    """Fields of one state."""
+    left_out = {"tractions", "fit", "standard_errors", "is_plane", "mohr_circle", "mohr_circles"}
+    fields = {name: getattr(state, name) for name in StressState.__slots__ if name not in left_out}
+    tractions = state.tractions
+    return fields | {
+        "plane_vorticity": state.plane_vorticity,
+        "mohr_circle": asdict(state.mohr_circle),
+        "mohr_circles": [asdict(circle) for circle in state.mohr_circles],
+        "tractions": [
+            {"traction": traction, "normal_stress": normal, "shear_stress": shear}
+            for traction, normal, shear in zip(
+                tractions.traction, tractions.normal_stress, tractions.shear_stress, strict=True
+            )
+        ],
+        "fit": state.fit and asdict(state.fit),
+        "standard_errors": state.standard_errors and errors(asdict(state.standard_errors)),
+    }
+
+
+def errors(fields: dict[str, Any]) -> dict[str, Any]:
+    """Standard errors under the names of what they belong to."""
+    return fields | {"plane_vorticity": fields.pop("vorticity")}
+
+
+def price(request: StressRequest) -> Price:
+    if request.layout is None or request.at is None:
+        count = len(request.states or ())
+        return Price(count, values=VALUES_A_STATE * count, effort=EFFORT_A_STATE * count, path=("states",))
+    count = request.at.count
+    values, effort = VALUES_A_STATE * count, EFFORT_A_STATE * count + request.layout.effort
+    return Price(count, request.layout.size, values=values, effort=effort, path=("at",))
+
+
+TENSOR = Operation(
+    operation_id="computeStress",
+    path="/v1/stress/tensor",
+    summary="Strain rate, stress, principal values, dissipation and G",
+    description=(
+        "From velocity gradients or strain rates (2x2 or 3x3), from velocities measured at three or "
+        "more places (least squares, with standard errors), or from a layout at places. Tension is "
+        "positive, sigma = -p I + tau. Without `second_viscosity` Stokes' hypothesis holds. "
+        "`mean_velocity_gradient` is G = sqrt(dissipation / viscosity) of the mean flow alone."
+    ),
+    request=StressRequest,
+    result=StressResult,
+    compute=compute,
+    price=price,
+)
+
+router = APIRouter()
+serve(router, TENSOR)

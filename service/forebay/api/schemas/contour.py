@@ -1,0 +1,149 @@
+"""Request and answer of contour/integrate."""
+
+from typing import Annotated, Self
+
+from pydantic import Field, model_validator
+from pydantic_core import PydanticCustomError
+
+from forebay.api.schemas.common import Answer, Name, Strict
+from forebay.api.schemas.layout import LayoutRequest
+from forebay.api.schemas.quantities import (
+    AreaValue,
+    Degrees,
+    DischargeValue,
+    FluxValue,
+    LengthValue,
+    Position,
+    PositiveMetres,
+    TurnsValue,
+)
+
+MAX_CONTOURS = 1000
+"""Contours of one request."""
+
+MAX_SEGMENTS = 100_000
+"""Vertices of a polyline, or segments of a path."""
+
+
+class Circle(Strict):
+    """Full circle, anticlockwise."""
+
+    centre: Annotated[Position, Field(description="Centre")]
+    radius: Annotated[PositiveMetres, Field(description="Radius")]
+
+
+class LineSegment(Strict):
+    """Straight segment."""
+
+    start: Annotated[Position, Field(alias="from", description="Where it begins", examples=[[0.0, 10.0]])]
+    end: Annotated[Position, Field(alias="to", description="Where it ends", examples=[[30.0, 10.0]])]
+
+
+class ArcSegment(Strict):
+    """Arc of a circle, anticlockwise if `to_deg` exceeds `from_deg`."""
+
+    centre: Annotated[Position, Field(description="Centre")]
+    radius: Annotated[PositiveMetres, Field(description="Radius")]
+    from_deg: Annotated[Degrees, Field(description="Direction from the centre at the start", examples=[0.0])]
+    to_deg: Annotated[Degrees, Field(description="Direction from the centre at the end")]
+
+
+class Segment(Strict):
+    """Exactly one of `line`, `arc`."""
+
+    model_config = {"json_schema_extra": {"oneOf": [{"required": ["line"]}, {"required": ["arc"]}]}}
+
+    line: Annotated[LineSegment | None, Field(description="Straight segment")] = None
+    arc: Annotated[ArcSegment | None, Field(description="Arc of a circle")] = None
+
+    @model_validator(mode="after")
+    def _one_way(self) -> Self:
+        if (self.line is None) == (self.arc is None):
+            raise PydanticCustomError("one_way", "Exactly one of line, arc")
+        return self
+
+
+class Contour(Strict):
+    """Exactly one of `polyline`, `circle`, `path`."""
+
+    model_config = {
+        "json_schema_extra": {
+            "oneOf": [{"required": ["polyline"]}, {"required": ["circle"]}, {"required": ["path"]}]
+        }
+    }
+
+    name: Name
+    polyline: Annotated[
+        Annotated[list[Position], Field(min_length=2, max_length=MAX_SEGMENTS, fail_fast=True)] | None,
+        Field(description="Vertices", examples=[[[60.0, 0.0], [60.0, 110.0]]]),
+    ] = None
+    closed: Annotated[bool, Field(strict=True, description="Whether a polyline returns to its start")] = False
+    circle: Annotated[Circle | None, Field(description="Full circle, anticlockwise")] = None
+    path: Annotated[
+        Annotated[list[Segment], Field(min_length=1, max_length=MAX_SEGMENTS, fail_fast=True)] | None,
+        Field(description="Lines and arcs one after the other; closed if it ends where it began"),
+    ] = None
+
+    @model_validator(mode="after")
+    def _one_way(self) -> Self:
+        if sum(way is not None for way in (self.polyline, self.circle, self.path)) != 1:
+            raise PydanticCustomError("one_way", "Exactly one of polyline, circle, path")
+        if self.closed and self.polyline is None:
+            raise PydanticCustomError("closed_polyline", "`closed` belongs to a polyline")
+        return self
+
+    @property
+    def size(self) -> int:
+        """Number of segments."""
+        return len(self.polyline or self.path or ()) or 1
+
+
+class ContourRequest(LayoutRequest):
+    """Circulation and flux along contours."""
+
+    contours: Annotated[list[Contour], Field(min_length=1, max_length=MAX_CONTOURS, description="Contours")]
+
+
+class ElementShare(Answer):
+    """What one element adds, images included."""
+
+    element: Annotated[str, Field(examples=["town intake"])]
+    circulation: FluxValue
+    flux: FluxValue
+
+
+class Enclosed(Answer):
+    """How often a closed contour turns round an element."""
+
+    element: Annotated[str, Field(examples=["town intake"])]
+    turns: TurnsValue
+
+
+class Quadrature(Answer):
+    """Independent numerical integral of the velocity."""
+
+    circulation: FluxValue
+    flux: FluxValue
+    error_estimate: FluxValue
+
+
+class ContourValue(Answer):
+    """Integrals along one contour; flux is positive towards the right of the direction of travel."""
+
+    name: str
+    closed: bool
+    length: LengthValue
+    enclosed_area: Annotated[AreaValue, Field(description="Signed, anticlockwise positive; null if open")]
+    circulation: FluxValue
+    flux: Annotated[FluxValue, Field(description="Per unit depth")]
+    discharge: Annotated[DischargeValue, Field(description="Flux times depth")]
+    by_element: list[ElementShare]
+    enclosed: list[Enclosed]
+    quadrature: Quadrature | None
+    status: Annotated[str, Field(examples=["integrated"])]
+
+
+class ContourResult(Answer):
+    """Integrals along every contour, in order."""
+
+    contours: list[ContourValue]

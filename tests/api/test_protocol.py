@@ -1,0 +1,149 @@
+"""Methods, media types, sizes and headers of every answer."""
+
+import pytest
+
+from forebay.api.routers.registry import OPERATIONS
+from support.http import SAMPLE, a_sample, assert_problem, example
+
+PATHS = [operation.path for operation in OPERATIONS.values()]
+
+
+def test_unknown_address(client):
+    assert_problem(client.get("/v2/field"), 404, "not-found")
+    assert_problem(client.post("/v1/field/sample/"), 404, "not-found")
+
+
+@pytest.mark.parametrize("path", PATHS)
+@pytest.mark.parametrize("method", ["GET", "PUT", "DELETE", "PATCH", "OPTIONS"])
+def test_wrong_method_on_a_compute_route(client, path, method):
+    response = client.request(method, path)
+    assert_problem(response, 405, "method-not-allowed")
+    assert response.headers["allow"] == "POST"
+
+
+def test_wrong_method_on_a_catalogue(client):
+    response = client.post("/v1/limits", json={})
+    assert_problem(response, 405, "method-not-allowed")
+    assert response.headers["allow"] == "GET, HEAD"
+
+
+@pytest.mark.parametrize("path", ["/livez", "/v1/limits", "/v1/criteria", "/docs", "/openapi.json"])
+def test_head_is_get_without_a_body(client, path):
+    full, head = client.get(path), client.head(path)
+    assert head.status_code == full.status_code == 200
+    assert head.content == b""
+    assert head.headers["content-length"] == full.headers["content-length"]
+
+
+@pytest.mark.parametrize("path", PATHS)
+@pytest.mark.parametrize("accept", ["application/xml", "text/html;q=0.9, image/webp", "*/*;q=0", "nonsense"])
+def test_unknown_media_type_is_refused_with_the_list(client, path, accept):
+    problem = assert_problem(client.post(path, json={}, headers={"Accept": accept}), 406, "not-acceptable")
+    assert problem["offered"]
+
+
+@pytest.mark.parametrize(
+    "accept", ["*/*", "application/*", "application/json", "text/html, */*;q=0.1", "", None]
+)
+def test_json_is_the_default(client, accept):
+    response = client.post(SAMPLE, json=a_sample(), headers={"Accept": accept} if accept is not None else {})
+    assert response.status_code == 200
+    assert response.headers["content-type"] == "application/json"
+
+
+def test_quality_decides(client):
+    response = client.post(
+        SAMPLE, json=a_sample(), headers={"Accept": "application/json;q=0.5, text/csv;q=0.9"}
+    )
+    assert response.headers["content-type"].startswith("text/csv")
+
+
+@pytest.mark.parametrize("path", PATHS)
+@pytest.mark.parametrize(
+    "content_type",
+    [
+        "text/plain",
+        "application/x-www-form-urlencoded",
+        "application/json; charset=utf-16",
+        "multipart/form-data",
+    ],
+)
+def test_body_of_another_type_is_refused(client, path, content_type):
+    response = client.post(path, content=b"{}", headers={"Content-Type": content_type})
+    assert_problem(response, 415, "unsupported-media-type")
+
+
+@pytest.mark.parametrize(
+    "content_type", ["application/json", "application/json; charset=UTF-8", "Application/JSON"]
+)
+def test_json_may_name_its_charset(client, content_type):
+    body = b'{"layout": {"depth": 4}, "at": {"points": [[0, 0]]}}'
+    assert client.post(SAMPLE, content=body, headers={"Content-Type": content_type}).status_code == 200
+
+
+def test_compressed_body_is_refused(client):
+    response = client.post(SAMPLE, content=b"\x1f\x8b", headers={"Content-Encoding": "gzip"})
+    assert_problem(response, 415, "unsupported-media-type")
+    assert response.headers["accept-encoding"] == "identity"
+
+
+@pytest.mark.parametrize("path", PATHS)
+def test_oversize_body_is_refused_by_its_length(client, app, path):
+    limit = app.state.limits.max_body
+    response = client.post(path, content=b" " * (limit + 1))
+    assert assert_problem(response, 413, "body-too-large")["limit"] == limit
+
+
+def test_oversize_body_is_refused_while_it_arrives(client, app):
+    chunk, sent = b" " * 2**20, []
+
+    def endless():
+        for _ in range(4 * app.state.limits.max_body // len(chunk)):
+            sent.append(len(chunk))
+            yield chunk
+
+    assert_problem(client.post(SAMPLE, content=endless()), 413, "body-too-large")
+
+
+def test_standing_headers(client):
+    headers = client.post(SAMPLE, json=a_sample()).headers
+    assert headers["cache-control"] == "no-store"
+    assert headers["x-content-type-options"] == "nosniff"
+    assert headers["content-security-policy"].startswith("default-src 'none'")
+    assert "Accept" in headers["vary"]
+    assert headers["server-timing"].startswith("parse;dur=")
+
+
+def test_request_id_is_taken_over(client):
+    assert client.get("/livez", headers={"X-Request-ID": "abc-1"}).headers["x-request-id"] == "abc-1"
+
+
+@pytest.mark.parametrize("asked", ["with space", "x" * 200, "a;b", '{"a":1}'])
+def test_unsafe_request_id_is_replaced(client, asked):
+    given = client.get("/livez", headers={"X-Request-ID": asked}).headers["x-request-id"]
+    assert given != asked
+    assert len(given) == 36
+
+
+def test_preflight(client):
+    headers = {
+        "Access-Control-Request-Method": "POST",
+        "Access-Control-Request-Headers": "content-type, traceparent",
+    }
+    response = client.options(SAMPLE, headers=headers)
+    assert response.status_code == 204
+    assert response.headers["access-control-allow-origin"] == "*"
+    assert response.headers["access-control-allow-headers"] == "content-type, traceparent"
+    assert "POST" in response.headers["access-control-allow-methods"]
+
+
+def test_page_of_another_origin_can_read_the_headers_it_needs(client):
+    exposed = client.get("/livez").headers["access-control-expose-headers"]
+    assert {"Retry-After", "X-Request-ID", "Server-Timing"} <= set(exposed.split(", "))
+
+
+@pytest.mark.parametrize("operation", OPERATIONS.values(), ids=OPERATIONS)
+def test_every_example_is_answered(ready_client, operation):
+    response = ready_client.post(operation.path, json=example(operation.operation_id))
+    assert response.status_code == 200, response.text[:2000]
+    assert response.headers["content-type"] == operation.media_types[0]

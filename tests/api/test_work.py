@@ -1,0 +1,84 @@
+"""Where work runs and what stops it: deadline, full queue, our own failures, readiness."""
+
+import logging
+
+import pytest
+from starlette.testclient import TestClient
+
+from forebay.app import create_app
+from forebay.settings import Settings
+from support.http import SAMPLE, a_sample, assert_problem
+
+LENGTHY = a_sample(at={"grid": {"x": [0, 1], "nx": 1000, "y": [10, 11], "ny": 900}})
+"""Takes a good part of a second, far longer than the deadline below."""
+
+
+def test_deadline_stops_the_work(ready_client):
+    impatient = create_app(Settings(workers=1, deadline=0.02))
+    with TestClient(impatient, raise_server_exceptions=False, headers={"Origin": "x"}) as client:
+        problem = assert_problem(client.post(SAMPLE, json=LENGTHY), 504, "deadline-exceeded")
+        assert problem["deadline"] == 0.02
+        assert client.post(SAMPLE, json=a_sample()).status_code == 200
+
+
+def test_full_queue_is_busy(app, ready_client, monkeypatch):
+    monkeypatch.setattr(app.state.workshop, "waiting", app.state.limits.workers + app.state.limits.queue)
+    response = ready_client.post(SAMPLE, json=LENGTHY)
+    assert_problem(response, 503, "busy")
+    assert int(response.headers["retry-after"]) >= 1
+    assert ready_client.post(SAMPLE, json=a_sample()).status_code == 200
+
+
+def test_our_own_failure_is_logged_once_and_says_nothing(client, monkeypatch, caplog):
+    def fail(*_arguments, **_options):
+        raise RuntimeError("secret inside")
+
+    monkeypatch.setattr("forebay.api.work.perform", fail)
+    with caplog.at_level(logging.ERROR, logger="forebay"):
+        response = client.post(SAMPLE, json=a_sample())
+    assert_problem(response, 500, "internal-error")
+    assert "secret" not in response.text
+    assert len(caplog.records) == 1
+    assert response.headers["x-request-id"] in caplog.text
+    assert "secret inside" in caplog.text
+
+
+def test_not_ready_before_the_kernels_are():
+    cold = create_app(Settings(workers=1))
+    client = TestClient(cold, raise_server_exceptions=False, headers={"Origin": "x"})
+    response = client.get("/readyz")
+    assert_problem(response, 503, "not-ready")
+    assert response.headers["retry-after"] == "1"
+    assert client.get("/livez").status_code == 200
+
+
+def test_failed_preparation_keeps_the_service_not_ready(monkeypatch, caplog):
+    monkeypatch.setattr("forebay.api.readiness.request_example", lambda _operation: {})
+    broken = create_app(Settings(workers=1))
+    with TestClient(broken, headers={"Origin": "x"}) as client:
+        while "preparation failed" not in caplog.text:
+            assert client.get("/livez").status_code == 200
+        problem = assert_problem(client.get("/readyz"), 503, "not-ready")
+    assert "failed" in problem["detail"]
+
+
+def test_ready_once_every_example_was_answered(ready_client):
+    assert ready_client.get("/readyz").json() == {"status": "pass"}
+
+
+def test_metrics_count_by_route(ready_client):
+    ready_client.get("/never/mind/this")
+    ready_client.post(SAMPLE, json=a_sample())
+    text = ready_client.get("/metrics").text
+    assert 'forebay_requests_total{method="POST",route="/v1/field/sample",status="200"}' in text
+    assert "/never" not in text
+    assert "forebay_request_seconds_bucket" in text
+
+
+@pytest.mark.parametrize("accept", ["text/plain", "application/openmetrics-text; version=1.0.0"])
+def test_metrics_come_in_both_formats(client, accept):
+    assert (
+        client.get("/metrics", headers={"Accept": accept})
+        .headers["content-type"]
+        .startswith(accept.split(";")[0])
+    )

@@ -1,0 +1,102 @@
+"""The documentation page in a browser without internet: operations rendered, nothing from elsewhere."""
+
+import shutil
+import threading
+import time
+
+import pytest
+import uvicorn
+
+from forebay.api.routers.registry import OPERATIONS
+from forebay.app import create_app
+from forebay.settings import Settings
+
+pytestmark = pytest.mark.browser
+
+ARGUMENTS = [
+    "--no-sandbox",
+    "--disable-gpu",
+    "--disable-quic",
+    "--no-first-run",
+    "--disable-background-networking",
+    "--disable-component-update",
+    "--disable-sync",
+]
+
+
+def serve(app):
+    """A server in a thread, and the port it listens on."""
+    server = uvicorn.Server(uvicorn.Config(app, host="127.0.0.1", port=0, log_level="error"))
+    thread = threading.Thread(target=server.run)
+    thread.start()
+    while not server.started:
+        time.sleep(0.01)
+    return server, thread, server.servers[0].sockets[0].getsockname()[1]
+
+
+class Prefixed:
+    """A proxy that publishes the application under /tools/forebay and strips the prefix."""
+
+    def __init__(self, app):
+        self.app = app
+
+    async def __call__(self, scope, receive, send):
+        if scope["type"] == "http":
+            if not scope["path"].startswith("/tools/forebay/"):
+                await send({"type": "http.response.start", "status": 404, "headers": []})
+                await send({"type": "http.response.body", "body": b""})
+                return
+            scope = {**scope, "path": scope["path"].removeprefix("/tools/forebay")}
+        await self.app(scope, receive, send)
+
+
+@pytest.fixture(params=["", "/tools/forebay"], ids=["root", "prefix"])
+def address(request):
+    app = create_app(Settings(workers=1))
+    server, thread, port = serve(Prefixed(app) if request.param else app)
+    yield f"http://127.0.0.1:{port}{request.param}"
+    server.should_exit = True
+    thread.join()
+
+
+@pytest.fixture
+def page():
+    from playwright.sync_api import sync_playwright
+
+    chromium = shutil.which("chromium")
+    if chromium is None:
+        pytest.skip("no Chromium on this machine")
+    with sync_playwright() as driver:
+        browser = driver.chromium.launch(executable_path=chromium, args=ARGUMENTS)
+        yield browser.new_page(viewport={"width": 1280, "height": 1600})
+        browser.close()
+
+
+def test_page_renders_every_operation_from_this_server_alone(page, address):
+    asked, failed, complaints = [], [], []
+    page.on("request", lambda request: asked.append(request.url))
+    page.on("requestfailed", lambda request: failed.append(request.url))
+    page.on("response", lambda response: failed.append(response.url) if response.status >= 400 else None)
+    page.on("console", lambda message: complaints.append(message.text) if message.type == "error" else None)
+    page.goto(f"{address}/docs")
+    page.wait_for_selector(".opblock")
+    paths = {
+        element.inner_text().replace("\u200b", "")
+        for element in page.query_selector_all(".opblock-summary-path")
+    }
+    assert {operation.path for operation in OPERATIONS.values()} <= paths
+    assert failed == []
+    assert complaints == []
+    assert [url for url in asked if not url.startswith((address, "data:", "blob:"))] == []
+
+
+def test_try_it_out_reaches_the_service(page, address):
+    page.goto(f"{address}/docs")
+    page.wait_for_selector(".opblock")
+    block = page.locator("[id*=sampleField]")
+    block.locator(".opblock-summary-control").click()
+    block.get_by_role("button", name="Try it out").click()
+    with page.expect_response("**/v1/field/sample") as answer:
+        block.get_by_role("button", name="Execute").click()
+    assert answer.value.url == f"{address}/v1/field/sample"
+    assert answer.value.status == 200
