@@ -2,7 +2,7 @@
 
 import asyncio
 import json
-from collections.abc import Mapping
+from collections.abc import Mapping, MutableMapping
 from pathlib import Path
 from typing import Any
 
@@ -56,16 +56,16 @@ async def post(route: str, body: Mapping[str, Any]) -> tuple[int, dict[str, Any]
     """Status and answer of the application to a POST, handed over without a socket."""
     app = create_app(Settings.from_environment())
     payload = json.dumps(body).encode()
-    sent: list[Mapping[str, Any]] = []
-    waiting = [{"type": "http.request", "body": payload, "more_body": False}]
+    sent: list[MutableMapping[str, Any]] = []
+    waiting: list[MutableMapping[str, Any]] = [{"type": "http.request", "body": payload, "more_body": False}]
 
-    async def receive() -> Mapping[str, Any]:
+    async def receive() -> MutableMapping[str, Any]:
         if waiting:
             return waiting.pop()
         await asyncio.Event().wait()  # the client stays connected for as long as it takes
         raise AssertionError
 
-    async def send(message: Mapping[str, Any]) -> None:
+    async def send(message: MutableMapping[str, Any]) -> None:
         sent.append(message)
 
     async with app.router.lifespan_context(app):
