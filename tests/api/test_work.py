@@ -53,7 +53,7 @@ def test_not_ready_before_the_kernels_are():
 
 
 def test_failed_preparation_keeps_the_service_not_ready(monkeypatch, caplog):
-    monkeypatch.setattr("forebay.api.readiness.request_example", lambda _operation: {})
+    monkeypatch.setattr("forebay.api.readiness.rehearsals", lambda _operation: [{}])
     broken = create_app(Settings(workers=1))
     with TestClient(broken, headers={"Origin": "x"}) as client:
         while "preparation failed" not in caplog.text:

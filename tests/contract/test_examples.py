@@ -2,7 +2,7 @@
 
 import json
 
-import jsonschema
+import jsonschema  # type: ignore[import-untyped]
 import pytest
 
 from forebay.api.examples import example_layout, file_name, request_example

@@ -22,6 +22,25 @@ def request_example(operation_id: str) -> dict[str, Any]:
     return request | {"layout": example_layout()} if request.get("layout") == "site" else request
 
 
+OPEN_WATER: dict[str, Any] = {
+    "depth": 3.0,
+    "ambient": {"velocity": [0.4, 0.1]},
+    "elements": [
+        {"kind": "sink", "name": "intake", "at": [0, 0], "discharge": 1.0},
+        {"kind": "source", "name": "outfall", "at": [40, 10], "discharge": 0.6},
+        {"kind": "vortex", "name": "eddy", "at": [-20, 30], "circulation": 0.8},
+        {"kind": "doublet", "name": "pair", "at": [25, -30], "moment": [-1.2, 0.3]},
+    ],
+}
+"""A site without banks, whose flow takes other kernels than the invented site's."""
+
+
+def rehearsals(operation_id: str) -> list[dict[str, Any]]:
+    """Requests that between them take every kernel an operation needs."""
+    example = request_example(operation_id)
+    return [example, example | {"layout": OPEN_WATER}] if "layout" in example else [example]
+
+
 def file_name(path: str) -> str:
     """Name of the file that holds the example of a route: `/v1/field/sample` is in `field-sample.json`."""
     return "-".join(path.split("/")[2:]) + ".json"

@@ -8,7 +8,7 @@ from pydantic import BaseModel
 from pydantic.json_schema import models_json_schema
 
 from forebay import __version__
-from forebay.api.problems import MEDIA_TYPE, catalogue
+from forebay.api.problems import MEDIA_TYPE, Problem, ProblemKind, catalogue
 from forebay.api.routers.serving import ENVELOPES, REQUESTS
 from forebay.api.schemas.catalogues import ProblemDocument, ProblemExplanation, Provenance, WarningValue
 
@@ -31,6 +31,21 @@ details (RFC 9457) whose `type` can be read.
 """
 
 
+TAGS = {
+    "assessment": "The whole job for one layout",
+    "field": "Velocity and what follows from it",
+    "stagnation": "Where the water stands still",
+    "contour": "Circulation and flux",
+    "stress": "Strain and stress",
+    "withdrawal": "Where intakes' water comes from",
+    "layout": "Judging a layout before computing",
+    "chart": "Pictures",
+    "catalogues": "Limits, warnings, criteria, water",
+    "operation": "Running the service",
+}
+"""Groups of routes in the order of the page."""
+
+
 def build_document(app: FastAPI) -> dict[str, Any]:
     """OpenAPI 3.1 document of an application."""
     document = get_openapi(
@@ -39,6 +54,7 @@ def build_document(app: FastAPI) -> dict[str, Any]:
         summary="Screening of water intakes and outfalls",
         description=DESCRIPTION,
         routes=app.routes,
+        tags=[{"name": name, "description": text} for name, text in TAGS.items()],
         servers=[{"url": ".", "description": "Where this document was read"}],
         license_info={"name": "Apache-2.0", "identifier": "Apache-2.0"},
     )
@@ -52,7 +68,6 @@ def build_document(app: FastAPI) -> dict[str, Any]:
     for item in document["paths"].values():
         for operation in item.values():
             _name_problems(operation["responses"])
-    document["paths"] = dict(sorted(document["paths"].items()))
     return document
 
 
@@ -93,3 +108,13 @@ def _name_problems(responses: dict[str, Any]) -> None:
         elif MEDIA_TYPE in response.get("content", {}):
             kinds = {code: kind for code, kind in catalogue().items() if kind.status == int(status)}
             response["description"] = "; ".join(f"`{code}`: {kind.title}" for code, kind in kinds.items())
+            response["content"][MEDIA_TYPE]["example"] = _example(*next(iter(kinds.items())))
+
+
+def _example(code: str, kind: ProblemKind) -> dict[str, Any]:
+    """A problem of this kind as it arrives."""
+    problem = Problem(code, kind.explanation)
+    if code == "invalid-request":
+        errors = ({"pointer": "#/layout/depth", "detail": "Input should be greater than or equal to 0.001"},)
+        problem = Problem(code, "1 error in the request", errors=errors)
+    return problem.body("6f1c0c1e-6c1f-4a53-9d3b-3c2f0d1f6d0a")

@@ -7,17 +7,20 @@ from typing import Any
 
 import orjson
 
-from forebay.api.examples import request_example
+from forebay.api.examples import rehearsals
 from forebay.api.media import JSON
 from forebay.api.operation import Operation, Reply, perform
 from forebay.api.routers.registry import OPERATIONS
 from forebay.api.work import Workshop
 
+LONGEST_COMPILATION = 600.0
+"""Longest first run of one example [s]: on a fresh machine it compiles its kernels."""
+
 LOG = logging.getLogger("forebay")
 
 
 class Readiness:
-    """Runs the example of every operation once, in a thread and in a worker process."""
+    """Runs examples of every operation once, in a thread and in a worker process."""
 
     def __init__(self, workshop: Workshop) -> None:
         self._workshop = workshop
@@ -39,17 +42,19 @@ class Readiness:
     async def _prepare(self) -> None:
         try:
             for operation in OPERATIONS.values():
-                await self._rehearse(operation)
+                for request in rehearsals(operation.operation_id):
+                    await self._rehearse(operation, orjson.dumps(request))
         except Exception:
             self.detail = "Preparation failed; the log says why"
             LOG.exception("preparation failed")
             return
         self.is_ready = True
 
-    async def _rehearse(self, operation: Operation[Any]) -> None:
-        body = orjson.dumps(request_example(operation.operation_id))
+    async def _rehearse(self, operation: Operation[Any], body: bytes) -> None:
         media_type = operation.media_types[0]
-        reply = await self._workshop.in_process(operation.operation_id, body, media_type)
+        reply = await self._workshop.in_process(
+            operation.operation_id, body, media_type, deadline=LONGEST_COMPILATION
+        )
         if JSON in operation.media_types:  # pictures are drawn in worker processes only
             work = partial(perform, operation, body, media_type, limits=self._workshop.limits)
             await self._workshop.in_thread(work)

@@ -73,29 +73,28 @@ class Workshop:
             self._limiter = anyio.CapacityLimiter(THREADS)
         return await anyio.to_thread.run_sync(work, limiter=self._limiter)
 
-    async def in_process(self, operation_id: str, body: bytes, media_type: str) -> Reply | Problem:
-        """Result of a long computation, whose process is killed at the deadline."""
+    async def in_process(
+        self, operation_id: str, body: bytes, media_type: str, *, deadline: float | None = None
+    ) -> Reply | Problem:
+        """Result of a long computation; its process is killed at the deadline, by default the limits'."""
         if self.waiting >= self.limits.workers + self.limits.queue:
             raise Problem("busy", "Every worker and the queue are full", headers={"Retry-After": RETRY_AFTER})
         self.waiting += 1
         try:
-            return await self._scheduled(operation_id, body, media_type)
+            arguments = (operation_id, body, media_type, self.limits)
+            return await self._scheduled(arguments, self.limits.deadline if deadline is None else deadline)
         finally:
             self.waiting -= 1
 
-    async def _scheduled(self, operation_id: str, body: bytes, media_type: str) -> Reply | Problem:
-        future = self._open_pool().schedule(
-            run_operation, args=(operation_id, body, media_type, self.limits), timeout=self.limits.deadline
-        )
+    async def _scheduled(self, arguments: tuple[str, bytes, str, Limits], deadline: float) -> Reply | Problem:
+        future = self._open_pool().schedule(run_operation, args=arguments, timeout=deadline)
         try:
             reply: Reply | Problem = await asyncio.wrap_future(future)
         except TimeoutError:
-            seconds = self.limits.deadline
-            raise Problem(
-                "deadline-exceeded", f"Stopped after {seconds:g} s", facts={"deadline": seconds}
-            ) from None
+            facts = {"deadline": deadline}
+            raise Problem("deadline-exceeded", f"Stopped after {deadline:g} s", facts=facts) from None
         except (ProcessExpired, CancelledError) as error:
-            raise RuntimeError(f"a worker process ended during {operation_id}") from error
+            raise RuntimeError(f"a worker process ended during {arguments[0]}") from error
         return reply
 
     def _open_pool(self) -> ProcessPool:

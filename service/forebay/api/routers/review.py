@@ -25,7 +25,7 @@ def counted(severities: Sequence[str]) -> dict[str, Any]:
         "notes": severities.count(Severity.NOTE),
         "cautions": severities.count(Severity.CAUTION),
         "unsafe_to_use": severities.count(Severity.UNSAFE_TO_USE),
-        "worst": max(severities, key=list(Severity).index, default=None),
+        "worst": max(severities, key=[str(severity) for severity in Severity].index, default=None),
     }
 
 

@@ -32,8 +32,8 @@ MAX_STRUCTURES = 500
 EFFORT_A_PAIR = 100
 """Work to review one pair of elements or structures, counted in pairs of element and point."""
 
-EFFORT_A_PIER = 100_000
-"""Work to solve the flow round one pier, counted likewise."""
+EFFORT_A_PIER_PAIR = 150_000
+"""Work to solve the flow round piers, for each pair of them, counted likewise."""
 
 
 class Water(Strict):
@@ -115,7 +115,7 @@ class Layout(Strict):
     @property
     def effort(self) -> int:
         """Work before the first point: checks of each pair of things, and the solution round the piers."""
-        return EFFORT_A_PAIR * self.size**2 + EFFORT_A_PIER * len(self.structures)
+        return EFFORT_A_PAIR * self.size**2 + EFFORT_A_PIER_PAIR * len(self.structures) ** 2
 
     def to_flow(self, units: UnitSystem) -> flow.Layout:
         """Layout in SI, with complex positions."""
