@@ -127,6 +127,7 @@ class Oracle:
         self.layout = layout
         self.map = HalfPlaneMap(layout.shore)
         self.mirrored = not isinstance(layout.shore, OpenWater)
+        self.standing: dict[Number, tuple[Number, Number]] = {}
 
     def velocity(self, z: complex | Number) -> Sum:
         """Return W at a place in the water."""
@@ -153,10 +154,16 @@ class Oracle:
     def _per_depth(self, element: Element) -> Number:
         return CONTEXT.mpf(outflow(element)) / CONTEXT.mpf(self.layout.depth)
 
+    def _standing(self, at: Number) -> tuple[Number, Number]:
+        """Map of the place of an element, remembered."""
+        if at not in self.standing:
+            self.standing[at] = self.map(at)
+        return self.standing[at]
+
     def _pair(self, mapped: tuple[Number, Number], at: Number, strength: Number) -> Sum:
         """Pole and image in the half plane: g / (t - s) + conj(g) / (t - conj(s)), times dt/dz."""
         t, slope = mapped
-        s, _ = self.map(at)
+        s, _ = self._standing(at)
         own = slope * strength / (t - s)
         if not self.mirrored:
             return Sum.of(own)
@@ -165,7 +172,7 @@ class Oracle:
     def _doublet(self, mapped: tuple[Number, Number], at: Number, moment: Number) -> Sum:
         """Derivative of the pair of a source with respect to its place."""
         t, slope = mapped
-        s, slope_there = self.map(at)
+        s, slope_there = self._standing(at)
         strength = moment * slope_there / (2 * CONTEXT.pi)
         own = slope * strength / (t - s) ** 2
         if not self.mirrored:

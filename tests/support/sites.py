@@ -142,9 +142,9 @@ def wall_samples(shore: Shore, count: int = 41) -> tuple[WallSample, ...]:
 
 
 def bank_place(shore: Shore, along: float) -> complex:
-    """Place on the first wall of a shore (on open water: in the water)."""
+    """Place on the first wall of a shore; on open water between two rows of cells."""
     walls = wall_samples(shore, 3)
     if not walls:
-        return place(shore, 0.5, along)
+        return place(shore, 0.515, 0.013 + 0.97 * along)
     first, last = walls[0].points[0], walls[0].points[-1]
     return complex(first + (last - first) * (0.25 + 0.5 * along))
