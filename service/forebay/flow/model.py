@@ -33,6 +33,7 @@ from forebay.flow.layout import (
     Vortex,
     outflow,
 )
+from forebay.flow.lines import line_term
 from forebay.flow.maps import LogarithmMap
 from forebay.flow.piers import solve_piers
 from forebay.flow.placement import TOUCHING, check_layout, scale_of
@@ -211,8 +212,15 @@ class FlowModel:
         at = np.asarray(z, dtype=np.complex128)
         reach = TOUCHING * self.scale if radius is None else radius
         found = np.full(at.shape, -1, dtype=np.int64)
-        for index, place in enumerate(self.singular_places):
-            found[(np.abs(at - place) <= reach) & (found < 0)] = index
+        columns = np.sort(self.singular_places.real)
+        left, right = (
+            np.searchsorted(columns, at.real - reach),
+            np.searchsorted(columns, at.real + reach, "right"),
+        )
+        near = np.nonzero(np.atleast_1d(left != right))
+        for index, place in reversed(list(enumerate(self.singular_places))):
+            hit = np.abs(np.atleast_1d(at)[near] - place) <= reach
+            np.atleast_1d(found)[tuple(axis[hit] for axis in near)] = index
         return found
 
     @cached_property
