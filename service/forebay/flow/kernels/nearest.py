@@ -8,7 +8,7 @@ from numba import njit
 from forebay.flow.arrays import ComplexArray, FloatArray, IntArray
 
 
-@njit(cache=True, error_model="numpy")  # type: ignore[untyped-decorator]
+@njit(cache=True, error_model="numpy")
 def nearest_sites(z: ComplexArray, sites: ComplexArray) -> tuple[FloatArray, IntArray]:
     """Distance to the nearest site and its index.
 

@@ -1,0 +1,1 @@
+"""Where the water of intakes comes from: shares, widths, dividing streamlines and zones."""
