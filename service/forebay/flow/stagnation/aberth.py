@@ -178,11 +178,23 @@ def _inverse(x: ComplexArray, kappa: float, extent: float) -> ComplexArray:
     return np.asarray(d * np.minimum(1.0, extent / np.maximum(size, 1e-300)), dtype=np.complex128)
 
 
+def _extent(field: PoleField, orders: PoleOrders) -> float:
+    """Longest step of the iteration [-]: twice the spread of the poles, or as far as the current is matched."""
+    spread = 2.0 * max(float(np.ptp(orders.at.real)), float(np.ptp(orders.at.imag)))
+    if field.kappa > 0.0:
+        return 2.0 * math.pi
+    if field.constant != 0:
+        matched = [4.0 * float(np.sum(np.abs(orders.strengths))) / abs(field.constant)]
+        for row in field.moments:
+            n = np.arange(1, row.size + 1)
+            matched.append(4.0 * float(np.max((n * np.abs(row) / abs(field.constant)) ** (1.0 / (n + 1)))))
+        spread = max(spread, *matched)
+    return spread or 1.0
+
+
 def all_zeros(field: PoleField, orders: PoleOrders) -> tuple[ComplexArray, BoolArray]:
     """Approximate zeros of W_tau in one period and whether the iteration settled, shape (zero_count,) each."""
-    extent = 2.0 * max(float(np.ptp(orders.at.real)), float(np.ptp(orders.at.imag)), 1e-3)
-    if field.kappa > 0.0:
-        extent = min(extent, 2.0 * math.pi)
+    extent = _extent(field, orders)
     zeros = _starts(field, orders, extent)
     active, _ = _iterate(
         zeros,

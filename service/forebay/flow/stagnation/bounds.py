@@ -1,0 +1,177 @@
+"""What the parts of a flow that are no sums of poles can do over a disc: bounds for each kind of term.
+
+For a disc of radius R about z every function here bounds the remainder |T(z+d) - T(z) - T_z d - T_zbar conj(d)|,
+|d| <= R. A line element c [log(z - a) - log(z - b)] may be continued across itself, so that only its ends count;
+farther away the mean over the line of 1/(z - s) is the sharper bound. In a strip the copies of a line other
+than the nearest are smooth: with R(d) = coth(d/2)/2 - 1/d, |R_k| <= S rho^(1-k), S <= 1/2, rho >= 2.1.
+"""
+
+import math
+
+import numpy as np
+
+from forebay.flow.arrays import ComplexArray, FloatArray
+from forebay.flow.layout import CoreModel
+from forebay.flow.lines import LineTerm
+from forebay.flow.model import CoredVortex
+from forebay.flow.shores import Frame
+
+_REST_SUM, _REST_REACH = 0.5, 2.1
+_NEAR = 1.4
+"""Distance in the plane of logarithms within which a wedge's remainders are bounded this way [-]."""
+
+
+def mean_bound(distance: FloatArray, radius: FloatArray) -> FloatArray:
+    """For the mean of 1/(z - s) over sources no nearer than `distance`; inf if the disc meets them."""
+    with np.errstate(divide="ignore", invalid="ignore"):
+        q = radius / distance
+        bound = q * q / (distance * (1.0 - q))
+    return np.where((q < 1.0) & (distance > 0.0), bound, np.inf)
+
+
+def end_bound(to_end: FloatArray, radius: FloatArray) -> FloatArray:
+    """For log(z - a): -log(1 - q) - q, q = R / |z - a|; inf if the disc holds the end."""
+    with np.errstate(divide="ignore", invalid="ignore"):
+        q = radius / to_end
+        bound = np.where(q < 1e-4, 0.5 * q * q * (1.0 + q), -np.log1p(-np.minimum(q, 1.0)) - q)
+    return np.where(q < 1.0, bound, np.inf)
+
+
+def smooth_bound(radius: FloatArray) -> FloatArray:
+    """For R(d) = coth(d/2)/2 - 1/d with |Im d| <= pi + 1: the copies of a source other than the nearest."""
+    q = radius / _REST_REACH
+    with np.errstate(divide="ignore", invalid="ignore"):
+        bound = _REST_SUM * _REST_REACH * q * q / (1.0 - q)
+    return np.where(q < 1.0, bound, np.inf)
+
+
+def segment_distance(z: ComplexArray, start: complex, end: complex) -> FloatArray:
+    """Distance from a straight segment, shape of z."""
+    run = end - start
+    part = np.clip(((z - start) * np.conj(run)).real / abs(run) ** 2, 0.0, 1.0)
+    return np.abs(z - start - part * run)
+
+
+def _segment_bound(z: ComplexArray, radius: FloatArray, start: complex, end: complex) -> FloatArray:
+    """For the mean of 1/(z - s) over a segment, continued across it if need be."""
+    ends = end_bound(np.abs(z - start), radius) + end_bound(np.abs(z - end), radius)
+    return np.minimum(ends / abs(end - start), mean_bound(segment_distance(z, start, end), radius))
+
+
+def line_bound(term: LineTerm, frame: Frame, z: ComplexArray, radius: FloatArray) -> FloatArray:
+    """Remainder of a line element's W over discs, shape (n,) [m/s].
+
+    term : the line with its panels;  z : shape (n,), centres [m];  radius : shape (n,) [m]
+    """
+    if not frame.map.affine:
+        return _wedge_bound(term, frame, z, radius)
+    rate = abs(complex(term.frame.rate))
+    w, reach = term.frame.forward(z), radius * rate
+    total = np.zeros(z.shape)
+    for panel, share in zip(term.panels, term.shares, strict=True):
+        images = zip(frame.images(panel.start).positions, frame.images(panel.end).positions, strict=True)
+        for start, end in images:
+            if frame.kappa == 0.0:
+                total += abs(share) * _segment_bound(w, reach, start, end)
+            else:
+                total += abs(share) * _strip_bound(w, reach, start, end)
+    return total * rate
+
+
+def _strip_bound(w: ComplexArray, reach: FloatArray, start: complex, end: complex) -> FloatArray:
+    """For the mean of coth((w - s)/2)/2 over a segment and all its copies."""
+    turns = np.round((w - 0.5 * (start + end)).imag / (2.0 * math.pi))
+    near = w - 2j * math.pi * turns
+    close = _segment_bound(near, reach, start, end) + smooth_bound(reach)
+    gap = np.maximum(np.maximum(min(start.real, end.real) - w.real, w.real - max(start.real, end.real)), 0.0) - reach
+    e = np.exp(-np.maximum(gap, 0.5))
+    return np.where(gap > 0.5, np.minimum(close, 0.5 * e * (1.0 + e) / (1.0 - e) ** 3 * reach**2), close)
+
+
+def _wedge_bound(term: LineTerm, frame: Frame, z: ComplexArray, radius: FloatArray) -> FloatArray:
+    """In a corner every source is a pole of the mapped plane; near a panel its logarithms are taken in the site."""
+    n = exponent_of(frame)
+    rate = abs(complex(term.frame.rate))
+    w, reach, tau = term.frame.forward(z), radius * rate, frame.map.forward(z)
+    size = np.abs(w)
+    log_reach = log_radius(reach, size)
+    total = np.zeros(z.shape)
+    for panel, share in zip(term.panels, term.shares, strict=True):
+        middle = complex(frame.map.forward(term.frame.inverse(np.array([panel.middle])))[0])
+        stretch = -n * math.log1p(-min(0.5 * abs(panel.run) / abs(panel.middle), 0.9))
+        for image in (0, 1, 2):
+            place = middle if image == 0 else middle.conjugate() + (2j * math.pi if image == 2 else 0.0)
+            turn = complex(np.exp(2j * math.pi / n)) if image == 2 else 1.0
+            start = panel.start if image == 0 else np.conj(panel.start) * turn
+            end = panel.end if image == 0 else np.conj(panel.end) * turn
+            apart = np.abs(tau - place)
+            far = pulled_back(apart - stretch, n, size, log_reach)
+            near = _segment_bound(w, reach, start, end) + wedge_rest_bound(n, size, log_reach)
+            near = np.where(apart + stretch + n * log_reach < min(4.0, _NEAR * n), near, np.inf)
+            seen = np.abs((tau - place).imag) <= math.pi if image else np.ones(z.shape, dtype=np.bool_)
+            total += np.where(seen, abs(share) * np.minimum(far, near), 0.0)
+    return total * rate
+
+
+def exponent_of(frame: Frame) -> float:
+    """n = pi / interior angle of a corner, 1 elsewhere [-]."""
+    return float(getattr(frame.map, "exponent", 1.0))
+
+
+def log_radius(radius: FloatArray, size: FloatArray) -> FloatArray:
+    """Radius that a disc at distance `size` from the vertex has in the plane of logarithms; inf if it holds it."""
+    q = radius / size
+    return np.where(q < 1.0, -np.log1p(-np.minimum(q, 0.999999)), np.inf)
+
+
+def pulled_back(distance: FloatArray, n: float, size: FloatArray, log_reach: FloatArray) -> FloatArray:
+    """For n (X(tau - p) + 1/2) / z, tau = n log z, the poles no nearer to tau than `distance`."""
+    with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
+        d = np.where(distance > 0.0, distance, np.nan)
+        bound = mean_bound(d, n * log_reach) * (1.0 + 0.5 * d * d)
+        slope = 1.0 / d**2 + 0.25
+        second = np.expm1(log_reach) ** 2
+        total = bound + slope * n * second + (1.0 / d + 1.0 + slope * n * log_reach) * 2.0 * second
+        total = n / size * np.exp(log_reach) * total
+    return np.where(np.isfinite(total), total, np.inf)
+
+
+def wedge_rest_bound(n: float, size: FloatArray, log_reach: FloatArray) -> FloatArray:
+    """For h(log(z/s)) / z, h(u) = n R(n u) - R(u) + (n - 1)/2: what a corner adds to 1/(z - s) near s."""
+    with np.errstate(invalid="ignore", over="ignore"):
+        inner = n * smooth_bound(n * log_reach) + smooth_bound(log_reach)
+        level = max(n + 0.2 + 0.5 * abs(n - 1.0), 0.25 * n * n + 0.25)
+        total = np.exp(log_reach) / size * (inner + 3.0 * level * np.expm1(log_reach) ** 2)
+    return np.where(np.isfinite(total), total, np.inf)
+
+
+def core_bound(vortex: CoredVortex, z: ComplexArray, radius: FloatArray) -> FloatArray:
+    """Remainder of a cored vortex's own W over discs, shape (n,) [m/s].
+
+    Rankine: 0 inside, as a point vortex outside, 2 G R / a^2 across the rim. Lamb-Oseen: half the largest second
+    derivative on the disc times R^2.
+    """
+    strength = abs(vortex.circulation) / (2.0 * math.pi)
+    a = vortex.core.radius
+    d = np.abs(z - vortex.at)
+    point = strength * mean_bound(d, radius)
+    if vortex.core.model is CoreModel.RANKINE:
+        across = 2.0 * strength * radius / a**2
+        return np.where(d + radius < a, 0.0, np.where(d - radius > a, np.minimum(point, across), across))
+    nearest = np.maximum(d - radius, 0.0) / a
+    return 0.5 * strength / a**3 * lamb_oseen_second(nearest) * radius**2
+
+
+_R = np.linspace(1e-3, 12.0, 24001)
+_E = np.exp(-_R * _R)
+_SECOND = np.abs(2.0 * np.expm1(-_R * _R) / _R**3 + 2.0 * _E / _R + _R * _E) + 3.0 * _R * _E
+_FALLING = np.maximum.accumulate(_SECOND[::-1])[::-1] * 1.01
+
+
+def lamb_oseen_second(nearest: FloatArray) -> FloatArray:
+    """Bound for the second derivatives of (1 - exp(-r^2)) / d beyond a distance, in units of the core radius.
+
+    Sum of the absolute second derivatives by z z, twice z zbar and zbar zbar, tabulated and made monotone.
+    """
+    inner = np.interp(nearest - 6e-4, _R, _FALLING)
+    return np.where(nearest > 11.9, 2.1 / np.maximum(nearest, 1.0) ** 3, inner)

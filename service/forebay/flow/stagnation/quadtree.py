@@ -1,0 +1,267 @@
+"""Certified quadtree: halves boxes of the mapped plane until each is free of zeros or belongs to a proven one.
+
+A box is free when |W| exceeds what W can change by over the disc that holds it. A box on which W changes little
+starts Newton's iteration; a zero is accepted with the proof that it is the only one in its disc. A box across a line
+element is looked at twice, with W continued from either side.
+"""
+
+from dataclasses import dataclass, field, replace
+
+import numpy as np
+
+from forebay.flow.arrays import BoolArray, ComplexArray, FloatArray, IntArray
+from forebay.flow.stagnation.field import BoundedField, Discs
+from forebay.flow.stagnation.regions import Region, site_radius
+from forebay.flow.stagnation.slits import TIP, Slit
+
+START = 12
+"""Boxes along the longer side at first."""
+
+SMALLEST = 1e-8
+"""Boxes below this part of the region are left over [-]."""
+
+MOST_BOXES = 400_000
+
+_RADII = (8.0, 4.0, 2.0, 1.0, 0.5, 0.25)
+
+
+@dataclass(frozen=True, slots=True)
+class Boxes:
+    """Boxes of one size: centres in the mapped plane, half-sides, line they are continued across (-1 none), side."""
+
+    at: ComplexArray
+    half: complex
+    line: IntArray
+    side: IntArray
+
+    def where(self, chosen: BoolArray) -> "Boxes":
+        """The chosen ones."""
+        return Boxes(self.at[chosen], self.half, self.line[chosen], self.side[chosen])
+
+    def halved(self) -> "Boxes":
+        """Four quarters of each."""
+        x, y = 0.5 * self.half.real, 0.5 * self.half.imag
+        offsets = np.array([complex(-x, -y), complex(x, -y), complex(-x, y), complex(x, y)])
+        return Boxes(
+            (self.at[:, None] + offsets).ravel(),
+            0.5 * self.half,
+            np.repeat(self.line, 4),
+            np.repeat(self.side, 4),
+        )
+
+
+@dataclass(frozen=True, slots=True)
+class FoundZero:
+    """A proven simple zero.
+
+    at : place [m];  radius, unique : of inclusion and of uniqueness [m]
+    line, side : line element across which W is continued (-1 none) and from which side
+    is_centre : index +1;  is_beyond : it lies behind the line, where W is only a continuation
+    """
+
+    at: complex
+    radius: float
+    unique: float
+    line: int
+    side: int
+    is_centre: bool
+    is_beyond: bool = False
+
+
+@dataclass
+class Quadtree:
+    """One search; `zeros` and `leftover` after `run`.
+
+    field, slits : the flow;  region : where to look
+    holes, hole_radii : discs known to be free of zeros, or left to others [m]
+    """
+
+    field: BoundedField
+    slits: list[Slit]
+    region: Region
+    holes: ComplexArray
+    hole_radii: FloatArray
+    zeros: list[FoundZero] = field(default_factory=list)
+    leftover: list[tuple[complex, float]] = field(default_factory=list)
+    visited: int = 0
+
+    def run(self) -> None:
+        """Search until every box is settled or too small."""
+        boxes = self._first()
+        while boxes.at.size:
+            self.visited += boxes.at.size
+            boxes, discs, z, radius = self._open(boxes)
+            if boxes.at.size == 0:
+                break
+            self._try_newton(boxes, discs, z, radius)
+            kept = ~self._known(boxes, z, radius)
+            small = self._too_small(boxes, z, radius) | (self.visited > MOST_BOXES)
+            for k in np.flatnonzero(kept & small):
+                self.leftover.append((complex(boxes.at[k]), float(abs(boxes.half))))
+            boxes = boxes.where(kept & ~small).halved()
+
+    def _first(self) -> Boxes:
+        width = self.region.right - self.region.left
+        height = self.region.top - self.region.bottom
+        cell = max(width, height) / START
+        nx, ny = max(1, round(width / cell)), max(1, round(height / cell))
+        half = complex(0.5 * width / nx, 0.5 * height / ny)
+        x = self.region.left + half.real * (2 * np.arange(nx) + 1)
+        y = self.region.bottom + half.imag * (2 * np.arange(ny) + 1)
+        at = (x[:, None] + 1j * y[None, :]).ravel()
+        return Boxes(at, half, np.full(at.size, -1, dtype=np.int64), np.zeros(at.size, dtype=np.int64))
+
+    def _open(self, boxes: Boxes) -> tuple[Boxes, Discs, ComplexArray, FloatArray]:
+        """Boxes that may hold a zero, with their discs."""
+        z = self.field.frame.map.inverse(boxes.at)
+        radius = site_radius(self.field.model, z, abs(boxes.half)).real * (1.0 + 1e-9)
+        wet = ~self._dry(z, radius) & ~self._known(boxes, z, radius)
+        boxes, unsettled = self._locked(boxes.where(wet), z[wet], radius[wet])
+        z = self.field.frame.map.inverse(boxes.at)
+        radius = site_radius(self.field.model, z, abs(boxes.half)).real * (1.0 + 1e-9)
+        discs = self._discs(boxes, z, radius)
+        maybe = ~(np.abs(discs.velocity) > discs.spread(radius)) | unsettled
+        rest = np.where(unsettled, np.inf, discs.rest)
+        discs = Discs(discs.velocity[maybe], discs.slope[maybe], discs.skew[maybe], rest[maybe])
+        return boxes.where(maybe), discs, z[maybe], radius[maybe]
+
+    def _dry(self, z: ComplexArray, radius: FloatArray) -> BoolArray:
+        """Inside a pier, or in a disc that is left out."""
+        dry = np.zeros(z.shape, dtype=np.bool_)
+        for pier in self.field.model.piers:
+            dry |= np.abs(z - pier.at) + radius < pier.radius
+        for hole, reach in zip(self.holes, self.hole_radii, strict=True):
+            dry |= np.abs(z - hole) + radius <= reach
+        return dry
+
+    def _known(self, boxes: Boxes, z: ComplexArray, radius: FloatArray) -> BoolArray:
+        """Within the disc in which a proven zero is the only one."""
+        known = np.zeros(z.shape, dtype=np.bool_)
+        for zero in self.zeros:
+            same = (boxes.line == zero.line) & (boxes.side == zero.side)
+            known |= same & (np.abs(z - zero.at) + radius <= zero.unique)
+        return known
+
+    def _locked(self, boxes: Boxes, z: ComplexArray, radius: FloatArray) -> tuple[Boxes, BoolArray]:
+        """Boxes across a line doubled, one for each side; marks those that meet more than that."""
+        line, side = boxes.line.copy(), boxes.side.copy()
+        touched = np.full(z.shape, -1, dtype=np.int64)
+        count, bad = np.zeros(z.shape, dtype=np.int64), np.zeros(z.shape, dtype=np.bool_)
+        gone = np.zeros(z.shape, dtype=np.bool_)
+        for k, slit in enumerate(self.slits):
+            if slit.in_wall:
+                continue
+            hit = slit.distance(z) <= radius * 1.001
+            bad |= slit.to_ends(z) <= radius * 1.001
+            count += hit
+            touched[hit] = k
+            freed = (line == k) & ~hit
+            gone |= freed & (np.sign(slit.local(z).imag) != side)
+            line[freed], side[freed] = -1, 0
+        bad |= count > 1
+        double = (count == 1) & (line < 0) & ~bad
+        kept = ~gone & ~double
+        at = np.concatenate([boxes.at[kept], boxes.at[double], boxes.at[double]])
+        ones = np.ones(int(double.sum()), dtype=np.int64)
+        lines = np.concatenate([line[kept], touched[double], touched[double]])
+        sides = np.concatenate([side[kept], ones, -ones])
+        marks = np.concatenate([bad[kept], bad[double], bad[double]])
+        return Boxes(at, boxes.half, lines, sides), marks
+
+    def _discs(self, boxes: Boxes, z: ComplexArray, radius: FloatArray) -> Discs:
+        return self.field.discs(z, radius, self._lock(boxes.line, boxes.side, z))
+
+    def _lock(self, line: IntArray, side: IntArray, z: ComplexArray) -> ComplexArray:
+        lock = np.zeros(z.shape, dtype=np.complex128)
+        for k, slit in enumerate(self.slits):
+            chosen = line == k
+            if chosen.any():
+                lock[chosen] = slit.lock(z[chosen], side[chosen])
+        return lock
+
+    def _too_small(self, boxes: Boxes, z: ComplexArray, radius: FloatArray) -> BoolArray:
+        """Below the smallest size; near the end of a line a good deal smaller."""
+        small = np.full(z.shape, abs(boxes.half) < SMALLEST * self.region.size)
+        for slit in self.slits:
+            near = slit.to_ends(z) < 0.01 * slit.length
+            small &= ~near | (radius < 0.02 * TIP * slit.length)
+        return small
+
+    def _try_newton(self, boxes: Boxes, discs: Discs, z: ComplexArray, radius: FloatArray) -> None:
+        definite = discs.definiteness
+        with np.errstate(divide="ignore", invalid="ignore"):
+            near = np.abs(discs.velocity) < 4.0 * definite * radius
+        ready = near & (discs.rest < 0.5 * definite * radius)
+        for k in np.flatnonzero(ready):
+            line, side = int(boxes.line[k]), int(boxes.side[k])
+            if any(o.line == line and o.side == side and abs(o.at - z[k]) < 0.5 * o.unique for o in self.zeros):
+                continue
+            found = self.prove(self._newton(complex(z[k]), line, side, float(radius[k])), line, side, float(radius[k]))
+            if found is not None:
+                self._accept(found)
+
+    def _newton(self, z: complex, line: int, side: int, radius: float) -> complex:
+        """Newton's iteration for W + W_z d + W_zbar conj(d) = 0, kept in the closed water."""
+        start = z
+        for _ in range(8):
+            at = np.array([z])
+            jet = self.field.model.jet(at)
+            velocity = complex(jet.velocity[0] + self._lock(np.array([line]), np.array([side]), at)[0])
+            a, b = complex(jet.slope[0]), complex(jet.skew[0])
+            determinant = abs(a) ** 2 - abs(b) ** 2
+            if determinant == 0.0 or not np.isfinite(abs(velocity)):
+                break
+            step = (-velocity * a.conjugate() + velocity.conjugate() * b) / determinant
+            z = z + step
+            if abs(z - start) > 16.0 * radius:
+                return start
+            if abs(step) <= 1e-15 * abs(z):
+                break
+        return z
+
+    def prove(self, z: complex, line: int, side: int, scale: float) -> FoundZero | None:
+        """The proof that a disc about z holds exactly one zero; discs up to 8 `scale` [m] are tried for uniqueness."""
+        at, lines, sides = np.array([z]), np.array([line]), np.array([side])
+        lock = self._lock(lines, sides, at)
+        point = self.field.discs(at, np.zeros(1), lock)
+        definite = float(point.definiteness[0])
+        if not definite > 0.0:
+            return None
+        radius = 2.0 * float(np.abs(point.velocity[0]) + point.rest[0]) / definite
+        if not np.isfinite(radius) or self._change(at, radius, lock) >= 0.5 * definite:
+            return None
+        unique = radius
+        for factor in _RADII:
+            trial = factor * scale
+            if trial > radius and self._room(z, line) > trial and self._change(at, trial, lock) < 0.95 * definite:
+                unique = trial
+                break
+        centre = bool(abs(point.slope[0]) < abs(point.skew[0]))
+        return FoundZero(z, radius, unique, line, side, centre)
+
+    def _change(self, at: ComplexArray, radius: float, lock: ComplexArray) -> float:
+        """Bound for the change of the derivatives over a disc: 2/R times the remainder over twice the radius."""
+        return float(self.field.discs(at, np.array([2.0 * radius]), lock).rest[0]) * 2.0 / radius
+
+    def _room(self, z: complex, line: int) -> float:
+        """Distance to the nearest line that W is not continued across, and to the ends of all [m]."""
+        at = np.array([z])
+        room = np.inf
+        for k, slit in enumerate(self.slits):
+            distance = slit.to_ends(at) if k == line or slit.in_wall else slit.distance(at)
+            room = min(room, float(distance[0]))
+        return room
+
+    def _accept(self, found: FoundZero) -> None:
+        """Note a zero that lies on its own side of its line and is not yet known."""
+        if found.line >= 0:
+            aside = float(self.slits[found.line].local(np.array([found.at])).imag[0]) * found.side
+            if aside < -found.radius:
+                self.zeros.append(replace(found, is_beyond=True))
+                return
+        for k, other in enumerate(self.zeros):
+            if abs(other.at - found.at) <= found.radius + other.radius and other.side == found.side:
+                if found.unique > other.unique:
+                    self.zeros[k] = replace(found, radius=max(found.radius, other.radius))
+                return
+        self.zeros.append(found)
