@@ -81,7 +81,7 @@ def draw_levels(
     model, lattice : the flow and the grid laid over it
     component : stream function or potential (which needs a flow without vorticity)
     step : distance of the levels [m2/s]
-    through : a point that shall lie on a level; default: the lower left corner of the water [m]
+    through : a point that shall lie on a level; default: levels keep off the first node in the water [m]
     apart : least distance step / |W| of neighbouring lines; where it is less they are left out [m]
 
     Returns
@@ -97,6 +97,8 @@ def draw_levels(
     rises = component.of(lattice.steps)
     branches = single_out(lattice, rises, step)
     offset = value_at(model, lattice, component, branches=branches, place=through)
+    if through is None:
+        offset += 0.5 * step  # no level through a node
     crossings = find_crossings(lattice, rises, branches, step=step, offset=offset)
     crossings = settle(model, lattice, component, crossings, step=step)
     pairs = pair_crossings(lattice, rises, crossings, step=step)

@@ -5,7 +5,7 @@ from typing import assert_never
 
 import numpy as np
 
-from forebay.charts.labels import Wish
+from forebay.charts.labels import Wish, inside
 from forebay.charts.land import visible_part
 from forebay.charts.mapframe import MapFrame
 from forebay.charts.sheet import Box, shortened
@@ -45,18 +45,28 @@ STRUCTURE_ZORDER = 7.0
 
 @dataclass(slots=True)
 class Drawn:
-    """What has been drawn so far: boxes that labels must not cover [px], labels wanted, glyphs to explain."""
+    """What has been drawn so far.
+
+    taken : boxes that labels must not cover [px];  symbols : those of elements among them
+    wishes : labels wanted;  glyphs : what the key explains
+    beyond : elements and structures outside the window;  hidden : stagnation points under a symbol
+    """
 
     taken: list[Box] = field(default_factory=list)
+    symbols: list[Box] = field(default_factory=list)
     wishes: list[Wish] = field(default_factory=list)
     glyphs: set[Glyph] = field(default_factory=set)
     beyond: int = 0
+    hidden: int = 0
 
     def add(self, frame: MapFrame, glyph: Glyph, *, text: str, at: complex, radius: float) -> None:
         """Note a symbol at `at` [m] of a radius [px] and the label that it wants."""
         x, y = frame.on_sheet(at)
         self.glyphs.add(glyph)
-        self.taken.append(Box(x - radius, y - radius, x + radius, y + radius))
+        box = Box(x - radius, y - radius, x + radius, y + radius)
+        self.taken.append(box)
+        if glyph not in (Glyph.PIER, Glyph.STAGNATION):
+            self.symbols.append(box)
         if text:
             self.wishes.append(wish_for(frame, text, (x, y), radius))
 
@@ -134,8 +144,12 @@ def draw_piers(frame: MapFrame, piers: tuple[Pier, ...], drawn: Drawn) -> None:
 def draw_stagnation_points(frame: MapFrame, points: tuple[StagnationPoint, ...], drawn: Drawn) -> None:
     """A diamond at each stagnation point of the site; those that belong to line ends alone are left out."""
     stamp = Stamp(frame.axes, frame.sheet, ELEMENT_ZORDER + 1)
+    symbols = tuple(drawn.symbols)
     for index, point in enumerate(points):
         if point.is_artefact or not frame.window.contains(point.at):
+            continue
+        if any(inside(box, frame.on_sheet(point.at)) for box in symbols):
+            drawn.hidden += 1
             continue
         x, y = frame.points(np.array([point.at]))[0]
         stamp_point(stamp, Glyph.STAGNATION, float(x), float(y), name=f"stagnation-point-{index + 1}")

@@ -94,7 +94,7 @@ def draw_scene(scene: Scene, options: FlowNetOptions) -> Picture:
         left_out = draw_labels(frame, scene, drawn) if Layer.LABELS in options.layers else 0
         draw_head(sheet, scene, options)
         draw_key(frame, scene, net, options=options, glyphs=drawn.glyphs)
-        notes = [*net_notes(net, scene, options), *scene.notes, *counting_notes(drawn.beyond, left_out)]
+        notes = [*net_notes(net, scene, options), *scene.notes, *counting_notes(drawn, left_out)]
         draw_foot(sheet, notes)
         return Picture(options.media_type, sheet.encode(options.media_type, options.title))
 

@@ -19,7 +19,7 @@ KEY_HEIGHT = 114.0
 ROWS = 4
 """Symbols under each other in the key."""
 
-COLUMN = 150.0
+COLUMN = 162.0
 """Width of a column of symbols [px at scale 1]."""
 
 TEXT = 11.0

@@ -13,6 +13,7 @@ from scipy import ndimage
 
 from forebay.flow.arrays import BoolArray, ComplexArray, FloatArray, IntArray
 from forebay.flow.model import FlowModel
+from forebay.flow.shores import Wall
 from forebay.flow.stagnation.result import Window
 
 GRID_SHIFT = (0.381966, 0.618034)
@@ -104,9 +105,10 @@ class Lattice:
     def holes(self) -> IntArray:
         """Number of the hole that a cell belongs to, shape (ny-1, nx-1): -1 if usable, 0 if outside.
 
-        A hole is a patch of unusable cells that touch; those that reach the rim of the grid are outside.
+        A hole is a patch of unusable cells with common edges; one that reaches the rim of the grid is outside.
+        Cells that touch in a corner only do not belong together: one can walk between them through the node.
         """
-        labels, count = ndimage.label(~self.usable, structure=EIGHT_NEIGHBOURS)
+        labels, count = ndimage.label(~self.usable)
         rim = np.concatenate([labels[0], labels[-1], labels[:, 0], labels[:, -1]])
         inner = np.setdiff1d(np.arange(1, count + 1), rim)
         numbers = np.full(count + 1, OUTSIDE)
@@ -139,7 +141,7 @@ def lay_lattice(model: FlowModel, window: Window, columns: int) -> Lattice:
     near = ndimage.binary_dilation(wet, structure=EIGHT_NEIGHBOURS)
     across = edge_steps(model, nodes[:, :-1], nodes[:, 1:], near[:, :-1] & near[:, 1:])
     upward = edge_steps(model, nodes[:-1], nodes[1:], near[:-1] & near[1:])
-    usable = usable_cells(across, upward, wet)
+    usable = usable_cells(across, upward, near_water(wet, nodes, model.walls))
     clear_singular_cells(model, nodes, usable)
     return Lattice(nodes, np.concatenate([across.ravel(), upward.ravel()]), wet, usable)
 
@@ -151,12 +153,32 @@ def edge_steps(model: FlowModel, begin: ComplexArray, end: ComplexArray, wanted:
     return steps
 
 
-def usable_cells(across: ComplexArray, upward: ComplexArray, wet: BoolArray) -> BoolArray:
-    """Cells with a corner in the water round which the flux, and so the stream function, closes."""
+def near_water(wet: BoolArray, nodes: ComplexArray, walls: tuple[Wall, ...]) -> BoolArray:
+    """Cells with a corner in the water, or with the end of a wall in them, where water may hide."""
+    found = wet[:-1, :-1] | wet[:-1, 1:] | wet[1:, :-1] | wet[1:, 1:]
+    ends = [
+        wall.point + length * wall.direction
+        for wall in walls
+        for length in (-wall.before, wall.after)
+        if np.isfinite(length)
+    ]
+    local = (np.array(ends, dtype=np.complex128) - nodes[0, 0]) / (nodes[0, 1] - nodes[0, 0])
+    mark_cells(found, local, marked=True)
+    return found
+
+
+def mark_cells(cells: BoolArray, local: ComplexArray, *, marked: bool) -> None:
+    """Set the cells that hold places given in units of the spacing from the first node, in place."""
+    column, row = np.floor(local.real), np.floor(local.imag)
+    inside = (column >= 0) & (column < cells.shape[1]) & (row >= 0) & (row < cells.shape[0])
+    cells[row[inside].astype(int), column[inside].astype(int)] = marked
+
+
+def usable_cells(across: ComplexArray, upward: ComplexArray, in_water: BoolArray) -> BoolArray:
+    """Cells in the water round which the flux, and so the stream function, closes."""
     bottom, top, left, right = across[:-1], across[1:], upward[:, :-1], upward[:, 1:]
     sides = np.abs(bottom) + np.abs(right) + np.abs(top) + np.abs(left)
     closes = np.abs((bottom + right - top - left).imag) <= ROUNDING * sides
-    in_water = wet[:-1, :-1] | wet[:-1, 1:] | wet[1:, :-1] | wet[1:, 1:]
     return np.asarray(closes & np.isfinite(sides) & in_water, dtype=np.bool_)
 
 
@@ -165,10 +187,7 @@ def clear_singular_cells(model: FlowModel, nodes: ComplexArray, usable: BoolArra
     places = np.array([singularity.at for singularity in model.singularities], dtype=np.complex128)
     spacing = nodes[0, 1].real - nodes[0, 0].real
     for corner in (0.3 + 0.3j, 0.3 - 0.3j, -0.3 + 0.3j, -0.3 - 0.3j):
-        local = (places - nodes[0, 0]) / spacing + corner
-        column, row = np.floor(local.real), np.floor(local.imag)
-        inside = (column >= 0) & (column < usable.shape[1]) & (row >= 0) & (row < usable.shape[0])
-        usable[row[inside].astype(int), column[inside].astype(int)] = False
+        mark_cells(usable, (places - nodes[0, 0]) / spacing + corner, marked=False)
 
 
 def cell_corners(lattice: Lattice, values: FloatArray) -> FloatArray:

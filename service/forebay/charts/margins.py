@@ -2,7 +2,16 @@
 
 from typing import Final
 
-from forebay.charts.key import KEY_HEIGHT, ROWS, Bearings, draw_bearings, draw_speed_scale, draw_symbols
+from forebay.charts.elements import Drawn
+from forebay.charts.key import (
+    COLUMN,
+    KEY_HEIGHT,
+    ROWS,
+    Bearings,
+    draw_bearings,
+    draw_speed_scale,
+    draw_symbols,
+)
 from forebay.charts.mapframe import MapFrame
 from forebay.charts.net import FlowNet
 from forebay.charts.options import FlowNetOptions, Layer, Scene
@@ -57,18 +66,20 @@ def draw_key(
     shown = [glyph for glyph in Glyph if glyph in glyphs]
     draw_symbols(sheet, Box(left, top, right, top + KEY_HEIGHT * unit), shown)
     columns = max(2, -(-len(shown) // ROWS))
-    middle = max(left + (columns * 150 + 10) * unit, (left + right) / 2 - 110 * unit)
+    middle = max(left + (columns * COLUMN + 4) * unit, (left + right) / 2 - 110 * unit)
     draw_bearings(frame, middle, top, Bearings(scene.model.layout.ambient.velocity, options.north))
     if Layer.SPEED in options.layers:
         space = Box(max(right - 330 * unit, middle + 215 * unit), top, right, top + KEY_HEIGHT * unit)
         draw_speed_scale(sheet, space, net.levels, options.units)
 
 
-def counting_notes(beyond: int, left_out: int) -> list[str]:
-    """How many elements lie outside the window and how many labels found no place."""
+def counting_notes(drawn: Drawn, left_out: int) -> list[str]:
+    """How many elements lie outside the window, and what found no place in it."""
     notes = []
-    if beyond:
-        notes.append(f"Outside this window: {beyond} of the layout's elements and structures.")
+    if drawn.hidden:
+        notes.append(f"Stagnation points too near a symbol to be marked: {drawn.hidden}.")
+    if drawn.beyond:
+        notes.append(f"Outside this window: {drawn.beyond} of the layout's elements and structures.")
     if left_out:
         notes.append(f"Labels left out for want of room: {left_out}.")
     return notes

@@ -1,15 +1,16 @@
 """Colours: one ramp for speed that darkens evenly, and inks that stay apart without colour.
 
-The ramp runs from sand over sage to slate blue; its lightness falls strictly, so that it reads the same
-in grey, and it holds no red-green contrast.
+The ramp runs from sand over sage to slate blue. Each band is darker than the one before by the same
+factor of 1.19 in contrast, so that it reads the same in grey; it holds no red-green contrast; and its
+darkest band is still light enough for dark lines (contrast above 3).
 """
 
 from typing import Final
 
-RAMP: Final = ("#fbf6e6", "#e9ecd0", "#cfe0c4", "#aed1c2", "#8abdc0", "#69a4ba", "#5088ae", "#3f6c9c")
+RAMP: Final = ("#fcf6e3", "#dee7bc", "#b7dab6", "#92cbbd", "#7bbac5", "#73a8c7", "#7096c3", "#6e85ba")
 """Speed bands from slow to fast."""
 
-FASTER: Final = "#304f80"
+FASTER: Final = "#6c76ae"
 """Beyond the last band, near intakes and outfalls."""
 
 INK: Final = "#14212e"
@@ -30,7 +31,7 @@ LAND_HATCH: Final = "#b3a58d"
 WALL: Final = "#54462f"
 """Banks and outlines of structures."""
 
-EQUIPOTENTIAL: Final = "#8c4a12"
+EQUIPOTENTIAL: Final = "#561a0a"
 """Equipotentials, always dashed."""
 
 DIVIDING: Final = "#d0380a"

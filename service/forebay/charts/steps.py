@@ -21,7 +21,7 @@ BANDS = 8
 """Largest number of speed bands."""
 
 NARROW_RANGE = 0.4
-"""Spread of speeds, as a share of the largest, below which bands do not start from zero."""
+"""Spread of speeds, as a share of the largest, below which the first band takes all that is slow."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -87,7 +87,7 @@ def common_divisor(discharges: list[float]) -> float:
 
 
 def speed_levels(speeds: FloatArray) -> FloatArray:
-    """Limits of the speed bands, ascending, at least two; from zero unless all speeds are alike.
+    """Limits of the speed bands from zero, at least two; the first band is wide if speeds are alike.
 
     The last limit lies near the 97th percentile of the map, so that the few cells at an intake do not
     take all the colours; what is faster gets a band of its own.
@@ -100,9 +100,11 @@ def speed_levels(speeds: FloatArray) -> FloatArray:
     if high - low > NARROW_RANGE * high:
         low = 0.0
     spread = max(high - low, 1e-3 * high)
-    step = next(c for c in growing_steps(spread / BANDS) if ceil(high / c) - floor(low / c) <= BANDS)
+    most = BANDS if low == 0.0 else BANDS - 1
+    step = next(c for c in growing_steps(spread / BANDS) if ceil(high / c) - floor(low / c) <= most)
     first, last = floor(low / step), ceil(high / step)
-    return np.asarray(np.arange(first, max(last, first + 1) + 1) * step, dtype=np.float64)
+    limits = np.arange(first, max(last, first + 1) + 1) * step
+    return np.asarray(limits if first == 0 else np.append(0.0, limits), dtype=np.float64)
 
 
 def growing_steps(start: float) -> list[float]:

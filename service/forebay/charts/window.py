@@ -16,6 +16,12 @@ CAPTURE_REACHES = 2.5
 MARGIN = 0.2
 """Room round everything, as a share of the larger side."""
 
+LAND_STRIP = 0.06
+"""Land shown beyond the water, as a share of the width of the window."""
+
+SAMPLES = 80
+"""Points along each side of the grid on which water is looked for."""
+
 FLATTEST = 0.3
 """Least height of a window over its width."""
 
@@ -29,7 +35,7 @@ def choose_window(model: FlowModel, aspect: float | None = None) -> Window:
     Parameters
     ----------
     model : the flow
-    aspect : height over width that the window shall have; None: the site's, FLATTEST to STEEPEST
+    aspect : height over width that the window shall have; None: the site's, at most STEEPEST
 
     Returns
     -------
@@ -41,7 +47,23 @@ def choose_window(model: FlowModel, aspect: float | None = None) -> Window:
     margin = MARGIN * max(extent(places), 0.5 * size)
     low = complex(places.real.min() - margin, places.imag.min() - margin)
     high = complex(places.real.max() + margin, places.imag.max() + margin)
-    return shaped(low, high, aspect)
+    window = without_hinterland(model, shaped(low, high, None))
+    corners = complex(window.x[0], window.y[0]), complex(window.x[1], window.y[1])
+    return window if aspect is None else shaped(*corners, aspect)
+
+
+def without_hinterland(model: FlowModel, window: Window) -> Window:
+    """The window without the land that lies further than LAND_STRIP from the water in it."""
+    x, y = (np.linspace(*side, SAMPLES) for side in (window.x, window.y))
+    wet = model.wet(x[None, :] + 1j * y[:, None])
+    if not wet.any():
+        return window
+    strip = LAND_STRIP * (window.x[1] - window.x[0])
+    columns, rows = x[wet.any(axis=0)], y[wet.any(axis=1)]
+    return Window(
+        (max(window.x[0], float(columns[0]) - strip), min(window.x[1], float(columns[-1]) + strip)),
+        (max(window.y[0], float(rows[0]) - strip), min(window.y[1], float(rows[-1]) + strip)),
+    )
 
 
 def shaped(low: complex, high: complex, aspect: float | None) -> Window:
