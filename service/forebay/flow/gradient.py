@@ -57,13 +57,15 @@ class GradientTerm:
         """Integral of W dz along straight chords a -> b [m2/s]: the midpoint rule is exact for linear W."""
         return np.asarray(self._velocity(0.5 * (a + b)) * (b - a), dtype=np.complex128)
 
-    def arcs(self, centre: complex, start: ComplexArray, end: ComplexArray, turn: FloatArray) -> ComplexArray:
-        """Integral of W dz along circular arcs about `centre` [m2/s].
+    def arcs(
+        self, centre: ComplexArray, start: ComplexArray, end: ComplexArray, turn: FloatArray
+    ) -> ComplexArray:
+        """Integral of W dz along circular arcs [m2/s].
 
         int slope (z - at) dz is a difference of squares; int conj(z - at) dz = conj(centre - at)(end - start)
         + i radius^2 turn.
 
-        start, end : shape (n,), end points of the arcs [m];  turn : shape (n,), swept angle, signed [rad]
+        centre, start, end : shape (n,), of the arcs [m];  turn : shape (n,), swept angle, signed [rad]
         """
         strain = 0.5 * self.slope * ((end - self.at) ** 2 - (start - self.at) ** 2)
         swept = np.conj(centre - self.at) * (end - start) + 1j * np.abs(start - centre) ** 2 * turn

@@ -80,9 +80,10 @@ class LineTerm:
         """Conjugate velocity [m/s] and derivatives [1/s] at z, any shape [m]; nan at the line's ends."""
         w = np.ravel(self.frame.forward(z))
         velocity, slope = np.zeros(w.shape, np.complex128), np.zeros(w.shape, np.complex128)
-        for panel, share in zip(self.panels, self.shares, strict=True):
-            velocity += share * self.kernel.velocity(w, panel)
-            slope += share * self.kernel.slope(w, panel)
+        with np.errstate(invalid="ignore"):
+            for panel, share in zip(self.panels, self.shares, strict=True):
+                velocity += share * self.kernel.velocity(w, panel)
+                slope += share * self.kernel.slope(w, panel)
         whole = np.isfinite(velocity) & np.isfinite(slope)
         nothing = complex(np.nan, np.nan)
         velocity = np.where(whole, velocity, nothing).reshape(np.shape(z)) * self.frame.rate
@@ -93,8 +94,9 @@ class LineTerm:
         """Conjugate velocity alone [m/s]: `jet` without its derivatives, at half the cost."""
         w = np.ravel(self.frame.forward(z))
         total = np.zeros(w.shape, dtype=np.complex128)
-        for panel, share in zip(self.panels, self.shares, strict=True):
-            total += share * self.kernel.velocity(w, panel)
+        with np.errstate(invalid="ignore"):
+            for panel, share in zip(self.panels, self.shares, strict=True):
+                total += share * self.kernel.velocity(w, panel)
         whole = np.where(np.isfinite(total), total * self.frame.rate, complex(np.nan, np.nan))
         return whole.reshape(np.shape(z))
 
