@@ -5,7 +5,7 @@ import io
 
 import pytest
 
-from forebay.api.schemas.field import Quantity
+from forebay.workflows.sample import Quantity
 from support.http import SAMPLE, a_layout, a_sample, assert_problem, pointers
 
 ALWAYS = ["x", "y", "u", "v", "speed"]

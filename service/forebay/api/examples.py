@@ -32,13 +32,27 @@ OPEN_WATER: dict[str, Any] = {
         {"kind": "doublet", "name": "pair", "at": [25, -30], "moment": [-1.2, 0.3]},
     ],
 }
-"""A site without banks, whose flow takes other kernels than the invented site's."""
+"""A site without banks."""
+
+CHANNEL: dict[str, Any] = {
+    "depth": 3.0,
+    "ambient": {"velocity": [0.4, 0.0]},
+    "shore": {"kind": "channel", "point": [0, 0], "along": [1, 0], "width": 60},
+    "elements": [
+        {"kind": "sink", "name": "intake", "at": [0, 5], "discharge": 1.0},
+        {"kind": "source", "name": "outfall", "at": [40, 60], "discharge": 0.6},
+    ],
+    "structures": [{"kind": "pier", "name": "pier", "at": [20, 30], "radius": 1.5}],
+}
+"""A small site between banks."""
 
 
 def rehearsals(operation_id: str) -> list[dict[str, Any]]:
-    """Requests that between them take every kernel an operation needs."""
+    """Requests, each answered quickly, that between them take the kernels an operation needs."""
     example = request_example(operation_id)
-    return [example, example | {"layout": OPEN_WATER}] if "layout" in example else [example]
+    if "layout" not in example:
+        return [example]
+    return [example | {"layout": layout} for layout in (OPEN_WATER, CHANNEL)]
 
 
 def file_name(path: str) -> str:

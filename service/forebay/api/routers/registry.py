@@ -8,6 +8,7 @@ from forebay.api.operation import Operation
 from forebay.api.routers import (
     catalogues,
     chart,
+    contour,
     documents,
     field,
     operation,
@@ -22,6 +23,7 @@ OPERATIONS: dict[str, Operation[Any]] = {
     for known in (
         field.SAMPLE,
         stagnation.SEARCH,
+        contour.INTEGRATE,
         stress.TENSOR,
         withdrawal.TRACE,
         review.REVIEW,
@@ -33,6 +35,7 @@ OPERATIONS: dict[str, Operation[Any]] = {
 ROUTERS: tuple[APIRouter, ...] = (
     field.router,
     stagnation.router,
+    contour.router,
     stress.router,
     withdrawal.router,
     review.router,

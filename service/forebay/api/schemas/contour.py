@@ -1,7 +1,9 @@
 """Request and answer of contour/integrate."""
 
+import math
 from typing import Annotated, Self
 
+import numpy as np
 from pydantic import Field, model_validator
 from pydantic_core import PydanticCustomError
 
@@ -9,14 +11,18 @@ from forebay.api.schemas.common import Answer, Name, Strict
 from forebay.api.schemas.layout import LayoutRequest
 from forebay.api.schemas.quantities import (
     AreaValue,
+    CountValue,
     Degrees,
     DischargeValue,
     FluxValue,
     LengthValue,
     Position,
     PositiveMetres,
-    TurnsValue,
 )
+from forebay.api.units import UnitSystem
+from forebay.flow.contour import ContourStatus
+from forebay.flow.paths import Arc, BrokenPathError, Piece, Straight
+from forebay.flow.paths import Contour as FlowContour
 
 MAX_CONTOURS = 1000
 """Contours of one request."""
@@ -47,6 +53,11 @@ class ArcSegment(Strict):
     from_deg: Annotated[Degrees, Field(description="Direction from the centre at the start", examples=[0.0])]
     to_deg: Annotated[Degrees, Field(description="Direction from the centre at the end")]
 
+    def to_flow(self, units: UnitSystem) -> Arc:
+        """Arc in SI."""
+        angles = math.radians(self.from_deg), math.radians(self.to_deg)
+        return Arc(units.position(self.centre), units.read(self.radius, "m"), *angles)
+
 
 class Segment(Strict):
     """Exactly one of `line`, `arc`."""
@@ -61,6 +72,14 @@ class Segment(Strict):
         if (self.line is None) == (self.arc is None):
             raise PydanticCustomError("one_way", "Exactly one of line, arc")
         return self
+
+    def to_flow(self, units: UnitSystem) -> Piece:
+        """Piece in SI."""
+        if self.arc is not None:
+            return self.arc.to_flow(units)
+        if self.line is None:
+            raise TypeError("a segment without line and arc passed its validation")
+        return Straight(units.position(self.line.start), units.position(self.line.end))
 
 
 class Contour(Strict):
@@ -97,11 +116,43 @@ class Contour(Strict):
         """Number of segments."""
         return len(self.polyline or self.path or ()) or 1
 
+    def to_flow(self, units: UnitSystem) -> FlowContour:
+        """Contour in SI.
+
+        Raises BrokenPathError with the path from this contour.
+        """
+        if self.polyline is not None:
+            points = np.array([units.position(pair) for pair in self.polyline])
+            return FlowContour.polyline(self.name, points, closed=self.closed)
+        if self.circle is not None:
+            centre, radius = units.position(self.circle.centre), units.read(self.circle.radius, "m")
+            return FlowContour.circle(self.name, centre, radius)
+        try:
+            return FlowContour(self.name, tuple(piece.to_flow(units) for piece in self.path or ()))
+        except BrokenPathError as error:
+            error.path = ("path", *error.path)
+            raise
+
+
+Contours = Annotated[list[Contour], Field(max_length=MAX_CONTOURS, description="Contours")]
+
+
+def flow_contours(contours: list[Contour], units: UnitSystem, field: str) -> tuple[FlowContour, ...]:
+    """Contours in SI; an error names its place below the request's `field`."""
+    converted = []
+    for index, contour in enumerate(contours):
+        try:
+            converted.append(contour.to_flow(units))
+        except BrokenPathError as error:
+            error.path = (field, index, *error.path)
+            raise
+    return tuple(converted)
+
 
 class ContourRequest(LayoutRequest):
     """Circulation and flux along contours."""
 
-    contours: Annotated[list[Contour], Field(min_length=1, max_length=MAX_CONTOURS, description="Contours")]
+    contours: Annotated[Contours, Field(min_length=1)]
 
 
 class ElementShare(Answer):
@@ -116,7 +167,7 @@ class Enclosed(Answer):
     """How often a closed contour turns round an element."""
 
     element: Annotated[str, Field(examples=["town intake"])]
-    turns: TurnsValue
+    turns: Annotated[CountValue, Field(description="Anticlockwise positive", examples=[1])]
 
 
 class Quadrature(Answer):
@@ -140,7 +191,8 @@ class ContourValue(Answer):
     by_element: list[ElementShare]
     enclosed: list[Enclosed]
     quadrature: Quadrature | None
-    status: Annotated[str, Field(examples=["integrated"])]
+    status: Annotated[ContourStatus, Field(description="Whether there are values")]
+    through: Annotated[str | None, Field(description="Point element that the contour meets")]
 
 
 class ContourResult(Answer):

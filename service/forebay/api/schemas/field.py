@@ -1,6 +1,5 @@
 """Request and answer of field/sample."""
 
-from enum import StrEnum
 from typing import Annotated
 
 from pydantic import Field
@@ -20,25 +19,7 @@ from forebay.api.schemas.quantities import (
     RatioValue,
     SpeedValue,
 )
-
-
-class Quantity(StrEnum):
-    """Quantities besides x, y, u, v and speed."""
-
-    DIRECTION = "direction_deg"
-    POTENTIAL = "potential"
-    STREAM_FUNCTION = "stream_function"
-    PRESSURE_COEFFICIENT = "pressure_coefficient"
-    HEAD_CHANGE = "head_change"
-    PRESSURE_GRADIENT_ALONG = "pressure_gradient_along"
-    PRESSURE_GRADIENT_ACROSS = "pressure_gradient_across"
-    STREAMLINE_CURVATURE = "streamline_curvature"
-    VORTICITY = "vorticity"
-    STRAIN_RATE_XX = "strain_rate_xx"
-    STRAIN_RATE_XY = "strain_rate_xy"
-    STRAIN_RATE_YY = "strain_rate_yy"
-    ACCELERATION_X = "acceleration_x"
-    ACCELERATION_Y = "acceleration_y"
+from forebay.workflows.sample import PointStatus, Quantity
 
 
 class SampleRequest(LayoutRequest):
@@ -64,7 +45,7 @@ class Flagged(Answer):
     """A point without a value."""
 
     index: Annotated[CountValue, Field(description="Index of the point, from 0")]
-    status: Annotated[str, Field(description="Why", examples=["on-land"])]
+    status: Annotated[PointStatus, Field(description="Why")]
 
 
 class FieldResult(Answer):

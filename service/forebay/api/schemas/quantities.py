@@ -110,7 +110,6 @@ SalinityValue = Annotated[float | None, measured("g/kg", 0.0)]
 PressureGradientValue = Annotated[float | None, measured("Pa/m", 0.4)]
 SurfaceTensionValue = Annotated[float | None, measured("N/m", 0.074)]
 CovarianceValue = Annotated[float | None, measured("1/s2", 1e-6)]
-TurnsValue = Annotated[float | None, measured("1", 1)]
 OwnUnitValue = Annotated[float | None, measured("{unit}", 0.12192)]
 """Number whose unit stands beside it in `unit`."""
 

@@ -1,0 +1,50 @@
+"""contour/integrate: circulation and flux along contours."""
+
+from dataclasses import asdict
+
+from fastapi import APIRouter
+
+from forebay.api.limits import Price
+from forebay.api.operation import Operation, Outcome
+from forebay.api.review import reviewed
+from forebay.api.routers.serving import serve
+from forebay.api.schemas.contour import ContourRequest, ContourResult, flow_contours
+from forebay.workflows.contour import integrate_contours
+
+POINTS_A_SEGMENT = 200
+"""Evaluations of the field for one segment: its chords and the quadrature."""
+
+
+def compute(request: ContourRequest, _media_type: str) -> Outcome:
+    layout = request.flow_layout()
+    contours = flow_contours(request.contours, request.unit_system, "contours")
+    integrals = integrate_contours(layout, contours)
+    return reviewed(request, layout, {"contours": [asdict(integral) for integral in integrals]})
+
+
+def price(request: ContourRequest) -> Price:
+    segments = sum(contour.size for contour in request.contours)
+    layout = request.layout
+    values = 2 * layout.size * len(request.contours)
+    return Price(
+        POINTS_A_SEGMENT * segments, layout.size, values=values, effort=layout.effort, path=("contours",)
+    )
+
+
+INTEGRATE = Operation(
+    operation_id="integrateContour",
+    path="/v1/contour/integrate",
+    summary="Circulation and flux along contours, element by element",
+    description=(
+        "Exact, by branch-tracked potential differences; `quadrature` beside it is an independent numerical "
+        "integral of the velocity. Flux is positive towards the right of the direction of travel, so "
+        "outward on an anticlockwise closed contour. A contour through a singularity has null values and says so."
+    ),
+    request=ContourRequest,
+    result=ContourResult,
+    compute=compute,
+    price=price,
+)
+
+router = APIRouter()
+serve(router, INTEGRATE)
