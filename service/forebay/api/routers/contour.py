@@ -14,6 +14,9 @@ from forebay.workflows.contour import integrate_contours
 POINTS_A_SEGMENT = 200
 """Evaluations of the field for one segment: its chords and the quadrature."""
 
+EFFORT_A_SEGMENT = 500_000
+"""Work to lead one segment round every obstacle, counted in pairs of element and point."""
+
 
 def compute(request: ContourRequest, _media_type: str) -> Outcome:
     layout = request.flow_layout()
@@ -24,11 +27,9 @@ def compute(request: ContourRequest, _media_type: str) -> Outcome:
 
 def price(request: ContourRequest) -> Price:
     segments = sum(contour.size for contour in request.contours)
-    layout = request.layout
-    values = 2 * layout.size * len(request.contours)
-    return Price(
-        POINTS_A_SEGMENT * segments, layout.size, values=values, effort=layout.effort, path=("contours",)
-    )
+    values = 2 * request.layout.size * len(request.contours)
+    layout, effort = request.layout, request.layout.effort + EFFORT_A_SEGMENT * segments
+    return Price(POINTS_A_SEGMENT * segments, layout.size, values=values, effort=effort, path=("contours",))
 
 
 INTEGRATE = Operation(
@@ -36,9 +37,10 @@ INTEGRATE = Operation(
     path="/v1/contour/integrate",
     summary="Circulation and flux along contours, element by element",
     description=(
-        "Exact, by branch-tracked potential differences; `quadrature` beside it is an independent numerical "
-        "integral of the velocity. Flux is positive towards the right of the direction of travel, so "
-        "outward on an anticlockwise closed contour. A contour through a singularity has null values and says so."
+        "Exact, by branch-tracked potential differences; `quadrature` beside it is an independent "
+        "numerical integral of the velocity. Flux is positive towards the right of the direction of "
+        "travel, so outward on an anticlockwise closed contour. A contour through a singularity has "
+        "null values and says so."
     ),
     request=ContourRequest,
     result=ContourResult,

@@ -1,5 +1,7 @@
 """field/sample: the field of a layout at points."""
 
+from typing import Any
+
 from fastapi import APIRouter
 
 from forebay.api.limits import Price
@@ -8,15 +10,20 @@ from forebay.api.operation import Operation, Outcome
 from forebay.api.review import readings_of, reviewed
 from forebay.api.routers.serving import serve
 from forebay.api.schemas.field import FieldResult, SampleRequest
-from forebay.workflows.sample import sample_field
+from forebay.api.schemas.places import At
+from forebay.workflows.sample import FieldSamples, sample_field
 
 
 def compute(request: SampleRequest, _media_type: str) -> Outcome:
     layout = request.flow_layout()
     samples = sample_field(layout, request.at.positions(request.unit_system), request.wanted())
+    return reviewed(request, layout, written(samples, request.at), readings_of(samples.columns))
+
+
+def written(samples: FieldSamples, at: At) -> dict[str, Any]:
+    """Fields of a sample."""
     flagged = [{"index": flag.index, "status": flag.status} for flag in samples.flagged]
-    result = {**samples.columns, "shape": request.at.shape, "flagged": flagged}
-    return reviewed(request, layout, result, readings_of(samples.columns))
+    return {**samples.columns, "shape": at.shape, "flagged": flagged}
 
 
 def price(request: SampleRequest) -> Price:

@@ -6,6 +6,7 @@ from fastapi import APIRouter
 
 from forebay.api.operation import Operation
 from forebay.api.routers import (
+    assessment,
     catalogues,
     chart,
     contour,
@@ -21,6 +22,7 @@ from forebay.api.routers import (
 OPERATIONS: dict[str, Operation[Any]] = {
     known.operation_id: known
     for known in (
+        assessment.ASSESS,
         field.SAMPLE,
         stagnation.SEARCH,
         contour.INTEGRATE,
@@ -33,6 +35,7 @@ OPERATIONS: dict[str, Operation[Any]] = {
 """Compute operations, as the worker processes look them up."""
 
 ROUTERS: tuple[APIRouter, ...] = (
+    assessment.router,
     field.router,
     stagnation.router,
     contour.router,

@@ -62,9 +62,9 @@ Pascals = Annotated[float, given("Pa", 40000.0, -1e12, 1e12)]
 DynamicViscosity = Annotated[float, given("Pa.s", 0.0013, 1e-9, 1e9)]
 SecondViscosity = Annotated[float, given("Pa.s", -0.0009, -1e9, 1e9)]
 Density = Annotated[float, given("kg/m3", 999.7, 1e-6, 1e6)]
-PointCount = Annotated[int, BeforeValidator(_whole), counted(101, 1, 1_000_000_000)]
-PixelCount = Annotated[int, BeforeValidator(_whole), counted(1200, 520, 4000)]
-Digits = Annotated[int, BeforeValidator(_whole), counted(9, 4, 17)]
+PointCount = Annotated[int, counted(101, 1, 1_000_000_000), BeforeValidator(_whole)]
+PixelCount = Annotated[int, counted(1200, 520, 4000), BeforeValidator(_whole)]
+Digits = Annotated[int, counted(9, 4, 17), BeforeValidator(_whole)]
 
 Position = Annotated[list[Metres], Field(min_length=2, max_length=2, fail_fast=True, examples=[[120.0, 6.0]])]
 """Coordinates x, y in the local grid."""
