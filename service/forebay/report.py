@@ -9,14 +9,14 @@ Row = Sequence[str]
 
 WIDTH = 100
 
+MOST_POINTS = 20
+"""Points of a field that a table shows."""
+
 RECIRCULATION_CLOSED_FORM = 1e-12
 """Share below which an error is rounding of a closed form, and printed as such [-]."""
 
-CAUTIONS = (
-    "Screening level: depth-mean, steady, frictionless flow in the plane.",
-    "Not for the safety of divers, swimmers or craft.",
-    "Regulators' criteria and licensed engineers decide.",
-)
+SEVERITIES = ("unsafe-to-use", "caution", "note")
+"""Of warnings, gravest first."""
 
 
 def engineers_table(request: Json, answer: Json) -> str:
@@ -26,9 +26,11 @@ def engineers_table(request: Json, answer: Json) -> str:
         heading(request["layout"], answer["provenance"], units),
         intakes_section(result["withdrawal"]["intakes"], units),
         stagnation_section(result["stagnation"], units),
-        transects_section(result.get("transects", []), units),
+        transects_section(result["transects"], units),
+        ends_section(result["ends"], units),
+        points_section(result["field"], units),
         warnings_section(answer["warnings"]),
-        cautions_section(result.get("cautions", CAUTIONS)),
+        cautions_section(result["cautions"]),
     ]
     return "\n\n".join("\n".join(lines) for lines in sections if lines)
 
@@ -63,7 +65,7 @@ def intakes_section(intakes: Sequence[Json], units: Json) -> list[str]:
         f"width {units['width_far_upstream']}",
         "water from",
     )
-    columns = (*names, "share %", "recirculated %")
+    columns = (*names, "share %", "recirculated %", "status")
     return ["INTAKES", *table(columns, rows, right={1, 2, 4, 5})] if rows else []
 
 
@@ -74,15 +76,14 @@ def intake_rows(intake: Json) -> list[Row]:
         number(intake["discharge"]),
         number(intake["width_far_upstream"]),
     )
-    shares = intake["shares"] or []
+    shares = intake["shares"]
     if not shares:
-        return [(*own, f"({intake['status']})", "-", "-")]
-    returned = recirculation(intake)
-    rows = []
-    for index, share in enumerate(shares):
-        first = own if index == 0 else ("", "", "")
-        rows.append((*first, share["from"], percent(share["share"]), returned if index == 0 else ""))
-    return rows
+        return [(*own, "-", "-", "-", intake["status"])]
+    (first, *others) = [(share["from"], percent(share["share"])) for share in shares]
+    return [
+        (*own, *first, recirculation(intake), intake["status"]),
+        *(("", "", "", *other, "", "") for other in others),
+    ]
 
 
 def recirculation(intake: Json) -> str:
@@ -138,21 +139,51 @@ def transects_section(transects: Sequence[Json], units: Json) -> list[str]:
     return [title, *table(columns, rows, right={1, 2, 3})] if rows else []
 
 
+def ends_section(ends: Sequence[Json], units: Json) -> list[str]:
+    """Far ends of the water: what comes in there."""
+    rows = [(end["name"], number(end["inflow"]), number(end["end_speed"])) for end in ends]
+    columns = ("far end", f"inflow per depth {units['inflow']}", f"speed {units['end_speed']}")
+    return ["FAR ENDS (inflow positive into the water)", *table(columns, rows, right={1, 2})] if rows else []
+
+
+def points_section(field: Json | None, units: Json) -> list[str]:
+    """Velocity where it was asked for; the first points of many."""
+    if field is None:
+        return []
+    shown = zip(*(field[name][:MOST_POINTS] for name in ("x", "y", "u", "v", "speed")), strict=True)
+    reasons = {flag["index"]: flag["status"] for flag in field["flagged"]}
+    rows = [
+        (*(number(value) for value in values), reasons.get(index, "")) for index, values in enumerate(shown)
+    ]
+    left_out = len(field["x"]) - len(rows)
+    columns = (f"x {units['x']}", f"y {units['y']}", f"u {units['u']}", "v", "speed", "")
+    more = [f"  ... and {left_out} more"] if left_out else []
+    return ["VELOCITY AT POINTS", *table(columns, rows, right={0, 1, 2, 3, 4}), *more]
+
+
 def warnings_section(warnings: Sequence[Json]) -> list[str]:
-    """Each warning with its value, its threshold and its source."""
+    """Warnings by severity, those of one code together, each with value, threshold and source."""
     if not warnings:
         return ["WARNINGS: none"]
-    return ["WARNINGS", *(line for warning in warnings for line in warning_lines(warning))]
+    together: dict[tuple[int, str], list[Json]] = {}
+    for warning in warnings:
+        rank = SEVERITIES.index(warning["severity"])
+        together.setdefault((rank, warning["code"]), []).append(warning)
+    ranked = sorted(together, key=lambda key: key[0])
+    return ["WARNINGS", *(line for key in ranked for line in warning_lines(together[key]))]
 
 
-def warning_lines(warning: Json) -> list[str]:
-    """One warning, wrapped."""
+def warning_lines(alike: Sequence[Json]) -> list[str]:
+    """Warnings of one code, wrapped: the first in full, then where else it holds."""
+    warning = alike[0]
     threshold = ""
     if warning["value"] is not None and warning["limit"] is not None:
         threshold = f" [value {number(warning['value'])}, threshold {number(warning['limit'])}]"
     source = f" Source: {warning['source']}." if warning["source"] else ""
-    text = f"{warning['severity']}: {warning['message']}{threshold}{source} ({warning['code']})"
-    return wrap(text, WIDTH, initial_indent="  - ", subsequent_indent="    ")
+    others = ", ".join(other["pointer"] for other in alike[1:])
+    elsewhere = f" Likewise at {others}." if others else ""
+    text = f"{warning['severity']}: {warning['message']}{threshold}{source}{elsewhere} ({warning['code']})"
+    return wrap(text, WIDTH, initial_indent="  - ", subsequent_indent="    ", break_on_hyphens=False)
 
 
 def cautions_section(cautions: Iterable[str]) -> list[str]:

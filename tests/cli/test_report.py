@@ -1,11 +1,20 @@
 """The engineer's table says what the answer says: every number, unit, status and caution."""
 
 import copy
+import re
 from typing import Any
 
 import pytest
 
-from forebay.report import CAUTIONS, engineers_table, number, percent, table, warning_lines
+from forebay.report import (
+    MOST_POINTS,
+    engineers_table,
+    number,
+    percent,
+    table,
+    warning_lines,
+    warnings_section,
+)
 
 REQUEST: dict[str, Any] = {
     "layout": {
@@ -46,8 +55,30 @@ ANSWER: dict[str, Any] = {
         "transects": [
             {"name": "bridge", "length": 110.0, "discharge": 30.8, "circulation": 0.0, "status": "ok"}
         ],
+        "ends": [
+            {"name": "upstream", "inflow": 7.7, "end_speed": 0.07},
+            {"name": "downstream", "inflow": -7.3, "end_speed": 0.06636},
+        ],
+        "field": {
+            "x": [32.0, 190.0],
+            "y": [2.0, 40.0],
+            "u": [0.01, None],
+            "v": [-0.12, None],
+            "speed": [0.1204, None],
+            "flagged": [{"index": 1, "status": "on-singularity"}],
+        },
+        "cautions": ["Screening level.", "Engineers decide."],
     },
-    "units": {"discharge": "m3/s", "width_far_upstream": "m", "x": "m", "y": "m", "strain_rate": "1/s"},
+    "units": {
+        "discharge": "m3/s",
+        "width_far_upstream": "m",
+        "x": "m",
+        "y": "m",
+        "u": "m/s",
+        "strain_rate": "1/s",
+        "inflow": "m2/s",
+        "end_speed": "m/s",
+    },
     "warnings": [
         {
             "code": "rigid-lid",
@@ -82,24 +113,16 @@ def test_names_the_site_and_the_maker():
 
 def test_gives_each_share_its_row():
     text = engineers_table(REQUEST, ANSWER)
-    assert line_with(text, "upstream") == [
-        "town",
-        "intake",
-        "1.4",
-        "5.25",
-        "upstream",
-        "62.50",
-        "37.50",
-        "+-",
-        "2e-07",
-    ]
+    assert (
+        " ".join(line_with(text, "town intake ")) == "town intake 1.4 5.25 upstream 62.50 37.50 +- 2e-07 ok"
+    )
     assert line_with(text, " works ") == ["works", "37.50"]
 
 
 def test_gives_an_intake_without_shares_its_status():
     intake = {**ANSWER["result"]["withdrawal"]["intakes"][0], "shares": [], "status": "not-converged"}
     text = engineers_table(REQUEST, changed(withdrawal={"intakes": [intake]}))
-    assert "(not-converged)" in text
+    assert line_with(text, "town intake")[-2:] == ["-", "not-converged"]
 
 
 def test_gives_stagnation_points_with_their_certificate():
@@ -126,7 +149,7 @@ def test_gives_warnings_with_value_threshold_and_source():
 
 
 def test_leaves_out_the_threshold_of_a_warning_that_has_none():
-    (line,) = warning_lines({**ANSWER["warnings"][0], "value": None, "limit": None, "source": None})
+    (line,) = warning_lines([{**ANSWER["warnings"][0], "value": None, "limit": None, "source": None}])
     assert line == "  - caution: The surface is not flat here. (rigid-lid)"
 
 
@@ -136,7 +159,39 @@ def test_says_that_there_are_no_warnings():
 
 def test_ends_with_the_cautions():
     text = engineers_table(REQUEST, ANSWER)
-    assert text.splitlines()[-1].strip(" -") == CAUTIONS[-1]
+    assert text.splitlines()[-3:] == ["CAUTIONS", "  - Screening level.", "  - Engineers decide."]
+
+
+def test_gives_the_far_ends_with_their_sign():
+    text = engineers_table(REQUEST, ANSWER)
+    assert "positive into the water" in text
+    assert line_with(text, "downstream") == ["downstream", "-7.3", "0.06636"]
+
+
+def test_gives_velocities_and_says_where_there_is_none():
+    text = engineers_table(REQUEST, ANSWER)
+    assert line_with(text, "-0.12") == ["32", "2", "0.01", "-0.12", "0.1204"]
+    assert line_with(text, "on-singularity") == ["190", "40", "-", "-", "-", "on-singularity"]
+
+
+def test_says_nothing_of_a_field_that_was_not_asked_for():
+    assert "VELOCITY" not in engineers_table(REQUEST, changed(field=None))
+
+
+def test_shows_the_first_points_of_many():
+    many = {name: [1.0] * (MOST_POINTS + 5) for name in ("x", "y", "u", "v", "speed")}
+    assert "... and 5 more" in engineers_table(REQUEST, changed(field={**many, "flagged": []}))
+
+
+def test_gravest_warnings_come_first_and_those_of_a_kind_together():
+    given = [
+        {**ANSWER["warnings"][0], "severity": "note", "code": "b", "pointer": "#/1"},
+        {**ANSWER["warnings"][0], "severity": "note", "code": "b", "pointer": "#/2"},
+        {**ANSWER["warnings"][0], "severity": "unsafe-to-use", "code": "a"},
+    ]
+    first, second = re.findall(r"- (\S+): ", "\n".join(warnings_section(given)))
+    assert (first, second) == ("unsafe-to-use", "note")
+    assert "Likewise at #/2. (b)" in " ".join("\n".join(warnings_section(given)).split())
 
 
 def test_takes_units_from_the_answer():

@@ -1,11 +1,11 @@
 """Start the service on loopback, assess the invented site over HTTP, draw it, say where everything is."""
 
 import json
-from importlib.resources import files
 from pathlib import Path
 from typing import Any
 from urllib.request import Request, urlopen
 
+from forebay.api.examples import request_example
 from forebay.demo.child import Service
 from forebay.report import engineers_table
 from forebay.settings import Settings
@@ -24,7 +24,7 @@ def run_demo(output: Path, *, keep: bool) -> int:
     output.mkdir(parents=True, exist_ok=True)
     with Service(output / "service.log", Settings.from_environment().port) as service:
         print(f"Service started on {service.address}\n\n{INTRODUCTION}\n", flush=True)
-        request = demo_request()
+        request = request_example("assessLayout")
         answer = json.loads(post(f"{service.address}/v1/assessment", request, accept="application/json"))
         print(engineers_table(request, answer))
         picture = output / "flow-net.svg"
@@ -39,16 +39,6 @@ def run_demo(output: Path, *, keep: bool) -> int:
         else:
             print("Service: stopped; `forebay demo --keep` leaves it up, with its docs at /docs")
     return 0
-
-
-def demo_request() -> dict[str, Any]:
-    """Body of the assessment: the packaged site and three transects over it."""
-    return {"layout": packaged("layout.json"), "transects": packaged("transects.json")}
-
-
-def packaged(name: str) -> Any:  # noqa: ANN401  (JSON)
-    """Content of a JSON file that is installed with the package."""
-    return json.loads((files("forebay.demo") / name).read_text(encoding="utf-8"))
 
 
 def post(address: str, body: dict[str, Any], *, accept: str) -> bytes:
