@@ -42,7 +42,9 @@ def wall_name(model: FlowModel, at: complex) -> str:
 
 
 def describe(model: FlowModel, zero: Zero) -> StagnationPoint:
-    """Stagnation point at a proven zero."""
+    """Stagnation point at a proven zero; at the end of a line no speed or strain has a meaning."""
+    if zero.is_artefact:
+        return _artefact(model, zero)
     jet = model.jet(np.array([zero.at]))
     speed = float(np.abs(model.velocity(np.array([zero.at])))[0])
     slope, skew = complex(jet.slope[0]), complex(jet.skew[0])
@@ -64,6 +66,22 @@ def describe(model: FlowModel, zero: Zero) -> StagnationPoint:
         inclusion_radius=zero.radius,
         multiplicity=zero.multiplicity,
         is_artefact=zero.is_artefact,
+    )
+
+
+def _artefact(model: FlowModel, zero: Zero) -> StagnationPoint:
+    nothing = float(np.nan)
+    return StagnationPoint(
+        at=zero.at,
+        kind=StagnationKind.SADDLE if zero.on == WATER else StagnationKind.WALL,
+        on=zero.on,
+        residual_speed=nothing,
+        strain_rate=nothing,
+        outflow_deg=nothing,
+        stream_function=float(model.potential(np.array([zero.at])).imag[0]),
+        inclusion_radius=zero.radius,
+        multiplicity=zero.multiplicity,
+        is_artefact=True,
     )
 
 

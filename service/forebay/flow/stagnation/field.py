@@ -29,17 +29,24 @@ LINEAR = 1e-12
 
 @dataclass(frozen=True, slots=True)
 class Discs:
-    """W and its derivatives at centres, and the bound of the rest over discs about them, shape (n,)."""
+    """W and its derivatives at centres, the bound of the rest over discs about them, and rounding, shape (n,)."""
 
     velocity: ComplexArray
     slope: ComplexArray
     skew: ComplexArray
     rest: FloatArray
+    rounding: FloatArray
 
     def spread(self, radius: FloatArray) -> FloatArray:
-        """Largest change of W over the discs [m/s]."""
+        """Largest change of W over the discs, rounding included [m/s]."""
         linear = np.abs(self.slope) + np.abs(self.skew)
-        return linear * radius * (1.0 + LINEAR) + self.rest
+        return linear * radius * (1.0 + LINEAR) + self.rest + self.rounding
+
+    def where(self, chosen: BoolArray) -> "Discs":
+        """The chosen ones."""
+        return Discs(
+            self.velocity[chosen], self.slope[chosen], self.skew[chosen], self.rest[chosen], self.rounding[chosen]
+        )
 
     @property
     def definiteness(self) -> FloatArray:
@@ -85,8 +92,8 @@ class BoundedField:
             rest = rest + line_bound(term, self.frame, z, radius)
         for core in self.model.cores:
             rest = rest + core_bound(core, z, radius) + self._core_copies(z, radius, abs(core.circulation))
-        rest = rest + EPS * (ROUNDING * self.model.magnitude(z) + 4.0 * np.abs(jet.slope) * np.abs(z))
-        return Discs(velocity, jet.slope, jet.skew, np.where(np.isfinite(velocity), rest, np.inf))
+        rounding = EPS * (ROUNDING * self.model.magnitude(z) + 4.0 * np.abs(jet.slope) * np.abs(z))
+        return Discs(velocity, jet.slope, jet.skew, np.where(np.isfinite(velocity), rest, np.inf), rounding)
 
     def proves(self, z: ComplexArray, radius: FloatArray) -> tuple[ComplexArray, BoolArray]:
         """W at z, and whether it stays in a half-plane over each disc: the `Disc` of `turning`."""

@@ -171,7 +171,7 @@ class GeneralSearch:
 
     def _settled(self, found: FoundZero, tree: Quadtree) -> Zero | None:
         """The zero on its wall if it must lie there; None on land, behind a line and inside a pier."""
-        if found.is_beyond:
+        if found.is_beyond or self._at_tip(found.at):
             return None
         frame = self.model.frame
         tau = frame.map.forward(np.array([found.at]))
@@ -186,6 +186,10 @@ class GeneralSearch:
         if np.any(depth < 0.0):
             return None
         return self._beside_piers(found)
+
+    def _at_tip(self, z: complex) -> bool:
+        """Within a disc about the end of a line, where zeros are counted by themselves."""
+        return any(float(slit.to_ends(np.array([z]))[0]) <= TIP * slit.length for slit in self.slits)
 
     def _beside_piers(self, found: FoundZero) -> Zero | None:
         z, radius = found.at, found.radius + 4.0 * EPS * abs(found.at)
@@ -207,7 +211,7 @@ class GeneralSearch:
         at = np.array([tau for tau, _ in leftover])
         half = leftover[0][1]
         others = np.array([zero.at for zero in known], dtype=np.complex128)
-        for group in groups(at, 8.0 * half):
+        for group in groups(at[:2000], 8.0 * half):
             middle = np.array([np.mean(group)])
             spread = float(np.max(np.abs(group - middle))) + half
             marks = np.abs(depths(self.model.frame, middle)) < 2.0 * spread

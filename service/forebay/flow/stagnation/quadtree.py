@@ -20,7 +20,11 @@ START = 12
 SMALLEST = 1e-8
 """Boxes below this part of the region are left over [-]."""
 
-MOST_BOXES = 400_000
+MOST_BOXES = 200_000
+"""Boxes looked at before the search gives up and says so."""
+
+CHUNK = 2048
+"""Discs evaluated at once: bounds the memory."""
 
 _RADII = (8.0, 4.0, 2.0, 1.0, 0.5, 0.25)
 
@@ -121,8 +125,7 @@ class Quadtree:
         radius = site_radius(self.field.model, z, abs(boxes.half)).real * (1.0 + 1e-9)
         discs = self._discs(boxes, z, radius)
         maybe = ~(np.abs(discs.velocity) > discs.spread(radius)) | unsettled
-        rest = np.where(unsettled, np.inf, discs.rest)
-        discs = Discs(discs.velocity[maybe], discs.slope[maybe], discs.skew[maybe], rest[maybe])
+        discs = replace(discs, rest=np.where(unsettled, np.inf, discs.rest)).where(maybe)
         return boxes.where(maybe), discs, z[maybe], radius[maybe]
 
     def _dry(self, z: ComplexArray, radius: FloatArray) -> BoolArray:
@@ -169,7 +172,13 @@ class Quadtree:
         return Boxes(at, boxes.half, lines, sides), marks
 
     def _discs(self, boxes: Boxes, z: ComplexArray, radius: FloatArray) -> Discs:
-        return self.field.discs(z, radius, self._lock(boxes.line, boxes.side, z))
+        lock = self._lock(boxes.line, boxes.side, z)
+        parts = [
+            self.field.discs(z[k : k + CHUNK], radius[k : k + CHUNK], lock[k : k + CHUNK])
+            for k in range(0, max(z.size, 1), CHUNK)
+        ]
+        names = ("velocity", "slope", "skew", "rest", "rounding")
+        return Discs(*(np.concatenate([getattr(part, name) for part in parts]) for name in names))
 
     def _lock(self, line: IntArray, side: IntArray, z: ComplexArray) -> ComplexArray:
         lock = np.zeros(z.shape, dtype=np.complex128)
@@ -227,7 +236,7 @@ class Quadtree:
         definite = float(point.definiteness[0])
         if not definite > 0.0:
             return None
-        radius = 2.0 * float(np.abs(point.velocity[0]) + point.rest[0]) / definite
+        radius = 2.0 * float(np.abs(point.velocity[0]) + point.rounding[0]) / definite
         if not np.isfinite(radius) or self._change(at, radius, lock) >= 0.5 * definite:
             return None
         unique = radius

@@ -153,7 +153,16 @@ class SlitTurning:
         out = slit.tangent * (-1.0 if at_end else 1.0)
         theta = heading + float(np.angle(out / along)) % (2.0 * np.pi)
         beyond, before = (1, -1) if at_end else (-1, 1)
-        return self._arc(centre, theta, heading, beyond) + self._arc(centre, heading + np.pi, theta, before)
+        ahead = self._arc(centre, theta, heading, beyond)
+        behind = self._arc(centre, heading + np.pi, theta, before)
+        if abs((slit.tangent / along).real) > 1e-6:
+            limit = complex(np.conj(along) * (slit.tangent / along).real * slit.line.flux * (1.0 if at_end else -1.0))
+            place = np.array([centre + TIP * slit.length * out])
+            beside = [complex(self._disc(side)(place, np.zeros(1))[0][0]) for side in (beyond, before)]
+            zeros = round((float(np.angle(limit / beside[0])) - ahead) / np.pi)
+            zeros += round((float(np.angle(beside[1] / limit)) - behind) / np.pi)
+            self.hidden.append((centre, zeros))
+        return ahead + behind
 
     def _wall_direction(self, at: complex) -> complex:
         walls = self._field.model.walls
