@@ -1,5 +1,3 @@
-from collections.abc import Iterator
-
 import pytest
 from starlette.testclient import TestClient
 
@@ -7,9 +5,5 @@ from support.service import Service
 
 
 @pytest.fixture(scope="session")
-def service() -> Iterator[Service]:
-    from forebay.app import create_app
-    from forebay.settings import Settings
-
-    with TestClient(create_app(Settings())) as client:
-        yield Service(client)
+def service(client: TestClient) -> Service:
+    return Service(client)

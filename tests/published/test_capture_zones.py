@@ -64,8 +64,8 @@ def test_stagnation_and_widths_of_one_sink(service):
 GALLONS_PER_MINUTE = 0.133681 / 60
 """US gallons per minute [ft3/s]."""
 
-KUO_CURRENT = 1000 * 0.015 * 0.133681 / 86400
-"""K = 1000 gpd/ft2 times i = 0.015 [ft/s]; the book prints 1.39e-3 ft/min."""
+KUO_CURRENT = 1.39e-3 / 60
+"""K = 1000 gpd/ft2 times i = 0.015 as the book rounds it, 1.39e-3 ft/min [ft/s]."""
 
 
 def _kuo_wells(*places: float) -> dict:

@@ -6,7 +6,7 @@ import pytest
 from forebay.flow.layout import Corner, Doublet, Layout
 from forebay.flow.model import compile_layout
 from forebay.flow.stagnation.result import WATER
-from forebay.flow.stagnation.search import search_rational
+from forebay.flow.stagnation.search import search_model
 from reference.oracle import CONTEXT, Oracle, exact
 from support.layouts import BANK_KINDS, POINT_KINDS, random_layout
 from support.sites import SHORES
@@ -38,7 +38,7 @@ def _newton_step(oracle: Oracle, z: complex) -> float:
 
 
 def _check(layout: Layout) -> None:
-    result = search_rational(compile_layout(layout))
+    result = search_model(compile_layout(layout))
     assert result.complete, (result.degree, result.weight, result.unresolved)
     assert result.expected_count == result.found_count == len(result.points)
     assert result.weight == result.degree

@@ -38,7 +38,7 @@ def _error(layout: Layout, z: np.ndarray) -> float:
     return worst
 
 
-@pytest.mark.parametrize("seed", range(4))
+@pytest.mark.parametrize("seed", range(2))
 @pytest.mark.parametrize("shore_name", SHORES)
 def test_velocity_of_every_element_on_every_shore(shore_name, seed):
     layout = random_layout(shore_name, seed, count=len(ALL_KINDS))
@@ -85,7 +85,7 @@ def test_velocity_in_and_about_a_core(shore_name, kind, distance):
         # the free vortex and its core cancel: what is left is the rest of the flow, to the rounding of the
         # swirl
         swirl = abs(vortex.circulation) / (2 * np.pi * vortex.core.radius)
-        still = Oracle(layout).velocity(exact(vortex.at) + CONTEXT.mpf("1e-22")).value
+        still = Oracle(layout).velocity(exact(vortex.at) + CONTEXT.mpf("1e-14")).value
         computed = compile_layout(layout).velocity(z)
         assert np.abs(computed - complex(still)).max() <= 1e-12 * swirl + 1e-12 * abs(complex(still))
     else:
@@ -147,12 +147,16 @@ def test_shear_along_a_bank():
     assert _error(layout, _places("straight-bank")) <= ROUNDING
 
 
-@pytest.mark.parametrize("seed", range(2))
+QUICK_KINDS = tuple(kind for kind in ALL_KINDS if kind not in LINE_KINDS)
+"""Line elements cost the oracle a quadrature each: they have their own tests."""
+
+
+@pytest.mark.parametrize("kinds", [QUICK_KINDS, LINE_KINDS[:1]], ids=["points", "line"])
 @pytest.mark.parametrize("shore_name", SHORES)
-def test_jet_is_the_derivative_of_the_velocity(shore_name, seed):
-    layout = random_layout(shore_name, seed, count=len(ALL_KINDS))
+def test_jet_is_the_derivative_of_the_velocity(shore_name, kinds):
+    layout = random_layout(shore_name, 1, kinds=kinds, count=len(kinds))
     model, oracle = compile_layout(layout), Oracle(layout)
-    z = _places(shore_name)[:3]
+    z = _places(shore_name)[: 3 if kinds is QUICK_KINDS else 1]
     jet = model.jet(z)
     for point, slope, skew in zip(z, jet.slope, jet.skew, strict=True):
         expected, unexpected, scale = _derivatives(oracle, complex(point))
@@ -220,6 +224,21 @@ def _quadrature(model, a: complex, b: complex) -> complex:
     fractions = (edges[:-1, None] + (nodes + 1) / 2 / 400).ravel()
     values = model.velocity(a + (b - a) * fractions).reshape(-1, 16)
     return complex((values @ weights).sum() / 800 * (b - a))
+
+
+@pytest.mark.parametrize("kind", ALL_KINDS)
+@pytest.mark.parametrize("shore_name", SHORES)
+def test_potential_differs_by_the_chord(shore_name, kind):
+    layout = random_layout(shore_name, 6, kinds=[kind], count=1)
+    model = compile_layout(layout)
+    z = _places(shore_name)
+    step = 1e-3 * np.exp(0.3j)
+    difference = model.potential(z + step) - model.potential(z - step)
+    chord = model.chord(z - step, z + step)
+    # potentials of up to a few hundred m2/s are subtracted; psi exists in a core as well, phi does not
+    assert np.abs((difference - chord).imag).max() <= 1e-12
+    if model.has_potential:
+        assert np.abs(difference - chord).max() <= 1e-12
 
 
 @pytest.mark.parametrize("kind", BANK_KINDS)
