@@ -5,7 +5,7 @@ f = min(r^2/a^2, 1) (rankine) or 1 - exp(-r^2/a^2) (lamb-oseen). The point vorte
 are poles; the term is the difference c (f - 1) / zeta, which dies out within a few radii.
 """
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from itertools import pairwise
 
 import numpy as np
@@ -110,7 +110,34 @@ class CoreTerm:
         passing it on its left (Gamma/2 taken off), as a subtended angle of +pi does.
         """
         parts = [self._whole(a, b, s, g) - _point_chord(a - s, b - s, g) for s, g in self._pairs()]
-        return np.asarray(sum(parts), dtype=np.complex128)
+        return np.asarray(sum(parts, np.zeros(np.shape(a))), dtype=np.complex128)
+
+    def jet_about_centre(self, z: ComplexArray) -> Jet:
+        """Whole vortex and the differences of its images: `jet` with the point vortex put back.
+
+        With x = r^2/a^2: rankine c conj zeta / a^2; lamb-oseen c (1 - exp(-x))/x conj zeta / a^2. Accurate to
+        rounding at the centre too, where W is zero and the skew c/a^2.
+        """
+        zeta = np.asarray(z, dtype=np.complex128) - self.centres[0]
+        c = -1j * self.circulations[0] / _TWO_PI
+        bar = np.conj(zeta) / self.radius**2
+        x = (np.abs(zeta) / self.radius) ** 2
+        weight = self._vorticity(np.abs(zeta))
+        filled, change = np.ones(x.shape), np.zeros(x.shape)
+        if self.model is CoreModel.LAMB_OSEEN:
+            safe = np.maximum(x, 1e-3)
+            filled = np.where(x > 1e-3, -np.expm1(-safe) / safe, 1.0 - x * (0.5 - x * (1.0 / 6.0 - x / 24.0)))
+            closed = (safe * np.exp(-safe) + np.expm1(-safe)) / safe**2
+            change = np.where(x > 1e-3, closed, -0.5 + x * (1.0 / 3.0 - x * (0.125 - x / 30.0)))
+        images = replace(self, centres=self.centres[1:], circulations=self.circulations[1:])
+        direct = (c * filled * bar, c * change * bar**2, c * weight / self.radius**2)
+        return images.jet(z) + Jet(*(np.asarray(part, dtype=np.complex128) for part in direct))
+
+    def chords_through_centre(self, a: ComplexArray, b: ComplexArray) -> ComplexArray:
+        """As `chords` with the point vortex at the centre put back: no chord is an exception."""
+        images = replace(self, centres=self.centres[1:], circulations=self.circulations[1:])
+        whole = self._whole(a, b, self.centres[0], self.circulations[0])
+        return whole + images.chords(a, b)
 
     def whole_chords(self, a: ComplexArray, b: ComplexArray) -> ComplexArray:
         """As `chords` for the whole cored vortices; chords through a centre are no exception."""

@@ -1,7 +1,7 @@
 """The flow of a layout: one object that is evaluated, searched, integrated and followed downstream."""
 
 from dataclasses import dataclass
-from functools import cached_property
+from functools import cached_property, lru_cache
 
 import numpy as np
 
@@ -13,6 +13,8 @@ from forebay.flow.assembly import (
     ambient_constant,
     offset_of,
 )
+from forebay.flow.core_centres import CoreCentre, centre_chords, core_centre, without_centres
+from forebay.flow.cores import CoreTerm, core_term
 from forebay.flow.ends import End, ends_of
 from forebay.flow.features import (
     CoredVortex,
@@ -43,8 +45,8 @@ from forebay.flow.terms import Jet, Term
 
 AMBIENT = "ambient"
 """Owner of everything that is there without the elements."""
-_CENTRE = 1e-8
-"""A core's centre is looked at this part of its radius away, where its point vortex is finite [-]."""
+_REMEMBERED = 32
+"""Models kept: one request asks several questions of one layout. A model is a function of its layout."""
 
 
 @dataclass(frozen=True)
@@ -69,7 +71,9 @@ class FlowModel:
 
     def velocity(self, z: ComplexArray) -> ComplexArray:
         """Conjugate velocity W = u - iv [m/s] at z [m]; relative accuracy 1e-14 of `magnitude`."""
-        at = self._moved(z)
+        if self.cores:
+            return self.jet(z).velocity
+        at = self._off_vertex(z)
         flat = at.ravel()
         velocity = self.rational.velocity(self.frame.map.forward(flat)) * self.frame.map.slope(flat)
         for term in self.terms:
@@ -78,17 +82,13 @@ class FlowModel:
 
     def jet(self, z: ComplexArray) -> Jet:
         """W [m/s] with dW/dz and dW/dzbar [1/s] at z [m]."""
-        at = self._moved(z)
+        at = self._off_vertex(z)
         flat = at.ravel()
-        slope = self.frame.map.slope(flat)
-        velocity, change = self.rational.jet(self.frame.map.forward(flat))
-        jet = Jet(
-            velocity * slope,
-            change * slope**2 + velocity * self.frame.map.curvature(flat),
-            np.zeros_like(velocity),
-        )
+        jet = self._pole_jet(flat)
         for term in self.terms:
             jet = jet + term.jet(flat)
+        for centre in self._centres:
+            self._renew(jet, flat, centre)
         shape = at.shape
         return Jet(
             self._still_at_vertex(z, jet.velocity.reshape(shape)),
@@ -96,15 +96,42 @@ class FlowModel:
             jet.skew.reshape(shape),
         )
 
-    def _moved(self, z: ComplexArray) -> ComplexArray:
-        """Points at a corner's vertex or a core's centre moved to where every part is finite."""
+    def _pole_jet(self, z: ComplexArray) -> Jet:
+        slope = self.frame.map.slope(z)
+        velocity, change = self.rational.jet(self.frame.map.forward(z))
+        bent = change * slope**2 + velocity * self.frame.map.curvature(z)
+        return Jet(velocity * slope, bent, np.zeros_like(velocity))
+
+    def _renew(self, jet: Jet, z: ComplexArray, centre: CoreCentre) -> None:
+        """Put in place what is accurate close to a core's centre."""
+        near = centre.near(z)
+        if not near.any():
+            return
+        renewed = centre.jet(z[near])
+        for term in self.terms:
+            if term is not centre.term:
+                renewed = renewed + term.jet(z[near])
+        jet.velocity[near], jet.slope[near], jet.skew[near] = renewed.velocity, renewed.slope, renewed.skew
+
+    @cached_property
+    def _centres(self) -> tuple[CoreCentre, ...]:
+        terms = [term for term in self.terms if isinstance(term, CoreTerm)]
+        return tuple(
+            core_centre(term, self.rational, self.frame.map, self._gap_about(term.centres[0], term.owner))
+            for term in terms
+        )
+
+    def _gap_about(self, at: complex, owner: int) -> float:
+        """Distance to the nearest wall, pier or other point element [m]."""
+        others = [abs(s.at - at) for s in self.singularities if s.owner != self.owners[owner]]
+        return min([float(self.distance_to_wall(np.asarray(at))), *others])
+
+    def _off_vertex(self, z: ComplexArray) -> ComplexArray:
+        """Points at a corner's vertex moved to where every part is finite."""
         at = np.array(z, dtype=np.complex128)
         if self._corner:
             beside = TOUCHING * self.scale * self._corner.along * np.exp(0.5j * self._corner.angle)
             at = np.where(self._at_vertex(at), self._corner.vertex + beside, at)
-        for vortex in self.cores:
-            reach = _CENTRE * vortex.core.radius
-            at = np.where(np.abs(at - vortex.at) < reach, vortex.at + reach, at)
         return np.asarray(at, dtype=np.complex128)
 
     @property
@@ -127,7 +154,7 @@ class FlowModel:
 
         Differences are exact only by `chord`. Where the flow is rotational phi has no meaning.
         """
-        at = self._moved(z)
+        at = self._off_vertex(z)
         flat = at.ravel()
         total = self.rational.potential(self.frame.map.forward(flat))
         for term in self.terms:
@@ -145,17 +172,23 @@ class FlowModel:
         -------
         shape (n, len(owners)) [m2/s]: circulation + i flux to the right of travel; exact to rounding.
         """
-        start, end = np.atleast_1d(self._moved(a)), np.atleast_1d(self._moved(b))
+        start, end = np.atleast_1d(self._off_vertex(a)), np.atleast_1d(self._off_vertex(b))
+        field = without_centres(self.rational, self._centres) if self._centres else self.rational
         if self.frame.map.affine:
             tau = self.frame.map.forward
-            sums = self.rational.chords(tau(start), tau(end), owner_count=len(self.owners))
+            sums = field.chords(tau(start), tau(end), owner_count=len(self.owners))
         else:
-            sums = self._curved_chords(start, end)
+            sums = self._curved_chords(field, start, end)
+        cores = [centre.term for centre in self._centres]
         for term in self.terms:
-            sums[:, term.owner] += term.chords(start, end)
+            if term not in cores:
+                sums[:, term.owner] += term.chords(start, end)
+        for centre in self._centres:
+            own = centre_chords(centre, self.rational, self.frame.map, start, end)
+            sums[:, centre.term.owner] += own
         return sums
 
-    def _curved_chords(self, start: ComplexArray, end: ComplexArray) -> ComplexArray:
+    def _curved_chords(self, field: PoleField, start: ComplexArray, end: ComplexArray) -> ComplexArray:
         """Chords in a corner: cut where they pass the vertex most closely, so that Re tau is monotone."""
         vertex = self.frame.walls[0].point
         a, b = start - vertex, end - vertex
@@ -163,11 +196,11 @@ class FlowModel:
         length = np.abs(span) ** 2
         part = np.clip(-(a.conj() * span).real / np.where(length > 0.0, length, 1.0), 0.0, 1.0)
         foot = start + part * (end - start)
-        return self._monotone_chords(start, foot) + self._monotone_chords(foot, end)
+        return self._monotone_chords(field, start, foot) + self._monotone_chords(field, foot, end)
 
-    def _monotone_chords(self, start: ComplexArray, end: ComplexArray) -> ComplexArray:
+    def _monotone_chords(self, field: PoleField, start: ComplexArray, end: ComplexArray) -> ComplexArray:
         vertex = self.frame.walls[0].point
-        radius = np.abs(self.frame.map.inverse(self.rational.poles) - vertex)
+        radius = np.abs(self.frame.map.inverse(field.poles) - vertex)
         a, span = (start - vertex)[:, None], (end - start)[:, None]
         square, half = np.abs(span) ** 2, (a.conj() * span).real
         rest = np.abs(a) ** 2 - radius**2
@@ -177,7 +210,7 @@ class FlowModel:
         part = np.where(outwards[:, None], root - half, -root - half) / safe
         crossing = self.frame.map.forward(a + vertex + np.clip(part, 0.0, 1.0) * span).imag
         tau = self.frame.map.forward
-        return self.rational.chords(tau(start), tau(end), owner_count=len(self.owners), crossing=crossing)
+        return field.chords(tau(start), tau(end), owner_count=len(self.owners), crossing=crossing)
 
     def chord(self, a: ComplexArray, b: ComplexArray) -> ComplexArray:
         """`chords` summed over the owners, shape (n,) [m2/s]."""
@@ -185,7 +218,7 @@ class FlowModel:
 
     def magnitude(self, z: ComplexArray) -> FloatArray:
         """Sum of the absolute values of the parts of W at z [m/s]: its rounding error is some 1e-15 of it."""
-        at = self._moved(z)
+        at = self._off_vertex(z)
         flat = at.ravel()
         total = self.rational.magnitude(self.frame.map.forward(flat)) * np.abs(self.frame.map.slope(flat))
         for term in self.terms:
@@ -302,6 +335,7 @@ class FlowModel:
         return np.asarray(np.argmin(np.stack(distances), axis=0), dtype=np.int64)
 
 
+@lru_cache(maxsize=_REMEMBERED)
 def compile_layout(layout: Layout) -> FlowModel:
     """The flow model of a layout.
 
@@ -341,8 +375,6 @@ def _terms(layout: Layout, frame: Frame, scale: float) -> tuple[Term, ...]:
                 flux = outflow(element) / layout.depth
                 terms.append(line_term(start, end, flux, owner=k + 1, frame=frame, offset=offset))
             case Vortex(core=Core() as core):
-                from forebay.flow.cores import core_term
-
                 terms.append(core_term(element.at, element.circulation, core, owner=k + 1, frame=frame))
             case _:
                 continue

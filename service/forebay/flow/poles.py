@@ -12,7 +12,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from forebay.flow.arrays import ComplexArray, FloatArray, IntArray
-from forebay.flow.kernels import periodic, rational
+from forebay.flow.kernels import multipoles, periodic, rational
 
 RATIONAL = 0.0
 PERIODIC = 0.25
@@ -83,18 +83,7 @@ class PoleField:
         return self.constant + velocity + first, slope + second
 
     def _multipole_jet(self, tau: ComplexArray) -> tuple[ComplexArray, ComplexArray]:
-        """First two derivatives of sum c X^n: X' P and -2 X X' P + X'^2 P', P = sum n c X^(n-1)."""
-        first = np.zeros(tau.shape, dtype=np.complex128)
-        second = np.zeros(tau.shape, dtype=np.complex128)
-        for centre, moments in zip(self.centres, self.moments, strict=True):
-            x, change = self.kernel(tau - centre), self.kernel_slope(tau - centre)
-            orders = np.arange(1, moments.size + 1)
-            weights = orders * moments
-            polynomial = np.polynomial.polynomial.polyval(x, weights)
-            derivative = np.polynomial.polynomial.polyval(x, np.append(orders[:-1] * weights[1:], 0.0))
-            first += change * polynomial
-            second += change * (change * derivative - 2.0 * x * polynomial)
-        return first, second
+        return multipoles.multipole_jets(tau, self.centres, self.moments, self.kappa)
 
     def chords(
         self, start: ComplexArray, end: ComplexArray, *, owner_count: int, crossing: FloatArray = _NO_CROSSING
@@ -119,26 +108,23 @@ class PoleField:
         shares[np.arange(self.poles.size), self.owners] = self.strengths
         sums = integrals @ shares
         sums[:, 0] += self.constant * (end - start)
-        for centre, moments, owner in zip(self.centres, self.moments, self.moment_owners, strict=True):
-            sums[:, owner] += self._multipole(end - centre, moments) - self._multipole(
-                start - centre, moments
-            )
+        if self.centres.size:
+            passed = self._multipoles(end) - self._multipoles(start)
+            np.add.at(sums.T, self.moment_owners, passed.T)
         return np.asarray(sums, dtype=np.complex128)
 
-    def _multipole(self, d: ComplexArray, moments: ComplexArray) -> ComplexArray:
-        x = self.kernel(d)
-        return np.asarray(x * np.polynomial.polynomial.polyval(x, moments), dtype=np.complex128)
+    def _multipoles(self, tau: ComplexArray) -> ComplexArray:
+        return multipoles.multipole_potentials(tau, self.centres, self.moments, self.kappa)
 
     def potential(self, tau: ComplexArray) -> ComplexArray:
         """Complex potential phi + i psi [m2/s] with principal logarithms, shape (n,)."""
         total = self.constant * tau
         for pole, strength in zip(self.poles, self.strengths, strict=True):
-            total = total + strength * (self._logarithm(tau - pole) + self.offset * (tau - pole))
-        for centre, moments in zip(self.centres, self.moments, strict=True):
-            total = total + self._multipole(tau - centre, moments)
-        return np.asarray(total, dtype=np.complex128)
+            total = total + strength * (self.logarithm(tau - pole) + self.offset * (tau - pole))
+        return np.asarray(total + self._multipoles(tau).sum(axis=1), dtype=np.complex128)
 
-    def _logarithm(self, d: ComplexArray) -> ComplexArray:
+    def logarithm(self, d: ComplexArray) -> ComplexArray:
+        """Antiderivative of X: log d, or log(2 sinh(d/2)), on a branch of its own; any shape [-]."""
         with np.errstate(divide="ignore", invalid="ignore"):
             if not self.is_periodic:
                 return np.log(d)
@@ -152,11 +138,5 @@ class PoleField:
             sums = periodic.magnitude_sums(tau, self.poles, self.strengths, self.offset)
         else:
             sums = rational.magnitude_sums(tau, self.poles, self.strengths)
-        total = np.asarray(abs(self.constant) + sums, dtype=np.float64)
-        for centre, moments in zip(self.centres, self.moments, strict=True):
-            x = self.kernel(tau - centre)
-            weights = np.arange(1, moments.size + 1) * np.abs(moments)
-            total += np.abs(self.kernel_slope(tau - centre)) * np.polynomial.polynomial.polyval(
-                np.abs(x), weights
-            )
-        return total
+        sums += multipoles.multipole_magnitudes(tau, self.centres, self.moments, self.kappa)
+        return np.asarray(abs(self.constant) + sums, dtype=np.float64)

@@ -80,7 +80,8 @@ class Segment:
             close = np.log(np.abs(to_start) / np.abs(to_end))
             stretch = 0.5 * np.log1p(2.0 * ratio.real + np.abs(ratio) ** 2)
         stretch = np.where(np.abs(ratio) < 0.5, stretch, close)
-        return np.asarray((stretch + 1j * turn) / self.run, dtype=np.complex128)
+        with np.errstate(invalid="ignore"):  # infinite at an end
+            return np.asarray((stretch + 1j * turn) / self.run, dtype=np.complex128)
 
     def mean_inverse_square(self, z: ComplexArray) -> ComplexArray:
         """Mean of 1/(z - s)^2: 1 / ((z - start)(z - end)), shape of z; not finite at either end."""
