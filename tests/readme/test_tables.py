@@ -19,7 +19,7 @@ def test_settings_table_names_every_setting():
 def test_settings_table_gives_the_default(name):
     default = Settings.model_fields[name].default
     text = ",".join(default) if isinstance(default, tuple) else str(default).lower()
-    assert SETTINGS[PREFIX + name.upper()][1] == text
+    assert SETTINGS[PREFIX + name.upper()][1] == (text or "(none)")
 
 
 def test_commands_table_names_every_command():
