@@ -12,6 +12,8 @@ REACH = 7.0
 _WHOLE = 1e-9
 """Tolerance within which pi / angle counts as a whole number [-]."""
 
+_TURN = 2.0 * np.pi
+
 Placed = tuple[tuple[complex, ...], tuple[float, ...]]
 """Positions [m] and the signs of their circulations."""
 
@@ -20,8 +22,8 @@ def core_images(at: complex, reach: float, frame: Frame) -> Placed:
     """A core and all its images within `reach` of the water, the core itself first.
 
     Exact for straight banks, channels, dead ends, basins, and corners of pi/m. In any other corner the
-    core is mirrored once in each bank, which leaves a flow through the banks of exp(-(r/a)^2) for a core at
-    a distance r from the vertex.
+    core is mirrored once in each bank that it reaches, which leaves a flow through the banks of
+    exp(-(r/a)^2) for a core at a distance r from the vertex.
 
     Parameters
     ----------
@@ -69,17 +71,17 @@ def _corner_images(at: complex, reach: float, corner: LogarithmMap) -> Placed:
     if abs(corner.exponent - order) < _WHOLE:
         turns = [2.0 * corner.angle * k for k in range(order)]
         angles = [(turn + angle, 1.0) for turn in turns] + [(turn - angle, -1.0) for turn in turns]
+        felt = [(phi, sign) for phi, sign in angles[1:] if distance * _off(phi, 0.0, corner.angle) < reach]
     else:
-        angles = [(angle, 1.0), (-angle, -1.0), (2.0 * corner.angle - angle, -1.0)]
-    placed = [
-        (at if k == 0 else corner.vertex + corner.along * distance * complex(np.exp(1j * phi)), sign)
-        for k, (phi, sign) in enumerate(angles)
-        if k == 0 or distance * _off_wedge(phi, corner.angle) < reach
-    ]
-    return tuple(place for place, _ in placed), tuple(sign for _, sign in placed)
+        # a bank mirrors the core if the core reaches it and the image lies on land
+        mirrored = [(-angle, _off(angle, 0.0)), (2.0 * corner.angle - angle, _off(angle, corner.angle))]
+        on_land = [phi for phi, gap in mirrored if distance * gap < reach and phi % _TURN > corner.angle]
+        felt = [(phi, -1.0) for phi in on_land]
+    spokes = [corner.vertex + corner.along * distance * complex(np.exp(1j * phi)) for phi, _ in felt]
+    return (at, *spokes), (1.0, *(sign for _, sign in felt))
 
 
-def _off_wedge(phi: float, angle: float) -> float:
-    """Distance of exp(i phi) from the wedge 0 <= arg <= angle, 1 where the vertex is nearest [-]."""
-    excess = min(abs(phi - bank - 2.0 * np.pi * k) for bank in (0.0, angle) for k in (-1, 0, 1))
+def _off(phi: float, *banks: float) -> float:
+    """Distance of exp(i phi) from the nearest of the banks at these angles, 1 from the vertex on [-]."""
+    excess = min(abs(phi - bank - _TURN * k) for bank in banks for k in (-1, 0, 1))
     return float(np.sin(excess)) if excess < 0.5 * np.pi else 1.0
