@@ -81,7 +81,7 @@ class WaterProperties:
 def water_properties(temperature: float, salinity: float = 0.0) -> WaterProperties:
     """All properties of water; raises WaterRangeError outside TEMPERATURES and SALINITIES.
 
-    Viscosity agrees with the full formulation R12-08 within 0.003 % from 0 to 40 degC. Tension and vapour
+    Viscosity agrees with the full formulation R12-08 within 0.004 % from 0 to 40 degC. Tension and vapour
     pressure are those of fresh water (see LEFT_OUT).
     """
     _check("temperature", temperature, TEMPERATURES, "degC")
