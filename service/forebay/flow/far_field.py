@@ -12,7 +12,7 @@ from math import inf, isnan, pi
 import numpy as np
 
 from forebay.flow.arrays import BoolArray, ComplexArray, FloatArray, IntArray
-from forebay.flow.layout import Channel, Corner, DeadEnd, outflow
+from forebay.flow.layout import Channel, Corner, DeadEnd, Doublet, outflow
 from forebay.flow.model import FlowModel
 
 _STATION = 8.0
@@ -103,6 +103,7 @@ def far_field_of(model: FlowModel, places: ComplexArray) -> FarField:
     )
     shore = model.layout.shore
     size = max(float(np.max(np.abs(places - centre))), 1e-6 * model.scale)
+    size = max([size, *(abs(pier.at - centre) + pier.radius for pier in model.piers)])
     if isinstance(shore, (Channel, DeadEnd)):
         stations = ((places - centre) * np.conj(shore.along)).real
         reach = float(np.max(np.abs(stations))) + _STATION * shore.width
@@ -139,6 +140,12 @@ def _total_discharge(model: FlowModel) -> float:
     return float(points + sum(abs(line.flux) * abs(line.end - line.start) for line in model.lines))
 
 
+def _total_moment(model: FlowModel) -> float:
+    """Sum of the doublets' moments [m3/s]."""
+    doublets = [e for e in model.layout.elements if isinstance(e, Doublet)]
+    return float(sum(abs(doublet.moment) for doublet in doublets))
+
+
 def _circle(model: FlowModel, size: float) -> float:
     """Radius beyond which nothing turns a streamline back, inf where nothing ever leaves [m]."""
     if not model.ends:
@@ -147,11 +154,13 @@ def _circle(model: FlowModel, size: float) -> float:
     if model.layout.ambient.has_gradient:
         return _GRADIENT_REACH * size
     end = model.ends[0]
+    moment = _total_moment(model)
     if end.speed > 0.0:
-        return _DOMINANCE * max(size, total / end.speed)
+        return float(_DOMINANCE * max(size, total / end.speed, (moment / end.speed) ** 0.5))
     leading = abs(_inflow(model, 0))
     if leading <= _STILL * total:
         return inf
+    size = max(size, moment / leading)
     shore = model.layout.shore
     order = max(1.0, shore.interior_angle / pi) if isinstance(shore, Corner) else 1.0
     return float(size * (_DOMINANCE * max(1.0, total / leading)) ** order)

@@ -24,7 +24,7 @@ class TraceRules:
     """How to trace.
 
     forward : with the water, or against it
-    tolerance : error of one step over the distance to the nearest site [-]
+    tolerance : error of one step, in place and in time times speed, over the distance to the nearest site [-]
     largest_turn : change of direction in one step that makes the next one shorter [rad]
     most_steps : steps after which a line is given up
     region : radius about the far field's centre beyond which a line is not followed [m]
@@ -73,3 +73,17 @@ class Traces:
     crossings: tuple[tuple[Crossing, ...], ...]
     paths: tuple[ComplexArray, ...] = ()
     path_times: tuple[FloatArray, ...] = ()
+
+    def part(self, start: int, stop: int) -> "Traces":
+        """The streamlines start <= i < stop."""
+        where = slice(start, stop)
+        return Traces(
+            ends=self.ends[where],
+            stops=self.stops[where],
+            names=self.names[where],
+            times=self.times[where],
+            drift=self.drift[where],
+            crossings=self.crossings[where],
+            paths=self.paths[where],
+            path_times=self.path_times[where],
+        )

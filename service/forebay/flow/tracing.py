@@ -32,7 +32,7 @@ _STAGES: FloatArray = np.array(
 _DEFECT: FloatArray = np.array([71 / 57600, 0, -71 / 16695, 71 / 1920, -17253 / 339200, 22 / 525, -1 / 40])
 """Weights of the steps and of the difference between the two orders (Dormand and Prince 1980, table 2)."""
 
-_REACH = 0.4
+_REACH = 0.45
 """Largest step over the distance to the nearest site: chord and arc then pass on the same side of it [-]."""
 _SHRINK, _GROW, _SAFETY = 0.2, 4.0, 0.9
 _STILL = 1e-13
@@ -192,7 +192,8 @@ class _Run:
                 slowness[stage] = 1.0 / np.abs(w)
                 slopes[stage] = sense * slowness[stage] * np.conj(w)
         with np.errstate(invalid="ignore"):
-            error = lines.step * np.abs(_DEFECT @ slopes) / (self.rules.tolerance * lines.distance)
+            defect = np.maximum(np.abs(_DEFECT @ slopes), np.abs(_DEFECT @ slowness) / slowness[0])
+            error = lines.step * defect / (self.rules.tolerance * lines.distance)
             time = lines.step * (_STAGES[5] @ slowness[:6])
         error = np.where(np.isfinite(error), error, np.inf)
         return _Stride(z=z, w=w, error=error, time=time, blocked=blocked | ~self.model.wet(z))
@@ -279,22 +280,31 @@ class _Run:
     def _stop(self, index: IntArray, closed: BoolArray) -> None:
         """Take out the lines that have come to an end."""
         lines, sites, far = self.lines, self.surroundings.sites, self.surroundings.far
-        captured = sites.captured(lines.distance, index, forward=self.rules.forward)
-        names = [sites.owners[k] for k in index[captured]]
-        self._add_last_time(captured, index)
         end = far.reached(lines.z, self._heading(), forward=self.rules.forward)
-        beyond = (end >= 0) & ~captured
-        left = (np.abs(lines.z - far.centre) > self.rules.region) & ~captured & ~beyond
-        slow = (np.abs(lines.w) < _STILL * self.reference) | sites.at_rest(lines.distance, index)
-        slow &= ~(captured | beyond | left)
-        short = (lines.step < _LEAST_STEP * self.model.scale) & ~(captured | beyond | left | slow)
-        closed = closed & ~(captured | beyond | left | slow | short)
-        where = [captured, beyond, left, slow, short, closed]
-        stops = [Stop.CAPTURED, Stop.FAR_END, Stop.LEFT_REGION, Stop.STAGNATES, Stop.WALL, Stop.CLOSED]
-        far_names = [far.ends[k].name for k in end[beyond]]
-        for mask, stop, found in zip(where, stops, [names, far_names, None, None, None, None], strict=True):
-            self._write(mask, stop, found)
-        self.lines = lines.kept(~np.logical_or.reduce(where))
+        reasons = (
+            (Stop.CAPTURED, sites.captured(lines.distance, index, forward=self.rules.forward)),
+            (Stop.FAR_END, end >= 0),
+            (Stop.LEFT_REGION, np.abs(lines.z - far.centre) > self.rules.region),
+            (Stop.STAGNATES, sites.at_rest(lines.distance, index)),
+            (Stop.STAGNATES, np.abs(lines.w) < _STILL * self.reference),
+            (Stop.WALL, lines.step < _LEAST_STEP * self.model.scale),
+            (Stop.CLOSED, closed),
+        )
+        going = np.ones(lines.index.size, dtype=np.bool_)
+        for stop, met in reasons:
+            mask = met & going
+            if not np.any(mask):
+                continue
+            going &= ~mask
+            names = [""] * int(np.count_nonzero(mask))
+            if stop is Stop.CAPTURED:
+                self._add_last_time(mask, index)
+                names = [sites.owners[k] for k in index[mask]]
+            if stop is Stop.FAR_END:
+                names = [far.ends[k].name for k in end[mask]]
+            self._write(mask, stop, names)
+        if not np.all(going):
+            self.lines = lines.kept(going)
 
     def _add_last_time(self, captured: BoolArray, index: IntArray) -> None:
         """Time over the last radius r: r2/2g - x r3/3g2, g/r the site's own speed, x the rest towards it."""
@@ -307,17 +317,14 @@ class _Run:
             last = r**2 / (2.0 * g) - (speed - g / r) * r**3 / (3.0 * g**2)
         lines.time[captured] += np.where(g > 0.0, last, 0.0)
 
-    def _write(self, mask: BoolArray, stop: Stop, names: list[str] | None = None) -> None:
+    def _write(self, mask: BoolArray, stop: Stop, names: list[str]) -> None:
         lines = self.lines
-        if np.any(mask):
-            found = names if names is not None else [""] * int(np.count_nonzero(mask))
-            self.ended.append(
-                (lines.index[mask], lines.z[mask], lines.time[mask], lines.psi[mask], stop, found)
-            )
+        self.ended.append((lines.index[mask], lines.z[mask], lines.time[mask], lines.psi[mask], stop, names))
 
     def finished(self, count: int) -> Traces:
         """Everything that has happened, in the order of the seeds."""
-        self._write(np.ones(self.lines.index.size, dtype=np.bool_), Stop.STEP_LIMIT)
+        left = self.lines.index.size
+        self._write(np.ones(left, dtype=np.bool_), Stop.STEP_LIMIT, [""] * left)
         ends = np.empty(count, dtype=np.complex128)
         times, drift = np.empty(count), np.empty(count)
         stops, names = [Stop.STEP_LIMIT] * count, [""] * count

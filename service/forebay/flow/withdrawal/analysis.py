@@ -6,15 +6,18 @@ that the shares are exact to rounding however coarsely the lines are traced; onl
 matter of tracing.
 """
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
+from itertools import pairwise
 from math import nan
 
 import numpy as np
 
-from forebay.flow.arrays import FloatArray
+from forebay.flow.arrays import ComplexArray, FloatArray
 from forebay.flow.layout import LineSink, Sink
 from forebay.flow.model import FlowModel
 from forebay.flow.stagnation.result import StagnationSearch
+from forebay.flow.traces import TraceRules, Traces
+from forebay.flow.tracing import trace_streamlines
 from forebay.flow.withdrawal.divides import Arrivals, Divides, arrivals_at, divides_of, retraced
 from forebay.flow.withdrawal.mouths import Mouth, mouth_of
 from forebay.flow.withdrawal.result import (
@@ -25,13 +28,22 @@ from forebay.flow.withdrawal.result import (
     WidthStatus,
     WithdrawalStatus,
 )
-from forebay.flow.withdrawal.sectors import Sector, Source, Tally, sectors_between, tally
-from forebay.flow.withdrawal.zones import Canvas, canvas_of, dividing_streamlines, zone_outline
+from forebay.flow.withdrawal.sectors import (
+    FINEST,
+    Sector,
+    Source,
+    Tally,
+    probes,
+    released,
+    sectors_between,
+    tally,
+)
+from forebay.flow.withdrawal.zones import Canvas, canvas_of, dividing_streamlines, edges, zone_outline
 
-TOLERANCE = 1e-6
-"""Of tracing, over the distance to the nearest site [-]."""
-_CHECK = 0.03
-"""The tolerance's factor in the second run, whose difference from the first goes into the error [-]."""
+DRAWN = TraceRules(tolerance=1e-6, largest_turn=0.1, keep_paths=True)
+"""Rules of the lines that are drawn: neighbouring points differ by about 0.1 rad in direction."""
+_CHECK = TraceRules(tolerance=1e-4)
+"""Rules of the second run, whose difference from the first goes into the error."""
 _ROUNDING = 2e-14
 """Of a streamline's sum of chords, over the sum of all discharges: some 50 chords at a few 1e-16 [-]."""
 _LINE_ROUNDING = 1e-8
@@ -39,14 +51,29 @@ _LINE_ROUNDING = 1e-8
 
 
 @dataclass(frozen=True, slots=True)
-class _Reading:
-    """What one intake's mouth says."""
+class _Mouthful:
+    """One intake's mouth and what divides its water."""
 
     element: Sink | LineSink
     mouth: Mouth
     arrivals: Arrivals
     sectors: list[Sector]
-    tally: Tally
+
+    def seeds(self) -> ComplexArray:
+        """Probes of the sectors, then their edges [m]."""
+        return released(self.mouth, np.concatenate([probes(self.sectors), edges(self.sectors)]))
+
+
+@dataclass(frozen=True, slots=True)
+class _Flow:
+    """What all intakes have in common; `arriving` are traces of the arriving branches against the flow."""
+
+    model: FlowModel
+    search: StagnationSearch
+    divides: Divides
+    check: Divides
+    canvas: Canvas
+    arriving: Traces
 
 
 def withdraw(
@@ -69,76 +96,84 @@ def withdraw(
     Measured: shares to 1e-14 on layouts with closed forms. A line sink's mouth and water crossing line
     sources are exact to about 1e-8.
     """
-    divides = divides_of(model, search.points, TOLERANCE)
-    check = retraced(model, divides, TOLERANCE * _CHECK)
+    divides = divides_of(model, search.points, DRAWN)
+    check = retraced(model, divides, _CHECK)
+    mouthfuls = [_mouthful(model, divides, name) for name in intakes]
+    seeds = [divides.branches.starts[divides.arriving], *(mouthful.seeds() for mouthful in mouthfuls)]
+    rules = replace(DRAWN, forward=False)
+    traces = trace_streamlines(model, np.concatenate(seeds), surroundings=divides.surroundings, rules=rules)
+    cuts = np.cumsum([part.size for part in seeds])
     canvas = canvas_of(model, divides.surroundings, intakes)
-    return tuple(_withdrawal(model, search, name, (divides, check), canvas) for name in intakes)
+    flow = _Flow(model, search, divides, check, canvas, traces.part(0, int(cuts[0])))
+    parts = [traces.part(int(a), int(b)) for a, b in pairwise(cuts)]
+    return tuple(_withdrawal(flow, mouthful, part) for mouthful, part in zip(mouthfuls, parts, strict=True))
 
 
-def _withdrawal(
-    model: FlowModel, search: StagnationSearch, name: str, divides: tuple[Divides, Divides], canvas: Canvas
-) -> IntakeWithdrawal:
-    reading = _read(model, divides[0], name)
-    shares = _shares(reading)
-    status = _status(search, reading)
-    error = nan if status is WithdrawalStatus.INCOMPLETE else _error(model, reading, divides[1])
-    widths = tuple(_widths(model, reading))
+def _mouthful(model: FlowModel, divides: Divides, name: str) -> _Mouthful:
+    element = next(e for e in model.layout.elements if e.name == name and isinstance(e, Sink | LineSink))
+    mouth = mouth_of(model, name, divides.surroundings)
+    arrivals = arrivals_at(divides, name, mouth)
+    return _Mouthful(element, mouth, arrivals, sectors_between(mouth, arrivals.coordinates))
+
+
+def _withdrawal(flow: _Flow, mouthful: _Mouthful, traces: Traces) -> IntakeWithdrawal:
+    element, mouth, arrivals, sectors = mouthful.element, mouthful.mouth, mouthful.arrivals, mouthful.sectors
+    count = probes(sectors).size
+    source = Source(flow.model, flow.divides.surroundings, DRAWN.tolerance)
+    counted = tally(source, mouth, sectors, traces.part(0, count))
+    shares = _shares(counted)
+    status = _status(flow, mouthful, counted)
+    widths = tuple(_widths(flow.model, counted))
+    outline = zone_outline(
+        flow.canvas, flow.divides, (mouth, arrivals, sectors), traces.part(count, traces.ends.size)
+    )
     return IntakeWithdrawal(
-        name=name,
-        discharge=reading.element.discharge,
-        arriving=reading.mouth.total * model.layout.depth,
-        width_far_upstream=next(
-            (w.width for w in widths if w.end in {"ambient", "upstream", "open-end"}), nan
-        ),
+        name=element.name,
+        discharge=element.discharge,
+        arriving=mouth.total * flow.model.layout.depth,
+        width_far_upstream=next((w.width for w in widths if w.end != "downstream"), nan),
         widths=widths,
-        dividing_streamlines=dividing_streamlines(canvas, divides[0], reading.arrivals, name),
-        zone=zone_outline(canvas, divides[0], reading.mouth, reading.arrivals, reading.sectors),
-        extent=canvas.extent,
+        dividing_streamlines=dividing_streamlines(
+            flow.canvas, flow.divides, flow.arriving, (arrivals, element.name)
+        ),
+        zone=outline,
+        extent=flow.canvas.extent,
         shares=shares,
         recirculation_share=float(sum(s.share for s in shares if s.kind is OriginKind.OUTFALL)),
-        share_error=error,
+        share_error=nan if status is WithdrawalStatus.INCOMPLETE else _error(flow, mouthful, counted),
         status=status,
     )
 
 
-def _read(model: FlowModel, divides: Divides, name: str) -> _Reading:
-    element = next(e for e in model.layout.elements if e.name == name and isinstance(e, Sink | LineSink))
-    mouth = mouth_of(model, name, divides.surroundings)
-    arrivals = arrivals_at(divides, name, mouth)
-    sectors = sectors_between(mouth, arrivals.coordinates)
-    source = Source(model, divides.surroundings, TOLERANCE)
-    return _Reading(element, mouth, arrivals, sectors, tally(source, mouth, sectors))
-
-
-def _shares(reading: _Reading) -> tuple[Share, ...]:
+def _shares(counted: Tally) -> tuple[Share, ...]:
     """Shares, largest first."""
-    fluxes = sorted(reading.tally.fluxes.items(), key=lambda item: (-item[1], item[0]))
+    fluxes = sorted(counted.fluxes.items(), key=lambda item: (-item[1], item[0]))
     total = sum(flux for _, flux in fluxes)
     return tuple(Share(origin, kind, float(flux / total)) for (origin, kind), flux in fluxes if flux > 0.0)
 
 
-def _status(search: StagnationSearch, reading: _Reading) -> WithdrawalStatus:
-    if not search.complete:
+def _status(flow: _Flow, mouthful: _Mouthful, counted: Tally) -> WithdrawalStatus:
+    if not flow.search.complete:
         return WithdrawalStatus.INCOMPLETE
-    if any(kind is OriginKind.UNRESOLVED for _, kind in reading.tally.fluxes):
+    if any(kind is OriginKind.UNRESOLVED for _, kind in counted.fluxes):
         return WithdrawalStatus.UNRESOLVED
-    if reading.mouth.passed_through:
+    if mouthful.mouth.passed_through:
         return WithdrawalStatus.PASSED_THROUGH
-    return WithdrawalStatus.BISECTED if reading.tally.bisected else WithdrawalStatus.OK
+    return WithdrawalStatus.BISECTED if counted.bisected else WithdrawalStatus.OK
 
 
-def _error(model: FlowModel, reading: _Reading, check: Divides) -> float:
+def _error(flow: _Flow, mouthful: _Mouthful, counted: Tally) -> float:
     """Error of a share: change under tolerance, inclusion of the nodes, quadrature, piers, rounding."""
-    total = reading.mouth.total
-    arrivals = arrivals_at(check, reading.element.name, reading.mouth)
-    again = sectors_between(reading.mouth, arrivals.coordinates)
-    change = _difference(reading.sectors, again, total)
+    mouth, model = mouthful.mouth, flow.model
+    arrivals = arrivals_at(flow.check, mouthful.element.name, mouth)
+    again = sectors_between(mouth, arrivals.coordinates)
+    change = _difference(mouthful.sectors, again, mouth.total)
     strengths = sum(2.0 * np.pi * abs(s.strength) for s in model.singularities)
     strengths += sum(abs(line.flux) * abs(line.end - line.start) for line in model.lines)
-    left_open = (2.0 * reading.arrivals.error + reading.tally.error) / total
-    left_open += _LINE_ROUNDING if reading.mouth.passed_through else 0.0
-    left_open += 1e-10 if reading.tally.bisected else 0.0
-    return float(min(1.0, change + left_open + model.boundary_residual + _ROUNDING * strengths / total))
+    left_open = (2.0 * mouthful.arrivals.error + counted.error) / mouth.total
+    left_open += _LINE_ROUNDING if mouth.passed_through else 0.0
+    left_open += FINEST if counted.bisected else 0.0
+    return float(min(1.0, change + left_open + model.boundary_residual + _ROUNDING * strengths / mouth.total))
 
 
 def _difference(sectors: list[Sector], again: list[Sector], total: float) -> float:
@@ -149,11 +184,11 @@ def _difference(sectors: list[Sector], again: list[Sector], total: float) -> flo
     return float(0.5 * np.abs(parts[0] - parts[1]).sum())
 
 
-def _widths(model: FlowModel, reading: _Reading) -> list[EndWidth]:
+def _widths(model: FlowModel, counted: Tally) -> list[EndWidth]:
     """Flux from each far end over the speed there."""
     widths = []
     for end in model.ends:
-        flux = reading.tally.fluxes.get((end.name, OriginKind.FAR_FIELD), 0.0)
+        flux = counted.fluxes.get((end.name, OriginKind.FAR_FIELD), 0.0)
         if model.layout.ambient.has_gradient:
             widths.append(EndWidth(end.name, nan, WidthStatus.UNEVEN))
         elif end.speed == 0.0:

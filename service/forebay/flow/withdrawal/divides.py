@@ -8,7 +8,7 @@ from dataclasses import dataclass, replace
 
 import numpy as np
 
-from forebay.flow.arrays import BoolArray, ComplexArray, FloatArray, IntArray
+from forebay.flow.arrays import BoolArray, FloatArray, IntArray
 from forebay.flow.model import FlowModel
 from forebay.flow.stagnation.result import StagnationPoint
 from forebay.flow.surroundings import Surroundings, survey
@@ -27,7 +27,7 @@ class Divides:
 
     branches : n beginnings
     leaving, arriving : indices of those along which water leaves or arrives
-    forward : traces of `leaving` with the water
+    forward : traces of `leaving` with the water, with their paths
     beside : traces of both sides of `arriving`, left ones first
     """
 
@@ -52,7 +52,7 @@ class Arrivals:
     error: float
 
 
-def divides_of(model: FlowModel, points: tuple[StagnationPoint, ...], tolerance: float) -> Divides:
+def divides_of(model: FlowModel, points: tuple[StagnationPoint, ...], rules: TraceRules) -> Divides:
     """Follow every branch of the stagnation points and of the ends of line elements."""
     surroundings = survey(model, np.array([point.at for point in points], dtype=np.complex128))
     branches = branches_of(model, points, surroundings)
@@ -64,34 +64,16 @@ def divides_of(model: FlowModel, points: tuple[StagnationPoint, ...], tolerance:
     )
     beside = np.where(model.wet(beside), beside, np.tile(branches.starts[arriving], 2))
     seeds = np.concatenate([branches.starts[leaving], beside])
-    rules = TraceRules(tolerance=tolerance)
     traces = trace_streamlines(model, seeds, surroundings=surroundings, rules=rules)
-    cut = leaving.size
-    return Divides(
-        surroundings, branches, leaving, arriving, _part(traces, 0, cut), _part(traces, cut, seeds.size)
-    )
+    forward, sides = traces.part(0, leaving.size), traces.part(leaving.size, seeds.size)
+    return Divides(surroundings, branches, leaving, arriving, forward, sides)
 
 
-def retraced(model: FlowModel, divides: Divides, tolerance: float) -> Divides:
-    """The same divides with the leaving branches traced to another tolerance, to see what that changes."""
+def retraced(model: FlowModel, divides: Divides, rules: TraceRules) -> Divides:
+    """The same divides with the leaving branches traced by other rules, to see what that changes."""
     seeds = divides.branches.starts[divides.leaving]
-    rules = TraceRules(tolerance=tolerance)
     forward = trace_streamlines(model, seeds, surroundings=divides.surroundings, rules=rules)
     return replace(divides, forward=forward)
-
-
-def _part(traces: Traces, start: int, stop: int) -> Traces:
-    where = slice(start, stop)
-    return Traces(
-        ends=traces.ends[where],
-        stops=traces.stops[where],
-        names=traces.names[where],
-        times=traces.times[where],
-        drift=traces.drift[where],
-        crossings=traces.crossings[where],
-        paths=traces.paths[where],
-        path_times=traces.path_times[where],
-    )
 
 
 def arrivals_at(divides: Divides, name: str, mouth: Mouth) -> Arrivals:
@@ -126,16 +108,3 @@ def _meets(divides: Divides, i: int, name: str) -> bool:
     beside, lines = divides.beside, divides.surroundings.lines
     crossed = any(lines.owners[crossing.line] == name for crossing in beside.crossings[i])
     return crossed or (beside.stops[i] is Stop.CAPTURED and beside.names[i] == name)
-
-
-def lines_through(
-    model: FlowModel, divides: Divides, chosen: IntArray, *, rules: TraceRules
-) -> list[ComplexArray]:
-    """Polylines of chosen branches in the direction of flow, from or to their node [m]."""
-    branches = divides.branches
-    traces = trace_streamlines(model, branches.starts[chosen], surroundings=divides.surroundings, rules=rules)
-    drawn = []
-    for i, branch in enumerate(chosen):
-        path = np.concatenate([branches.centres[branch : branch + 1], traces.paths[i]])
-        drawn.append(path if rules.forward else path[::-1])
-    return drawn

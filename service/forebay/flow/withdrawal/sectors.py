@@ -12,7 +12,7 @@ from math import pi
 
 import numpy as np
 
-from forebay.flow.arrays import FloatArray
+from forebay.flow.arrays import ComplexArray, FloatArray
 from forebay.flow.layout import Doublet
 from forebay.flow.model import FlowModel
 from forebay.flow.surroundings import Surroundings
@@ -23,9 +23,10 @@ from forebay.flow.withdrawal.result import OriginKind
 
 MERGED = 1e-12
 """Width of a sector, as part of the total, below which it has no water of its own [-]."""
-_PROBES: FloatArray = np.array([0.03, 0.4142, 0.97])
+PROBES: FloatArray = np.array([0.03, 0.4142, 0.97])
+"""Parts of a sector's flux at which it is probed; the one between tells the origin if all agree [-]."""
 _PARTS = 8
-_FINEST = 1e-10
+FINEST = 1e-10
 """Bisection: parts per round and width, as part of the total, at which it ends [-]."""
 _SLIVER = 1e-6
 """Flux next to a divide found by bisection, over the total, that may remain unresolved [-]."""
@@ -91,6 +92,11 @@ def _apart(edges: FloatArray, least: float, keep: tuple[float, ...]) -> FloatArr
     return np.array(chosen)
 
 
+def released(mouth: Mouth, coordinates: FloatArray) -> ComplexArray:
+    """Points of a mouth at coordinates that may run past its total, shape (n,) [m]."""
+    return mouth.release(coordinates if mouth.breaks else np.mod(coordinates, mouth.total))
+
+
 @dataclass(frozen=True, slots=True)
 class Source:
     """Follows water of a mouth back to its origin."""
@@ -138,14 +144,18 @@ class Source:
         return parts
 
 
-def tally(source: Source, mouth: Mouth, sectors: list[Sector]) -> Tally:
-    """Flux of every origin into a mouth."""
-    traces = source.trace(mouth, np.concatenate([sector.at(_PROBES) for sector in sectors]))
+def probes(sectors: list[Sector]) -> FloatArray:
+    """Coordinates of the probes of all sectors, `PROBES` each [m2/s]."""
+    return np.concatenate([sector.at(PROBES) for sector in sectors])
+
+
+def tally(source: Source, mouth: Mouth, sectors: list[Sector], traces: Traces) -> Tally:
+    """Flux of every origin into a mouth, from the traces of its `probes`."""
     signatures = source.signatures(traces)
     fluxes: dict[Origin, float] = {}
     error, bisected = 0.0, False
     for k, sector in enumerate(sectors):
-        told = signatures[k * _PROBES.size : (k + 1) * _PROBES.size]
+        told = signatures[k * PROBES.size : (k + 1) * PROBES.size]
         pieces = [(sector, told[1])]
         if len(set(told)) > 1:
             bisected = True
@@ -163,7 +173,7 @@ def _divided(
     source: Source, mouth: Mouth, sector: Sector, told: list[Signature]
 ) -> list[tuple[Sector, Signature]]:
     """A sector cut wherever neighbouring probes differ."""
-    places = sector.at(_PROBES)
+    places = sector.at(PROBES)
     cuts: list[float] = [sector.low]
     kept: list[Signature] = [told[0]]
     for a, b, left, right in zip(places[:-1], places[1:], told[:-1], told[1:], strict=True):
@@ -199,7 +209,7 @@ def _switches(
     """Coordinates at which the signature changes within a sector, with the signature beyond each."""
     if ends[0] == ends[1]:
         return []
-    if sector.flux <= _FINEST * mouth.total:
+    if sector.flux <= FINEST * mouth.total:
         return [(0.5 * (sector.low + sector.high), ends[1])]
     places = sector.at(np.linspace(0.0, 1.0, _PARTS + 1))
     told = [ends[0], *source.signatures(source.trace(mouth, places[1:-1])), ends[1]]

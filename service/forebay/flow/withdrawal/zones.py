@@ -10,13 +10,12 @@ from math import inf
 
 import numpy as np
 
-from forebay.flow.arrays import ComplexArray, FloatArray, IntArray
+from forebay.flow.arrays import ComplexArray, FloatArray
 from forebay.flow.layout import Basin, Channel, DeadEnd
 from forebay.flow.model import FlowModel
 from forebay.flow.surroundings import Surroundings
-from forebay.flow.traces import Stop, TraceRules, Traces
-from forebay.flow.tracing import trace_streamlines
-from forebay.flow.withdrawal.divides import Arrivals, Divides, bounding, lines_through
+from forebay.flow.traces import Stop, Traces
+from forebay.flow.withdrawal.divides import Arrivals, Divides, bounding
 from forebay.flow.withdrawal.mouths import Mouth
 from forebay.flow.withdrawal.sectors import Sector
 
@@ -36,7 +35,7 @@ class Canvas:
     """How lines are drawn.
 
     model, surroundings : the flow
-    extent : radius about the far field's centre where lines end [m]
+    extent : radius about the far field's centre beyond which lines that do not return are cut [m]
     """
 
     model: FlowModel
@@ -48,23 +47,18 @@ class Canvas:
         """Middle of the layout [m]."""
         return self.surroundings.far.centre
 
-    def rules(self, *, forward: bool) -> TraceRules:
-        """Rules of tracing for a drawn line."""
-        return TraceRules(
-            forward=forward, tolerance=1e-6, largest_turn=_TURN, region=self.extent, keep_paths=True
-        )
-
     def trimmed(self, path: ComplexArray) -> ComplexArray:
-        """A path cut where it leaves the extent for the last time."""
-        beyond = np.abs(path - self.centre) > self.extent
-        if path.size < 2 or not beyond[-1] or beyond[-2]:
+        """A path cut where it leaves the extent for good."""
+        inside = np.nonzero(np.abs(path - self.centre) <= self.extent)[0]
+        if inside.size == 0 or inside[-1] == path.size - 1:
             return path
-        a, b = path[-2] - self.centre, path[-1] - self.centre
-        span = b - a
+        last = int(inside[-1])
+        a = path[last] - self.centre
+        span = path[last + 1] - path[last]
         half = (a.conjugate() * span).real
         square = abs(span) ** 2
         part = (np.sqrt(half**2 + square * (self.extent**2 - abs(a) ** 2)) - half) / square
-        return np.append(path[:-1], self.centre + a + part * span)
+        return np.append(path[: last + 1], path[last] + part * span)
 
 
 def canvas_of(model: FlowModel, surroundings: Surroundings, intakes: tuple[str, ...]) -> Canvas:
@@ -83,54 +77,59 @@ def canvas_of(model: FlowModel, surroundings: Surroundings, intakes: tuple[str, 
 
 
 def dividing_streamlines(
-    canvas: Canvas, divides: Divides, arrivals: Arrivals, name: str
+    canvas: Canvas, divides: Divides, arriving: Traces, choice: tuple[Arrivals, str]
 ) -> tuple[ComplexArray, ...]:
-    """Streamlines that bound or divide the water of the intake `name`, in the direction of flow.
+    """Streamlines that bound or divide the water of an intake, in the direction of flow.
+
+    arriving : traces of the arriving branches against the flow, with their paths
+    choice : the intake's arrivals and its name
 
     First those that arrive at the stagnation points on the edge of the zone, then those that leave them.
     """
     branches = divides.branches
-    edge = divides.arriving[bounding(divides, name)]
-    nodes = np.unique(np.concatenate([branches.node[edge], arrivals.nodes]))
-    back = divides.arriving[np.isin(branches.node[divides.arriving], nodes)]
-    on = divides.leaving[np.isin(branches.node[divides.leaving], nodes)]
-    drawn = _drawn(canvas, divides, back, forward=False) + _drawn(canvas, divides, on, forward=True)
+    edge = divides.arriving[bounding(divides, choice[1])]
+    nodes = np.unique(np.concatenate([branches.node[edge], choice[0].nodes]))
+    drawn = []
+    for i, branch in enumerate(divides.arriving):
+        if branches.node[branch] in nodes:
+            drawn.append(canvas.trimmed(np.append(branches.centres[branch], arriving.paths[i]))[::-1])
+    for i, branch in enumerate(divides.leaving):
+        if branches.node[branch] in nodes:
+            drawn.append(canvas.trimmed(np.append(branches.centres[branch], divides.forward.paths[i])))
     return tuple(drawn)
 
 
-def _drawn(canvas: Canvas, divides: Divides, chosen: IntArray, *, forward: bool) -> list[ComplexArray]:
-    if chosen.size == 0:
-        return []
-    lines = lines_through(canvas.model, divides, chosen, rules=canvas.rules(forward=forward))
-    if forward:
-        return [canvas.trimmed(line) for line in lines]
-    return [canvas.trimmed(line[::-1])[::-1] for line in lines]
+def edges(sectors: list[Sector]) -> FloatArray:
+    """Coordinates just inside both edges of every sector [m2/s]."""
+    return np.concatenate([sector.at(np.array([_HAIR, 1.0 - _HAIR])) for sector in sectors])
 
 
 def zone_outline(
-    canvas: Canvas, divides: Divides, mouth: Mouth, arrivals: Arrivals, sectors: list[Sector]
+    canvas: Canvas, divides: Divides, water: tuple[Mouth, Arrivals, list[Sector]], traces: Traces
 ) -> ComplexArray:
-    """Outline of the water that reaches a mouth, anticlockwise [m]."""
+    """Outline of the water that reaches a mouth, anticlockwise [m].
+
+    water : the mouth, the branches that arrive there and its sectors
+    traces : of the sectors' `edges` against the flow, with their paths
+    """
+    mouth, arrivals, sectors = water
     if not mouth.breaks and len(sectors) == 1 and arrivals.coordinates.size == 0:
         return _whole_water(canvas)
-    edges = np.concatenate([[s.at(np.array(_HAIR)), s.at(np.array(1.0 - _HAIR))] for s in sectors])
-    wrapped = edges if mouth.breaks else np.mod(edges, mouth.total)
-    rules = canvas.rules(forward=False)
-    traces = trace_streamlines(
-        canvas.model, mouth.release(wrapped), surroundings=canvas.surroundings, rules=rules
-    )
     parts: list[ComplexArray] = []
     for k, sector in enumerate(sectors):
-        left = _beyond_node(divides, arrivals, mouth, sector.low, canvas.trimmed(traces.paths[2 * k]))
-        right = _beyond_node(divides, arrivals, mouth, sector.high, canvas.trimmed(traces.paths[2 * k + 1]))
-        parts += [left, _closure(canvas, traces, (2 * k, 2 * k + 1), (left[-1], right[-1])), right[::-1]]
+        left = _beyond_node(divides, (mouth, arrivals), sector.low, canvas.trimmed(traces.paths[2 * k]))
+        right = _beyond_node(divides, (mouth, arrivals), sector.high, canvas.trimmed(traces.paths[2 * k + 1]))
+        far = all(traces.stops[i] is Stop.FAR_END for i in (2 * k, 2 * k + 1))
+        closure = _arc(canvas, left[-1], right[-1]) if far and not canvas.surroundings.far.axis else left[:0]
+        parts += [left, closure, right[::-1]]
     return np.concatenate(parts)
 
 
 def _beyond_node(
-    divides: Divides, arrivals: Arrivals, mouth: Mouth, edge: float, path: ComplexArray
+    divides: Divides, water: tuple[Mouth, Arrivals], edge: float, path: ComplexArray
 ) -> ComplexArray:
     """The part of a path beyond the stagnation point from which the divide at `edge` comes."""
+    mouth, arrivals = water
     if arrivals.coordinates.size == 0:
         return path
     gap = np.abs(arrivals.coordinates - edge)
@@ -142,18 +141,6 @@ def _beyond_node(
     node = divides.branches.nodes[arrivals.nodes[nearest]]
     closest = int(np.argmin(np.abs(path - node)))
     return np.concatenate([[node], path[closest + 1 :]]) if closest + 1 < path.size else path[-1:]
-
-
-def _closure(
-    canvas: Canvas, traces: Traces, pair: tuple[int, int], ends: tuple[complex, complex]
-) -> ComplexArray:
-    """Points between the far ends of a strip: an arc at the extent, or the outfall itself."""
-    stops = [traces.stops[i] for i in pair]
-    if all(stop is Stop.CAPTURED for stop in stops):
-        return np.array(ends)[:0]
-    if canvas.surroundings.far.axis or not all(stop in {Stop.LEFT_REGION, Stop.FAR_END} for stop in stops):
-        return np.empty(0, dtype=np.complex128)
-    return _arc(canvas, *ends)
 
 
 def _arc(canvas: Canvas, start: complex, end: complex) -> ComplexArray:
