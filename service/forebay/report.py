@@ -39,7 +39,8 @@ def heading(layout: Json, provenance: Json, units: Json) -> list[str]:
     """What was assessed, by what."""
     elements = [element["kind"].replace("-", " ") for element in layout.get("elements", [])]
     structures = [structure["kind"] for structure in layout.get("structures", [])]
-    things = ", ".join(f"{count} {kind}" for kind, count in counts([*elements, *structures]).items())
+    counted = counts([*elements, *structures]).items()
+    things = ", ".join(f"{count} {kind}{'s' if count > 1 else ''}" for kind, count in counted)
     shore = layout.get("shore", {"kind": "open-water"})["kind"]
     digest = provenance["layout_digest"][:19]
     return [
@@ -62,7 +63,7 @@ def intakes_section(intakes: Sequence[Json], units: Json) -> list[str]:
     names = (
         "intake",
         f"discharge {units['discharge']}",
-        f"width {units['width_far_upstream']}",
+        f"width upstream {units['width_far_upstream']}",
         "water from",
     )
     columns = (*names, "share %", "recirculated %", "status")
@@ -216,7 +217,7 @@ def number(value: float | None) -> str:
     """Four significant digits without an exponent where that is readable; `-` if there is no value."""
     if value is None:
         return "-"
-    if value == 0 or 1e-3 <= abs(value) < 1e5:
+    if value == 0 or 1e-3 <= abs(value) < 1e7:
         return f"{value:.4g}" if abs(value) < 1e4 else f"{value:.0f}"
     return f"{value:.3e}"
 

@@ -14,6 +14,7 @@ def run_server(*, host: str | None, port: int | None) -> int:
         host=host if host is not None else settings.host,
         port=port if port is not None else settings.port,
         server_header=False,
+        access_log=False,
         timeout_graceful_shutdown=10,
     )
     return 0

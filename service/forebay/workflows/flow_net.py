@@ -45,12 +45,12 @@ def draw_flow_net(layout: Layout, options: FlowNetOptions | None = None) -> Pict
     options = options or FlowNetOptions()
     model = compile_layout(layout)
     window = options.window or choose_window(model, map_aspect(options.size) if options.size else None)
-    points, point_notes = stagnation_points(layout, window, options.layers)
-    lines, line_notes = dividing_streamlines(layout, options.layers)
+    points, point_notes = _stagnation_points(layout, window, options.layers)
+    lines, line_notes = _dividing_streamlines(layout, options.layers)
     return draw_scene(Scene(model, window, points, lines, point_notes + line_notes), options)
 
 
-def stagnation_points(
+def _stagnation_points(
     layout: Layout, window: Window, layers: frozenset[Layer]
 ) -> tuple[tuple[StagnationPoint, ...], Notes]:
     """Stagnation points in the window, and what must be said if there may be more."""
@@ -60,7 +60,7 @@ def stagnation_points(
     return search.points, () if search.complete else (MORE_POINTS,)
 
 
-def dividing_streamlines(layout: Layout, layers: frozenset[Layer]) -> tuple[tuple[ComplexArray, ...], Notes]:
+def _dividing_streamlines(layout: Layout, layers: frozenset[Layer]) -> tuple[tuple[ComplexArray, ...], Notes]:
     """Dividing streamlines of all intakes [m], and what must be said if there may be more."""
     has_intake = any(isinstance(element, Sink | LineSink) for element in layout.elements)
     if Layer.DIVIDING_STREAMLINES not in layers or not has_intake:
