@@ -1,7 +1,8 @@
 """One application for all tests over HTTP, with one worker process."""
 
 import time
-from collections.abc import Iterator
+from collections.abc import Callable, Iterator
+from functools import cache
 from typing import TYPE_CHECKING
 
 import pytest
@@ -9,6 +10,7 @@ from starlette.testclient import TestClient
 
 if TYPE_CHECKING:
     from fastapi import FastAPI
+    from httpx2 import Response
 
 ORIGIN = {"Origin": "https://tool.example"}
 """A page of another origin sends this."""
@@ -39,3 +41,19 @@ def ready_client(client: TestClient) -> TestClient:
         assert "failed" not in answer.json()["detail"], answer.text
         time.sleep(0.05)
     return client
+
+
+@pytest.fixture(scope="session")
+def answer_to_example(ready_client: TestClient) -> "Callable[[str, str], Response]":
+    """Answer to an operation's example, read in a unit system; asked for once, since some take long."""
+    from forebay.api.routers.registry import OPERATIONS
+    from support.http import example
+
+    @cache
+    def post(operation_id: str, system: str) -> "Response":
+        request = example(operation_id, unit_system=system)
+        if system == "us":  # the same numbers describe another site; its water has to stay liquid
+            (request["layout"]["water"] if "layout" in request else request["fluid"])["temperature"] = 60.0
+        return ready_client.post(OPERATIONS[operation_id].path, json=request)
+
+    return post

@@ -51,8 +51,8 @@ def test_example_fits_the_document(operation):
 @pytest.mark.parametrize(
     "operation", [o for o in OPERATIONS.values() if o.result], ids=lambda o: o.operation_id
 )
-def test_answer_fits_the_document(ready_client, operation):
-    answer = ready_client.post(operation.path, json=request_example(operation.operation_id))
+def test_answer_fits_the_document(answer_to_example, operation):
+    answer = answer_to_example(operation.operation_id, "si")
     responses = DOCUMENT["paths"][operation.path]["post"]["responses"]
     validator(responses["200"]["content"][JSON]["schema"]["$ref"]).validate(answer.json())
 
