@@ -11,7 +11,7 @@ from enum import StrEnum
 
 import numpy as np
 
-from forebay.flow.arrays import BoolArray, ComplexArray, FloatArray, IntArray
+from forebay.flow.arrays import ComplexArray, FloatArray
 from forebay.flow.contour_quadrature import Quadrature, integrate_numerically
 from forebay.flow.cores import CoreTerm
 from forebay.flow.features import WATER, Line
@@ -24,12 +24,6 @@ from forebay.flow.strands import Strand, chords_between, strand_of
 
 THROUGH = 1e-9
 """Distance from a point element within which a contour runs through it, relative to the scale [-]."""
-
-_CENTRE = 1e-8
-"""Distance from a core's centre, in radii, within which the model moves a point aside [-]."""
-
-_CLOSE = 1e-4
-"""Distance from a core's centre, in radii, within which a chord is led round it [-]."""
 
 
 class ContourStatus(StrEnum):
@@ -98,8 +92,7 @@ def integrate_contour(model: FlowModel, contour: Contour) -> ContourIntegral:
     Notes
     -----
     Exact to rounding (some 1e-15 of the sum of |q| + |Gamma|) for every contour, also across line elements
-    and through vortex cores. Along a line element: the mean of both sides, in a bank the water's side. An
-    open contour that ends in a core's centre ends 1e-8 of the radius beside it.
+    and through vortex cores. Along a line element: the mean of both sides, in a bank the water's side.
     """
     strand = strand_of(contour.pieces, _obstacles(model))
     through = _met(model, strand)
@@ -182,52 +175,19 @@ def _leaves_water(model: FlowModel, strand: Strand) -> bool:
 
 def _exact(model: FlowModel, strand: Strand) -> ComplexArray:
     """Integral by owner, shape (owners,): along chords, and what these miss."""
-    chords, of_piece = _chords(model, strand)
-    sums = np.asarray(model.chords(chords.start, chords.end).sum(axis=0), dtype=np.complex128)
-    changed = (strand.turn != 0.0) | (np.bincount(of_piece, minlength=strand.start.size) > 1)
-    changed |= _has_moved_end(model, strand)
-    if not bool(changed.any()):
+    sums = np.asarray(model.chords(strand.start, strand.end).sum(axis=0), dtype=np.complex128)
+    arcs = strand.taken(np.flatnonzero(strand.turn != 0.0))
+    if arcs.start.size == 0:
         return sums
-    path, stand_in = strand.taken(np.flatnonzero(changed)), chords.taken(np.flatnonzero(changed[of_piece]))
+    chords = chords_between(arcs.start, arcs.end)
     for term in model.terms:
         if isinstance(term, CoreTerm | GradientTerm):
-            sums[term.owner] += _rotational(term, path).sum() - _rotational(term, stand_in).sum()
+            sums[term.owner] += _rotational(term, arcs).sum() - _rotational(term, chords).sum()
     for line in model.lines:
         if line.on == WATER:
-            missed = _crossed(line, path) - _crossed(line, stand_in)
+            missed = _crossed(line, arcs) - _crossed(line, chords)
             sums[model.owners.index(line.owner)] += 1j * line.flux * abs(line.end - line.start) * missed
     return sums
-
-
-def _has_moved_end(model: FlowModel, strand: Strand) -> BoolArray:
-    """Which pieces begin or end in the centre of a core."""
-    moved = np.zeros(strand.start.shape, dtype=np.bool_)
-    for vortex in model.cores:
-        for end in (strand.start, strand.end):
-            moved |= np.abs(end - vortex.at) < _CENTRE * vortex.core.radius
-    return moved
-
-
-def _chords(model: FlowModel, strand: Strand) -> tuple[Strand, IntArray]:
-    """Chords of the pieces, led round the centres of cores, and the piece that each belongs to."""
-    start, end = strand.start.copy(), strand.end.copy()
-    of_piece = np.arange(start.size)
-    for vortex in model.cores:
-        radius = vortex.core.radius
-        for ends in (start, end):
-            ends[np.abs(ends - vortex.at) < _CENTRE * radius] = vortex.at + _CENTRE * radius
-        chords = chords_between(start, end)
-        share = chords.nearest_share(vortex.at)
-        foot = chords.at(share)
-        apart = np.minimum(np.abs(start - vortex.at), np.abs(end - vortex.at))
-        close = (np.abs(foot - vortex.at) < _CLOSE * radius) & (apart > 2.0 * _CENTRE * radius)
-        run = (end - start)[close]
-        detour = vortex.at + 2j * _CLOSE * radius * run / np.abs(run)
-        late = end.copy()
-        late[close] = detour
-        start, end = np.concatenate([start, detour]), np.concatenate([late, end[close]])
-        of_piece = np.concatenate([of_piece, of_piece[close]])
-    return chords_between(start, end), of_piece
 
 
 def _rotational(term: CoreTerm | GradientTerm, strand: Strand) -> ComplexArray:

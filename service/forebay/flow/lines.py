@@ -1,12 +1,13 @@
 """Line sources and sinks: uniform strength along a segment, with every image that the shore asks for."""
 
+from collections.abc import Callable
 from dataclasses import dataclass
 from itertools import pairwise
 
 import numpy as np
 
 from forebay.flow.arrays import ComplexArray, FloatArray
-from forebay.flow.line_kernels import LineKernel, PlainKernel, StripKernel, WedgeKernel
+from forebay.flow.line_fields import STRIP_PANEL, LineField, PlainField, StripField, WedgeField, wedge_panel
 from forebay.flow.maps import AffineMap, LogarithmMap
 from forebay.flow.poles import PERIODIC
 from forebay.flow.segments import Segment
@@ -14,6 +15,11 @@ from forebay.flow.shores import Frame, Wall
 from forebay.flow.terms import Jet
 
 _TWO_PI = 2.0 * np.pi
+
+_NOTHING = complex(np.nan, np.nan)
+
+Longest = Callable[[complex, complex], float]
+"""Longest panel for a piece of a line between two places [-]."""
 
 _IN_WALL = 1e-9
 """Distance from a wall, relative to the line's length, within which a line lies in it [-]."""
@@ -32,97 +38,49 @@ class LineTerm:
     flux is half the sum of both sides' (zero without other elements), and one that starts on the line
     leaves on the side where it goes.
 
-    frame : affine map to the plane in which the kernel works
-    kernel : mirror images and what is periodic
+    frame : affine map to the plane in which the field is known
+    field : the element with its images in that plane
     panels : pieces of the line in that plane, from its start to its end
     shares : strength of each piece over 2 pi, negative for a sink [m2/s]
     owner : index among the model's owners
     """
 
     frame: AffineMap
-    kernel: LineKernel
+    field: LineField
     panels: tuple[Segment, ...]
     shares: tuple[float, ...]
     owner: int
 
-    @classmethod
-    def along(
-        cls,
-        ends: tuple[complex, complex],
-        strength: float,
-        *,
-        frame: AffineMap,
-        kernel: LineKernel,
-        inward: complex = 0j,
-        owner: int,
-    ) -> "LineTerm":
-        """Line element between two places.
-
-        Parameters
-        ----------
-        ends : start and end, x + iy [m]
-        strength : discharge per depth over the whole line, positive into the water [m2/s]
-        frame, kernel : of the shore
-        inward : normal into the water, complex, if the whole line lies in a wall, else 0
-        owner : index among the model's owners
-        """
-        places = frame.forward(np.asarray(ends, dtype=np.complex128))
-        start, end = complex(places[0]), complex(places[1])
-        facing = round(float(np.sign((inward * frame.rate * np.conj(end - start)).imag))) if inward else 0
-        cuts = _cuts(start, end, kernel)
-        panels = tuple(
-            Segment(start + (end - start) * a, start + (end - start) * b, facing) for a, b in pairwise(cuts)
-        )
-        shares = tuple(float(share) for share in strength / _TWO_PI * np.diff(cuts))
-        return cls(frame, kernel, panels, shares, owner)
-
     def jet(self, z: ComplexArray) -> Jet:
         """Conjugate velocity [m/s] and derivatives [1/s] at z, any shape [m]; nan at the line's ends."""
-        w = np.ravel(self.frame.forward(z))
-        velocity, slope = np.zeros(w.shape, np.complex128), np.zeros(w.shape, np.complex128)
-        with np.errstate(invalid="ignore"):
-            for panel, share in zip(self.panels, self.shares, strict=True):
-                velocity += share * self.kernel.velocity(w, panel)
-                slope += share * self.kernel.slope(w, panel)
+        velocity, slope = self.field.jet(self._flat(z))
         whole = np.isfinite(velocity) & np.isfinite(slope)
-        nothing = complex(np.nan, np.nan)
-        velocity = np.where(whole, velocity, nothing).reshape(np.shape(z)) * self.frame.rate
-        slope = np.where(whole, slope, nothing).reshape(np.shape(z)) * self.frame.rate**2
+        velocity = np.where(whole, velocity, _NOTHING).reshape(np.shape(z)) * self.frame.rate
+        slope = np.where(whole, slope, _NOTHING).reshape(np.shape(z)) * self.frame.rate**2
         return Jet(velocity, slope, np.zeros(np.shape(z), dtype=np.complex128))
 
     def velocity(self, z: ComplexArray) -> ComplexArray:
-        """Conjugate velocity alone [m/s]: `jet` without its derivatives, at half the cost."""
-        w = np.ravel(self.frame.forward(z))
-        total = np.zeros(w.shape, dtype=np.complex128)
-        with np.errstate(invalid="ignore"):
-            for panel, share in zip(self.panels, self.shares, strict=True):
-                total += share * self.kernel.velocity(w, panel)
-        whole = np.where(np.isfinite(total), total * self.frame.rate, complex(np.nan, np.nan))
-        return whole.reshape(np.shape(z))
+        """Conjugate velocity alone [m/s]: as `jet` without its derivatives, at less cost."""
+        velocity = self.field.velocity(self._flat(z))
+        whole = np.where(np.isfinite(velocity), velocity, _NOTHING).reshape(np.shape(z))
+        return np.asarray(whole * self.frame.rate, dtype=np.complex128)
+
+    def _flat(self, z: ComplexArray) -> ComplexArray:
+        """Places in the plane of the field, shape (n,) [-]."""
+        return np.ravel(self.frame.forward(np.asarray(z, dtype=np.complex128)))
 
     def potential(self, z: ComplexArray) -> ComplexArray:
         """Complex potential [m2/s], any shape, cut along the line and its extension beyond the start."""
-        w = np.ravel(self.frame.forward(z))
-        total = np.zeros(w.shape, dtype=np.complex128)
-        for panel, share in zip(self.panels, self.shares, strict=True):
-            total += share * self.kernel.potential(w, panel)
-        return total.reshape(np.shape(z))
+        return self.field.potential(self._flat(z)).reshape(np.shape(z))
 
     def chords(self, a: ComplexArray, b: ComplexArray) -> ComplexArray:
         """Integral of W dz along straight chords a -> b [m2/s], crossing the line or not; shape of a."""
-        start, end = np.ravel(self.frame.forward(a)), np.ravel(self.frame.forward(b))
-        total = np.zeros(start.shape, dtype=np.complex128)
-        for panel, share in zip(self.panels, self.shares, strict=True):
-            total += share * self.kernel.chords(start, end, panel)
-        return total.reshape(np.shape(a))
+        return self.field.chords(self._flat(a), self._flat(b)).reshape(np.shape(a))
 
     def magnitude(self, z: ComplexArray) -> FloatArray:
         """Sum of the absolute values of the parts of W [m/s], any shape."""
-        w = np.ravel(self.frame.forward(z))
-        total = np.zeros(w.shape)
-        for panel, share in zip(self.panels, self.shares, strict=True):
-            total += abs(share) * self.kernel.magnitude(w, panel)
-        return np.asarray(total.reshape(np.shape(z)) * abs(self.frame.rate), dtype=np.float64)
+        total = self.field.magnitude(self._flat(z)).reshape(np.shape(z))
+        return np.asarray(total * abs(self.frame.rate), dtype=np.float64)
 
 
 def line_term(
@@ -138,23 +96,57 @@ def line_term(
     frame : the shore
     offset : added to the periodic kernel in a strip, as to every pole [-]; in a corner it is always 1/2
     """
-    affine, kernel = _kernel(frame, offset)
+    affine = _plane_of(frame)
+    places = affine.forward(np.array([start, end]))
     inward = _inward((start, 0.5 * (start + end), end), frame.walls)
-    return LineTerm.along((start, end), flux, frame=affine, kernel=kernel, inward=inward, owner=owner)
+    run = complex(places[1] - places[0])
+    facing = round(float(np.sign((inward * affine.rate * np.conj(run)).imag))) if inward else 0
+    cuts = _cuts(complex(places[0]), run, _longest(frame))
+    ends = [complex(places[0]) + run * cut for cut in cuts]
+    panels = tuple(Segment(a, b, facing) for a, b in pairwise(ends))
+    shares = tuple(float(share) for share in flux / _TWO_PI * np.diff(cuts))
+    field = _field_of(frame, panels, shares, offset=offset)
+    return LineTerm(affine, field, panels, shares, owner)
 
 
-def _kernel(frame: Frame, offset: float) -> tuple[AffineMap, LineKernel]:
-    """Plane in which the shore's kernel works, and the kernel."""
+def _plane_of(frame: Frame) -> AffineMap:
+    """The plane in which a line stays straight and the shore simple: a corner's own, else the mapped one."""
     match frame.map:
         case LogarithmMap() as corner:
-            return AffineMap(corner.vertex, corner.along.conjugate() / corner.unit), WedgeKernel(corner.angle)
-        case AffineMap() as affine if frame.kappa == PERIODIC:
-            return affine, StripKernel(lambda s: [complex(p) for p in frame.images(s).positions], offset)
+            return AffineMap(corner.vertex, corner.along.conjugate() / corner.unit)
         case AffineMap() as affine:
-            return affine, PlainKernel(frame.mirrored)
+            return affine
         case _:
-            msg = f"no line kernel for {type(frame.map).__name__}"
+            msg = f"no line elements with {type(frame.map).__name__}"
             raise TypeError(msg)
+
+
+def _longest(frame: Frame) -> Longest:
+    """Longest panel that may cover a piece start -> end in the plane of the field."""
+    match frame.map:
+        case LogarithmMap() as corner:
+            return lambda start, end: wedge_panel(start, end, corner.angle)
+        case _ if frame.kappa == PERIODIC:
+            return lambda *_: STRIP_PANEL
+        case _:
+            return lambda start, end: abs(end - start)
+
+
+def _field_of(
+    frame: Frame, panels: tuple[Segment, ...], shares: tuple[float, ...], *, offset: float
+) -> LineField:
+    """Panels with the images that the shore asks for."""
+    match frame.map:
+        case LogarithmMap() as corner:
+            return WedgeField.of(panels, shares, angle=corner.angle)
+        case _ if frame.kappa == PERIODIC:
+
+            def places(s: complex) -> list[complex]:
+                return [complex(place) for place in frame.images(s).positions]
+
+            return StripField.of(panels, shares, places=places, offset=offset)
+        case _:
+            return PlainField.of(panels, shares, mirrored=frame.mirrored)
 
 
 def _inward(places: tuple[complex, ...], walls: tuple[Wall, ...]) -> complex:
@@ -166,17 +158,15 @@ def _inward(places: tuple[complex, ...], walls: tuple[Wall, ...]) -> complex:
     return 0j
 
 
-def _cuts(start: complex, end: complex, kernel: LineKernel) -> FloatArray:
-    """Ends of the panels as shares of the line, 0 ... 1, bisected until the kernel is content."""
-    whole = abs(end - start)
-    open_pieces, done = [(0.0, 1.0)], [0.0]
-    while open_pieces:
-        a, b = open_pieces.pop()
-        length = (b - a) * whole
-        allowed = kernel.longest(start + (end - start) * a, start + (end - start) * b)
-        if length <= allowed * (1.0 + 1e-12) or b - a <= _FINEST:
+def _cuts(start: complex, run: complex, longest: Longest) -> FloatArray:
+    """Ends of the panels as shares of the line, 0 ... 1, bisected until each is short enough."""
+    waiting, done = [(0.0, 1.0)], [0.0]
+    while waiting:
+        a, b = waiting.pop()
+        allowed = longest(start + run * a, start + run * b)
+        if (b - a) * abs(run) <= allowed * (1.0 + 1e-12) or b - a <= _FINEST:
             done.append(b)
             continue
         middle = 0.5 * (a + b)
-        open_pieces += [(middle, b), (a, middle)]
+        waiting += [(middle, b), (a, middle)]
     return np.asarray(done)
