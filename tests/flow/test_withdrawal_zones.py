@@ -166,8 +166,8 @@ def test_printed_table_of_a_capture_zone(y, x):
     (answer,) = withdrawals(site(Sink("s", 0j, 2.0 * np.pi * b), velocity=-1.0))
     line = next(part for part in answer.dividing_streamlines if part[0].imag > 1.0)[::-1]
     found = np.interp(y, line.imag, line.real)
-    # the table is printed to 0.01 and was computed with a b known to 3e-4; chords of 0.1 rad sag by 1e-3 of y
-    assert abs(found - x) < 0.005 + 2e-3 * abs(x) + 1.2e-3 * y
+    # 0.1 %: the table was computed with an unknown b near 13.751; the polyline sags by as much at most
+    assert abs(found - x) < 1e-3 * abs(x) + 0.01 + 0.01 * (y > 15)
 
 
 def test_dividing_lines_end_at_the_stagnation_point():
@@ -201,9 +201,7 @@ SITES: dict[str, Layout] = {
     "dead-end": site(*ELEMENTS, shore=DeadEnd(0j, 1 + 0j, 60.0)),
     "basin": site(*ELEMENTS, shore=Basin(0j, 1 + 0j, 100.0, 60.0)),
     "still": site(Sink("s1", 1j, 1.0), Source("o1", 3 + 0j, 0.5)),
-    "alone": site(Sink("s1", 1j, 1.0), shore=Basin(0j, 1 + 0j, 10.0, 5.0)),
 }
-del SITES["alone"]  # a basin with a sink alone does not exist
 
 
 @lru_cache
@@ -226,8 +224,9 @@ def test_zone_holds_the_water_that_reaches_the_intake(name):
     ).names
     for answer in answered(name):
         zone = shapely.Polygon(np.stack([answer.zone.real, answer.zone.imag], axis=1))
-        # chords between points 0.1 rad apart sag by 0.1/8 of their length
-        edge = shapely.distance(shapely.points(z.real, z.imag), zone.exterior) < 1.0
+        # drawn chords sag by a ten-thousandth of the layout
+        edge = shapely.distance(shapely.points(z.real, z.imag), zone.exterior) < 0.3
+        edge |= np.abs(z - answer.centre) > answer.extent
         inside = shapely.contains_xy(zone, z.real, z.imag)
         reach = np.array([fate == answer.name for fate in fates])
         assert np.all((inside == reach)[~edge])
@@ -249,11 +248,10 @@ def test_zone_area_of_a_strip():
     area = 0.5 * np.sum((np.conj(z) * np.roll(z, -1)).imag)
     y = np.linspace(0, 0.4999, 200001)[1:]
     x = y / np.tan(2 * np.pi * y)
-    centre = 0.25 / np.pi  # middle between sink and stagnation point
-    left = centre - np.sqrt(answer.extent**2 - y**2)
+    left = answer.centre.real - np.sqrt(answer.extent**2 - y**2)
     inside = np.maximum(x - left, 0.0)
-    # the outline has points 0.1 rad apart
-    assert_allclose(area, 2 * np.trapezoid(inside, y), rtol=3e-3)
+    # chords sag by 1e-4 of the layout, here a metre, and the arc at the extent is a polygon
+    assert_allclose(area, 2 * np.trapezoid(inside, y), rtol=1e-3)
 
 
 def test_still_water_alone_is_all_of_the_water():

@@ -60,5 +60,5 @@ def test_a_short_search_is_passed_on(monkeypatch):
 
 
 def test_a_line_sink_is_an_intake():
-    layout = replace(LAYOUT, elements=(LineSink("screen", 0j, 4 + 0j, 0.6), *LAYOUT.elements))
+    layout = replace(LAYOUT, elements=(LineSink("screen", 30 + 0j, 34 + 0j, 0.6), *LAYOUT.elements))
     assert [intake.name for intake in trace_withdrawal(layout).intakes] == ["screen", "east", "west"]

@@ -35,7 +35,7 @@ _DEFECT: FloatArray = np.array([71 / 57600, 0, -71 / 16695, 71 / 1920, -17253 / 
 _REACH = 0.45
 """Largest step over the distance to the nearest site: chord and arc then pass on the same side of it [-]."""
 _SHRINK, _GROW, _SAFETY = 0.2, 4.0, 0.9
-_STILL = 1e-13
+_STILL = 1e-25
 """Speed over the speed of reference below which a line has come to rest [-]."""
 _TOUCH = 1e-9
 """Distance from a line element, over its length, at which it is reached [-]."""

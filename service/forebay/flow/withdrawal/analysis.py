@@ -59,9 +59,9 @@ class _Mouthful:
     arrivals: Arrivals
     sectors: list[Sector]
 
-    def seeds(self) -> ComplexArray:
+    def seeds(self, canvas: Canvas) -> ComplexArray:
         """Probes of the sectors, then their edges [m]."""
-        return released(self.mouth, np.concatenate([probes(self.sectors), edges(self.sectors)]))
+        return released(self.mouth, np.concatenate([probes(self.sectors), edges(canvas, self.sectors)]))
 
 
 @dataclass(frozen=True, slots=True)
@@ -99,11 +99,11 @@ def withdraw(
     divides = divides_of(model, search.points, DRAWN)
     check = retraced(model, divides, _CHECK)
     mouthfuls = [_mouthful(model, divides, name) for name in intakes]
-    seeds = [divides.branches.starts[divides.arriving], *(mouthful.seeds() for mouthful in mouthfuls)]
+    canvas = canvas_of(model, divides.surroundings, intakes)
+    seeds = [divides.branches.starts[divides.arriving], *(mouthful.seeds(canvas) for mouthful in mouthfuls)]
     rules = replace(DRAWN, forward=False)
     traces = trace_streamlines(model, np.concatenate(seeds), surroundings=divides.surroundings, rules=rules)
     cuts = np.cumsum([part.size for part in seeds])
-    canvas = canvas_of(model, divides.surroundings, intakes)
     flow = _Flow(model, search, divides, check, canvas, traces.part(0, int(cuts[0])))
     parts = [traces.part(int(a), int(b)) for a, b in pairwise(cuts)]
     return tuple(_withdrawal(flow, mouthful, part) for mouthful, part in zip(mouthfuls, parts, strict=True))
@@ -137,6 +137,7 @@ def _withdrawal(flow: _Flow, mouthful: _Mouthful, traces: Traces) -> IntakeWithd
             flow.canvas, flow.divides, flow.arriving, (arrivals, element.name)
         ),
         zone=outline,
+        centre=flow.canvas.centre,
         extent=flow.canvas.extent,
         shares=shares,
         recirculation_share=float(sum(s.share for s in shares if s.kind is OriginKind.OUTFALL)),

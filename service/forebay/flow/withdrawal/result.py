@@ -69,7 +69,7 @@ class IntakeWithdrawal:
     dividing_streamlines : polylines in the direction of flow, cut at `extent` [m]
     zone : outline of the water that reaches the intake, anticlockwise, the first point not repeated, cut at
         `extent` [m]
-    extent : radius about the middle of the layout at which lines and zone are cut [m]
+    centre, extent : middle of the layout and radius about it at which lines and zone are cut [m]
     shares : by origin, largest first
     recirculation_share : sum over the outfalls [-]
     share_error : estimate of the largest error of a share [-], nan where `status` is incomplete
@@ -82,6 +82,7 @@ class IntakeWithdrawal:
     widths: tuple[EndWidth, ...]
     dividing_streamlines: tuple[ComplexArray, ...]
     zone: ComplexArray
+    centre: complex
     extent: float
     shares: tuple[Share, ...]
     recirculation_share: float

@@ -23,11 +23,12 @@ _SIZES = 4.0
 """Extent of what is drawn, over the size of the layout [-]."""
 _WIDTHS = 3.0
 """Extent of what is drawn in a channel, at least, over its width [-]."""
-_TURN = 0.1
-"""Change of direction between neighbouring points of a drawn line [rad]."""
-_HAIR = 1e-9
-"""Distance from the edge of a sector, over its flux, at which its edge is traced [-]."""
-_CORNERS = 48
+_SAG = 1e-4
+"""How far a drawn chord may sag, over the size of the layout, if at most 8 points are put on it [-]."""
+_MOST_BETWEEN = 8
+_HAIR, _WIDE_HAIR = 1e-9, 1e-6
+"""Distance from the edge of a sector, over its flux, at which its edge is traced [-]; see `Canvas.hair`."""
+_CORNERS = 180
 
 
 @dataclass(frozen=True, slots=True)
@@ -47,30 +48,99 @@ class Canvas:
         """Middle of the layout [m]."""
         return self.surroundings.far.centre
 
-    def trimmed(self, path: ComplexArray) -> ComplexArray:
-        """A path cut where it leaves the extent for good."""
-        inside = np.nonzero(np.abs(path - self.centre) <= self.extent)[0]
-        if inside.size == 0 or inside[-1] == path.size - 1:
+    def drawn(self, path: ComplexArray) -> ComplexArray:
+        """A traced path with enough points between, cut where it leaves the extent for good."""
+        size = min(self.extent, self.surroundings.far.radius + self.model.scale)
+        full = filled_in(self.model, path, _SAG * size)
+        inside = np.nonzero(np.abs(full - self.centre) <= self.extent)[0]
+        if inside.size == 0 or inside[-1] == full.size - 1:
+            return full
+        last = inside[-1:]
+        cut = on_level(self.model, full[last], self._crossing(full[last], full[last + 1]))
+        return np.concatenate([full[: last[0] + 1], cut])
+
+    def _crossing(self, inner: ComplexArray, outer: ComplexArray) -> ComplexArray:
+        """Where chords from inside the extent to outside cross its circle, shape (n,) [m]."""
+        a, span = inner - self.centre, outer - inner
+        half, square = (np.conj(a) * span).real, np.abs(span) ** 2
+        part = (np.sqrt(half**2 + square * (self.extent**2 - np.abs(a) ** 2)) - half) / square
+        return np.asarray(inner + part * span, dtype=np.complex128)
+
+    def clamped(self, path: ComplexArray) -> ComplexArray:
+        """A drawn path with its excursions beyond the extent moved on to the circle, as far as that is wet."""
+        beyond = np.abs(path - self.centre) > self.extent * (1.0 + 1e-12)
+        if not np.any(beyond):
             return path
-        last = int(inside[-1])
-        a = path[last] - self.centre
-        span = path[last + 1] - path[last]
-        half = (a.conjugate() * span).real
-        square = abs(span) ** 2
-        part = (np.sqrt(half**2 + square * (self.extent**2 - abs(a) ** 2)) - half) / square
-        return np.append(path[: last + 1], path[last] + part * span)
+        leaves = np.nonzero(~beyond[:-1] & beyond[1:])[0]
+        returns = np.nonzero(beyond[:-1] & ~beyond[1:])[0]
+        edge = np.concatenate(
+            [self._crossing(path[leaves], path[leaves + 1]), self._crossing(path[returns + 1], path[returns])]
+        )
+        where = np.concatenate([leaves, returns]) + 1
+        full, far = (
+            np.insert(path, where, edge),
+            np.insert(beyond, where, np.zeros(edge.size, dtype=np.bool_)),
+        )
+        away = full[far] - self.centre
+        full[far] = self.centre + self.extent * away / np.abs(away)
+        return np.asarray(full[~far | self.model.wet(full)], dtype=np.complex128)
+
+    @property
+    def hair(self) -> float:
+        """Distance from the edge of a sector, over its flux, at which its edge is traced [-].
+
+        Where nothing comes from far away, a line along a wall runs far out before it returns: the nearer to
+        the wall, the further, until the water stands still to rounding.
+        """
+        return _HAIR if any(end.gives for end in self.surroundings.far.ends) else _WIDE_HAIR
+
+
+def filled_in(model: FlowModel, path: ComplexArray, sag: float) -> ComplexArray:
+    """A path with points put between, on the same streamline, so that its chords sag by less than `sag` [m].
+
+    The points lie on cubics with the directions of flow at both ends, then go back to the stream function.
+    """
+    if path.size < 3:
+        return path
+    w = model.velocity(path)
+    with np.errstate(invalid="ignore", divide="ignore"):
+        heading = np.conj(w) / np.abs(w)
+    chord = path[1:] - path[:-1]
+    heading = np.where(np.isfinite(heading), heading, 0.0)
+    forward = np.sign((heading[1:] * np.conj(chord)).real.sum())
+    a, b = forward * heading[:-1] * np.abs(chord), forward * heading[1:] * np.abs(chord)
+    deep = np.abs(b - a) / 8.0
+    count = np.clip(np.ceil(np.sqrt(deep / sag)), 1, _MOST_BETWEEN).astype(np.int64)
+    count[(heading[:-1] == 0.0) | (heading[1:] == 0.0)] = 1
+    index = np.repeat(np.arange(chord.size), count)
+    first = np.repeat(np.cumsum(count) - count, count)
+    t = (np.arange(index.size) - first) / count[index]
+    z = path[:-1][index] + chord[index] * t**2 * (3.0 - 2.0 * t)
+    z = z + a[index] * t * (1.0 - t) ** 2 - b[index] * t**2 * (1.0 - t)
+    z = np.where(t > 0.0, on_level(model, path[:-1][index], z), path[:-1][index])
+    return np.append(z, path[-1])
+
+
+def on_level(model: FlowModel, known: ComplexArray, near: ComplexArray) -> ComplexArray:
+    """Points moved across the flow on to the streamline through `known`, shape (n,) each [m]."""
+    z = near
+    for _ in range(2):
+        with np.errstate(invalid="ignore", divide="ignore"):
+            shift = -1j * model.chord(known, z).imag / model.velocity(z)
+        z = z + np.where(np.abs(shift) < 0.25 * np.abs(near - known), shift, 0.0)
+    return z
 
 
 def canvas_of(model: FlowModel, surroundings: Surroundings, intakes: tuple[str, ...]) -> Canvas:
     """Canvas wide enough for the layout and for the widest zone."""
     far, shore = surroundings.far, model.layout.shore
-    extent = _SIZES * far.radius
+    extent = _SIZES * max(far.radius, model.scale)
     if isinstance(shore, Channel | DeadEnd):
         extent = max(extent, _WIDTHS * shore.width)
     speed = max((end.speed for end in far.ends), default=0.0)
     if speed > 0.0 and not isinstance(shore, Channel | DeadEnd):
         taken = [e.discharge for e in model.layout.elements if e.name in intakes]  # type: ignore[union-attr]
-        extent = max(extent, 2.0 * max(taken, default=0.0) / model.layout.depth / speed)
+        extent = max(extent, 3.0 * max(taken, default=0.0) / model.layout.depth / speed)
     if isinstance(shore, Basin):
         extent = inf
     return Canvas(model, surroundings, extent)
@@ -92,16 +162,16 @@ def dividing_streamlines(
     drawn = []
     for i, branch in enumerate(divides.arriving):
         if branches.node[branch] in nodes:
-            drawn.append(canvas.trimmed(np.append(branches.centres[branch], arriving.paths[i]))[::-1])
+            drawn.append(canvas.drawn(np.append(branches.centres[branch], arriving.paths[i]))[::-1])
     for i, branch in enumerate(divides.leaving):
         if branches.node[branch] in nodes:
-            drawn.append(canvas.trimmed(np.append(branches.centres[branch], divides.forward.paths[i])))
+            drawn.append(canvas.drawn(np.append(branches.centres[branch], divides.forward.paths[i])))
     return tuple(drawn)
 
 
-def edges(sectors: list[Sector]) -> FloatArray:
+def edges(canvas: Canvas, sectors: list[Sector]) -> FloatArray:
     """Coordinates just inside both edges of every sector [m2/s]."""
-    return np.concatenate([sector.at(np.array([_HAIR, 1.0 - _HAIR])) for sector in sectors])
+    return np.concatenate([sector.at(np.array([canvas.hair, 1.0 - canvas.hair])) for sector in sectors])
 
 
 def zone_outline(
@@ -117,8 +187,12 @@ def zone_outline(
         return _whole_water(canvas)
     parts: list[ComplexArray] = []
     for k, sector in enumerate(sectors):
-        left = _beyond_node(divides, (mouth, arrivals), sector.low, canvas.trimmed(traces.paths[2 * k]))
-        right = _beyond_node(divides, (mouth, arrivals), sector.high, canvas.trimmed(traces.paths[2 * k + 1]))
+        left = _beyond_node(
+            divides, (mouth, arrivals), sector.low, canvas.clamped(canvas.drawn(traces.paths[2 * k]))
+        )
+        right = _beyond_node(
+            divides, (mouth, arrivals), sector.high, canvas.clamped(canvas.drawn(traces.paths[2 * k + 1]))
+        )
         far = all(traces.stops[i] is Stop.FAR_END for i in (2 * k, 2 * k + 1))
         closure = _arc(canvas, left[-1], right[-1]) if far and not canvas.surroundings.far.axis else left[:0]
         parts += [left, closure, right[::-1]]
@@ -139,7 +213,12 @@ def _beyond_node(
     if gap[nearest] > 1e-9 * mouth.total:
         return path
     node = divides.branches.nodes[arrivals.nodes[nearest]]
-    closest = int(np.argmin(np.abs(path - node)))
+    distance = np.abs(path - node)
+    closest = int(
+        np.argmax(distance < 3.0 * distance.min())
+    )  # the first pass, of a loop back to the node too
+    while closest + 1 < path.size and distance[closest + 1] < distance[closest]:
+        closest += 1
     return np.concatenate([[node], path[closest + 1 :]]) if closest + 1 < path.size else path[-1:]
 
 
