@@ -64,9 +64,10 @@ def loose_ends(model: FlowModel, lattice: Lattice, lines: LevelLines) -> list[co
     at_rim |= (ends.imag < first.imag + reach) | (ends.imag > last.imag - reach)
     at_wall = model.distance_to_wall(ends) < 1e-6 * model.scale
     crowded = np.abs(model.velocity(ends)) * reach > 0.3 * lines.step
-    holes = np.array(
-        [s.at for s in model.singularities] + [end for line in model.lines for end in (line.start, line.end)]
-    )
+    holes = np.array([singularity.at for singularity in model.singularities])
+    # a pier that turns and is smaller than a cell leaves the cell of its centre blank
+    for pier in model.piers:
+        at_wall |= np.abs(ends - pier.at) < pier.radius + 1.5 * reach
     near = (np.abs(ends[:, None] - holes[None, :]) < 3 * reach).any(axis=1)
     return list(ends[~(at_rim | at_wall | crowded | near)])
 
@@ -123,7 +124,7 @@ class TestOnLevel:
         inside, on_wall = largest_drift(model, lines, component)
         # crossings are settled to 1e-9 of a step; a chord has two of them, found by bisection next to a pole
         assert inside < 1e-6
-        # the last bit to the wall is straight: error of linear interpolation over one cell, curvature x h^2 / 8
+        # the last bit to the wall is straight: linear interpolation over one cell, curvature x h^2 / 8
         assert on_wall < 0.05
 
     def test_levels_are_a_whole_number_of_steps_apart(self):
@@ -204,3 +205,19 @@ class TestCrowding:
         nearest = min(float(np.abs(line - (0.3 + 0.2j)).min()) for line in lines.lines)
         # 24 rays are 2 m apart at r = 24 x 2 / 2 pi = 7.64 m
         assert 24 * 2.0 / (2 * np.pi) <= nearest < 24 * 2.0 / (2 * np.pi) + 1.0
+
+
+class TestCirculation:
+    @pytest.mark.parametrize("radius", [0.3, 1.0, 6.0])
+    def test_no_equipotential_ends_in_open_water_round_a_turning_pier(self, radius):
+        # also where the pier is smaller than a cell of 0.67 m, so that no cell lies within it
+        pier = Pier("P", 3.1 + 2.2j, radius, circulation=-0.77)
+        vortex = Vortex("G", -14.2 + 9j, 1.31)
+        layout = Layout(1.0, ambient=Ambient(0.1 + 0j), elements=(vortex,), structures=(pier,))
+        model = compile_layout(layout)
+        lattice = lay_lattice(model, SQUARE, COLUMNS)
+        lines = draw_levels(model, lattice, Component.POTENTIAL, step=0.2)
+        assert lines.breaks == 0
+        # a pier of half a cell is passed within the cell: its lines may end there
+        ends = [end for end in loose_ends(model, lattice, lines) if abs(end - pier.at) > radius + 1.0]
+        assert ends == []

@@ -13,8 +13,9 @@ from itertools import pairwise
 
 import numpy as np
 
-from forebay.charts.branches import WHOLE, Branches, rounds_lower_right, single_out
-from forebay.charts.lattice import Lattice, cell_corners
+from forebay.charts.branches import Branches, single_out
+from forebay.charts.cuts import WHOLE, rounds_lower_right
+from forebay.charts.lattice import Lattice, cell_corners, exact_steps
 from forebay.flow.arrays import BoolArray, ComplexArray, FloatArray, IntArray
 from forebay.flow.model import FlowModel
 
@@ -186,7 +187,7 @@ def settle(
     active = np.arange(share.size)
     for _ in range(NEWTON_STEPS):
         place = begin[active] + share[active] * along[active]
-        miss = crossings.rise[active] - component.of(model.chord(begin[active], place))
+        miss = crossings.rise[active] - component.of(exact_steps(model, begin[active], place))
         wrong = np.abs(miss) > SETTLED * step
         active, place, miss = active[wrong], place[wrong], miss[wrong]
         short = (miss > 0) == upward[active]

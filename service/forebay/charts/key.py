@@ -16,8 +16,11 @@ from forebay.flow.arrays import FloatArray
 KEY_HEIGHT = 114.0
 """Height of the band [px at scale 1]."""
 
-ROWS = 4
-"""Symbols under each other in the key."""
+COLUMNS = 2
+"""Columns of symbols in the key."""
+
+PITCH = 18.5
+"""Distance of the rows of symbols [px at scale 1]."""
 
 COLUMN = 162.0
 """Width of a column of symbols [px at scale 1]."""
@@ -40,9 +43,10 @@ def draw_symbols(sheet: Sheet, space: Box, glyphs: Sequence[Glyph]) -> None:
     """The key's symbols in columns."""
     stamp = Stamp(sheet.paper, sheet, 5.0)
     unit = sheet.scale
+    rows = max(4, -(-len(glyphs) // COLUMNS))
     for index, glyph in enumerate(glyphs):
-        x = space.left + COLUMN * unit * (index // ROWS)
-        y = space.top + unit * (12 + 22 * (index % ROWS))
+        x = space.left + COLUMN * unit * (index // rows)
+        y = space.top + unit * (8 + PITCH * (index % rows))
         middle, name = x + 14 * unit, f"key-{glyph.name.lower().replace('_', '-')}"
         if glyph in LINES:
             stamp_line(stamp, glyph, (x, x + 28 * unit), (y, y), name=name)

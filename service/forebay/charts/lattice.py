@@ -26,6 +26,9 @@ OUTSIDE = 0
 ROUNDING = 1e-9
 """Residue of a cell, relative to its edges, up to which it holds nothing."""
 
+PAIRS_AT_A_TIME = 2_000_000
+"""Chords times poles in one call of the model, each of which takes 16 bytes there."""
+
 EIGHT_NEIGHBOURS = np.ones((3, 3), dtype=np.int64)
 
 
@@ -105,7 +108,7 @@ class Lattice:
     def holes(self) -> IntArray:
         """Number of the hole that a cell belongs to, shape (ny-1, nx-1): -1 if usable, 0 if outside.
 
-        A hole is a patch of unusable cells with common edges; one that reaches the rim of the grid is outside.
+        Cells that touch in a corner only do not belong together: one can walk through the node between them.
         Cells that touch in a corner only do not belong together: one can walk between them through the node.
         """
         labels, count = ndimage.label(~self.usable)
@@ -141,7 +144,11 @@ def lay_lattice(model: FlowModel, window: Window, columns: int) -> Lattice:
     near = ndimage.binary_dilation(wet, structure=EIGHT_NEIGHBOURS)
     across = edge_steps(model, nodes[:, :-1], nodes[:, 1:], near[:, :-1] & near[:, 1:])
     upward = edge_steps(model, nodes[:-1], nodes[1:], near[:-1] & near[1:])
-    usable = usable_cells(across, upward, near_water(wet, nodes, model.walls))
+    residue, rounding = cell_residues(across, upward)
+    closes = np.abs(residue.imag) <= rounding
+    if model.has_potential:
+        closes &= np.abs(residue.real) <= rounding
+    usable = near_water(wet, nodes, model.walls) & closes
     clear_singular_cells(model, nodes, usable)
     return Lattice(nodes, np.concatenate([across.ravel(), upward.ravel()]), wet, usable)
 
@@ -149,8 +156,18 @@ def lay_lattice(model: FlowModel, window: Window, columns: int) -> Lattice:
 def edge_steps(model: FlowModel, begin: ComplexArray, end: ComplexArray, wanted: BoolArray) -> ComplexArray:
     """Integral of W dz along each edge that is wanted [m2/s]; nan along the others, which lie on land."""
     steps = np.full(begin.shape, complex(np.nan, np.nan))
-    steps[wanted] = model.chord(begin[wanted], end[wanted])
+    steps[wanted] = exact_steps(model, begin[wanted], end[wanted])
     return steps
+
+
+def exact_steps(model: FlowModel, begin: ComplexArray, end: ComplexArray) -> ComplexArray:
+    """Integral of W dz along straight chords, shape (n,) [m2/s], a few at a time to keep memory small."""
+    share = max(PAIRS_AT_A_TIME // max(model.rational.poles.size, 1), 1)
+    parts = [
+        model.chord(begin[start : start + share], end[start : start + share])
+        for start in range(0, begin.size, share)
+    ]
+    return np.concatenate(parts) if parts else np.zeros(0, dtype=np.complex128)
 
 
 def near_water(wet: BoolArray, nodes: ComplexArray, walls: tuple[Wall, ...]) -> BoolArray:
@@ -174,16 +191,15 @@ def mark_cells(cells: BoolArray, local: ComplexArray, *, marked: bool) -> None:
     cells[row[inside].astype(int), column[inside].astype(int)] = marked
 
 
-def usable_cells(across: ComplexArray, upward: ComplexArray, in_water: BoolArray) -> BoolArray:
-    """Cells in the water round which the flux, and so the stream function, closes."""
+def cell_residues(across: ComplexArray, upward: ComplexArray) -> tuple[ComplexArray, FloatArray]:
+    """Circulation + i flux round every cell, and how much of it rounding explains [m2/s]; nan on land."""
     bottom, top, left, right = across[:-1], across[1:], upward[:, :-1], upward[:, 1:]
     sides = np.abs(bottom) + np.abs(right) + np.abs(top) + np.abs(left)
-    closes = np.abs((bottom + right - top - left).imag) <= ROUNDING * sides
-    return np.asarray(closes & np.isfinite(sides) & in_water, dtype=np.bool_)
+    return bottom + right - top - left, ROUNDING * sides
 
 
 def clear_singular_cells(model: FlowModel, nodes: ComplexArray, usable: BoolArray) -> None:
-    """Mark the cells that hold a singularity, or whose edges pass one closely, as unusable, in place."""
+    """Mark the cells that hold a singularity, or whose edges pass one closely, unusable, in place."""
     places = np.array([singularity.at for singularity in model.singularities], dtype=np.complex128)
     spacing = nodes[0, 1].real - nodes[0, 0].real
     for corner in (0.3 + 0.3j, 0.3 - 0.3j, -0.3 + 0.3j, -0.3 - 0.3j):

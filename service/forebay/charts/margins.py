@@ -5,8 +5,8 @@ from typing import Final
 from forebay.charts.elements import Drawn
 from forebay.charts.key import (
     COLUMN,
+    COLUMNS,
     KEY_HEIGHT,
-    ROWS,
     Bearings,
     draw_bearings,
     draw_speed_scale,
@@ -64,9 +64,10 @@ def draw_key(
     top = frame.box.bottom + TICKS * unit + 8 * unit
     left, right = SIDE[0] * unit, sheet.width - SIDE[1] * unit
     shown = [glyph for glyph in Glyph if glyph in glyphs]
+    if Glyph.VORTEX in shown and Glyph.CLOCKWISE_VORTEX in shown:
+        shown.remove(Glyph.CLOCKWISE_VORTEX)
     draw_symbols(sheet, Box(left, top, right, top + KEY_HEIGHT * unit), shown)
-    columns = max(2, -(-len(shown) // ROWS))
-    middle = max(left + (columns * COLUMN + 4) * unit, (left + right) / 2 - 110 * unit)
+    middle = max(left + (COLUMNS * COLUMN + 4) * unit, (left + right) / 2 - 110 * unit)
     draw_bearings(frame, middle, top, Bearings(scene.model.layout.ambient.velocity, options.north))
     if Layer.SPEED in options.layers:
         space = Box(max(right - 330 * unit, middle + 215 * unit), top, right, top + KEY_HEIGHT * unit)

@@ -29,6 +29,13 @@ MOST_NODES = 150_000
 """Nodes of the grid, above which its cells grow."""
 
 
+FEWEST_NODES = 12_000
+"""Nodes of the grid, below which a line could pass two features of the flow unseen."""
+
+MOST_PAIRS = 20_000_000
+"""Nodes times poles, above which the grid is made coarser, down to FEWEST_NODES."""
+
+
 @dataclass(frozen=True, slots=True)
 class FlowNet:
     """What is drawn.
@@ -51,7 +58,8 @@ def compute_net(scene: Scene, options: FlowNetOptions, pixels: float) -> FlowNet
     """Speeds and level lines of a scene on a grid of CELL pixels; `pixels`: width of the map at scale 1."""
     model, window = scene.model, scene.window
     aspect = (window.y[1] - window.y[0]) / (window.x[1] - window.x[0])
-    columns = int(min(pixels / CELL, np.sqrt(MOST_NODES / aspect)))
+    nodes = min(MOST_NODES, max(FEWEST_NODES, MOST_PAIRS / max(model.rational.poles.size, 1)))
+    columns = int(min(pixels / CELL, np.sqrt(nodes / aspect)))
     lattice = lay_lattice(model, window, columns)
     speeds = speeds_on(model, lattice, options.units)
     tube = tube_of(model, lattice, options.units)
