@@ -13,6 +13,9 @@ EXACT_POWER = 22
 EVERY_DIGIT = 17
 """Significant digits that identify any double."""
 
+FEW = 50
+"""Values up to which rounding one by one through text is the faster way."""
+
 BLOCK = 65536
 """Values rounded at a time, so that the intermediate arrays stay in the cache."""
 
@@ -37,7 +40,9 @@ def round_array(values: FloatArray, digits: int) -> FloatArray:
     prints short; the rare values beyond are rounded through text.
     """
     flat = np.array(values, dtype=np.float64).ravel()
-    if digits < EVERY_DIGIT:
+    if digits < EVERY_DIGIT and flat.size <= FEW:
+        flat[:] = [_round_text(value, digits) for value in flat.tolist()]
+    elif digits < EVERY_DIGIT:
         for start in range(0, flat.size, BLOCK):
             _round_block(flat[start : start + BLOCK], digits)
     flat[np.isinf(flat)] = np.nan

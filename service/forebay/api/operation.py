@@ -96,7 +96,7 @@ def perform(
         computed = perf_counter()
         reply = _encode(operation, request, outcome, media_type)
     except ValidationError as error:
-        return problem_of(error, body)
+        return problem_of(error)
     except FlowError as error:
         return from_flow(error)
     times = {"parse": parsed - started, "compute": computed - parsed, "encode": perf_counter() - computed}

@@ -4,13 +4,16 @@ from collections.abc import Sequence
 from typing import Any
 
 from pydantic import ValidationError
-from pydantic_core import ErrorDetails, from_json
+from pydantic_core import ErrorDetails
 
 from forebay.api.problems import MOST_ERRORS, Problem, pointer
 from forebay.flow.errors import Path
 
-MISSING = object()
-"""Stands for a member that a document does not have."""
+UNIONS = frozenset({"shore", "fluid"})
+"""Members whose value is of one of several kinds."""
+
+LISTS_OF_UNIONS = frozenset({"elements"})
+"""Members whose items are each of one of several kinds."""
 
 LONGEST_DETAIL = 300
 """Characters of one error's text."""
@@ -24,50 +27,34 @@ OWN_WORDS = {
 """Texts for the error types whose own text repeats the input or says less."""
 
 
-def problem_of(error: ValidationError, body: bytes) -> Problem:
+def problem_of(error: ValidationError) -> Problem:
     """Problem of a failed validation: 400 if the body is not JSON, 422 with pointers otherwise."""
     count = error.error_count()
     details = error.errors(include_url=False, include_input=False)[:MOST_ERRORS]
     if details[0]["type"] == "json_invalid":
         return Problem("malformed-json", _where_json_ends(details[0]))
-    document = from_json(body)
-    errors = tuple(
-        {"pointer": pointer(_place(detail, document)), "detail": _text(detail)} for detail in details
-    )
+    errors = tuple({"pointer": pointer(_place(detail)), "detail": _text(detail)} for detail in details)
     listed = "" if count <= MOST_ERRORS else f", of which {MOST_ERRORS} are listed"
     return Problem(
         "invalid-request", f"{count} error{'s' * (count > 1)} in the request{listed}", errors=errors
     )
 
 
-def locate(location: Path, document: Any) -> Path:  # noqa: ANN401
-    """Steps of a validation error's location that exist in the document, plus a missing last member.
+def without_tags(location: Path) -> Path:
+    """Steps of a validation error's location without the tags of unions, which are no members of the body.
 
-    Locations hold tags of unions and names of validators too; a client knows neither.
+    A tag stands after `shore`, after `fluid`, and after the index of an element.
     """
-    steps: list[str | int] = []
-    here = document
-    last = len(location) - 1
-    for i, step in enumerate(location):
-        inner = _member(here, step)
-        if inner is not MISSING:
-            here = inner
-            steps.append(step)
-        elif i == last and isinstance(here, dict) and isinstance(step, str):
-            steps.append(step)
-    return tuple(steps)
+    before = ("", "", *location)
+    return tuple(
+        step
+        for twice, once, step in zip(before, before[1:], location, strict=False)
+        if once not in UNIONS and not (twice in LISTS_OF_UNIONS and isinstance(once, int))
+    )
 
 
-def _member(value: Any, step: str | int) -> Any:  # noqa: ANN401
-    if isinstance(value, dict) and isinstance(step, str):
-        return value.get(step, MISSING)
-    if isinstance(value, list) and isinstance(step, int) and 0 <= step < len(value):
-        return value[step]
-    return MISSING
-
-
-def _place(detail: ErrorDetails, document: Any) -> Path:  # noqa: ANN401
-    steps = locate(detail["loc"], document)
+def _place(detail: ErrorDetails) -> Path:
+    steps = without_tags(detail["loc"])
     return (*steps, "kind") if detail["type"].startswith("union_tag") else steps
 
 
