@@ -59,12 +59,10 @@ def _segment_bound(z: ComplexArray, radius: FloatArray, start: complex, end: com
 
 
 def line_bound(term: LineTerm, frame: Frame, z: ComplexArray, radius: FloatArray) -> FloatArray:
-    """Remainder of a line element's W over discs, shape (n,) [m/s].
+    """Remainder of a line element's W over discs, affine maps only, shape (n,) [m/s].
 
     term : the line with its panels;  z : shape (n,), centres [m];  radius : shape (n,) [m]
     """
-    if not frame.map.affine:
-        return _wedge_bound(term, frame, z, radius)
     rate = abs(complex(term.frame.rate))
     w, reach = term.frame.forward(z), radius * rate
     total = np.zeros(z.shape)
@@ -88,14 +86,19 @@ def _strip_bound(w: ComplexArray, reach: FloatArray, start: complex, end: comple
     return np.where(gap > 0.5, np.minimum(close, 0.5 * e * (1.0 + e) / (1.0 - e) ** 3 * reach**2), close)
 
 
-def _wedge_bound(term: LineTerm, frame: Frame, z: ComplexArray, radius: FloatArray) -> FloatArray:
-    """In a corner every source is a pole of the mapped plane; near a panel its logarithms are taken in the site."""
+def wedge_line_bounds(
+    term: LineTerm, frame: Frame, z: ComplexArray, radius: FloatArray
+) -> tuple[FloatArray, FloatArray]:
+    """Remainders of a line element in a corner: as poles of the mapped plane [m2/s], and in the site [m/s].
+
+    Either bound holds for the whole of the line; the first is finite away from it, the second near it.
+    """
     n = exponent_of(frame)
     rate = abs(complex(term.frame.rate))
     w, reach, tau = term.frame.forward(z), radius * rate, frame.map.forward(z)
     size = np.abs(w)
     log_reach = log_radius(reach, size)
-    total = np.zeros(z.shape)
+    mapped, site = np.zeros(z.shape), np.zeros(z.shape)
     for panel, share in zip(term.panels, term.shares, strict=True):
         middle = complex(frame.map.forward(term.frame.inverse(np.array([panel.middle])))[0])
         stretch = -n * math.log1p(-min(0.5 * abs(panel.run) / abs(panel.middle), 0.9))
@@ -104,13 +107,25 @@ def _wedge_bound(term: LineTerm, frame: Frame, z: ComplexArray, radius: FloatArr
             turn = complex(np.exp(2j * math.pi / n)) if image == 2 else 1.0
             start = panel.start if image == 0 else np.conj(panel.start) * turn
             end = panel.end if image == 0 else np.conj(panel.end) * turn
-            apart = np.abs(tau - place)
-            far = pulled_back(apart - stretch, n, size, log_reach)
+            d = tau - place
+            seen = np.abs(d.imag) <= math.pi if image else np.ones(z.shape, dtype=np.bool_)
+            far = abs(share) * pole_bound(d, stretch, n * log_reach)
             near = _segment_bound(w, reach, start, end) + wedge_rest_bound(n, size, log_reach)
-            near = np.where(apart + stretch + n * log_reach < min(4.0, _NEAR * n), near, np.inf)
-            seen = np.abs((tau - place).imag) <= math.pi if image else np.ones(z.shape, dtype=np.bool_)
-            total += np.where(seen, abs(share) * np.minimum(far, near), 0.0)
-    return total * rate
+            near = np.where(np.abs(d) + stretch + n * log_reach < min(4.0, _NEAR * n), near, np.inf)
+            away = np.abs(d) - stretch > 2.0 * n * log_reach
+            site_far = np.where(away, n / size * np.exp(log_reach) * _site_level(d, stretch, n, log_reach), np.inf)
+            mapped += np.where(seen, far, 0.0)
+            site += np.where(seen, abs(share) * np.minimum(near, site_far), 0.0)
+    return mapped, site * rate
+
+
+def _site_level(d: ComplexArray, stretch: float, n: float, log_reach: FloatArray) -> FloatArray:
+    """For X + 1/2 of far poles, pulled back to the site: bound, slope and level of the mapped plane together."""
+    distance = np.maximum(np.abs(d) - stretch, 1e-300)
+    second = np.expm1(np.minimum(log_reach, 50.0)) ** 2
+    slope = 1.0 / distance**2 + 0.25
+    bound = pole_bound(d, stretch, n * log_reach)
+    return bound + slope * n * second + (1.0 / distance + 1.0 + slope * n * log_reach) * 2.0 * second
 
 
 def exponent_of(frame: Frame) -> float:
@@ -124,16 +139,17 @@ def log_radius(radius: FloatArray, size: FloatArray) -> FloatArray:
     return np.where(q < 1.0, -np.log1p(-np.minimum(q, 0.999999)), np.inf)
 
 
-def pulled_back(distance: FloatArray, n: float, size: FloatArray, log_reach: FloatArray) -> FloatArray:
-    """For n (X(tau - p) + 1/2) / z, tau = n log z, the poles no nearer to tau than `distance`."""
-    with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
-        d = np.where(distance > 0.0, distance, np.nan)
-        bound = mean_bound(d, n * log_reach) * (1.0 + 0.5 * d * d)
-        slope = 1.0 / d**2 + 0.25
-        second = np.expm1(log_reach) ** 2
-        total = bound + slope * n * second + (1.0 / d + 1.0 + slope * n * log_reach) * 2.0 * second
-        total = n / size * np.exp(log_reach) * total
-    return np.where(np.isfinite(total), total, np.inf)
+def pole_bound(d: ComplexArray, stretch: float, reach: FloatArray) -> FloatArray:
+    """For the mean of X(tau - p) over poles within `stretch` of a middle, X = coth/2, d = tau - middle."""
+    near = np.abs(d) - stretch
+    gap = np.abs(d.real) - stretch - reach
+    distance = np.where(near > 0.0, near, 0.0)
+    with np.errstate(over="ignore", invalid="ignore"):
+        bound = mean_bound(distance, reach) * (1.0 + 0.5 * distance * distance)
+        e = np.exp(-np.maximum(gap, 0.5))
+        decayed = 0.5 * e * (1.0 + e) / (1.0 - e) ** 3 * reach**2
+    bound = np.where(np.isnan(bound), np.inf, bound)
+    return np.where(gap > 0.5, np.minimum(bound, decayed), bound)
 
 
 def wedge_rest_bound(n: float, size: FloatArray, log_reach: FloatArray) -> FloatArray:
@@ -160,6 +176,18 @@ def core_bound(vortex: CoredVortex, z: ComplexArray, radius: FloatArray) -> Floa
         return np.where(d + radius < a, 0.0, np.where(d - radius > a, np.minimum(point, across), across))
     nearest = np.maximum(d - radius, 0.0) / a
     return 0.5 * strength / a**3 * lamb_oseen_second(nearest) * radius**2
+
+
+def core_tail_bound(vortex: CoredVortex, at: complex, z: ComplexArray, radius: FloatArray) -> FloatArray:
+    """For what a core at `at` changes in a point vortex: nothing beyond a Rankine core, exp(-r^2/a^2) in the other."""
+    a = vortex.core.radius
+    nearest = np.maximum(np.abs(z - at) - radius, 0.0) / a
+    if vortex.core.model is CoreModel.RANKINE:
+        return np.where(nearest > 1.0, 0.0, np.inf)
+    r = np.maximum(nearest, 0.5)
+    second = np.exp(-r * r) * (2.0 / r**3 + 2.0 / r + 4.0 * r)
+    strength = abs(vortex.circulation) / (2.0 * math.pi)
+    return np.where(nearest > 1.0, 0.5 * strength / a**3 * second * radius**2, np.inf)
 
 
 _R = np.linspace(1e-3, 12.0, 24001)

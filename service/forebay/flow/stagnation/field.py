@@ -5,18 +5,23 @@ from dataclasses import dataclass
 import numpy as np
 
 from forebay.flow.arrays import BoolArray, ComplexArray, FloatArray
+from forebay.flow.core_images import REACH, core_images
 from forebay.flow.lines import LineTerm
-from forebay.flow.model import FlowModel
+from forebay.flow.model import CoredVortex, FlowModel
 from forebay.flow.poles import PoleField
 from forebay.flow.stagnation.bounds import (
     core_bound,
+    core_tail_bound,
     exponent_of,
     line_bound,
     log_radius,
+    pole_bound,
     smooth_bound,
+    wedge_line_bounds,
     wedge_rest_bound,
 )
 from forebay.flow.stagnation.kernels import variation
+from forebay.flow.terms import Jet
 
 EPS = float(np.finfo(np.float64).eps)
 
@@ -87,11 +92,10 @@ class BoundedField:
         """Discs about z, shape (n,) [m]; `lock` is added to W where it is continued across a line [m/s]."""
         jet = self.model.jet(z)
         velocity = jet.velocity if lock is None else jet.velocity + lock
-        rest = self._rational_rest(z, radius)
-        for term in self.lines:
-            rest = rest + line_bound(term, self.frame, z, radius)
-        for core in self.model.cores:
-            rest = rest + core_bound(core, z, radius) + self._core_copies(z, radius, abs(core.circulation))
+        if self.frame.map.affine:
+            rest = self._straight_rest(z, radius)
+        else:
+            rest = self._corner_rest(z, radius, jet)
         rounding = EPS * (ROUNDING * self.model.magnitude(z) + 4.0 * np.abs(jet.slope) * np.abs(z))
         return Discs(velocity, jet.slope, jet.skew, np.where(np.isfinite(velocity), rest, np.inf), rounding)
 
@@ -100,32 +104,72 @@ class BoundedField:
         discs = self.discs(z, radius)
         return discs.velocity, np.abs(discs.velocity) > 1.02 * discs.spread(radius)
 
-    def _rational_rest(self, z: ComplexArray, radius: FloatArray) -> FloatArray:
+    def _mapped_rest(self, tau: ComplexArray, reach: FloatArray) -> FloatArray:
         field = self._smooth_poles
-        tau, rate = self.frame.map.forward(z), np.abs(self.frame.map.slope(z))
         parts = (field.kappa, field.poles, field.strengths, field.centres, field.moments)
-        if self.frame.map.affine:
-            return np.asarray(variation(tau, radius * rate, *parts)[0] * rate, dtype=np.float64)
-        n = self._exponent
+        return np.asarray(variation(tau, reach, *parts)[0], dtype=np.float64)
+
+    def _straight_rest(self, z: ComplexArray, radius: FloatArray) -> FloatArray:
+        """Remainder where the map is affine: part by part."""
+        rate = np.abs(self.frame.map.slope(z))
+        reach, tau = radius * rate, self.frame.map.forward(z)
+        rest = self._mapped_rest(tau, reach) * rate
+        for term in self.lines:
+            rest = rest + line_bound(term, self.frame, z, radius)
+        for core, place in zip(self.model.cores, self._cored, strict=True):
+            own = core_bound(core, z, radius)
+            if self.frame.kappa > 0.0:
+                strength = abs(core.circulation) / (2.0 * np.pi)
+                far = strength * rate * pole_bound(tau - place, 0.0, reach) + core_tail_bound(core, core.at, z, radius)
+                own = np.minimum(own + strength * rate * smooth_bound(reach), far)
+            rest = rest + own + self._image_tails(core, z, radius)
+        return rest
+
+    def _image_tails(self, core: CoredVortex, z: ComplexArray, radius: FloatArray) -> FloatArray:
+        """What the mirror images of a core, which are poles otherwise, owe to their own cores."""
+        total = np.zeros(z.shape)
+        for at in core_images(core.at, REACH * core.core.radius, self.frame)[0][1:]:
+            tail = core_tail_bound(core, at, z, radius)
+            total += np.where(np.isfinite(tail), tail, core_bound(core, z + (core.at - at), radius))
+        return total
+
+    def _corner_rest(self, z: ComplexArray, radius: FloatArray, jet: Jet) -> FloatArray:
+        """Remainder in a corner: what is far is bounded in the mapped plane and pulled back together.
+
+        For f(tau) n / z the pull-back adds to the remainder of f what f and f' make of the curved map; both are taken
+        from the flow itself, less what is near, so that what cancels far away stays cancelled.
+        """
+        n, tau = self._exponent, self.frame.map.forward(z)
+        rate = np.abs(self.frame.map.slope(z))
         size = n / rate
         log_reach = log_radius(radius, size)
-        capped = np.minimum(log_reach, 1e3)
-        value, _ = variation(tau, n * capped, *parts)
-        velocity, slope = field.jet(tau)
+        capped = np.where(np.isfinite(log_reach), log_reach, 50.0)
+        mapped, site = self._mapped_rest(tau, n * capped), np.zeros(z.shape)
+        velocity, slope = jet.velocity.copy(), jet.slope.copy()
+        for term in self.lines:
+            far, near = wedge_line_bounds(term, self.frame, z, radius)
+            is_near = ~(far * rate < near)
+            part = term.jet(z)
+            velocity, slope = (
+                velocity - np.where(is_near, part.velocity, 0.0),
+                slope - np.where(is_near, part.slope, 0.0),
+            )
+            mapped, site = mapped + np.where(is_near, 0.0, far), site + np.where(is_near, near, 0.0)
+        level = np.zeros(z.shape)
+        for core, place in zip(self.model.cores, self._cored, strict=True):
+            strength = abs(core.circulation) / (2.0 * np.pi)
+            far = strength * pole_bound(tau - place, 0.0, n * capped)
+            tail = core_tail_bound(core, core.at, z, radius)
+            near = core_bound(core, z, radius) + strength * wedge_rest_bound(n, size, log_reach)
+            near = np.where(np.abs(tau - place) + n * capped < min(4.0, 1.4 * n), near, np.inf)
+            is_near = ~(far * rate + tail < near)
+            level = level + np.where(is_near, strength * (size + capped) * (1.0 / core.core.radius), 0.0)
+            mapped, site = mapped + np.where(is_near, 0.0, far), site + np.where(is_near, near, tail)
+            site = site + self._image_tails(core, z, radius)
         with np.errstate(over="ignore", invalid="ignore"):
+            w_tau = np.abs(velocity) / rate + level
+            w_slope = (np.abs(slope) * size + np.abs(velocity)) / rate + level
             second = np.expm1(capped) ** 2
-            change = value + np.abs(slope) * n * second
-            level = np.abs(velocity) + np.abs(slope) * n * capped
-            rest = rate * np.exp(capped) * (change + level * 2.0 * second)
-        return np.where(np.isfinite(log_reach) & np.isfinite(rest), rest, np.inf)
-
-    def _core_copies(self, z: ComplexArray, radius: FloatArray, circulation: float) -> FloatArray:
-        """What the periodic kernel adds to a cored vortex's own 1/d."""
-        strength = circulation / (2.0 * np.pi)
-        if self.frame.kappa == 0.0:
-            return np.zeros(z.shape)
-        rate = np.abs(self.frame.map.slope(z))
-        if self.frame.map.affine:
-            return np.asarray(strength * rate * smooth_bound(radius * rate), dtype=np.float64)
-        size = self._exponent / rate
-        return strength * wedge_rest_bound(self._exponent, size, log_radius(radius, size))
+            total = rate * np.exp(capped) * (mapped + w_slope * second + (w_tau + w_slope * capped) * 2.0 * second)
+        total = total + site
+        return np.where(np.isfinite(log_reach) & np.isfinite(total), total, np.inf)

@@ -179,7 +179,8 @@ class GeneralSearch:
         near = np.abs(depth) < found.unique
         if near.any():
             z = complex(frame.map.inverse(on_walls(frame, tau, near[None, :]))[0])
-            snapped = tree.prove(z, found.line, found.side, found.unique)
+            line, side = np.array([found.line]), np.array([found.side])
+            snapped = tree.prove(np.array([z]), line, side, np.array([found.unique]))[0]
             if snapped is not None and abs(z - found.at) <= snapped.unique:
                 weight = 1 if near.sum() == 1 else 0
                 return Zero(z, wall_name(self.model, z), snapped.radius + 4 * EPS * abs(z), 1, weight)

@@ -197,60 +197,77 @@ class Quadtree:
         return small
 
     def _try_newton(self, boxes: Boxes, discs: Discs, z: ComplexArray, radius: FloatArray) -> None:
+        """Newton's iteration from every box on which W is nearly linear and could vanish nearby."""
         definite = discs.definiteness
-        with np.errstate(divide="ignore", invalid="ignore"):
-            near = np.abs(discs.velocity) < 4.0 * definite * radius
-        ready = near & (discs.rest < 0.5 * definite * radius)
-        for k in np.flatnonzero(ready):
-            line, side = int(boxes.line[k]), int(boxes.side[k])
-            if any(o.line == line and o.side == side and abs(o.at - z[k]) < 0.5 * o.unique for o in self.zeros):
-                continue
-            found = self.prove(self._newton(complex(z[k]), line, side, float(radius[k])), line, side, float(radius[k]))
+        ready = np.abs(discs.velocity) < 4.0 * definite * radius
+        ready &= discs.rest < 0.5 * definite * radius
+        for zero in self.zeros:
+            same = (boxes.line == zero.line) & (boxes.side == zero.side)
+            ready &= ~(same & (np.abs(z - zero.at) < 0.5 * zero.unique))
+        if not ready.any():
+            return
+        chosen = boxes.where(ready)
+        reached = self._newton(z[ready], chosen.line, chosen.side, radius[ready])
+        for found in self.prove(reached, chosen.line, chosen.side, radius[ready]):
             if found is not None:
                 self._accept(found)
 
-    def _newton(self, z: complex, line: int, side: int, radius: float) -> complex:
-        """Newton's iteration for W + W_z d + W_zbar conj(d) = 0, kept in the closed water."""
-        start = z
+    def _newton(self, z: ComplexArray, line: IntArray, side: IntArray, radius: FloatArray) -> ComplexArray:
+        """Newton's iteration for W + W_z d + W_zbar conj(d) = 0; where it runs away the start is kept."""
+        at = z.copy()
         for _ in range(8):
-            at = np.array([z])
             jet = self.field.model.jet(at)
-            velocity = complex(jet.velocity[0] + self._lock(np.array([line]), np.array([side]), at)[0])
-            a, b = complex(jet.slope[0]), complex(jet.skew[0])
-            determinant = abs(a) ** 2 - abs(b) ** 2
-            if determinant == 0.0 or not np.isfinite(abs(velocity)):
+            velocity = jet.velocity + self._lock(line, side, at)
+            a, b = jet.slope, jet.skew
+            with np.errstate(divide="ignore", invalid="ignore"):
+                step = (-velocity * np.conj(a) + np.conj(velocity) * b) / (np.abs(a) ** 2 - np.abs(b) ** 2)
+            moved = at + step
+            allowed = np.isfinite(step) & (np.abs(moved - z) <= 16.0 * radius)
+            at = np.where(allowed, moved, at)
+            if np.all(~allowed | (np.abs(step) <= 1e-15 * np.abs(at))):
                 break
-            step = (-velocity * a.conjugate() + velocity.conjugate() * b) / determinant
-            z = z + step
-            if abs(z - start) > 16.0 * radius:
-                return start
-            if abs(step) <= 1e-15 * abs(z):
-                break
-        return z
+        return at
 
-    def prove(self, z: complex, line: int, side: int, scale: float) -> FoundZero | None:
-        """The proof that a disc about z holds exactly one zero; discs up to 8 `scale` [m] are tried for uniqueness."""
-        at, lines, sides = np.array([z]), np.array([line]), np.array([side])
-        lock = self._lock(lines, sides, at)
-        point = self.field.discs(at, np.zeros(1), lock)
-        definite = float(point.definiteness[0])
-        if not definite > 0.0:
-            return None
-        radius = 2.0 * float(np.abs(point.velocity[0]) + point.rounding[0]) / definite
-        if not np.isfinite(radius) or self._change(at, radius, lock) >= 0.5 * definite:
-            return None
-        unique = radius
-        for factor in _RADII:
-            trial = factor * scale
-            if trial > radius and self._room(z, line) > trial and self._change(at, trial, lock) < 0.95 * definite:
-                unique = trial
-                break
-        centre = bool(abs(point.slope[0]) < abs(point.skew[0]))
-        return FoundZero(z, radius, unique, line, side, centre)
+    def prove(
+        self, z: ComplexArray, line: IntArray, side: IntArray, scale: FloatArray
+    ) -> list[FoundZero | None]:
+        """The proofs that discs about z hold exactly one zero each; None where there is no proof.
 
-    def _change(self, at: ComplexArray, radius: float, lock: ComplexArray) -> float:
-        """Bound for the change of the derivatives over a disc: 2/R times the remainder over twice the radius."""
-        return float(self.field.discs(at, np.array([2.0 * radius]), lock).rest[0]) * 2.0 / radius
+        Discs up to 8 `scale` [m] are tried for uniqueness.
+        """
+        lock = self._lock(line, side, z)
+        point = self.field.discs(z, np.zeros(z.shape), lock)
+        definite = point.definiteness
+        with np.errstate(divide="ignore", invalid="ignore"):
+            radius = 2.0 * (np.abs(point.velocity) + point.rounding) / definite
+        radius = np.where(np.isfinite(radius), radius, 0.0)
+        trials = np.column_stack([radius, *(factor * scale for factor in _RADII)])
+        change = self._change(z, trials, lock)
+        granted = (radius > 0.0) & (change[:, 0] < 0.5 * definite)
+        room = np.array([self._room(complex(at), int(k)) for at, k in zip(z, line, strict=True)])
+        fits = (change < 0.95 * definite[:, None]) & (trials >= radius[:, None]) & (trials < room[:, None])
+        unique = np.max(np.where(fits, trials, radius[:, None]), axis=1)
+        centre = np.abs(point.slope) < np.abs(point.skew)
+        return [
+            FoundZero(
+                complex(z[k]), float(radius[k]), float(unique[k]), int(line[k]), int(side[k]), bool(centre[k])
+            )
+            if granted[k]
+            else None
+            for k in range(z.size)
+        ]
+
+    def _change(self, z: ComplexArray, radii: FloatArray, lock: ComplexArray) -> FloatArray:
+        """Bounds for the change of the derivatives over discs, shape of radii.
+
+        2/R times the remainder over twice the radius R: Cauchy's estimate for analytic parts, and at least as much for
+        the others.
+        """
+        at = np.repeat(z, radii.shape[1])
+        flat = radii.ravel()
+        rest = self.field.discs(at, 2.0 * flat, np.repeat(lock, radii.shape[1])).rest
+        with np.errstate(divide="ignore", invalid="ignore"):
+            return np.where(flat > 0.0, rest * 2.0 / flat, np.inf).reshape(radii.shape)
 
     def _room(self, z: complex, line: int) -> float:
         """Distance to the nearest line that W is not continued across, and to the ends of all [m]."""
