@@ -22,6 +22,7 @@ def written(withdrawal: Withdrawal) -> dict[str, Any]:
     """Fields of a trace."""
     fields = asdict(withdrawal)
     for intake in fields["intakes"]:
+        intake["extent_centre"] = intake.pop("centre")
         for share in intake["shares"]:
             share["from"] = share.pop("origin")
     return fields

@@ -6,7 +6,7 @@ from pydantic import Field
 
 from forebay.api.schemas.common import Answer, Name
 from forebay.api.schemas.layout import LayoutRequest
-from forebay.api.schemas.quantities import DischargeValue, LengthValue, PathValue, RatioValue
+from forebay.api.schemas.quantities import DischargeValue, LengthValue, PathValue, PositionValue, RatioValue
 from forebay.flow.withdrawal.result import OriginKind, WidthStatus, WithdrawalStatus
 
 
@@ -49,7 +49,8 @@ class IntakeValue(Answer):
     widths: Annotated[list[WidthValue], Field(description="One for each far end")]
     dividing_streamlines: Annotated[list[PathValue], Field(description="In the direction of flow")]
     zone: Annotated[PathValue, Field(description="Outline of the water that reaches the intake")]
-    extent: Annotated[LengthValue, Field(description="Radius at which lines and zone are cut")]
+    extent_centre: Annotated[PositionValue, Field(description="Middle of the layout")]
+    extent: Annotated[LengthValue, Field(description="Radius about it at which lines and zone are cut")]
     shares: Annotated[list[ShareValue], Field(description="By origin, largest first; they add to 1")]
     recirculation_share: Annotated[RatioValue, Field(description="Part that outfalls gave")]
     share_error: Annotated[RatioValue, Field(description="Largest error of a share", examples=[1e-9])]
