@@ -36,6 +36,9 @@ LABEL_BORDER = 3.0
 SMALLEST_PIER = 2.5
 """Radius below which a pier is drawn larger than it is [px at scale 1]."""
 
+SMALL_PIER = 9.0
+"""Radius below which the stagnation points of a pier would hide it, and are left out [px at scale 1]."""
+
 WALL_SHARES = (0.5, 0.3, 0.7, 0.15, 0.85)
 """Shares of the visible part of a wall at which its name is tried."""
 
@@ -65,7 +68,10 @@ class Drawn:
         self.glyphs.add(glyph)
         box = Box(x - radius, y - radius, x + radius, y + radius)
         self.taken.append(box)
-        if glyph not in (Glyph.PIER, Glyph.STAGNATION):
+        small = radius < SMALL_PIER * frame.sheet.scale
+        if glyph is Glyph.PIER and small:
+            self.symbols.append(box.grown(STAGNATION_RADIUS * frame.sheet.scale))
+        elif glyph not in (Glyph.PIER, Glyph.STAGNATION):
             self.symbols.append(box)
         if text:
             self.wishes.append(wish_for(frame, text, (x, y), radius))
