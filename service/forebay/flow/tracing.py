@@ -268,14 +268,27 @@ class _Run:
         leaving = arriving + self.sense * float(faces.flux[k])
         if leaving <= 0.0 or not faces.in_water[k]:
             return False
-        foot = complex(faces.start[k]) + local.real * unit
-        other = np.array([foot - 1j * side * unit * _TOUCH * abs(span)])
-        crossing = Crossing(k, complex(lines.z[i]), arriving, leaving)
-        self.crossings.setdefault(int(lines.index[i]), []).append(crossing)
-        lines.psi[i] += float(self.model.chord(lines.z[i : i + 1], other).imag[0])
-        lines.z[i] = other[0]
-        lines.w[i] = self.model.velocity(other)[0]
+        self._record_crossing(i, Crossing(k, complex(lines.z[i]), arriving, leaving))
+        lines.z[i : i + 1], change = self._other_side(lines.z[i : i + 1], unit, local, abs(span))
+        lines.psi[i] += change
+        lines.w[i : i + 1] = self.model.velocity(lines.z[i : i + 1])
         return True
+
+    def _record_crossing(self, i: int, crossing: Crossing) -> None:
+        self.crossings.setdefault(int(self.lines.index[i]), []).append(crossing)
+
+    def _other_side(
+        self, z: ComplexArray, unit: complex, local: complex, length: float
+    ) -> tuple[ComplexArray, float]:
+        """The point of the same streamline just beyond a line element, and what is left of the change of psi.
+
+        Straight across psi changes by the flow along the line; a shift along the line makes good for it.
+        """
+        opposite = z + 1j * unit * (-local.imag - np.sign(local.imag) * _TOUCH * length)
+        change = float(self.model.chord(z, opposite).imag[0])
+        shift = -change / float((self.model.velocity(opposite)[0] * unit).imag)
+        opposite = opposite + unit * np.clip(shift, -1e3 * _TOUCH * length, 1e3 * _TOUCH * length)
+        return opposite, float(self.model.chord(z, opposite).imag[0])
 
     def _stop(self, index: IntArray, closed: BoolArray) -> None:
         """Take out the lines that have come to an end."""

@@ -67,7 +67,7 @@ class Canvas:
         return np.asarray(inner + part * span, dtype=np.complex128)
 
     def clamped(self, path: ComplexArray) -> ComplexArray:
-        """A drawn path with its excursions beyond the extent moved on to the circle, as far as that is wet."""
+        """A drawn path with its excursions beyond the extent moved on to the circle, where that is wet."""
         beyond = np.abs(path - self.centre) > self.extent * (1.0 + 1e-12)
         if not np.any(beyond):
             return path
