@@ -182,14 +182,16 @@ def wedge_panel(start: complex, end: complex, angle: float) -> float:
 
 
 def _with_images(panels: Sequence[Segment], shares: Sequence[float], places: Places) -> Arrays:
-    """Panels and images as arrays; an image that coincides with its panel faces as it does."""
+    """Panels, then image after image of them; an image that coincides with its panel faces as it does."""
+    seen = [(list(places(panel.start)), list(places(panel.end))) for panel in panels]
     rows = []
-    for panel, share in zip(panels, shares, strict=True):
-        for start, end in zip(places(panel.start), places(panel.end), strict=True):
+    for index in range(len(seen[0][0])):
+        for panel, share, (starts, ends) in zip(panels, shares, seen, strict=True):
+            start, end = starts[index], ends[index]
             facing = panel.facing if _coincide(0.5 * (start + end), panel.middle) else 0
             rows.append((start, end, share, float(facing)))
-    starts, ends, strengths, facings = zip(*rows, strict=True)
-    return np.array(starts), np.array(ends), np.array(strengths), np.array(facings)
+    table = np.array(rows, dtype=np.complex128).T
+    return table[0].copy(), table[1].copy(), table[2].real.copy(), table[3].real.copy()
 
 
 def _coincide(place: complex, other: complex) -> bool:

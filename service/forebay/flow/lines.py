@@ -102,7 +102,7 @@ def line_term(
     run = complex(places[1] - places[0])
     facing = round(float(np.sign((inward * affine.rate * np.conj(run)).imag))) if inward else 0
     cuts = _cuts(complex(places[0]), run, _longest(frame))
-    ends = [complex(places[0]) + run * cut for cut in cuts]
+    ends = [complex(places[0]) + run * cut for cut in cuts[:-1]] + [complex(places[1])]
     panels = tuple(Segment(a, b, facing) for a, b in pairwise(ends))
     shares = tuple(float(share) for share in flux / _TWO_PI * np.diff(cuts))
     field = _field_of(frame, panels, shares, offset=offset)

@@ -18,11 +18,6 @@ import numpy as np
 from numba import njit
 from scipy.special import zeta
 
-from forebay.flow.arrays import ComplexArray
-
-_NODES, _WEIGHTS = np.polynomial.legendre.leggauss(12)
-"""Gauss nodes on a panel of length 2 at most: remainders are analytic within pi of it, an error of 1e-19."""
-
 _ORDERS = 2 * np.arange(1, 14)
 _REST = np.where(_ORDERS % 4 == 2, 2.0, -2.0) * zeta(_ORDERS) / (2.0 * np.pi) ** _ORDERS
 """B_2k / (2k)! = -2 (-1)^k zeta(2k) / (2 pi)^2k, k = 1 ... 13: with |d| < 1 the first term left out is
@@ -111,26 +106,3 @@ def log_one_plus_exp(d: complex) -> complex:
     if d.real > 0.0:
         return d + cmath.log(1.0 + cmath.exp(-d))
     return cmath.log(1.0 + cmath.exp(d))
-
-
-@njit(cache=True, error_model="numpy")
-def mean_rest(z: ComplexArray, start: complex, end: complex) -> tuple[ComplexArray, ComplexArray]:
-    """Means of R(z - s) and R'(z - s) over a panel of sources s, start -> end, shape (n,) each."""
-    values, slopes = np.zeros(z.shape[0], np.complex128), np.zeros(z.shape[0], np.complex128)
-    for i in range(z.shape[0]):
-        for j in range(_NODES.shape[0]):
-            d = z[i] - 0.5 * (start + end) - 0.5 * _NODES[j] * (end - start)
-            values[i] += 0.5 * _WEIGHTS[j] * rest(d)
-            slopes[i] += 0.5 * _WEIGHTS[j] * rest_slope(d)
-    return values, slopes
-
-
-@njit(cache=True, error_model="numpy")
-def mean_rest_log(z: ComplexArray, start: complex, end: complex) -> ComplexArray:
-    """Mean of log(sinh(d/2)/(d/2)), d = z - s, over a panel of sources s, start -> end, shape (n,)."""
-    values = np.zeros(z.shape[0], np.complex128)
-    for i in range(z.shape[0]):
-        for j in range(_NODES.shape[0]):
-            d = z[i] - 0.5 * (start + end) - 0.5 * _NODES[j] * (end - start)
-            values[i] += 0.5 * _WEIGHTS[j] * rest_log(d)
-    return values

@@ -12,8 +12,8 @@ from numba import njit
 
 from forebay.flow.arrays import ComplexArray, FloatArray
 
-_ON_WALL = 1e-9
-"""Angular distance from a segment in a wall within which a point counts as on the water's side of it [-]."""
+_ON_WALL = 1e-6
+"""Distance from a segment in a wall, in lengths, within which a point counts as on the water's side [-]."""
 
 _ROUNDING = 16.0 * float(np.finfo(np.float64).eps)
 """Distance from a segment's line, relative to the coordinates, within which a point counts as on it [-]."""
@@ -59,8 +59,8 @@ def side_of(z: complex, a: complex, b: complex, facing: float) -> float:
     length = abs(b - a)
     if abs(left) <= _ROUNDING * length * (abs(z) + abs(a) + abs(b)):
         return facing
-    within = _ON_WALL * length * min(abs(z - a), abs(z - b))
-    if facing != 0.0 and abs(left) <= within and dot(z - a, z - b) < 0.0:
+    within = _ON_WALL * length * length
+    if facing != 0.0 and abs(left) <= within and dot(z - a, z - b) <= within:
         return facing
     return math.copysign(1.0, left)
 

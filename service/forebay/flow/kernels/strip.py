@@ -82,17 +82,26 @@ def strip_jet(
     weights: FloatArray,
     offset: float,
 ) -> tuple[ComplexArray, ComplexArray]:
-    """Sums of the means of X(w - s) + offset, and their derivatives, shape (n,) each."""
+    """Sums of the means of X(w - s) + offset, and their derivatives, shape (n,) each.
+
+    Panels that follow each other are one segment to the logarithm, so that nothing happens where they join.
+    """
     a, b, shares, facing = segments
     velocity, slope = np.zeros(w.shape[0], np.complex128), np.zeros(w.shape[0], np.complex128)
     for i in range(w.shape[0]):
+        first = 0
         for k in range(a.shape[0]):
             near = _near(w[i], a[k], b[k])
-            value = mean_inverse(near, a[k], b[k], facing[k]) + offset
-            change = -inverse(near - a[k]) * inverse(near - b[k])
+            value, change = complex(offset, 0.0), 0j
             for j in range(weights.shape[0]):
                 value += weights[j] * rest(near - nodes[k, j])
                 change += weights[j] * rest_slope(near - nodes[k, j])
+            last = k + 1
+            if last == a.shape[0] or a[last] != b[k] or _near(w[i], a[last], b[last]) != near:
+                whole = shares[first : k + 1].sum()
+                velocity[i] += whole * mean_inverse(near, a[first], b[k], facing[k])
+                slope[i] -= whole * inverse(near - a[first]) * inverse(near - b[k])
+                first = last
             velocity[i] += shares[k] * value
             slope[i] += shares[k] * change
     return velocity, slope
@@ -110,11 +119,17 @@ def strip_velocity(
     a, b, shares, facing = segments
     velocity = np.zeros(w.shape[0], np.complex128)
     for i in range(w.shape[0]):
+        first = 0
         for k in range(a.shape[0]):
             near = _near(w[i], a[k], b[k])
-            value = mean_inverse(near, a[k], b[k], facing[k]) + offset
+            value = complex(offset, 0.0)
             for j in range(weights.shape[0]):
                 value += weights[j] * rest(near - nodes[k, j])
+            last = k + 1
+            if last == a.shape[0] or a[last] != b[k] or _near(w[i], a[last], b[last]) != near:
+                whole = shares[first : k + 1].sum()
+                velocity[i] += whole * mean_inverse(near, a[first], b[k], facing[k])
+                first = last
             velocity[i] += shares[k] * value
     return velocity
 

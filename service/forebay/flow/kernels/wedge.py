@@ -80,37 +80,64 @@ def wedge_jet(
     weights: FloatArray,
     angle: float,
 ) -> tuple[ComplexArray, ComplexArray]:
-    """Mean fields of the panels and their derivatives, shape (n,) each."""
+    """Mean fields of the panels and their derivatives, shape (n,) each.
+
+    Panels nearby that follow each other are one segment to the logarithm: nothing happens where they join.
+    """
     a, b, shares, facing = panels
-    n = math.pi / angle
     velocity, slope = np.zeros(w.shape[0], np.complex128), np.zeros(w.shape[0], np.complex128)
     for i in range(w.shape[0]):
         z = off_vertex(w[i])
         log_z = logarithm(z, angle)
-        for k in range(a.shape[0]):
-            log_middle = logarithm(0.5 * (a[k] + b[k]), angle)
-            for family in range(2):
-                bank = 0 if family == 0 else (1 if log_z.imag + log_middle.imag <= angle else 2)
-                start, end = _image(a[k], bank, angle), _image(b[k], bank, angle)
-                first, second = 0j, 0j
-                if _is_near(z, log_z, start, end, _image_log(log_middle, bank, angle)):
-                    for j in range(weights.shape[0]):
-                        d = log_z - _image_log(logs[k, j], bank, angle)
-                        value = n * rest(n * d) - rest(d) + 0.5 * (n - 1.0)
-                        first += weights[j] * value
-                        second += weights[j] * (n * n * rest_slope(n * d) - rest_slope(d) - value)
-                    exact = mean_inverse(z, start, end, _facing(a[k], b[k], start, end, facing[k]))
-                    velocity[i] += shares[k] * (first / z + exact)
-                    slope[i] += shares[k] * (second / z / z - inverse(z - start) * inverse(z - end))
-                else:
-                    for j in range(weights.shape[0]):
-                        d = n * (log_z - _image_log(logs[k, j], bank, angle))
-                        value = decay(d)
-                        first += weights[j] * n * value
-                        second += weights[j] * n * value * (n * decay(-d) - 1.0)
-                    velocity[i] += shares[k] * first / z
-                    slope[i] += shares[k] * second / z / z
+        for family in range(2):
+            first, ahead = 0, _seen_near(z, log_z, (a[0], b[0]), family, angle)
+            for k in range(a.shape[0]):
+                bank = ahead
+                sums = _nodes_jet(log_z, logs[k], weights, bank, angle)
+                velocity[i] += shares[k] * sums[0] / z
+                slope[i] += shares[k] * sums[1] / z / z
+                if k + 1 < a.shape[0]:
+                    ahead = _seen_near(z, log_z, (a[k + 1], b[k + 1]), family, angle)
+                if bank >= 0 and (k + 1 == a.shape[0] or ahead != bank):
+                    start, end = _image(a[first], bank, angle), _image(b[k], bank, angle)
+                    faces = _facing(a[first], b[k], start, end, facing[k])
+                    whole = shares[first : k + 1].sum()
+                    velocity[i] += whole * mean_inverse(z, start, end, faces)
+                    slope[i] -= whole * inverse(z - start) * inverse(z - end)
+                if ahead != bank or bank < 0:
+                    first = k + 1
     return velocity, slope
+
+
+@njit(cache=True, error_model="numpy")
+def _seen_near(z: complex, log_z: complex, ends: tuple[complex, complex], family: int, angle: float) -> int:
+    """Bank in which a panel is seen (0: itself) if it is seen nearby, else -1 - bank."""
+    a, b = ends
+    log_middle = logarithm(0.5 * (a + b), angle)
+    bank = 0 if family == 0 else (1 if log_z.imag + log_middle.imag <= angle else 2)
+    start, end = _image(a, bank, angle), _image(b, bank, angle)
+    return bank if _is_near(z, log_z, start, end, _image_log(log_middle, bank, angle)) else -1 - bank
+
+
+@njit(cache=True, error_model="numpy")
+def _nodes_jet(
+    log_z: complex, logs: ComplexArray, weights: FloatArray, seen: int, angle: float
+) -> tuple[complex, complex]:
+    """z times a panel's field and z^2 times its derivative by nodes, without the logarithm if seen nearby."""
+    n = math.pi / angle
+    first, second = 0j, 0j
+    for j in range(weights.shape[0]):
+        if seen >= 0:
+            d = log_z - _image_log(logs[j], seen, angle)
+            value = n * rest(n * d) - rest(d) + 0.5 * (n - 1.0)
+            first += weights[j] * value
+            second += weights[j] * (n * n * rest_slope(n * d) - rest_slope(d) - value)
+        else:
+            d = n * (log_z - _image_log(logs[j], -1 - seen, angle))
+            value = decay(d)
+            first += weights[j] * n * value
+            second += weights[j] * n * value * (n * decay(-d) - 1.0)
+    return first, second
 
 
 @njit(cache=True, error_model="numpy")
