@@ -141,29 +141,39 @@ def path_integrals(
         straight paths, on which it is interpolated.
     Returns shape (n, m) [-]; huge if a path ends on a pole.
     """
+    count = poles.shape[0]
     straight = crossing.shape[0] == 0
-    integrals = np.empty((start.shape[0], poles.shape[0]), np.complex128)
+    px = poles.real.copy()
+    py = poles.imag.copy()
+    re = np.empty(count)
+    im = np.empty(count)
+    height = np.empty(count)
+    integrals = np.empty((start.shape[0], count), np.complex128)
     for i in range(start.shape[0]):
         ax = start[i].real
         ay = start[i].imag
         bx = end[i].real
         by = end[i].imag
-        for j in range(poles.shape[0]):
-            dax = ax - poles[j].real
-            day = ay - poles[j].imag
-            dbx = bx - poles[j].real
-            dby = by - poles[j].imag
-            a_re, a_im = _potential(dax, day)
-            b_re, b_im = _potential(dbx, dby)
-            re = b_re - a_re + offset * (bx - ax)
-            im = b_im - a_im + offset * (by - ay)
-            if (dax >= 0.0) != (dbx >= 0.0):
-                height = day - dax * (dby - day) / (dbx - dax)
-                if not straight:
-                    height = crossing[i, j] - poles[j].imag
-                jump = math.pi * (1.0 + 2.0 * math.floor(height / _TURN))
-                im += -jump if dbx >= 0.0 else jump
-            integrals[i, j] = complex(re, im)
+        for j in range(count):
+            height[j] = ay - py[j] - (ax - px[j]) * ((by - ay) / (bx - ax))
+        if not straight:
+            for j in range(count):
+                height[j] = crossing[i, j] - py[j]
+        for j in range(count):
+            b_re, b_im = _potential(bx - px[j], by - py[j])
+            re[j] = b_re + offset * (bx - ax)
+            im[j] = b_im + offset * (by - ay)
+        for j in range(count):
+            a_re, a_im = _potential(ax - px[j], ay - py[j])
+            re[j] -= a_re
+            im[j] -= a_im
+        for j in range(count):
+            to_right = (ax < px[j]) and (bx >= px[j])
+            to_left = (ax >= px[j]) and (bx < px[j])
+            jump = math.pi * (1.0 + 2.0 * math.floor(height[j] / _TURN))
+            im[j] += (jump if to_left else 0.0) - (jump if to_right else 0.0)
+        for j in range(count):
+            integrals[i, j] = complex(re[j], im[j])
     return integrals
 
 
