@@ -12,6 +12,9 @@ from forebay.settings import Settings
 
 ROUTE = "/v1/assessment"
 
+DEADLINE = 3600.0
+"""Longest computation [s]: nobody else waits here, and Ctrl-C is at hand."""
+
 
 class FileError(Exception):
     """A file cannot be assessed; the text says why, line by line."""
@@ -54,7 +57,7 @@ def problem_text(path: Path, problem: Mapping[str, Any]) -> str:
 
 async def post(route: str, body: Mapping[str, Any]) -> tuple[int, dict[str, Any]]:
     """Status and answer of the application to a POST, handed over without a socket."""
-    app = create_app(Settings.from_environment())
+    app = create_app(Settings.from_environment().model_copy(update={"deadline": DEADLINE}))
     payload = json.dumps(body).encode()
     sent: list[MutableMapping[str, Any]] = []
     waiting: list[MutableMapping[str, Any]] = [{"type": "http.request", "body": payload, "more_body": False}]

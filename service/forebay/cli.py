@@ -8,6 +8,9 @@ from pathlib import Path
 
 from forebay.settings import SettingsError
 
+FAILURE = 1
+"""Exit code for a service that did not start."""
+
 WRONG_REQUEST = 2
 """Exit code for a layout or a command line that is wrong."""
 
@@ -51,9 +54,14 @@ def serve(chosen: argparse.Namespace) -> int:
 
 def demo(chosen: argparse.Namespace) -> int:
     """Show the whole job on an invented site."""
+    from forebay.demo.child import ServiceError
     from forebay.demo.run import run_demo
 
-    return run_demo(chosen.output, keep=chosen.keep)
+    try:
+        return run_demo(chosen.output, keep=chosen.keep)
+    except ServiceError as error:
+        print(f"forebay: {error}", file=sys.stderr)
+        return FAILURE
 
 
 def assess(chosen: argparse.Namespace) -> int:

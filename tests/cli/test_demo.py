@@ -6,12 +6,16 @@ import socket
 import subprocess
 import sys
 import time
+from http.server import BaseHTTPRequestHandler, HTTPServer
+from threading import Thread
 from urllib.error import URLError
 from urllib.request import urlopen
 
 import pytest
+from typing_extensions import override
 
-from forebay.demo.child import START, Service, ServiceDiedError, free_port
+from forebay.cli import FAILURE, main
+from forebay.demo.child import FAILED, START, Service, ServiceError, free_port, readiness
 
 DEMO = [sys.executable, "-m", "forebay", "demo"]
 
@@ -117,7 +121,39 @@ def test_free_port_is_the_wanted_one_if_it_can_be():
 def test_a_service_that_cannot_start_says_why(tmp_path, monkeypatch):
     monkeypatch.setenv("FOREBAY_QUEUE", "long")
     started = time.monotonic()
-    with pytest.raises(ServiceDiedError, match="FOREBAY_QUEUE"), Service(tmp_path / "service.log", port=0):
+    with pytest.raises(ServiceError, match="FOREBAY_QUEUE"), Service(tmp_path / "service.log", port=0):
         raise AssertionError
     # it is seen to have ended: nobody waits for a readiness that cannot come
     assert time.monotonic() - started < START
+
+
+def test_demo_says_why_its_service_did_not_start(tmp_path, monkeypatch, capfd):
+    def refuse(*_):
+        raise ServiceError("the service did not become ready")
+
+    monkeypatch.setattr("forebay.demo.run.Service", refuse)
+    assert main(["demo", "--output", str(tmp_path)]) == FAILURE
+    assert "did not become ready" in capfd.readouterr().err
+
+
+class Refusing(BaseHTTPRequestHandler):
+    """Service whose preparation has failed."""
+
+    def do_GET(self):
+        self.send_response(503)
+        self.end_headers()
+        self.wfile.write(b'{"detail": "Preparation failed; the log says why"}')
+
+    @override
+    def log_message(self, *_):
+        """Say nothing."""
+
+
+def test_readiness_says_that_preparation_failed():
+    with HTTPServer(("127.0.0.1", 0), Refusing) as server:
+        Thread(target=server.handle_request, daemon=True).start()
+        assert FAILED in readiness(f"http://127.0.0.1:{server.server_port}")
+
+
+def test_readiness_is_empty_while_nothing_listens():
+    assert readiness(f"http://127.0.0.1:{free_port(0)}") == ""

@@ -1,5 +1,6 @@
 """The service as a child process: a free port, a log, readiness, a clean end."""
 
+import json
 import socket
 import subprocess
 import sys
@@ -7,19 +8,26 @@ import time
 from pathlib import Path
 from types import TracebackType
 from typing import Self
-from urllib.error import URLError
+from urllib.error import HTTPError, URLError
 from urllib.request import urlopen
 
 LOOPBACK = "127.0.0.1"
-START = 180.0
-"""Longest wait for readiness [s]: on a fresh machine the kernels are compiled first."""
+START = 900.0
+"""Longest wait for readiness [s]: on a fresh machine the kernels are compiled first, which takes minutes."""
+
+ANSWER = 5.0
+"""Longest wait for one word about readiness [s]."""
+
+READY = "ready"
+FAILED = "failed"
+"""Word by which /readyz says that waiting is of no use."""
 
 STOP = 15.0
 """Longest wait for the end after a polite signal [s]."""
 
 
-class ServiceDiedError(RuntimeError):
-    """The child ended before it was ready."""
+class ServiceError(RuntimeError):
+    """The child ended, or said that it cannot become ready."""
 
 
 class Service:
@@ -46,20 +54,13 @@ class Service:
     ) -> None:
         self._stop()
 
-    def wait(self) -> None:
-        """Return when the child ends or the user interrupts."""
-        try:
-            self.process.wait()
-        except KeyboardInterrupt:
-            self._stop()
-
     def _await_readiness(self) -> None:
         deadline = time.monotonic() + START
-        while not is_ready(self.address):
-            if self.process.poll() is not None or time.monotonic() > deadline:
+        while (state := readiness(self.address)) != READY:
+            if FAILED in state or self.process.poll() is not None or time.monotonic() > deadline:
                 tail = self.log.read_text(encoding="utf-8", errors="replace")[-2000:]
                 msg = f"the service did not become ready; the end of {self.log}:\n{tail}"
-                raise ServiceDiedError(msg)
+                raise ServiceError(msg)
             time.sleep(0.1)
 
     def _stop(self) -> None:
@@ -85,10 +86,12 @@ def free_port(wanted: int) -> int:
     raise RuntimeError(msg)
 
 
-def is_ready(address: str) -> bool:
-    """Whether /readyz answers 200 by now."""
+def readiness(address: str) -> str:
+    """`ready`, or what /readyz says instead; empty while nothing listens."""
     try:
-        with urlopen(f"{address}/readyz", timeout=5) as response:
-            return bool(response.status == 200)
+        with urlopen(f"{address}/readyz", timeout=ANSWER):
+            return READY
+    except HTTPError as error:
+        return str(json.load(error).get("detail", ""))
     except (URLError, ConnectionError, TimeoutError):
-        return False
+        return ""

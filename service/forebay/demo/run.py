@@ -1,6 +1,7 @@
 """Start the service on loopback, assess the invented site over HTTP, draw it, say where everything is."""
 
 import json
+from contextlib import suppress
 from pathlib import Path
 from typing import Any
 from urllib.request import Request, urlopen
@@ -22,6 +23,7 @@ bridge; on the far bank a farm draws below a treatment works. Whose water does e
 def run_demo(output: Path, *, keep: bool) -> int:
     """Whole demonstration; the value is the exit code. The picture and the service's log go to `output`."""
     output.mkdir(parents=True, exist_ok=True)
+    print("Starting the service; the first start on a machine compiles for some minutes.", flush=True)
     with Service(output / "service.log", Settings.from_environment().port) as service:
         print(f"Service started on {service.address}\n\n{INTRODUCTION}\n", flush=True)
         request = request_example("assessLayout")
@@ -32,13 +34,17 @@ def run_demo(output: Path, *, keep: bool) -> int:
         picture.write_bytes(post(f"{service.address}/v1/chart/flow-net", body, accept="image/svg+xml"))
         print(f"\nPicture: {picture}\nAnswer:  {write_answer(output, answer)}")
         if keep:
-            print(
-                f"Service: {service.address}\nDocs:    {service.address}/docs\nCtrl-C stops it.", flush=True
-            )
-            service.wait()
+            stay(service)
         else:
             print("Service: stopped; `forebay demo --keep` leaves it up, with its docs at /docs")
     return 0
+
+
+def stay(service: Service) -> None:
+    """Say where the service is, and return when it ends or the user interrupts."""
+    with suppress(KeyboardInterrupt):
+        print(f"Service: {service.address}\nDocs:    {service.address}/docs\nCtrl-C stops it.", flush=True)
+        service.process.wait()
 
 
 def post(address: str, body: dict[str, Any], *, accept: str) -> bytes:
