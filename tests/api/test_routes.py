@@ -2,7 +2,7 @@
 
 import pytest
 
-from support.http import SAMPLE, a_layout, a_sample, assert_problem, pointers
+from support.http import SAMPLE, Json, a_layout, a_sample, assert_problem, pointers
 
 SINK = {"kind": "sink", "name": "a", "at": [10, 5], "discharge": 1.0}
 SOURCE = {"kind": "source", "name": "b", "at": [30, 5], "discharge": 1.0}
@@ -31,7 +31,7 @@ def test_every_shore_is_read(ready_client, shore, ambient):
     assert answer.json()["result"]["flagged"] == on_land
 
 
-WRONG_SITES = {
+WRONG_SITES: dict[str, tuple[Json, str]] = {
     "duplicate-name": ({"elements": [SINK, SOURCE | {"name": "a"}]}, "#/layout/elements/1"),
     "element-on-land": ({"shore": BANK, "elements": [SINK | {"at": [0, -5]}]}, "#/layout/elements/0/at"),
     "element-in-structure": (
@@ -115,7 +115,7 @@ def test_contour_has_one_form(client, forms):
     assert_problem(client.post("/v1/contour/integrate", json=contour(**forms)), 422, "invalid-request")
 
 
-GRADIENT = {"name": "s", "velocity_gradient": [[0, 10], [0, 0]]}
+GRADIENT: Json = {"name": "s", "velocity_gradient": [[0, 10], [0, 0]]}
 OWN = {"dynamic_viscosity": 0.001, "density": 1000, "second_viscosity": 0.002}
 
 
@@ -140,7 +140,7 @@ def test_stress_of_own_fluid_and_strain_rate(ready_client):
 
 def test_stress_pointers(client):
     ragged = GRADIENT | {"velocity_gradient": [[0, 1], [0, 1, 2]]}
-    cases = [
+    cases: list[tuple[Json, str, str]] = [
         ({"fluid": OWN, "states": [ragged]}, "tensor-shape", "#/states/0/velocity_gradient"),
         ({"fluid": {"temperature": 90}, "states": [GRADIENT]}, "water-out-of-range", "#/fluid/temperature"),
         ({"fluid": {"density": 1}, "states": [GRADIENT]}, "invalid-request", "#/fluid/dynamic_viscosity"),
