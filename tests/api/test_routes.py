@@ -6,9 +6,9 @@ from support.http import SAMPLE, Json, a_layout, a_sample, assert_problem, point
 
 SINK = {"kind": "sink", "name": "a", "at": [10, 5], "discharge": 1.0}
 SOURCE = {"kind": "source", "name": "b", "at": [30, 5], "discharge": 1.0}
-LINE = {"kind": "line-source", "name": "c", "from": [40, 5], "to": [45, 6], "discharge": 1.0}
+LINE: Json = {"kind": "line-source", "name": "c", "from": [40, 5], "to": [45, 6], "discharge": 1.0}
 PIER = {"kind": "pier", "name": "p", "at": [60, 8], "radius": 1.0}
-BANK = {"kind": "straight-bank", "point": [0, 0], "along": [2, 0]}
+BANK: Json = {"kind": "straight-bank", "point": [0, 0], "along": [2, 0]}
 BASIN = {"kind": "basin", "corner": [0, 0], "along": [1, 0], "length": 90, "width": 20}
 STILL = {"velocity": [0, 0]}
 
@@ -67,12 +67,12 @@ def contour(**forms):
     return {"layout": a_layout(elements=[SINK]), "contours": [{"name": "ring", **forms}]}
 
 
-ARC = {"arc": {"centre": [10, 5], "radius": 2, "from_deg": 0, "to_deg": 180}}
-BACK = {"line": {"from": [8, 5], "to": [12, 5]}}
+ARC: Json = {"arc": {"centre": [10, 5], "radius": 2, "from_deg": 0, "to_deg": 180}}
+BACK: Json = {"line": {"from": [8, 5], "to": [12, 5]}}
 
 
 def test_contours_of_every_form(ready_client):
-    forms = [
+    forms: list[Json] = [
         {"circle": {"centre": [10, 5], "radius": 3}},
         {"polyline": [[7, 2], [13, 2], [13, 8], [7, 8]], "closed": True},
         {"path": [{"arc": {"centre": [10, 5], "radius": 2, "from_deg": 0, "to_deg": 360}}]},
