@@ -41,8 +41,11 @@ def numerical(path, rate, term, breaks=()):
         return part(whole_velocity(term, z)[0] * rate(x))
 
     inner = [x for x in breaks if 0.0 < x < 1.0] or None
-    options = {"points": inner, "epsabs": 1e-13, "epsrel": 1e-13, "limit": 200}
-    return complex(*(quad(along, 0, 1, args=(part,), **options)[0] for part in (np.real, np.imag)))
+    parts = [
+        quad(along, 0, 1, args=(part,), points=inner, epsabs=1e-13, epsrel=1e-13, limit=200)[0]
+        for part in (np.real, np.imag)
+    ]
+    return complex(*parts)
 
 
 def circle_meets(a, b):
@@ -177,7 +180,8 @@ def test_walls_stay_impermeable(model, shore):
     flow = compile_layout(layout)
     for wall in flow.walls:
         along = np.linspace(-min(wall.before, 6.0), min(wall.after, 6.0), 42)[1:-1]
-        normal = (flow.velocity(wall.point + wall.direction * along) * wall.direction).imag
+        places = np.asarray(wall.point + wall.direction * along, dtype=np.complex128)
+        normal = (flow.velocity(places) * wall.direction).imag
         assert np.abs(normal).max() <= 1e-14  # every image within exp(-49) is there
 
 

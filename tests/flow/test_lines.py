@@ -1,12 +1,16 @@
 """Line elements: closed forms, high-precision integrals of point sources, walls, jumps and chords."""
 
+import unittest.mock
+from dataclasses import replace
+
 import mpmath
 import numpy as np
 import pytest
 from numpy.testing import assert_allclose
 from scipy.integrate import quad
 
-from forebay.flow.layout import Basin, Channel, Corner, DeadEnd, OpenWater, StraightBank
+from forebay.flow.core_images import core_images
+from forebay.flow.layout import Basin, Channel, Corner, DeadEnd, OpenWater, Shore, StraightBank
 from forebay.flow.lines import line_term
 from forebay.flow.shores import frame_of
 
@@ -15,7 +19,7 @@ Q = -1.7
 
 ALONG = complex(np.exp(0.3j))
 
-SHORES = {
+SHORES: dict[str, Shore] = {
     "open-water": OpenWater(),
     "straight-bank": StraightBank(0j, ALONG),
     "channel": Channel(0j, ALONG, 6.0),
@@ -31,9 +35,10 @@ LINE = (ALONG * (1.5 + 0.8j), ALONG * (2.9 + 1.7j))
 PLACES = ALONG * np.array([0.7 + 0.5j, 2.3 + 1.2j, 2.5 + 2.9j, 1.4 + 0.1j])
 
 
-def line_on(name, ends=LINE, offset=0.0):
+def line_on(name: str, ends: tuple[complex, complex] = LINE, offset: float = 0.0):
     frame = frame_of(SHORES[name], 2 + 1j, 3.0)
-    return line_term(*ends, Q, owner=1, frame=frame, offset=0.5 if name.startswith("corner") else offset)
+    start, end = ends
+    return line_term(start, end, Q, owner=1, frame=frame, offset=0.5 if name.startswith("corner") else offset)
 
 
 def balanced(name, ends=LINE):
@@ -66,7 +71,7 @@ def point_source(name, z, s):
             places = [p + row for row in rows for p in (s, conj(s), -s, -conj(s))]
             return rate / 2 * sum(coth(rate / 2 * (z - p)) for p in places)
         case _:
-            angle = mpmath.mpf(SHORES[name].interior_angle)
+            angle = mpmath.mpf(np.radians(float(name.removeprefix("corner-"))))
             n, half = mpmath.pi / angle, mpmath.expj(-angle / 2)
             log_z, log_s = (mpmath.log(p * half) + 1j * angle / 2 for p in (z, s))
             images = (1 / (1 - mpmath.exp(-n * (log_z - p))) for p in (log_s, conj(log_s)))
@@ -261,3 +266,11 @@ def test_flush_slot_reverses_the_sweep_where_the_closed_form_says():
     for place in (2.0 * np.tanh(reach), 2.0 / np.tanh(reach)):
         # beside a logarithmic end at 1e-4: the position's rounding is magnified 1e4 times
         assert abs(0.5 + line.velocity(np.array([place + 0j]))[0].real) <= 1e-11
+
+
+def test_a_map_without_mirrors_is_an_error():
+    frame = replace(frame_of(OpenWater(), 0j, 1.0), map=unittest.mock.Mock())
+    with pytest.raises(TypeError):
+        line_term(0j, 1 + 0j, 1.0, owner=1, frame=frame, offset=0.0)
+    with pytest.raises(TypeError):
+        core_images(0j, 1.0, frame)

@@ -26,6 +26,10 @@ THROUGH = 1e-9
 """Distance from a point element within which a contour runs through it, relative to the scale [-]."""
 
 
+_ENDS = 1e-7
+"""Share of a piece within which a meeting with a line is that of an end that lies on the line [-]."""
+
+
 class ContourStatus(StrEnum):
     """Whether a contour has values."""
 
@@ -192,35 +196,35 @@ def _exact(model: FlowModel, strand: Strand) -> ComplexArray:
 
 def _rotational(term: CoreTerm | GradientTerm, strand: Strand) -> ComplexArray:
     """Whole integral of a rotational part along each piece, straight or curved, shape (k,)."""
-    match term:
-        case GradientTerm():
-            straight = term.chords(strand.start, strand.end)
-            curved = term.arcs(strand.centre, strand.start, strand.end, strand.turn)
-            return np.where(strand.turn == 0.0, straight, curved)
-        case CoreTerm():
-            sums = term.whole_chords(strand.start, strand.end)
-            for k in np.flatnonzero(strand.turn != 0.0):
-                arc = complex(strand.centre[k]), complex(strand.start[k]), float(strand.turn[k])
-                sums[k] = term.whole_arc(*arc)
-            return sums
+    if isinstance(term, GradientTerm):
+        straight = term.chords(strand.start, strand.end)
+        curved = term.arcs(strand.centre, strand.start, strand.end, strand.turn)
+        return np.where(strand.turn == 0.0, straight, curved)
+    sums = term.whole_chords(strand.start, strand.end)
+    for k in np.flatnonzero(strand.turn != 0.0):
+        sums[k] = term.whole_arc(complex(strand.centre[k]), complex(strand.start[k]), float(strand.turn[k]))
+    return sums
 
 
 def _crossed(line: Line, strand: Strand) -> float:
-    """Net share of a line on whose start's side the path passes from its left to its right [-]."""
+    """Net share of a line on whose start's side the path passes from its left to its right [-].
+
+    A piece that begins or ends on the line counts half there, as a passage from or to neither side.
+    """
     segment = Segment(line.start, line.end)
-    meets = np.sort(strand.line_crossings(line.start, segment.run), axis=1)
+    meets = strand.line_crossings(line.start, segment.run)
     at_start, at_end = segment.sides(strand.start) == 0.0, segment.sides(strand.end) == 0.0
     with np.errstate(invalid="ignore"):
-        ends = (at_start[:, None] & (meets < 1e-7)) | (at_end[:, None] & (meets > 1.0 - 1e-7))
-    meets = np.sort(np.where(ends, np.nan, meets), axis=1)
-    count = strand.start.size
-    shares = np.concatenate(
-        [np.zeros((count, 1)), np.where(np.isnan(meets), 1.0, meets), np.ones((count, 1))], 1
-    )
+        ends = (at_start[:, None] & (meets < _ENDS)) | (at_end[:, None] & (meets > 1.0 - _ENDS))
+    meets = np.sort(np.where(ends | np.isnan(meets), 1.0, meets), axis=1)
+    shares = np.column_stack([np.zeros(at_start.size), meets, np.ones(at_start.size)])
     sides = segment.sides(strand.at(0.5 * (shares[:, :-1] + shares[:, 1:])))
-    places = (strand.at(shares[:, 1:-1]) - line.start) / segment.run
-    left = np.clip(1.0 - places.real, 0.0, 1.0)
-    return float(np.where(np.isnan(meets), 0.0, 0.5 * (sides[:, :-1] - sides[:, 1:]) * left).sum())
+    for k in (1, 2):  # parts of no length go on as the one before
+        sides[:, k] = np.where(shares[:, k + 1] > shares[:, k], sides[:, k], sides[:, k - 1])
+    before, after = np.where(at_start, 0.0, sides[:, 0]), np.where(at_end, 0.0, sides[:, 2])
+    steps = np.diff(np.column_stack([before, sides, after]), axis=1)
+    along = ((strand.at(shares) - line.start) / segment.run).real
+    return float((-0.5 * steps * np.clip(1.0 - along, 0.0, 1.0)).sum())
 
 
 def _enclosed(model: FlowModel, strand: Strand) -> tuple[Enclosed, ...]:

@@ -77,18 +77,17 @@ def integrate_numerically(velocity: Velocity, strand: Strand, breaks: FloatArray
     Piessens, de Doncker-Kapenga, Ueberhuber, Kahaner: QUADPACK, Springer 1983, section 2.2.
     """
     index, low, high = _intervals(breaks)
-    total, error, scale = 0j, 0.0, 0.0
-    for round_number in range(_ROUNDS + 1):
+    total, error, scale, rounds = 0j, 0.0, 0.0, 0
+    while index.size > 0:
         kronrod, gauss, size = _both(velocity, strand.taken(index), low, high)
         scale = scale or float(size.sum())
         gap = np.abs(kronrod - gauss)
-        last = round_number == _ROUNDS or index.size > _LARGEST
+        last = rounds >= _ROUNDS or index.size > _LARGEST
         done = (gap <= _TOLERANCE * scale) | last
         total += complex(kronrod[done].sum())
         error += float(gap[done].sum())
-        if bool(done.all()):
-            break
         index, low, high = _halved(index[~done], low[~done], high[~done])
+        rounds += 1
     return Quadrature(total.real, total.imag, error + float(np.finfo(np.float64).eps) * scale)
 
 

@@ -7,7 +7,7 @@ from typing import ClassVar
 
 import numpy as np
 
-from forebay.flow.arrays import ComplexArray, FloatArray
+from forebay.flow.arrays import ComplexArray
 from forebay.flow.errors import FlowError
 
 JOINED = 1e-9
@@ -38,18 +38,10 @@ class Straight:
         """Area between the piece and the origin, int (x dy - y dx)/2 [m2]."""
         return 0.5 * (self.start.conjugate() * self.end).imag
 
-    def at(self, share: FloatArray) -> ComplexArray:
-        """Place after a share of the piece, 0 to 1, any shape [m]."""
-        return np.asarray(self.start + share * (self.end - self.start), dtype=np.complex128)
-
-    def rate(self, share: FloatArray) -> ComplexArray:
-        """Derivative of `at` by the share [m]."""
-        return np.full(np.shape(share), self.end - self.start, dtype=np.complex128)
-
     def part(self, low: float, high: float) -> "Straight":
         """The piece between two shares."""
-        ends = self.at(np.array([low, high]))
-        return Straight(complex(ends[0]), complex(ends[1]))
+        run = self.end - self.start
+        return Straight(self.start + low * run, self.start + high * run)
 
 
 @dataclass(frozen=True, slots=True)
@@ -86,16 +78,6 @@ class Arc:
         """Area between the arc and the origin, int (x dy - y dx)/2 [m2]."""
         chord = (self.centre.conjugate() * (self.end - self.start)).imag
         return 0.5 * (chord + self.radius**2 * self.turn)
-
-    def at(self, share: FloatArray) -> ComplexArray:
-        """Place after a share of the arc, 0 to 1, any shape [m]."""
-        return np.asarray(
-            self.centre + self.radius * np.exp(1j * (self.begin + share * self.turn)), dtype=np.complex128
-        )
-
-    def rate(self, share: FloatArray) -> ComplexArray:
-        """Derivative of `at` by the share [m]."""
-        return np.asarray(1j * self.turn * (self.at(share) - self.centre), dtype=np.complex128)
 
     def part(self, low: float, high: float) -> "Arc":
         """The arc between two shares."""
