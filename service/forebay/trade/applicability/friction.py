@@ -2,7 +2,8 @@
 
 import math
 from collections.abc import Iterator
-from itertools import combinations
+
+import numpy as np
 
 from forebay.trade.applicability.geometry import distance_to, ends_of
 from forebay.trade.applicability.site import Site
@@ -61,10 +62,11 @@ TURBULENCE_LEFT_OUT = WarningKind(
 def friction_length(site: Site) -> Iterator[ApplicabilityWarning]:
     """Layouts that are long against the friction length."""
     friction = site.data.bed_friction
-    places = [end for thing in (*site.layout.elements, *site.layout.structures) for end in ends_of(thing)]
-    extent = max((abs(a - b) for a, b in combinations(places, 2)), default=0.0)
-    if not friction:
+    things = (*site.layout.elements, *site.layout.structures)
+    if not friction or not things:
         return
+    places = np.array([end for thing in things for end in ends_of(thing)])
+    extent = float(np.max(np.abs(places[:, None] - places)))
     limit = FRICTION_SHARE * site.layout.depth / friction
     if extent > limit:
         yield FRICTION_LENGTH.raised(

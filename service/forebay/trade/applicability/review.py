@@ -1,6 +1,8 @@
 """The registry: every kind of warning with the rule that raises it, and their evaluation."""
 
 from collections.abc import Callable, Iterator
+from dataclasses import replace
+from itertools import islice
 
 from forebay.trade.applicability import banks, friction, ideal, missing, near_field, outfalls, surface, wakes
 from forebay.trade.applicability.site import Site
@@ -47,7 +49,23 @@ CATALOGUE: tuple[WarningKind, ...] = tuple(kind for kind, _ in RULES)
 _ORDER = tuple(reversed(Severity))
 
 
+MOST_OF_A_KIND = 20
+"""Occurrences of one kind in one answer: after that the last says that there are more."""
+
+
 def evaluate(site: Site) -> tuple[ApplicabilityWarning, ...]:
-    """Every warning that a site raises, the most serious first, otherwise in the order of the catalogue."""
-    raised = [warning for _, rule in RULES for warning in rule(site)]
+    """Warnings that a site raises, the most serious first, otherwise in the order of the catalogue.
+
+    At most `MOST_OF_A_KIND` of each kind.
+    """
+    raised = [warning for _, rule in RULES for warning in _first_of(rule(site))]
     return tuple(sorted(raised, key=lambda warning: _ORDER.index(warning.severity)))
+
+
+def _first_of(warnings: Iterator[ApplicabilityWarning]) -> list[ApplicabilityWarning]:
+    first = list(islice(warnings, MOST_OF_A_KIND))
+    if next(warnings, None) is not None:
+        first[-1] = replace(
+            first[-1], message=f"{first[-1].message} Further places of this kind are left out."
+        )
+    return first

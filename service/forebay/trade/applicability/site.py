@@ -3,8 +3,11 @@
 import math
 from collections.abc import Iterator, Mapping
 from dataclasses import dataclass, field
+from functools import cached_property
 
-from forebay.flow.arrays import ComplexArray
+import numpy as np
+
+from forebay.flow.arrays import ComplexArray, FloatArray
 from forebay.flow.errors import Path
 from forebay.flow.layout import (
     Channel,
@@ -20,7 +23,7 @@ from forebay.flow.layout import (
     Vortex,
     outflow,
 )
-from forebay.trade.applicability.geometry import distance_to
+from forebay.trade.applicability.geometry import distance_to, ends_of
 
 
 @dataclass(frozen=True, slots=True)
@@ -57,7 +60,7 @@ class Readings:
 Thing = Element | Pier
 
 
-@dataclass(frozen=True, slots=True)
+@dataclass(frozen=True)
 class Site:
     """What the rules look at."""
 
@@ -95,8 +98,29 @@ class Site:
 
     def nearest_thing(self, z: complex, *, besides: Thing) -> tuple[float, str] | None:
         """Distance [m] and name of the nearest other element or pier."""
-        others = [t for t in (*self.layout.elements, *self.layout.structures) if t is not besides]
-        return min(((distance_to(other, z), other.name) for other in others), default=None)
+        starts, spans, radii = self._outlines
+        share = ((z - starts) * spans.conj()).real / np.where(spans == 0.0, 1.0, np.abs(spans) ** 2)
+        distances = np.abs(z - starts - np.clip(share, 0.0, 1.0) * spans) - radii
+        distances[self._order[id(besides)]] = np.inf
+        nearest = int(np.argmin(distances)) if distances.size > 1 else -1
+        return (float(distances[nearest]), self._things[nearest].name) if nearest >= 0 else None
+
+    @cached_property
+    def _things(self) -> tuple[Thing, ...]:
+        return (*self.layout.elements, *self.layout.structures)
+
+    @cached_property
+    def _order(self) -> dict[int, int]:
+        return {id(thing): index for index, thing in enumerate(self._things)}
+
+    @cached_property
+    def _outlines(self) -> tuple[ComplexArray, ComplexArray, FloatArray]:
+        """Starts, spans and radii of everything: a point has no span, only a pier a radius [m]."""
+        ends = [ends_of(thing) for thing in self._things]
+        starts = np.array([places[0] for places in ends], dtype=np.complex128)
+        spans = np.array([places[-1] for places in ends], dtype=np.complex128) - starts
+        radii = [thing.radius if isinstance(thing, Pier) else 0.0 for thing in self._things]
+        return starts, spans, np.array(radii)
 
     @property
     def net_outflow(self) -> float:
