@@ -15,7 +15,7 @@ from forebay.flow.arrays import BoolArray, ComplexArray, FloatArray, IntArray
 from forebay.flow.model import FlowModel
 from forebay.flow.stagnation.result import WATER, StagnationKind, StagnationPoint
 from forebay.flow.surroundings import Surroundings
-from forebay.flow.withdrawal.faces import FACE_OFFSET, turning_places
+from forebay.flow.withdrawal.faces import FACE_OFFSET, tips_on_wall, turning_places
 
 Stream = Callable[[FloatArray], FloatArray]
 
@@ -38,7 +38,6 @@ class Branches:
     centres, starts : that place and a point of the branch near it [m]
     outgoing : whether water leaves along the branch
     nodes : places, shape (k,) [m];  psi_errors : shape (k,), of the stream function there [m2/s]
-    owners : line element a node lies on, "" for a stagnation point
     """
 
     node: IntArray
@@ -47,7 +46,6 @@ class Branches:
     outgoing: BoolArray
     nodes: ComplexArray
     psi_errors: FloatArray
-    owners: tuple[str, ...]
 
 
 def branches_of(
@@ -75,13 +73,11 @@ class _Collection:
         self.model = model
         self.nodes: list[complex] = []
         self.errors: list[float] = []
-        self.owners: list[str] = []
         self.rows: list[tuple[int, complex, bool]] = []
 
-    def add_node(self, at: complex, error: float, owner: str) -> None:
+    def add_node(self, at: complex, error: float) -> None:
         self.nodes.append(at)
         self.errors.append(error)
-        self.owners.append(owner)
 
     def add_branches(self, starts: ComplexArray, outgoing: BoolArray) -> None:
         node = len(self.nodes) - 1
@@ -97,7 +93,6 @@ class _Collection:
             outgoing=np.array([row[2] for row in self.rows], dtype=np.bool_),
             nodes=nodes,
             psi_errors=np.array(self.errors),
-            owners=tuple(self.owners),
         )
 
 
@@ -120,7 +115,7 @@ def _add_point(found: _Collection, point: StagnationPoint, surroundings: Surroun
         inside &= model.distance_to_wall(starts) > 0.1 * radius
     starts, level = starts[inside], level[inside]
     outgoing = (model.velocity(starts) * np.exp(1j * level)).real > 0.0
-    found.add_node(point.at, 0.5 * point.strain_rate * point.inclusion_radius**2, "")
+    found.add_node(point.at, 0.5 * point.strain_rate * point.inclusion_radius**2)
     found.add_branches(starts, outgoing)
 
 
@@ -150,35 +145,34 @@ def _level_angles(
 
 
 def _add_tips(found: _Collection, k: int, surroundings: Surroundings, saddles: list[complex]) -> None:
-    """Streamlines through both ends of line k."""
+    """Streamlines through both ends of line k, unless the line stands on a wall there."""
     model, faces = found.model, surroundings.lines
-    for tip, inward in (
-        (faces.start[k], faces.end[k] - faces.start[k]),
-        (faces.end[k], faces.start[k] - faces.end[k]),
-    ):
-        length = abs(inward)
-        others = np.abs(surroundings.sites.at - tip)
-        radius = 1e-4 * float(min([length, *others[others > 1e-12 * length]]))
-        if any(abs(saddle - tip) < 10.0 * radius for saddle in saddles):
-            continue
-        heading = inward / length
-        low, high = _tip_range(model, tip, heading, radius, in_water=bool(faces.in_water[k]))
-        base = tip - _TIP_START * radius * heading
+    on_wall = tips_on_wall(model, faces, k) if faces.in_water[k] else (False, False)
+    ends = ((faces.start[k], faces.end[k]), (faces.end[k], faces.start[k]))
+    for (tip, other), standing in zip(ends, on_wall, strict=True):
+        gaps = np.abs(surroundings.sites.at - tip)
+        radius = 1e-4 * float(min([abs(other - tip), *gaps[gaps > 1e-12 * abs(other - tip)]]))
+        if not standing and all(abs(saddle - tip) >= 10.0 * radius for saddle in saddles):
+            _add_tip(found, (complex(tip), complex(other - tip)), (radius, bool(faces.in_water[k])))
 
-        def stream(
-            angles: FloatArray, base: complex = base, tip: complex = tip, radius: float = radius
-        ) -> FloatArray:
-            ends = tip + radius * np.exp(1j * angles)
-            return model.chord(np.full(ends.shape, base), ends).imag
 
-        angles = np.angle(heading) + np.linspace(low, high, _SAMPLES)
-        level = _level_angles(model, (tip, radius), angles, stream)
-        starts = tip + radius * np.exp(1j * level)
-        outgoing = (model.velocity(starts) * np.exp(1j * level)).real > 0.0
-        found.add_node(
-            tip, _TIP_START * radius * float(np.abs(model.velocity(starts)).max(initial=0.0)), faces.owners[k]
-        )
-        found.add_branches(starts, outgoing)
+def _add_tip(found: _Collection, end: tuple[complex, complex], circle: tuple[float, bool]) -> None:
+    """Streamlines through one end: its place and the span of the line; radius, and if in the water."""
+    model, (tip, span), (radius, in_water) = found.model, end, circle
+    heading = span / abs(span)
+    low, high = _tip_range(model, tip, heading, radius, in_water=in_water)
+    base = tip - _TIP_START * radius * heading
+
+    def stream(angles: FloatArray) -> FloatArray:
+        ends = tip + radius * np.exp(1j * angles)
+        return model.chord(np.full(ends.shape, base), ends).imag
+
+    angles = np.angle(heading) + np.linspace(low, high, _SAMPLES)
+    level = _level_angles(model, (tip, radius), angles, stream)
+    starts = tip + radius * np.exp(1j * level)
+    velocity = model.velocity(starts)
+    found.add_node(tip, _TIP_START * radius * float(np.abs(velocity).max(initial=0.0)))
+    found.add_branches(starts, (velocity * np.exp(1j * level)).real > 0.0)
 
 
 def _tip_range(
@@ -202,10 +196,7 @@ def _add_touching(found: _Collection, k: int, surroundings: Surroundings) -> Non
             at = complex(faces.start[k] + place * span)
             offset = 1j * FACE_OFFSET * span
             starts = np.array([at + side * offset, at - side * offset])
-            found.add_node(
-                at,
-                FACE_OFFSET * abs(span) * float(np.abs(found.model.velocity(starts)).max()),
-                faces.owners[k],
-            )
+            speed = float(np.abs(found.model.velocity(starts)).max())
+            found.add_node(at, FACE_OFFSET * abs(span) * speed)
             outgoing = faces.flux[k] > 0.0
             found.add_branches(starts if outgoing else starts[:1], np.full(2 if outgoing else 1, outgoing))

@@ -9,6 +9,8 @@ from forebay.flow.surroundings import LineFaces
 FACE_OFFSET = 2e-9
 """Distance from the line at which a side is sampled, over its length: the velocity jumps on the line [-]."""
 _SAMPLES = 401
+_ON_WALL = 1e-9
+"""Distance from a wall, over the scale of the layout, that is on it [-]."""
 
 
 def on_side(faces: LineFaces, k: int, side: float, parts: FloatArray) -> ComplexArray:
@@ -48,3 +50,9 @@ def arriving_parts(model: FlowModel, faces: LineFaces, k: int, side: float) -> l
     edges = np.concatenate([[0.0], turning_places(model, faces, k, side), [1.0]])
     speeds = arrival_speed(model, faces, k, side, 0.5 * (edges[:-1] + edges[1:]))
     return [(float(a), float(b)) for a, b, v in zip(edges[:-1], edges[1:], speeds, strict=True) if v > 0.0]
+
+
+def tips_on_wall(model: FlowModel, faces: LineFaces, k: int) -> tuple[bool, bool]:
+    """Whether the start and the end of line k stand on a wall."""
+    distance = model.distance_to_wall(np.array([faces.start[k], faces.end[k]]))
+    return bool(distance[0] <= _ON_WALL * model.scale), bool(distance[1] <= _ON_WALL * model.scale)

@@ -15,7 +15,7 @@ from forebay.flow.features import Singularity
 from forebay.flow.layout import outflow
 from forebay.flow.model import FlowModel
 from forebay.flow.surroundings import LineFaces, Surroundings
-from forebay.flow.withdrawal.faces import FACE_OFFSET, arriving_parts, on_side
+from forebay.flow.withdrawal.faces import FACE_OFFSET, arriving_parts, on_side, tips_on_wall
 
 _ARCS = 12
 """Chords of a path round a point mouth: at most 30 degrees each."""
@@ -176,13 +176,12 @@ class LineMouth:
 
 
 def _line_mouth(model: FlowModel, faces: LineFaces, k: int) -> LineMouth:
-    pieces, closes = _contour(model, faces, k)
+    pieces, whole = _contour(model, faces, k)
     starts = np.array([piece[0] for piece in pieces])
     ends = np.array([piece[1] for piece in pieces])
     flux = -model.chord(starts, ends).imag
     reached = np.concatenate([[0.0], np.cumsum(flux)])
-    jumps = [float(reached[p + 1]) for p in range(len(pieces) - 1) if abs(ends[p] - starts[p + 1]) > 0.0]
-    whole = bool(faces.flux[k] < 0.0) and closes
+    jumps = [float(reached[p + 1]) for p in range(len(pieces) - 1) if ends[p] != starts[p + 1]]
     return LineMouth(
         model=model,
         faces=faces,
@@ -193,7 +192,7 @@ def _line_mouth(model: FlowModel, faces: LineFaces, k: int) -> LineMouth:
         sides=np.array([piece[2] for piece in pieces]),
         parts=np.array([piece[3] for piece in pieces]),
         total=float(reached[-1]),
-        breaks=() if whole and faces.in_water[k] else (0.0, *jumps, float(reached[-1])),
+        breaks=() if whole and ends[-1] == starts[0] else (0.0, *jumps, float(reached[-1])),
         passed_through=not whole,
     )
 
@@ -203,23 +202,39 @@ Piece = tuple[complex, complex, float, tuple[float, float]]
 
 def _contour(model: FlowModel, faces: LineFaces, k: int) -> tuple[list[Piece], bool]:
     """Pieces of the mouth in anticlockwise order, and whether it takes in the whole line."""
-    sides = [-1.0, 1.0]
     if not faces.in_water[k]:
         middle = faces.start[k] + (0.5 + 1e-3j) * (faces.end[k] - faces.start[k])
-        sides = [1.0] if bool(model.wet(np.array([middle]))[0]) else [-1.0]
-    parts = {side: arriving_parts(model, faces, k, side) for side in sides}
-    whole = all(parts[side] == [(0.0, 1.0)] for side in sides)
+        side = 1.0 if bool(model.wet(np.array([middle]))[0]) else -1.0
+        parts = arriving_parts(model, faces, k, side)
+        whole = parts == [(0.0, 1.0)]
+        return _along(faces, k, side, parts, rounded=(whole, whole)), whole
+    on_wall = tips_on_wall(model, faces, k)
+    order = (1.0, -1.0) if on_wall[1] and not on_wall[0] else (-1.0, 1.0)
+    both = {side: arriving_parts(model, faces, k, side) for side in order}
+    whole = all(parts == [(0.0, 1.0)] for parts in both.values())
     pieces: list[Piece] = []
-    for side in sides:
-        strips = parts[side] if side < 0.0 else [(b, a) for a, b in reversed(parts[side])]
-        for a, b in strips:
-            if whole:
-                pieces += _round_end(faces, k, side, a, at_begin=True, wall=not faces.in_water[k])
-            begin, end = on_side(faces, k, side, np.array([a, b]))
-            pieces.append((complex(begin), complex(end), side, (a, b)))
-            if whole and not faces.in_water[k]:
-                pieces += _round_end(faces, k, side, b, at_begin=False, wall=True)
+    for side in order:
+        begins_at_end = side > 0.0
+        rounded = whole and not on_wall[1 if begins_at_end else 0]
+        pieces += _along(faces, k, side, both[side], rounded=(rounded, False))
     return pieces, whole
+
+
+def _along(
+    faces: LineFaces, k: int, side: float, parts: list[tuple[float, float]], *, rounded: tuple[bool, bool]
+) -> list[Piece]:
+    """Pieces along one side of a line, anticlockwise about it, with the way round its ends if `rounded`."""
+    strips = parts if side < 0.0 else [(b, a) for a, b in reversed(parts)]
+    pieces: list[Piece] = []
+    wall = not faces.in_water[k]
+    for a, b in strips:
+        if rounded[0]:
+            pieces += _round_end(faces, k, side, a, at_begin=True, wall=wall)
+        begin, end = on_side(faces, k, side, np.array([a, b]))
+        pieces.append((complex(begin), complex(end), side, (a, b)))
+        if rounded[1]:
+            pieces += _round_end(faces, k, side, b, at_begin=False, wall=wall)
+    return pieces
 
 
 def _round_end(
