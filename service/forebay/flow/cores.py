@@ -46,6 +46,10 @@ class CoreTerm:
     def _pairs(self) -> list[tuple[complex, float]]:
         return list(zip(self.centres, self.circulations, strict=True))
 
+    def velocity(self, z: ComplexArray) -> ComplexArray:
+        """Difference of W [m/s], any shape; not finite at the centre."""
+        return self.jet(z).velocity
+
     def jet(self, z: ComplexArray) -> Jet:
         """Difference of W [m/s] and of its derivatives [1/s] at z, any shape; not finite at the centre.
 

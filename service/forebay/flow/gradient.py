@@ -30,7 +30,8 @@ class GradientTerm:
         (u_x, u_y), (v_x, _) = ambient.gradient
         return cls(complex(u_x, -0.5 * (u_y + v_x)), -0.5j * ambient.vorticity, ambient.at, owner)
 
-    def _velocity(self, z: ComplexArray) -> ComplexArray:
+    def velocity(self, z: ComplexArray) -> ComplexArray:
+        """W = slope (z - at) + skew conj(z - at) [m/s], any shape."""
         away = z - self.at
         return np.asarray(self.slope * away + self.skew * np.conj(away), dtype=np.complex128)
 
@@ -38,7 +39,7 @@ class GradientTerm:
         """Conjugate velocity [m/s] and its constant derivatives [1/s] at z, any shape [m]."""
         shape = np.shape(z)
         return Jet(
-            self._velocity(z),
+            self.velocity(z),
             np.full(shape, self.slope, dtype=np.complex128),
             np.full(shape, self.skew, dtype=np.complex128),
         )
@@ -55,7 +56,7 @@ class GradientTerm:
 
     def chords(self, a: ComplexArray, b: ComplexArray) -> ComplexArray:
         """Integral of W dz along straight chords a -> b [m2/s]: the midpoint rule is exact for linear W."""
-        return np.asarray(self._velocity(0.5 * (a + b)) * (b - a), dtype=np.complex128)
+        return np.asarray(self.velocity(0.5 * (a + b)) * (b - a), dtype=np.complex128)
 
     def arcs(
         self, centre: ComplexArray, start: ComplexArray, end: ComplexArray, turn: FloatArray

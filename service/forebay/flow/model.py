@@ -77,7 +77,7 @@ class FlowModel:
         flat = at.ravel()
         velocity = self.rational.velocity(self.frame.map.forward(flat)) * self.frame.map.slope(flat)
         for term in self.terms:
-            velocity = velocity + term.jet(flat).velocity
+            velocity = velocity + term.velocity(flat)
         return self._still_at_vertex(z, velocity.reshape(at.shape))
 
     def jet(self, z: ComplexArray) -> Jet:

@@ -34,6 +34,10 @@ class Term(Protocol):
         """Index into the model's owners."""
         ...
 
+    def velocity(self, z: ComplexArray) -> ComplexArray:
+        """Conjugate velocity W = u - iv [m/s] at z, any shape [m]."""
+        ...
+
     def jet(self, z: ComplexArray) -> Jet:
         """Conjugate velocity [m/s] and derivatives [1/s] at z, any shape [m]."""
         ...
