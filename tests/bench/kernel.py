@@ -3,7 +3,7 @@
 import ctypes
 import subprocess
 import tempfile
-from collections.abc import Callable
+from collections.abc import Callable, Iterator
 from pathlib import Path
 from typing import Any
 
@@ -42,18 +42,16 @@ def _in_c(
     return call, answer
 
 
-def measure() -> list[Measure]:
+def measure() -> Iterator[Measure]:
     """Time of our kernels over the time of C for three sizes, free water and channel."""
-    rows = []
     generator = np.random.default_rng(1)
     with tempfile.TemporaryDirectory() as folder:
         library = _library(folder)
         for n, m in SIZES:
             z, s, g = (generator.normal(size=k) + 1j * generator.normal(size=k) for k in (n, m, m))
-            rows.append(_compare("open", library.free_sums, rational.velocity_sums, z, s, g))
+            yield _compare("open", library.free_sums, rational.velocity_sums, z, s, g)
             if n * m <= 10_000_000:
-                rows.append(_compare("channel", library.channel_sums, _channel, z, s, g))
-    return rows
+                yield _compare("channel", library.channel_sums, _channel, z, s, g)
 
 
 def _channel(z: np.ndarray, s: np.ndarray, g: np.ndarray) -> object:

@@ -1,5 +1,7 @@
 """Small validated requests against an empty one of the same application, requests per second."""
 
+from collections.abc import Iterator
+
 import orjson
 from starlette.requests import Request
 from starlette.responses import Response
@@ -37,36 +39,38 @@ BODY = {
 }
 """Ten elements of four kinds and a hundred points, some two kilobytes."""
 
+STATE = {"name": "shear", "velocity_gradient": [[0.0, 10.0], [0.0, 0.0]]}
+
+REQUESTS = {
+    "/v1/stress/tensor": {"fluid": {"temperature": 12.0}, "states": [STATE]},
+    "/v1/field/sample": BODY,
+}
+"""The smallest request with an answer of its own, and a usual one with its layout checked and reviewed."""
+
 
 async def _empty(request: Request) -> Response:
     await request.body()
     return Response(b"", media_type="application/json")
 
 
-def measure() -> list[Measure]:
+def measure() -> Iterator[Measure]:
     """Rate of a field sample of 2 kB and of an empty answer to the same body, without sockets."""
     app = create_app(Settings())
     app.add_route("/bench/empty", _empty, methods=["POST"])
     client = InProcess(app)
-    body = orjson.dumps(BODY)
     try:
-        status, answer = client.post("/v1/field/sample", body)
-        assert status == 200, answer
-        small, empty = interleaved(
-            lambda: client.many("/v1/field/sample", body, COUNT),
-            lambda: client.many("/bench/empty", body, COUNT),
-            repeats=7,
-        )
+        for path, body in REQUESTS.items():
+            yield _ratio(client, path, orjson.dumps(body))
     finally:
         client.close()
-    remark = f"{COUNT / small:.0f} against {COUNT / empty:.0f} requests/s, no sockets"
-    return [
-        Measure(
-            "small field sample over an empty POST, requests/s",
-            empty / small,
-            "-",
-            0.6,
-            more_is_better=True,
-            remark=remark,
-        )
-    ]
+
+
+def _ratio(client: InProcess, path: str, body: bytes) -> Measure:
+    status, answer = client.post(path, body)
+    assert status == 200, answer
+    small, empty = interleaved(
+        lambda: client.many(path, body, COUNT), lambda: client.many("/bench/empty", body, COUNT), repeats=7
+    )
+    remark = f"{COUNT / small:.0f} against {COUNT / empty:.0f} requests/s, no sockets, {len(body)} bytes"
+    what = f"{path} over an empty POST, requests/s"
+    return Measure(what, empty / small, "-", 0.6, more_is_better=True, remark=remark)
