@@ -4,7 +4,7 @@ import dataclasses
 import hashlib
 from collections.abc import Mapping
 from enum import StrEnum
-from functools import cache
+from functools import cache, lru_cache
 from typing import Any
 
 import numpy as np
@@ -100,8 +100,15 @@ class Presenter:
 
 def digest(site: Site) -> str:
     """Digest of a site in SI: the same for every way of writing the same site in one unit system."""
-    text = orjson.dumps(_canonical(site), option=orjson.OPT_SORT_KEYS)
-    return "sha256:" + hashlib.sha256(text).hexdigest()
+    layout, data = site
+    text = orjson.dumps(_canonical(data), option=orjson.OPT_SORT_KEYS)
+    return "sha256:" + hashlib.sha256(_layout_text(layout) + text).hexdigest()
+
+
+@lru_cache(maxsize=64)
+def _layout_text(layout: Layout) -> bytes:
+    """The layout as it goes into the digest; clients ask several questions of one layout."""
+    return orjson.dumps(_canonical(layout), option=orjson.OPT_SORT_KEYS)
 
 
 def _canonical(value: Any) -> Any:  # noqa: ANN401

@@ -10,11 +10,14 @@ from forebay.flow.layout import Layout
 from forebay.trade.applicability.site import Readings
 from forebay.workflows.review import review_layout
 
+COMPUTED = Readings()
+"""An answer was computed, so that the layout is known to be right; nothing else is said of it."""
+
 
 def reviewed(
-    request: LayoutRequest, layout: Layout, result: dict[str, Any], readings: Readings | None = None
+    request: LayoutRequest, layout: Layout, result: dict[str, Any], readings: Readings | None = COMPUTED
 ) -> Outcome:
-    """Outcome of a request about a layout."""
+    """Outcome of a request about a layout; `readings` None if nothing has been computed of it."""
     data = request.site_data()
     return Outcome(result, layout, data, review_layout(layout, readings, data=data))
 

@@ -18,7 +18,7 @@ def review_layout(
     layout : Layout
         The site; nothing is computed of its flow.
     readings : Readings, optional
-        Points, largest speed [m/s] and kind of the answer at hand.
+        The answer at hand. Without one the layout is checked first, since nothing has yet.
     data : SiteData, optional
         Bed friction, port areas, wind and so on; what is missing is itself a note.
 
@@ -32,6 +32,7 @@ def review_layout(
     LayoutError
         If the layout describes something that cannot be, as `check_layout`.
     """
-    middle, scale = scale_of(layout)
-    check_layout(layout, frame_of(layout.shore, middle, scale), scale)
+    if readings is None:
+        middle, scale = scale_of(layout)
+        check_layout(layout, frame_of(layout.shore, middle, scale), scale)
     return evaluate(Site(layout, data or SiteData(), readings or Readings()))

@@ -15,7 +15,7 @@ from forebay.trade.applicability.warning import Severity
 
 
 def compute(request: ReviewRequest, _media_type: str) -> Outcome:
-    outcome = reviewed(request, request.flow_layout(), {})
+    outcome = reviewed(request, request.flow_layout(), {}, None)
     return replace(outcome, result=counted([warning.severity for warning in outcome.warnings]))
 
 
