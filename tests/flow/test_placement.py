@@ -69,22 +69,22 @@ WRONG = {
     ),
     "line without length": (
         with_elements(BANK, LineSink("a", 1 + 1j, 1 + 1j, 1.0)),
-        errors.ElementOnLandError,
+        errors.ElementMisplacedError,
         ("elements", 0, "to"),
     ),
     "vortex on a bank": (
         with_elements(BANK, Vortex("a", 1 + 0j, 1.0)),
-        errors.ElementOnLandError,
+        errors.ElementMisplacedError,
         ("elements", 0, "at"),
     ),
     "doublet on a bank": (
         with_elements(BANK, Doublet("a", 1 + 0j, 1 + 0j)),
-        errors.ElementOnLandError,
+        errors.ElementMisplacedError,
         ("elements", 0, "at"),
     ),
     "sink in a corner": (
         with_elements(RIGHT_CORNER, Sink("a", 0j, 1.0)),
-        errors.ElementOnLandError,
+        errors.ElementMisplacedError,
         ("elements", 0, "at"),
     ),
     "core that reaches land": (
@@ -169,6 +169,9 @@ def test_wrong_layouts_are_refused(layout, error, path):
 
 
 ALLOWED = {
+    "current along a bank to nine digits": replace(
+        BANK, shore=StraightBank(0j, complex(np.exp(0.3j))), ambient=Ambient(0.286600947 + 0.0886560620j)
+    ),
     "nothing at all": BANK,
     "sink on the bank": with_elements(BANK, Sink("a", 1 + 0j, 1.0)),
     "sink on the far bank": with_elements(CHANNEL, Sink("a", 1 + 20j, 1.0)),

@@ -99,6 +99,7 @@ class PoleBuilder:
             centres=np.array([at for at, _, _ in self._moments], dtype=np.complex128),
             moments=padded,
             moment_owners=np.array([owner for _, _, owner in self._moments], dtype=np.int64),
+            length=self._frame.length,
         )
 
 
@@ -145,11 +146,12 @@ def add_piers(builder: PoleBuilder, piers: tuple[Pier, ...], first_owner: int) -
 
 
 def ambient_constant(layout: Layout, frame: Frame) -> complex:
-    """W_tau of the ambient velocity [m2/s]; placement has checked that it is tangent to the walls."""
+    """W_tau of the ambient velocity [m2/s], its rounding across the walls left out."""
     if layout.ambient.velocity == 0:
         return 0j
     rate = complex(frame.map.slope(np.asarray(frame.map.inverse(np.asarray(1.0 + 0j)))))
-    return layout.ambient.velocity.conjugate() / rate
+    constant = layout.ambient.velocity.conjugate() / rate
+    return complex(constant.real, 0.0) if frame.mirrored else constant
 
 
 def offset_of(layout: Layout, frame: Frame) -> float:

@@ -47,6 +47,13 @@ class ElementOnLandError(LayoutError):
     title = "An element or structure lies on land"
 
 
+class ElementMisplacedError(LayoutError):
+    """An element stands where its kind cannot: a vortex on a bank, anything in the corner of two banks."""
+
+    code = "element-misplaced"
+    title = "An element stands where it cannot"
+
+
 class ElementInStructureError(LayoutError):
     """An element lies inside or on a pier."""
 

@@ -98,11 +98,11 @@ class Contour:
 
     def __post_init__(self) -> None:
         if not self.length > 0.0:
-            raise BrokenPathError(f"contour {self.name!r} has no length")
+            raise BrokenPathError("the contour has no length")
         for index, (one, other) in enumerate(pairwise(self.pieces)):
             gap = abs(other.start - one.end)
             if gap > self._reach:
-                detail = f"a piece of contour {self.name!r} begins {gap:g} m from the end of the one before"
+                detail = f"the piece begins {gap:.3g} m from the end of the one before"
                 raise BrokenPathError(detail, (index + 1,))
 
     @classmethod

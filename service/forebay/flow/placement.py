@@ -10,6 +10,7 @@ from forebay.flow.errors import (
     DivergentAmbientError,
     DuplicateNameError,
     ElementInStructureError,
+    ElementMisplacedError,
     ElementOnLandError,
     OverlappingStructuresError,
     Path,
@@ -41,7 +42,9 @@ from forebay.flow.shores import Frame, Wall
 TOUCHING = 1e-9
 """Distances below this part of the layout's scale count as contact [-]."""
 _ROUNDING = 1e-9
-"""Ambient components through a wall below this part of the current are rounding [-]."""
+"""Net discharge, trace and gradient through a wall below this part of the whole are rounding [-]."""
+_GRAZING = 1e-6
+"""Ambient velocity through a wall below this part of it is rounding of the client's, and left out [-]."""
 
 
 def places(element: Element) -> tuple[tuple[str, complex], ...]:
@@ -103,8 +106,9 @@ def check_layout(layout: Layout, frame: Frame, scale: float) -> None:
 
     Raises
     ------
-    DuplicateNameError, ElementOnLandError, ElementInStructureError, OverlappingStructuresError,
-    CoincidentElementsError, CurrentThroughWallError, DivergentAmbientError, UnbalancedDischargeError
+    LayoutError : DuplicateNameError, ElementOnLandError, ElementMisplacedError, ElementInStructureError,
+        OverlappingStructuresError, CoincidentElementsError, CurrentThroughWallError,
+        DivergentAmbientError or UnbalancedDischargeError
     """
     _check_names(layout)
     _check_ambient(layout.ambient, frame, scale)
@@ -138,7 +142,7 @@ def _check_ambient(ambient: Ambient, frame: Frame, scale: float) -> None:
     speed = abs(ambient.velocity) + size * scale
     for wall in frame.walls:
         through = _through(ambient, wall)
-        if abs(through[0]) > _ROUNDING * speed:
+        if abs(through[0]) > _GRAZING * speed:
             field = "velocity" if abs(ambient.velocity) > 0.0 else "gradient"
             raise CurrentThroughWallError(
                 f"{through[0]:.4g} m/s of the ambient current goes through the {wall.name}",
@@ -181,9 +185,9 @@ def _check_elements(layout: Layout, frame: Frame, scale: float) -> None:
             path = ("elements", k, name)
             _check_wet(at, frame, scale, path)
             if isinstance(element, Vortex | Doublet) and _gap(at, frame.walls) <= TOUCHING * scale:
-                raise ElementOnLandError("a vortex or doublet cannot stand on a bank", path)
+                raise ElementMisplacedError("a vortex or doublet cannot stand on a bank", path)
             if sum(float(wall.distance(np.asarray(at))) <= TOUCHING * scale for wall in frame.walls) > 1:
-                raise ElementOnLandError("an element cannot stand in the corner of two banks", path)
+                raise ElementMisplacedError("an element cannot stand in the corner of two banks", path)
         if isinstance(element, LineSource | LineSink):
             _check_line(element, frame, scale, ("elements", k))
         if isinstance(element, Vortex) and element.core:
@@ -199,7 +203,7 @@ def _check_wet(at: complex, frame: Frame, scale: float, path: Path) -> None:
 
 def _check_line(element: LineSource | LineSink, frame: Frame, scale: float, path: Path) -> None:
     if abs(element.end - element.start) <= TOUCHING * scale:
-        raise ElementOnLandError("the line has no length", (*path, "to"))
+        raise ElementMisplacedError("the line has no length", (*path, "to"))
     inside: ComplexArray = np.linspace(element.start, element.end, 65, dtype=np.complex128)
     tolerance = TOUCHING * scale * np.abs(frame.map.slope(inside))
     if not np.all(frame.wet(frame.map.forward(inside), tolerance)):
@@ -229,7 +233,7 @@ def _check_structures(layout: Layout, frame: Frame, scale: float) -> None:
             for name, at in _nearest_places(element, pier.at):
                 if abs(at - pier.at) - pier.radius <= TOUCHING * scale:
                     raise ElementInStructureError(
-                        f"the point lies in or on structures/{k}", ("elements", i, name)
+                        f"the element touches or crosses structures/{k}", ("elements", i, name)
                     )
 
 

@@ -8,6 +8,7 @@ algorithm on top needs to know what a bank is.
 """
 
 from dataclasses import dataclass
+from math import inf
 
 import numpy as np
 
@@ -31,6 +32,7 @@ class PoleField:
     poles, strengths, owners : shape (m,), positions [-], g = (q - i Gamma)/(2 pi) [m2/s], owner index
     centres, moment_owners : shape (k,), positions [-], owner index
     moments : shape (k, n), coefficients c of X, X^2, ... X^n in the potential [m2/s]
+    length : Re tau of the far wall: poles beyond it are images, whose branch cuts leave the water alone [-]
     """
 
     kappa: float
@@ -42,6 +44,7 @@ class PoleField:
     centres: ComplexArray
     moments: ComplexArray
     moment_owners: IntArray
+    length: float = inf
 
     @property
     def is_periodic(self) -> bool:
@@ -120,7 +123,9 @@ class PoleField:
         """Complex potential phi + i psi [m2/s] with principal logarithms, shape (n,)."""
         total = self.constant * tau
         for pole, strength in zip(self.poles, self.strengths, strict=True):
-            total = total + strength * (self.logarithm(tau - pole) + self.offset * (tau - pole))
+            beyond = bool(pole.real > self.length * (1.0 + 1e-9))
+            logarithm = self.logarithm(pole - tau) if beyond else self.logarithm(tau - pole)
+            total = total + strength * (logarithm + self.offset * (tau - pole))
         return np.asarray(total + self._multipoles(tau).sum(axis=1), dtype=np.complex128)
 
     def logarithm(self, d: ComplexArray) -> ComplexArray:
