@@ -1,7 +1,8 @@
 """Closed forms of plane potential flow at banks, in channels and at slots, through the routes.
 
-Sources and marks as in test_closed_forms.py: textbook values recomputed for this project by a second route; what was
-recalled and not re-read is marked "memory". Depth is 1 m throughout, so that a discharge is a strength per depth.
+Sources and marks as in test_closed_forms.py: textbook values recomputed for this project by a second route;
+what was recalled and not re-read is marked "memory". Depth is 1 m throughout, so that a discharge is a
+strength per depth.
 """
 
 from math import cos, pi, radians, sin, sqrt
