@@ -26,6 +26,7 @@ from forebay.flow.model import compile_layout
 from forebay.flow.stagnation.search import search_model
 from forebay.flow.surroundings import survey
 from forebay.flow.withdrawal.analysis import withdraw
+from forebay.flow.withdrawal.faces import turning_places
 from forebay.flow.withdrawal.mouths import mouth_of
 from forebay.flow.withdrawal.result import IntakeWithdrawal, WithdrawalStatus
 from forebay.flow.withdrawal.sectors import Source as Tracer
@@ -179,6 +180,31 @@ def test_oblique_diffuser_equals_a_count(ends, velocity):
         assert abs(shares_of(answer).get(origin, 0.0) - numbers.get(origin, 0.0)) < 4.0 / 300
     assert answer.share_error < 1e-6
     assert shares_of(answer).get("d", 0.0) <= 0.6 + answer.share_error
+
+
+@pytest.mark.parametrize("ends", [(-8 - 2j, -8 + 14j), (-4 - 3j, -6 + 12j), (3 - 2j, 4 + 14j)])
+@pytest.mark.parametrize("velocity", [0.02, 0.03 + 0.01j])
+def test_diffuser_crossed_in_part_equals_a_count(ends, velocity):
+    """Where the current exceeds sigma/2 it crosses, elsewhere both sides give water."""
+    layout = site(Sink("s", 0j, 3.0), LineSource("d", ends[0], ends[1], 1.5), velocity=velocity)
+    model = compile_layout(layout)
+    faces = survey(model, np.empty(0, dtype=np.complex128)).lines
+    (answer,) = withdrawals(layout)
+    assert sum(turning_places(model, faces, 0, side).size for side in (1.0, -1.0)) >= 1
+    numbers = counted(layout, "s", 300)
+    for origin in numbers.keys() | shares_of(answer).keys():
+        assert abs(shares_of(answer).get(origin, 0.0) - numbers.get(origin, 0.0)) < 4.0 / 300
+    assert answer.share_error < 1e-6
+
+
+def test_screen_crossed_in_part():
+    layout = site(LineSink("screen", -8 - 2j, -8 + 14j, 1.5), Source("o", 0j, 3.0), velocity=-0.02)
+    (answer,) = withdrawals(layout)
+    assert answer.status is WithdrawalStatus.PASSED_THROUGH
+    assert 1.5 < answer.arriving < 3.0
+    numbers = counted(layout, "screen", 300)
+    for origin in numbers.keys() | shares_of(answer).keys():
+        assert abs(shares_of(answer).get(origin, 0.0) - numbers.get(origin, 0.0)) < 4.0 / 300
 
 
 def test_two_intakes_share_a_diffuser():

@@ -259,3 +259,29 @@ def test_still_water_alone_is_all_of_the_water():
     assert answer.status is WithdrawalStatus.OK
     assert_allclose(np.abs(answer.zone - (3 + 1j)), answer.extent, rtol=1e-12)
     assert answer.dividing_streamlines == ()
+
+
+@pytest.mark.parametrize(
+    ("shore", "area"),
+    [
+        (StraightBank(0j, 1 + 0j), 0.5),
+        (Corner(0j, 1 + 0j, np.pi / 2), 0.25),
+        (Corner(0j, 1 + 0j, 1.5 * np.pi), 0.75),
+    ],
+)
+def test_still_water_alone_beside_walls(shore, area):
+    """Nearly the part of the extent's circle that the interior angle leaves."""
+    (answer,) = withdrawals(site(Sink("s", 0.02 + 0.01j, 1.0), shore=shore))
+    z = answer.zone
+    outline = shapely.Polygon(np.stack([z.real, z.imag], axis=1))
+    # the circle is centred on what stands in the water, near the vertex
+    assert_allclose(outline.area / (np.pi * answer.extent**2), area, atol=0.3)
+    assert np.all(compile_layout(site(Sink("s", 0.02 + 0.01j, 1.0), shore=shore)).wet(z))
+
+
+def test_zone_of_a_basin_with_one_outfall_is_the_basin():
+    shore = Basin(0j, 1 + 0j, 100.0, 60.0)
+    (answer,) = withdrawals(site(Sink("s", 30 + 20j, 1.0), Source("o", 70 + 30j, 1.0), shore=shore))
+    outline = shapely.Polygon(np.stack([answer.zone.real, answer.zone.imag], axis=1))
+    # its edge runs a hair off the walls, further where the water is slow: a millionth of the flux
+    assert_allclose(outline.area, 6000.0, rtol=1e-3)

@@ -166,9 +166,8 @@ def _status(flow: _Flow, mouthful: _Mouthful, counted: Tally) -> WithdrawalStatu
 def _error(flow: _Flow, mouthful: _Mouthful, counted: Tally) -> float:
     """Error of a share: change under tolerance, inclusion of the nodes, quadrature, piers, rounding."""
     mouth, model = mouthful.mouth, flow.model
-    arrivals = arrivals_at(flow.check, mouthful.element.name, mouth)
-    again = sectors_between(mouth, arrivals.coordinates)
-    change = _difference(mouthful.sectors, again, mouth.total)
+    again = arrivals_at(flow.check, mouthful.element.name, mouth)
+    change = _difference(mouth, mouthful.arrivals.coordinates, again.coordinates)
     strengths = sum(2.0 * np.pi * abs(s.strength) for s in model.singularities)
     strengths += sum(abs(line.flux) * abs(line.end - line.start) for line in model.lines)
     left_open = (2.0 * mouthful.arrivals.error + counted.error) / mouth.total
@@ -177,12 +176,14 @@ def _error(flow: _Flow, mouthful: _Mouthful, counted: Tally) -> float:
     return float(min(1.0, change + left_open + model.boundary_residual + _ROUNDING * strengths / mouth.total))
 
 
-def _difference(sectors: list[Sector], again: list[Sector], total: float) -> float:
-    """Half of the summed changes of the sectors' parts, 1 if their number has changed."""
-    if len(sectors) != len(again):
-        return 1.0
-    parts: list[FloatArray] = [np.array([s.flux / total for s in row]) for row in (sectors, again)]
-    return float(0.5 * np.abs(parts[0] - parts[1]).sum())
+def _difference(mouth: Mouth, first: FloatArray, second: FloatArray) -> float:
+    """Sum of the distances from every divide of one run to the nearest of the other, over the total."""
+    if first.size == 0 or second.size == 0:
+        return float(first.size != second.size)
+    gaps = np.abs(first[:, None] - second)
+    if not mouth.breaks:
+        gaps = np.minimum(gaps, np.abs(mouth.total - gaps))
+    return float(max(gaps.min(axis=0).sum(), gaps.min(axis=1).sum()) / mouth.total)
 
 
 def _widths(model: FlowModel, counted: Tally) -> list[EndWidth]:

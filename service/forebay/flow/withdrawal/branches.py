@@ -14,7 +14,7 @@ import numpy as np
 from forebay.flow.arrays import BoolArray, ComplexArray, FloatArray, IntArray
 from forebay.flow.model import FlowModel
 from forebay.flow.stagnation.result import WATER, StagnationKind, StagnationPoint
-from forebay.flow.surroundings import Surroundings
+from forebay.flow.surroundings import RESTS, Surroundings
 from forebay.flow.withdrawal.faces import FACE_OFFSET, tips_on_wall, turning_places
 
 Stream = Callable[[FloatArray], FloatArray]
@@ -145,12 +145,12 @@ def _level_angles(
 
 
 def _add_tips(found: _Collection, k: int, surroundings: Surroundings, saddles: list[complex]) -> None:
-    """Streamlines through both ends of line k, unless the line stands on a wall there."""
+    """Streamlines through both ends of line k, unless it stands on a wall or a stagnation point is near."""
     model, faces = found.model, surroundings.lines
     on_wall = tips_on_wall(model, faces, k) if faces.in_water[k] else (False, False)
     ends = ((faces.start[k], faces.end[k]), (faces.end[k], faces.start[k]))
     for (tip, other), standing in zip(ends, on_wall, strict=True):
-        gaps = np.abs(surroundings.sites.at - tip)
+        gaps = np.abs(surroundings.sites.at[surroundings.sites.role != RESTS] - tip)
         radius = 1e-4 * float(min([abs(other - tip), *gaps[gaps > 1e-12 * abs(other - tip)]]))
         if not standing and all(abs(saddle - tip) >= 10.0 * radius for saddle in saddles):
             _add_tip(found, (complex(tip), complex(other - tip)), (radius, bool(faces.in_water[k])))
