@@ -1,6 +1,6 @@
 """The flow of a layout: one object that is evaluated, searched, integrated and followed downstream."""
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from functools import cached_property, lru_cache
 
 import numpy as np
@@ -15,6 +15,7 @@ from forebay.flow.assembly import (
 )
 from forebay.flow.core_centres import CoreCentre, centre_chords, core_centre, without_centres
 from forebay.flow.cores import CoreTerm, core_term
+from forebay.flow.corner_chords import corner_chords
 from forebay.flow.ends import End, ends_of
 from forebay.flow.features import (
     CoredVortex,
@@ -172,49 +173,42 @@ class FlowModel:
         -------
         shape (n, len(owners)) [m2/s]: circulation + i flux to the right of travel; exact to rounding.
         """
+        return self._chords(a, b, pooled=False)
+
+    def chord(self, a: ComplexArray, b: ComplexArray) -> ComplexArray:
+        """`chords` summed over the owners, at less cost, shape (n,) [m2/s]."""
+        return self._chords(a, b, pooled=True)[:, 0]
+
+    def _chords(self, a: ComplexArray, b: ComplexArray, *, pooled: bool) -> ComplexArray:
+        """Integrals with a column for each owner, or one for all of them."""
         start, end = np.atleast_1d(self._off_vertex(a)), np.atleast_1d(self._off_vertex(b))
-        field = without_centres(self.rational, self._centres) if self._centres else self.rational
-        if self.frame.map.affine:
-            tau = self.frame.map.forward
-            sums = field.chords(tau(start), tau(end), owner_count=len(self.owners))
+        field = self._pooled if pooled else self._centreless
+        columns = 1 if pooled else len(self.owners)
+        if self._corner:
+            sums = corner_chords(self._corner, field, start, end, columns)
         else:
-            sums = self._curved_chords(field, start, end)
+            tau = self.frame.map.forward
+            sums = field.chords(tau(start), tau(end), owner_count=columns)
         cores = [centre.term for centre in self._centres]
         for term in self.terms:
             if term not in cores:
-                sums[:, term.owner] += term.chords(start, end)
+                sums[:, 0 if pooled else term.owner] += term.chords(start, end)
         for centre in self._centres:
             own = centre_chords(centre, self.rational, self.frame.map, start, end)
-            sums[:, centre.term.owner] += own
+            sums[:, 0 if pooled else centre.term.owner] += own
         return sums
 
-    def _curved_chords(self, field: PoleField, start: ComplexArray, end: ComplexArray) -> ComplexArray:
-        """Chords in a corner: cut where they pass the vertex most closely, so that Re tau is monotone."""
-        vertex = self.frame.walls[0].point
-        a, b = start - vertex, end - vertex
-        span = b - a
-        length = np.abs(span) ** 2
-        part = np.clip(-(a.conj() * span).real / np.where(length > 0.0, length, 1.0), 0.0, 1.0)
-        foot = start + part * (end - start)
-        return self._monotone_chords(field, start, foot) + self._monotone_chords(field, foot, end)
+    @cached_property
+    def _centreless(self) -> PoleField:
+        """The poles less the cored vortices, whose chords are a matter of their own."""
+        return without_centres(self.rational, self._centres) if self._centres else self.rational
 
-    def _monotone_chords(self, field: PoleField, start: ComplexArray, end: ComplexArray) -> ComplexArray:
-        vertex = self.frame.walls[0].point
-        radius = np.abs(self.frame.map.inverse(field.poles) - vertex)
-        a, span = (start - vertex)[:, None], (end - start)[:, None]
-        square, half = np.abs(span) ** 2, (a.conj() * span).real
-        rest = np.abs(a) ** 2 - radius**2
-        root = np.sqrt(np.maximum(half**2 - square * rest, 0.0))
-        outwards = np.abs(end - vertex) >= np.abs(start - vertex)
-        safe = np.where(square > 0.0, square, 1.0)
-        part = np.where(outwards[:, None], root - half, -root - half) / safe
-        crossing = self.frame.map.forward(a + vertex + np.clip(part, 0.0, 1.0) * span).imag
-        tau = self.frame.map.forward
-        return field.chords(tau(start), tau(end), owner_count=len(self.owners), crossing=crossing)
-
-    def chord(self, a: ComplexArray, b: ComplexArray) -> ComplexArray:
-        """`chords` summed over the owners, shape (n,) [m2/s]."""
-        return np.asarray(self.chords(a, b).sum(axis=1), dtype=np.complex128)
+    @cached_property
+    def _pooled(self) -> PoleField:
+        """The same with one owner for all."""
+        field = self._centreless
+        nobody = np.zeros_like(field.owners)
+        return replace(field, owners=nobody, moment_owners=np.zeros_like(field.moment_owners))
 
     def magnitude(self, z: ComplexArray) -> FloatArray:
         """Sum of the absolute values of the parts of W at z [m/s]: its rounding error is some 1e-15 of it."""

@@ -122,10 +122,10 @@ class PoleField:
     def potential(self, tau: ComplexArray) -> ComplexArray:
         """Complex potential phi + i psi [m2/s] with principal logarithms, shape (n,)."""
         total = self.constant * tau
-        for pole, strength in zip(self.poles, self.strengths, strict=True):
-            beyond = bool(pole.real > self.length * (1.0 + 1e-9))
-            logarithm = self.logarithm(pole - tau) if beyond else self.logarithm(tau - pole)
-            total = total + strength * (logarithm + self.offset * (tau - pole))
+        if self.is_periodic:
+            total += periodic.potential_sums(tau, self.poles, self.strengths, self.offset, self.length)
+        else:
+            total += rational.potential_sums(tau, self.poles, self.strengths)
         return np.asarray(total + self._multipoles(tau).sum(axis=1), dtype=np.complex128)
 
     def logarithm(self, d: ComplexArray) -> ComplexArray:

@@ -68,7 +68,7 @@ def pole_sums(
             py = poles[j].imag
             g_re = strengths[j].real
             g_im = strengths[j].imag
-            for k in range(_BLOCK):
+            for k in range(count):
                 k_re, k_im, e, sh_re, sh_im, q = _kernel(x[k] - px, y[k] - py, offset)
                 w_re[k] += g_re * k_re - g_im * k_im
                 w_im[k] += g_re * k_im + g_im * k_re
@@ -106,7 +106,7 @@ def velocity_sums(
             py = poles[j].imag
             g_re = strengths[j].real
             g_im = strengths[j].imag
-            for k in range(_BLOCK):
+            for k in range(count):
                 k_re, k_im, _, _, _, _ = _kernel(x[k] - px, y[k] - py, offset)
                 w_re[k] += g_re * k_re - g_im * k_im
                 w_im[k] += g_re * k_im + g_im * k_re
@@ -188,4 +188,25 @@ def magnitude_sums(
             d = tau[i] - poles[j]
             k_re, k_im, _, _, _, _ = _kernel(d.real, d.imag, offset)
             sums[i] += abs(strengths[j]) * math.hypot(k_re, k_im)
+    return sums
+
+
+@njit(cache=True, error_model="numpy")
+def potential_sums(
+    tau: ComplexArray, poles: ComplexArray, strengths: ComplexArray, offset: float, length: float
+) -> ComplexArray:
+    """Sum of g (log(2 sinh(d/2)) + offset d): cuts run to the left, from poles beyond `length` to the right.
+
+    Returns shape (n,) [m2/s].
+    """
+    sums = np.zeros(tau.shape[0], np.complex128)
+    for i in range(tau.shape[0]):
+        for j in range(poles.shape[0]):
+            x = tau[i].real - poles[j].real
+            y = tau[i].imag - poles[j].imag
+            side = -1.0 if poles[j].real > length * (1.0 + 1e-9) else 1.0
+            re, im = _potential(side * x, side * y)
+            if side * x < 0.0:
+                im += math.pi if side * y >= 0.0 else -math.pi
+            sums[i] += strengths[j] * complex(re + offset * x, im + offset * y)
     return sums

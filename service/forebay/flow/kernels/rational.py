@@ -43,7 +43,7 @@ def pole_sums(
             py = poles[j].imag
             g_re = strengths[j].real
             g_im = strengths[j].imag
-            for k in range(_BLOCK):
+            for k in range(count):
                 dx = x[k] - px
                 dy = y[k] - py
                 q = 1.0 / (dx * dx + dy * dy)
@@ -83,7 +83,7 @@ def velocity_sums(tau: ComplexArray, poles: ComplexArray, strengths: ComplexArra
             py = poles[j].imag
             g_re = strengths[j].real
             g_im = strengths[j].imag
-            for k in range(_BLOCK):
+            for k in range(count):
                 dx = x[k] - px
                 dy = y[k] - py
                 q = 1.0 / (dx * dx + dy * dy)
@@ -120,4 +120,16 @@ def magnitude_sums(tau: ComplexArray, poles: ComplexArray, strengths: ComplexArr
     for i in range(tau.shape[0]):
         for j in range(poles.shape[0]):
             sums[i] += abs(strengths[j]) / abs(tau[i] - poles[j])
+    return sums
+
+
+@njit(cache=True, error_model="numpy")
+def potential_sums(tau: ComplexArray, poles: ComplexArray, strengths: ComplexArray) -> ComplexArray:
+    """Sum of g log(tau - p) with principal arguments: cuts run to the left, shape (n,) [m2/s]."""
+    sums = np.zeros(tau.shape[0], np.complex128)
+    for i in range(tau.shape[0]):
+        for j in range(poles.shape[0]):
+            x = tau[i].real - poles[j].real
+            y = tau[i].imag - poles[j].imag
+            sums[i] += strengths[j] * complex(0.5 * logarithm(x * x + y * y), angle(y, x))
     return sums
