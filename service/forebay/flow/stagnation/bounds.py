@@ -113,7 +113,9 @@ def wedge_line_bounds(
             near = _segment_bound(w, reach, start, end) + wedge_rest_bound(n, size, log_reach)
             near = np.where(np.abs(d) + stretch + n * log_reach < min(4.0, _NEAR * n), near, np.inf)
             away = np.abs(d) - stretch > 2.0 * n * log_reach
-            site_far = np.where(away, n / size * np.exp(log_reach) * _site_level(d, stretch, n, log_reach), np.inf)
+            with np.errstate(over="ignore", invalid="ignore"):
+                site_far = n / size * np.exp(log_reach) * _site_level(d, stretch, n, log_reach)
+            site_far = np.where(away & np.isfinite(site_far), site_far, np.inf)
             mapped += np.where(seen, far, 0.0)
             site += np.where(seen, abs(share) * np.minimum(near, site_far), 0.0)
     return mapped, site * rate
@@ -122,10 +124,11 @@ def wedge_line_bounds(
 def _site_level(d: ComplexArray, stretch: float, n: float, log_reach: FloatArray) -> FloatArray:
     """For X + 1/2 of far poles, pulled back to the site: bound, slope and level of the mapped plane together."""
     distance = np.maximum(np.abs(d) - stretch, 1e-300)
-    second = np.expm1(np.minimum(log_reach, 50.0)) ** 2
-    slope = 1.0 / distance**2 + 0.25
+    q = -np.expm1(-log_reach)
     bound = pole_bound(d, stretch, n * log_reach)
-    return bound + slope * n * second + (1.0 / distance + 1.0 + slope * n * log_reach) * 2.0 * second
+    with np.errstate(over="ignore", divide="ignore", invalid="ignore"):
+        slope = 1.0 / distance**2 + 0.25
+        return bound + (1.0 / distance + 1.0) * q * q + n * slope * (q * q + log_reach - q)
 
 
 def exponent_of(frame: Frame) -> float:
@@ -202,4 +205,4 @@ def lamb_oseen_second(nearest: FloatArray) -> FloatArray:
     Sum of the absolute second derivatives by z z, twice z zbar and zbar zbar, tabulated and made monotone.
     """
     inner = np.interp(nearest - 6e-4, _R, _FALLING)
-    return np.where(nearest > 11.9, 2.1 / np.maximum(nearest, 1.0) ** 3, inner)
+    return np.where(nearest > 11.9, 2.02 / np.maximum(nearest, 1.0) ** 3, inner)

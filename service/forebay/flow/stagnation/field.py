@@ -136,8 +136,9 @@ class BoundedField:
     def _corner_rest(self, z: ComplexArray, radius: FloatArray, jet: Jet) -> FloatArray:
         """Remainder in a corner: what is far is bounded in the mapped plane and pulled back together.
 
-        For f(tau) n / z the pull-back adds to the remainder of f what f and f' make of the curved map; both are taken
-        from the flow itself, less what is near, so that what cancels far away stays cancelled.
+        With q = R / |z| and r = -log(1 - q), f(tau) n / z leaves a remainder of at most n / (|z| (1 - q)) times
+        E(n r) + |f| q^2 + n |f'| (q^2 + r - q), E that of f. f and f' are taken from the flow itself, less what is near,
+        so that what cancels far away stays cancelled.
         """
         n, tau = self._exponent, self.frame.map.forward(z)
         rate = np.abs(self.frame.map.slope(z))
@@ -169,7 +170,8 @@ class BoundedField:
         with np.errstate(over="ignore", invalid="ignore"):
             w_tau = np.abs(velocity) / rate + level
             w_slope = (np.abs(slope) * size + np.abs(velocity)) / rate + level
-            second = np.expm1(capped) ** 2
-            total = rate * np.exp(capped) * (mapped + w_slope * second + (w_tau + w_slope * capped) * 2.0 * second)
+            q = -np.expm1(-capped)
+            curved = w_tau * q * q + w_slope * (q * q + capped - q)
+            total = rate * np.exp(capped) * (mapped + curved)
         total = total + site
         return np.where(np.isfinite(log_reach) & np.isfinite(total), total, np.inf)

@@ -29,6 +29,9 @@ from forebay.flow.stagnation.turning import UnprovenTurningError, turning, windi
 _NUDGES = (0.0, 0.0037, 0.0113, 0.0271)
 """Widenings of a region whose edge passes through a zero or a pole, as part of its size [-]."""
 
+_CLUSTER = 1e-4
+"""Boxes left over are taken for one multiple zero only within this part of the region [-]."""
+
 _HOLES = (0.4, 0.15, 0.05, 0.01, 1e-3, 1e-4, 1e-5)
 """Radii of discs about poles tried, as part of the distance to the next singular place [-]."""
 
@@ -221,7 +224,8 @@ class GeneralSearch:
             reach = float(site_radius(self.model, np.array([z]), 2.0 * spread)[0].real)
             gaps = np.concatenate([np.abs(others - z), np.abs(self.model.singular_places - z)])
             room = 0.5 * float(np.min(gaps[np.isfinite(gaps)], initial=self.model.scale))
-            cluster = enclose(self.field.proves, z, reach, room)
+            small = spread <= _CLUSTER * self.region.size
+            cluster = enclose(self.field.proves, z, reach, room) if small else None
             if cluster is None:
                 self.unresolved.append(Window((z.real - reach, z.real + reach), (z.imag - reach, z.imag + reach)))
             elif cluster.zeros != 0:

@@ -69,6 +69,25 @@ def simple_bounds(d: complex, radius: float, kappa: float) -> tuple[float, float
 
 
 @njit(cache=True, error_model="numpy")  # type: ignore[untyped-decorator]
+def _far_multipole(x: float, moments: ComplexArray) -> float:
+    """Bound for the third derivative of sum c X^n where |Re d| >= x, X = coth(d/2)/2: it decays like exp(-x)."""
+    e = math.exp(-x)
+    p = 1.0 / (1.0 - e)
+    m, u = 0.5 + e * p, e * p * p
+    v, w = e * (1.0 + e) * p**3, e * (1.0 + 4.0 * e + e * e) * p**4
+    total = 0.0
+    for k in range(moments.shape[0]):
+        n = k + 1.0
+        part = w * m**k
+        if k > 0:
+            part += 3.0 * (n - 1.0) * m ** (k - 1) * u * v
+        if k > 1:
+            part += (n - 1.0) * (n - 2.0) * m ** (k - 2) * u**3
+        total += abs(moments[k]) * n * part
+    return total
+
+
+@njit(cache=True, error_model="numpy")  # type: ignore[untyped-decorator]
 def multipole_bounds(d: complex, radius: float, kappa: float, moments: ComplexArray) -> tuple[float, float]:
     """The same bounds for d/dt sum_n c_n X^n, from the majorant M(t): derivatives of sum |c_n| M^n."""
     rho, s = reach(d, kappa)
@@ -97,6 +116,10 @@ def multipole_bounds(d: complex, radius: float, kappa: float, moments: ComplexAr
             power *= m
         value += c * max(first - first0 - second0 * radius, 0.0)
         slope += c * max(second - second0, 0.0)
+    if kappa > 0.0 and abs(d.real) - radius > _FAR:
+        second = _far_multipole(abs(d.real) - radius, moments)
+        value = min(value, 0.5 * second * radius * radius)
+        slope = min(slope, second * radius)
     return value, slope
 
 

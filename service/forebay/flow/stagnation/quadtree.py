@@ -286,8 +286,10 @@ class Quadtree:
                 self.zeros.append(replace(found, is_beyond=True))
                 return
         for k, other in enumerate(self.zeros):
-            if abs(other.at - found.at) <= found.radius + other.radius and other.side == found.side:
-                if found.unique > other.unique:
-                    self.zeros[k] = replace(found, radius=max(found.radius, other.radius))
+            apart = abs(other.at - found.at)
+            same = (other.line, other.side) == (found.line, found.side)
+            if same and apart + min(found.radius, other.radius) <= max(found.unique, other.unique):
+                best = found if found.unique > other.unique else other
+                self.zeros[k] = replace(best, radius=max(found.radius, other.radius, apart))
                 return
         self.zeros.append(found)

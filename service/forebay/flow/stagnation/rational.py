@@ -9,7 +9,7 @@ from forebay.flow.stagnation.aberth import all_zeros
 from forebay.flow.stagnation.candidates import depths, in_water, on_walls, settle
 from forebay.flow.stagnation.certificate import EPS, Certificates, certify, polish
 from forebay.flow.stagnation.clusters import enclose, groups, room_about
-from forebay.flow.stagnation.count import FarField, degree, far_field
+from forebay.flow.stagnation.count import FarField, UncountableFieldError, degree, far_field
 from forebay.flow.stagnation.describe import VERTEX, Zero, wall_name
 from forebay.flow.stagnation.orders import pole_orders, trimmed
 from forebay.flow.stagnation.pier_walls import wall_zero
@@ -30,7 +30,10 @@ class RationalSearch:
         self.model = model
         self.field = model.rational
         self.frame = model.frame
-        self.far = FarField() if np.isfinite(self.frame.length) else far_field(self.field)
+        closed = bool(np.isfinite(self.frame.length))
+        if closed and not (np.any(self.field.strengths) or np.any(self.field.moments)):
+            raise UncountableFieldError("the water of the basin stands still")
+        self.far = FarField() if closed else far_field(self.field)
         places = np.concatenate([self.field.poles, self.field.centres])
         inside = places[np.abs(places.real) <= self.frame.length * (1 + 1e-9)]
         self.extent = max(float(np.ptp(inside.real)), float(np.ptp(inside.imag)), 1e-6) if inside.size else 1.0
