@@ -54,12 +54,6 @@ def wall_at(at: complex, walls: tuple[Wall, ...], reach: float) -> str:
     return next((wall.name for wall in walls if float(wall.distance(z)) <= reach), WATER)
 
 
-def onto_wall(at: complex, walls: tuple[Wall, ...], reach: float) -> complex:
-    """The point moved on to a wall within `reach` [m], x + iy [m]."""
-    z = np.asarray(at)
-    return next((complex(wall.nearest(z)) for wall in walls if float(wall.distance(z)) <= reach), at)
-
-
 def singularities_of(layout: Layout, walls: tuple[Wall, ...], reach: float) -> tuple[Singularity, ...]:
     """The point elements of a layout, in its order."""
     return tuple(

@@ -23,7 +23,6 @@ from forebay.flow.features import (
     Singularity,
     cores_of,
     lines_of,
-    onto_wall,
     singularities_of,
 )
 from forebay.flow.gradient import GradientTerm
@@ -41,11 +40,14 @@ from forebay.flow.maps import LogarithmMap
 from forebay.flow.piers import solve_piers
 from forebay.flow.placement import TOUCHING, check_layout, scale_of
 from forebay.flow.poles import PoleField
+from forebay.flow.settling import settled
 from forebay.flow.shores import Frame, Wall, frame_of
 from forebay.flow.terms import Jet, Term
 
 AMBIENT = "ambient"
 """Owner of everything that is there without the elements."""
+_BESIDE = 1e-6
+"""Stream functions within this part of a core's radius of its centre are those beside it: 1e-12 off [-]."""
 _REMEMBERED = 32
 """Models kept: one request asks several questions of one layout. A model is a function of its layout."""
 
@@ -156,6 +158,9 @@ class FlowModel:
         Differences are exact only by `chord`. Where the flow is rotational phi has no meaning.
         """
         at = self._off_vertex(z)
+        for core in self.cores:
+            beside = _BESIDE * core.core.radius
+            at = np.where(np.abs(at - core.at) < beside, core.at + beside, at)
         flat = at.ravel()
         total = self.rational.potential(self.frame.map.forward(flat))
         for term in self.terms:
@@ -339,8 +344,9 @@ def compile_layout(layout: Layout) -> FlowModel:
     """
     middle, scale = scale_of(layout)
     frame = frame_of(layout.shore, middle, scale)
+    layout = settled(layout, frame, scale)
     check_layout(layout, frame, scale)
-    terms = _terms(layout, frame, scale)
+    terms = _terms(layout, frame)
     builder = PoleBuilder(frame, scale)
     add_elements(builder, layout, frame)
     first_pier = len(layout.elements) + 1
@@ -355,7 +361,7 @@ def compile_layout(layout: Layout) -> FlowModel:
     return FlowModel(layout, frame, builder.build(constant, offset), terms, scale, solution.residual)
 
 
-def _terms(layout: Layout, frame: Frame, scale: float) -> tuple[Term, ...]:
+def _terms(layout: Layout, frame: Frame) -> tuple[Term, ...]:
     terms: list[Term] = []
     if layout.ambient.has_gradient:
         terms.append(GradientTerm.of(layout.ambient, owner=0))
@@ -363,11 +369,9 @@ def _terms(layout: Layout, frame: Frame, scale: float) -> tuple[Term, ...]:
     for k, element in enumerate(layout.elements):
         match element:
             case LineSource() | LineSink():
-                start, end = (
-                    onto_wall(at, frame.walls, TOUCHING * scale) for at in (element.start, element.end)
-                )
                 flux = outflow(element) / layout.depth
-                terms.append(line_term(start, end, flux, owner=k + 1, frame=frame, offset=offset))
+                ends = (element.start, element.end)
+                terms.append(line_term(*ends, flux, owner=k + 1, frame=frame, offset=offset))
             case Vortex(core=Core() as core):
                 terms.append(core_term(element.at, element.circulation, core, owner=k + 1, frame=frame))
             case _:

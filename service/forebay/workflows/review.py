@@ -2,6 +2,7 @@
 
 from forebay.flow.layout import Layout
 from forebay.flow.placement import check_layout, scale_of
+from forebay.flow.settling import settled
 from forebay.flow.shores import frame_of
 from forebay.trade.applicability.review import evaluate
 from forebay.trade.applicability.site import Readings, Site, SiteData
@@ -34,5 +35,6 @@ def review_layout(
     """
     if readings is None:
         middle, scale = scale_of(layout)
-        check_layout(layout, frame_of(layout.shore, middle, scale), scale)
+        frame = frame_of(layout.shore, middle, scale)
+        check_layout(settled(layout, frame, scale), frame, scale)
     return evaluate(Site(layout, data or SiteData(), readings or Readings()))
