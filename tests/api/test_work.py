@@ -1,13 +1,20 @@
 """Where work runs and what stops it: deadline, full queue, our own failures, readiness."""
 
+import asyncio
 import logging
 
+import orjson
 import pytest
 from starlette.testclient import TestClient
 
+from forebay.api.limits import Limits
+from forebay.api.media import JSON
+from forebay.api.operation import Reply
+from forebay.api.problems import Problem
+from forebay.api.work import Workshop
 from forebay.app import create_app
 from forebay.settings import Settings
-from support.http import SAMPLE, a_sample, assert_problem
+from support.http import SAMPLE, a_sample, assert_problem, example
 
 LENGTHY = a_sample(at={"grid": {"x": [0, 1], "nx": 1000, "y": [10, 11], "ny": 900}})
 """Takes a good part of a second, far longer than the deadline below."""
@@ -19,6 +26,32 @@ def test_deadline_stops_the_work(ready_client):
         problem = assert_problem(client.post(SAMPLE, json=LENGTHY), 504, "deadline-exceeded")
         assert problem["deadline"] == 0.02
         assert client.post(SAMPLE, json=a_sample()).status_code == 200
+
+
+def test_deadline_counts_from_the_request():
+    # one worker, so that the second request would have to wait for the first one's end
+    async def both():
+        workshop = Workshop(Limits.of(Settings(workers=1, deadline=1.0)))
+        body = orjson.dumps(example("traceWithdrawal"))
+        slow = workshop.in_process("traceWithdrawal", body, JSON, deadline=600.0)
+        try:
+            first = asyncio.create_task(slow)
+            await asyncio.sleep(0)  # hands the first one over
+            assert workshop.waiting == 1
+            with pytest.raises(Problem) as raised:
+                await workshop.in_process("traceWithdrawal", body, JSON, deadline=1e-3)
+            assert not first.done()
+            reply = await first
+            again = await workshop.in_process("traceWithdrawal", body, JSON, deadline=600.0)
+        finally:
+            workshop.close()
+        return raised.value, reply, again
+
+    problem, reply, again = asyncio.run(both())
+    assert problem.code == "deadline-exceeded"
+    assert "waiting for a worker included" in problem.detail
+    assert isinstance(reply, Reply)
+    assert isinstance(again, Reply)
 
 
 def test_full_queue_is_busy(app, ready_client, monkeypatch):

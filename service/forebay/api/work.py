@@ -76,7 +76,11 @@ class Workshop:
     async def in_process(
         self, operation_id: str, body: bytes, media_type: str, *, deadline: float | None = None
     ) -> Reply | Problem:
-        """Result of a long computation; its process is killed at the deadline, by default the limits'."""
+        """Result of a long computation, stopped at the deadline, by default the limits'.
+
+        The deadline counts from now on: a client that waits for a worker waits no longer than one that has
+        one. The process of a computation that is stopped is killed.
+        """
         if self.waiting >= self.limits.workers + self.limits.queue:
             raise Problem("busy", "Every worker and the queue are full", headers={"Retry-After": RETRY_AFTER})
         self.waiting += 1
@@ -87,12 +91,13 @@ class Workshop:
             self.waiting -= 1
 
     async def _scheduled(self, arguments: tuple[str, bytes, str, Limits], deadline: float) -> Reply | Problem:
-        future = self._open_pool().schedule(run_operation, args=arguments, timeout=deadline)
+        future = self._open_pool().schedule(run_operation, args=arguments)
         try:
-            reply: Reply | Problem = await asyncio.wrap_future(future)
+            async with asyncio.timeout(deadline):  # cancels the future, on which the pool kills its process
+                reply: Reply | Problem = await asyncio.wrap_future(future)
         except TimeoutError:
-            facts = {"deadline": deadline}
-            raise Problem("deadline-exceeded", f"Stopped after {deadline:g} s", facts=facts) from None
+            detail = f"Stopped {deadline:g} s after it was asked for, waiting for a worker included"
+            raise Problem("deadline-exceeded", detail, facts={"deadline": deadline}) from None
         except (ProcessExpired, CancelledError) as error:
             raise RuntimeError(f"a worker process ended during {arguments[0]}") from error
         return reply

@@ -4,6 +4,7 @@ from typing import Annotated
 
 from pydantic import Field
 
+from forebay.api.names import refuse_reserved
 from forebay.api.schemas.common import ComputeRequest, Strict
 from forebay.api.schemas.elements import Element, LineSource, Pier, Source
 from forebay.api.schemas.quantities import (
@@ -32,7 +33,7 @@ MAX_STRUCTURES = 500
 EFFORT_A_PAIR = 100
 """Work to review one pair of elements or structures, counted in pairs of element and point."""
 
-EFFORT_A_PIER_PAIR = 150_000
+EFFORT_A_PIER_PAIR = 400_000
 """Work to solve the flow round piers, for each pair of them, counted likewise."""
 
 
@@ -44,9 +45,14 @@ class Water(Strict):
 
     def to_flow(self, units: UnitSystem) -> flow.Water:
         """Water properties in SI; the defaults are SI values in either unit system."""
-        given = "temperature" in self.model_fields_set
-        temperature = units.read(self.temperature, "Cel") if given else self.temperature
+        assumed = self.assumed_temperature
+        temperature = units.read(self.temperature, "Cel") if assumed is None else assumed
         return flow.Water(temperature, self.salinity)
+
+    @property
+    def assumed_temperature(self) -> float | None:
+        """The default temperature [degC], where none is given."""
+        return None if "temperature" in self.model_fields_set else self.temperature
 
 
 GradientRow = Annotated[list[PerSecond], Field(min_length=2, max_length=2, fail_fast=True)]
@@ -118,7 +124,11 @@ class Layout(Strict):
         return EFFORT_A_PAIR * self.size**2 + EFFORT_A_PIER_PAIR * len(self.structures) ** 2
 
     def to_flow(self, units: UnitSystem) -> flow.Layout:
-        """Layout in SI, with complex positions."""
+        """Layout in SI, with complex positions.
+
+        Raises ReservedNameError if a name means something else in an answer.
+        """
+        refuse_reserved({"elements": self.elements, "structures": self.structures})
         return flow.Layout(
             depth=units.read(self.depth, "m"),
             water=self.water.to_flow(units),
