@@ -13,7 +13,8 @@ from starlette.responses import Response
 from typing_extensions import override
 
 from forebay import __version__
-from forebay.api.guard import BodyLimit, CrossOrigin, LastErrors, RequestIds
+from forebay.api.body_limit import BodyLimit
+from forebay.api.guard import CrossOrigin, LastErrors, RequestIds
 from forebay.api.limits import Limits
 from forebay.api.metrics import Measured, Metrics
 from forebay.api.openapi import build_document
@@ -82,8 +83,11 @@ async def _lifespan(app: FastAPI) -> AsyncIterator[None]:
         app.state.workshop.close()
 
 
-async def _raise_status(_request: Request, error: Any) -> Response:  # noqa: ANN401  (the framework's own signature)
-    raise from_status(error.status_code, error.headers)
+async def _raise_status(request: Request, error: Any) -> Response:  # noqa: ANN401  (the framework's own signature)
+    problem = from_status(error.status_code, error.headers)
+    if request.method == "OPTIONS" and problem.code == "method-not-allowed":
+        return Response(status_code=204, headers=problem.headers)
+    raise problem
 
 
 async def _raise_query(_request: Request, error: Any) -> Response:  # noqa: ANN401  (the framework's own signature)

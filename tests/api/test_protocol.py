@@ -1,8 +1,16 @@
 """Methods, media types, sizes and headers of every answer."""
 
-import pytest
+import asyncio
+import itertools
+import json
 
+import pytest
+from starlette.testclient import TestClient
+
+from forebay.api.body_limit import DRAIN_LIMITS, BodyLimit
 from forebay.api.routers.registry import OPERATIONS
+from forebay.app import create_app
+from forebay.settings import Settings
 from support.http import SAMPLE, a_sample, assert_problem
 
 PATHS = [operation.path for operation in OPERATIONS.values()]
@@ -14,17 +22,32 @@ def test_unknown_address(client):
 
 
 @pytest.mark.parametrize("path", PATHS)
-@pytest.mark.parametrize("method", ["GET", "PUT", "DELETE", "PATCH", "OPTIONS"])
+@pytest.mark.parametrize("method", ["GET", "PUT", "DELETE", "PATCH"])
 def test_wrong_method_on_a_compute_route(client, path, method):
     response = client.request(method, path)
     assert_problem(response, 405, "method-not-allowed")
-    assert response.headers["allow"] == "POST"
+    assert response.headers["allow"] == "OPTIONS, POST"
+
+
+@pytest.mark.parametrize(
+    ("path", "allowed"),
+    [(SAMPLE, "OPTIONS, POST"), ("/v1/water", "GET, HEAD, OPTIONS"), ("/", "GET, HEAD, OPTIONS")],
+)
+def test_options_lists_the_methods(client, path, allowed):
+    response = client.options(path)
+    assert response.status_code == 204
+    assert response.content == b""
+    assert response.headers["allow"] == allowed
+
+
+def test_options_of_an_unknown_address(client):
+    assert_problem(client.options("/v2/field"), 404, "not-found")
 
 
 def test_wrong_method_on_a_catalogue(client):
     response = client.post("/v1/limits", json={})
     assert_problem(response, 405, "method-not-allowed")
-    assert response.headers["allow"] == "GET, HEAD"
+    assert response.headers["allow"] == "GET, HEAD, OPTIONS"
 
 
 @pytest.mark.parametrize("path", ["/livez", "/v1/limits", "/v1/criteria", "/docs", "/openapi.json"])
@@ -103,6 +126,83 @@ def test_oversize_body_is_refused_while_it_arrives(client, app):
             yield chunk
 
     assert_problem(client.post(SAMPLE, content=endless()), 413, "body-too-large")
+
+
+LIMIT = 1024
+
+
+def refused(chunks, *, declared):
+    """Messages sent back, and how much was taken of a body in chunks on its way to a limit of 1 KiB."""
+    taken, sent = [], []
+
+    async def receive():
+        taken.append(next(chunks, b""))
+        return {"type": "http.request", "body": taken[-1], "more_body": bool(taken[-1])}
+
+    async def send(message):
+        sent.append((message, sum(map(len, taken))))
+
+    async def reads_all(scope, receive, send):
+        while (await receive())["more_body"]:
+            pass
+
+    headers = [(b"content-length", str(declared).encode())] if declared else []
+    asyncio.run(BodyLimit(reads_all, LIMIT)({"type": "http", "headers": headers}, receive, send))
+    return sent, sum(map(len, taken))
+
+
+@pytest.mark.parametrize("declared", [3 * LIMIT, None])
+def test_rest_of_a_refused_body_is_taken_in_after_the_answer(declared):
+    # a client that sends everything before it reads would otherwise meet a closed connection
+    sent, taken = refused(iter([b" " * 512] * 6), declared=declared)
+    (start, _), (content, before), (end, _) = sent
+    assert start["status"] == 413
+    assert json.loads(content["body"])["type"] == "/problems/body-too-large"
+    assert before <= LIMIT + 512
+    assert taken == 3 * LIMIT
+    assert end == {"type": "http.response.body", "body": b""}
+
+
+def test_endless_body_is_not_taken_in_for_ever():
+    _, taken = refused(itertools.repeat(b" " * 512), declared=None)
+    assert taken <= DRAIN_LIMITS * LIMIT + 512
+
+
+def test_silent_client_is_not_waited_for_for_ever(monkeypatch):
+    monkeypatch.setattr("forebay.api.body_limit.DRAIN_SECONDS", 0.01)
+    sent = []
+
+    async def send(message):
+        sent.append(message)
+
+    async def silent():
+        await asyncio.Event().wait()
+
+    scope = {"type": "http", "headers": [(b"content-length", b"2000")]}
+    asyncio.run(BodyLimit(None, LIMIT)(scope, silent, send))
+    assert sent[-1] == {"type": "http.response.body", "body": b""}
+
+
+def test_index_links_below_any_prefix(client):
+    answer = client.get("/", headers={"Accept": "application/json"}).json()
+    assert answer["service"] == "forebay"
+    for link in answer["links"].values():
+        assert "://" not in link
+        assert not link.startswith("/")
+        assert client.get("/" + link).status_code in {200, 503}  # 503: not ready yet
+
+
+def test_reader_is_led_from_the_index_to_the_documentation(client):
+    page = "text/html,application/xhtml+xml;q=0.9,*/*;q=0.8"
+    response = client.get("/", headers={"Accept": page}, follow_redirects=False)
+    assert response.status_code == 307
+    assert response.headers["location"] == "docs"
+
+
+def test_index_without_the_documentation_page():
+    plain = TestClient(create_app(Settings(workers=1, docs=False)))
+    response = plain.get("/", headers={"Accept": "text/html, */*;q=0.8"})
+    assert "documentation" not in response.json()["links"]
 
 
 def test_standing_headers(client):

@@ -1,4 +1,4 @@
-"""Guards round the application, pure ASGI: body limit, request ids, standing headers, last errors, CORS."""
+"""Guards round the application, pure ASGI: request ids, standing headers, last errors, CORS."""
 
 import logging
 import re
@@ -113,42 +113,6 @@ async def _answer(scope: Scope, send: Send, error: Exception) -> None:
         problem = Problem("internal-error", "The service failed; the request id identifies the log entry")
     for message in problem_message(problem, request_id):
         await send(message)
-
-
-class BodyLimit:
-    """Counts the body while it arrives and stops at the limit, before anything reads it."""
-
-    def __init__(self, app: ASGIApp, limit: int) -> None:
-        self.app = app
-        self.limit = limit
-
-    async def __call__(self, scope: Scope, receive: Receive, send: Send) -> None:
-        """Answer one request whose body stays within the limit."""
-        if scope["type"] != "http":
-            await self.app(scope, receive, send)
-            return
-        declared = Headers(scope=scope).get("content-length", "0")
-        if declared.isdecimal() and int(declared[:20]) > self.limit:
-            raise self._problem()
-        received = 0
-
-        async def counted() -> Message:
-            nonlocal received
-            message = await receive()
-            received += len(message.get("body", b""))
-            if received > self.limit:
-                raise self._problem()
-            return message
-
-        await self.app(scope, counted, send)
-
-    def _problem(self) -> Problem:
-        return Problem(
-            "body-too-large",
-            f"The body exceeds {self.limit} bytes",
-            headers={"Connection": "close"},
-            facts={"limit": self.limit},
-        )
 
 
 class CrossOrigin:

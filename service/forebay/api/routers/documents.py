@@ -2,11 +2,14 @@
 
 from html import escape
 from importlib.resources import files
+from typing import Annotated, Literal
 
 import orjson
 from fastapi import APIRouter, Request
+from pydantic import BaseModel, Field
 from starlette.responses import Response
 
+from forebay import __version__
 from forebay.api.media import HTML, JSON, negotiate
 from forebay.api.problems import Problem, catalogue
 from forebay.api.routers.serving import problem_responses
@@ -28,6 +31,16 @@ ASSETS = {
 }
 """Files of the documentation page and their media types."""
 
+LINKS = {
+    "documentation": "docs",
+    "description": "openapi.json",
+    "limits": "v1/limits",
+    "warnings": "v1/warnings",
+    "criteria": "v1/criteria",
+    "ready": "readyz",
+}
+"""Relative addresses, so that they lead below the prefix of a proxy too."""
+
 router = APIRouter()
 
 page_router = APIRouter()
@@ -37,6 +50,31 @@ page_router = APIRouter()
 def page(text: str) -> Response:
     """An HTML page under the page policy."""
     return Response(text, media_type=HTML, headers={"Content-Security-Policy": PAGE_POLICY})
+
+
+class Index(BaseModel):
+    """Where to go on; every link is relative to this document."""
+
+    service: Literal["forebay"] = "forebay"
+    version: str
+    links: Annotated[dict[str, str], Field(description="Relative addresses", examples=[LINKS])]
+
+
+@router.get(
+    "/",
+    operation_id="readIndex",
+    summary="Where to go on",
+    tags=["operation"],
+    response_class=Response,
+    responses={200: {"description": "Links", "model": Index}, **problem_responses((406,))},
+)
+async def index(request: Request) -> Response:
+    has_page = request.app.state.settings.docs
+    media_type = negotiate(request.headers.get("accept"), (JSON, HTML) if has_page else (JSON,))
+    if media_type == HTML:
+        return Response(status_code=307, headers={"Location": LINKS["documentation"]})
+    links = {name: link for name, link in LINKS.items() if has_page or name != "documentation"}
+    return Response(orjson.dumps(Index(version=__version__, links=links).model_dump()), media_type=JSON)
 
 
 @page_router.get("/docs", include_in_schema=False)
