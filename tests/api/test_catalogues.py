@@ -36,11 +36,29 @@ def test_criterion_in_si_beside_its_published_number(client):
         ({"temperature": "1e999"}, "temperature"),
         ({"temperature": 12, "salinity": -1}, "salinity"),
         ({"temperature": 12, "unit_system": "imperial"}, "unit_system"),
+        ({"temperature": 12, "temprature": 13}, "temprature"),
+        ({"temperature": [12, 13]}, "temperature"),
+        ({"temperature": 12, "digits": 3}, "digits"),
     ],
 )
 def test_wrong_query_names_its_parameter(client, query, parameter):
     problem = assert_problem(client.get("/v1/water", params=query), 422, "invalid-request")
     assert [error["parameter"] for error in problem["errors"]] == [parameter]
+
+
+def test_water_has_the_digits_asked_for(client):
+    exact, rounded = (
+        client.get("/v1/water", params={"temperature": 12.3, "digits": digits}).json()["result"]["density"]
+        for digits in (17, 5)
+    )
+    assert rounded == float(f"{exact:.5g}") != exact
+
+
+def test_range_of_water_in_fahrenheit(client):
+    response = client.get("/v1/water", params={"temperature": 20, "unit_system": "us"})
+    problem = assert_problem(response, 422, "water-out-of-range")
+    assert (problem["lowest"], problem["highest"], problem["unit"]) == (32.0, 104.0, "[degF]")
+    assert "-6.6" not in response.text  # what was asked for is not repeated
 
 
 def test_water_outside_its_range(client):

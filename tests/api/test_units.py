@@ -6,7 +6,8 @@ import pytest
 from forebay.api.envelope import units_of
 from forebay.api.routers.registry import OPERATIONS
 from forebay.api.units import FOOT, SHARED_UNITS, US_UNITS, UnitSystem
-from support.http import SAMPLE, a_sample
+from forebay.trade.applicability.review import CATALOGUE
+from support.http import SAMPLE, a_sample, assert_problem
 
 QUANTITIES = [
     "direction_deg",
@@ -98,6 +99,41 @@ def test_every_number_of_an_answer_has_its_unit(answer_to_example, operation, sy
     answer = answer_to_example(operation.operation_id, system)
     assert answer.status_code == 200, answer.text
     assert numeric_names(answer.json()["result"]) <= set(answer.json()["units"])
+
+
+def test_warnings_in_the_units_asked_for(ready_client):
+    request = a_sample(digits=17)
+    si, us = (ready_client.post(SAMPLE, json=body).json()["warnings"] for body in (request, in_feet(request)))
+    assert [warning["code"] for warning in us] == [warning["code"] for warning in si]
+    (metres,), (feet,) = ([w for w in warnings if w["code"] == "near-field"] for warnings in (si, us))
+    assert (metres["value"], metres["limit"], metres["unit"]) == (4.0, 8.0, "m")
+    # two divisions by 0.3048 and one multiplication
+    assert (feet["value"] * FOOT, feet["limit"] * FOOT) == pytest.approx((4.0, 8.0), rel=1e-15)
+    assert feet["unit"] == "[ft_i]"
+    assert "8 m" in feet["message"]
+    for warning in si + us:
+        compared = warning["value"] is not None or warning["limit"] is not None
+        assert (warning["unit"] is not None) is compared
+
+
+@pytest.mark.parametrize("kind", CATALOGUE, ids=lambda kind: kind.code)
+def test_every_unit_of_a_warning_has_a_us_counterpart(kind):
+    assert kind.unit is None or kind.unit in set(US_UNITS) | SHARED_UNITS
+
+
+def test_facts_of_a_problem_in_the_units_asked_for(client):
+    shore = {"kind": "straight-bank", "point": [0, 0], "along": [1, 0]}
+    layout = {"depth": 4, "shore": shore, "ambient": {"velocity": [1, 0.123456789]}}
+    si, us = (
+        assert_problem(
+            client.post("/v1/layout/review", json={"unit_system": system, "layout": layout}),
+            422,
+            "current-through-wall",
+        )
+        for system in ("si", "us")
+    )
+    assert abs(si["through"]) == abs(us["through"]) == 0.123457
+    assert (si["unit"], us["unit"]) == ("m/s", "[ft_i]/s")
 
 
 def test_water_in_fahrenheit(client):

@@ -9,6 +9,7 @@ from forebay.flow.layout import (
     Core,
     CoreModel,
     Layout,
+    LineSink,
     Pier,
     Sink,
     StraightBank,
@@ -53,6 +54,33 @@ def test_points_on_land_and_on_an_intake_are_flagged_and_the_rest_answered():
     assert known.tolist() == [True, False, False, False, True]
     assert np.isfinite(samples.columns["vorticity"]).tolist() == known.tolist()
     assert_allclose(samples.columns["x"], z.real)
+
+
+def test_points_on_a_line_element_are_flagged_and_have_the_mean_of_both_sides():
+    """Across a line sink of q per length the velocity jumps by q / 2 on each side of the ambient current."""
+    current, flux = 0.5, 3.0 / 2.0 / 10.0
+    line = LineSink("bay", 0j, 6 + 8j, 3.0)
+    layout = Layout(2.0, ambient=Ambient(current + 0j), elements=(line,))
+    middle, normal = 3 + 4j, 1j * (0.6 + 0.8j)
+    z = np.array([middle, middle + 1e-9 * normal, middle - 1e-9 * normal, 0j, 9 + 12j])
+    samples = sample_field(layout, z)
+    assert [(flag.index, flag.status) for flag in samples.flagged] == [
+        (0, PointStatus.ON_LINE_ELEMENT),
+        (3, PointStatus.ON_SINGULARITY),
+    ]
+    velocity = samples.columns["u"] + 1j * samples.columns["v"]
+    # 1e-9 m beside the line its own part along it has changed by a share of 1e-10
+    assert_allclose(velocity[0], current, atol=1e-9)
+    assert_allclose(velocity[0], (velocity[1] + velocity[2]) / 2, atol=1e-9)
+    assert_allclose(velocity[1] - velocity[2], -flux * normal, atol=1e-9)
+
+
+def test_points_on_a_line_element_on_a_bank_have_the_velocity_of_the_water():
+    layout = Layout(2.0, shore=StraightBank(0j, 1 + 0j), elements=(LineSink("bay", 0j, 10 + 0j, 3.0),))
+    samples = sample_field(layout, np.array([5 + 0j]))
+    assert samples.flagged == ()
+    # the whole discharge from the water side, 3 m3/s over 10 m and 2 m; a dozen roundings
+    assert_allclose(samples.columns["v"], -0.15, rtol=1e-14)
 
 
 def test_surface_of_a_cylinder():

@@ -7,7 +7,9 @@ from forebay.flow.layout import Ambient, Layout, Sink, StraightBank
 from forebay.flow.stagnation.result import Window
 from forebay.workflows.stagnation import search_stagnation
 
-LAYOUT = Layout(1.0, ambient=Ambient(0.5 + 0j), shore=StraightBank(0j, 1 + 0j), elements=(Sink("t", 1j, 5.0),))
+LAYOUT = Layout(
+    1.0, ambient=Ambient(0.5 + 0j), shore=StraightBank(0j, 1 + 0j), elements=(Sink("t", 1j, 5.0),)
+)
 
 
 def test_all_of_the_water():

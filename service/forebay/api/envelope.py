@@ -148,7 +148,7 @@ def document(
     return {
         "result": presented,
         "units": dict(sorted(presenter.units.items())),
-        "warnings": written_warnings(notices, request.digits),
+        "warnings": written_warnings(notices, request.unit_system, request.digits),
         "provenance": provenance(site),
     }
 

@@ -17,6 +17,7 @@ from forebay.api.limits import Limits, Price
 from forebay.api.media import CSV, JSON
 from forebay.api.problems import Problem, from_flow
 from forebay.api.schemas.common import Answer, ComputeRequest
+from forebay.api.units import UnitSystem
 from forebay.api.validation import problem_of
 from forebay.api.warnings import Notice
 from forebay.flow.errors import FlowError
@@ -84,9 +85,10 @@ def perform(
     operation: Operation[Any], body: bytes, media_type: str, *, limits: Limits, allowance: int | None = None
 ) -> Reply | Problem | Deferred:
     """Answer of a body, the problem that stands in its way, or Deferred if its work exceeds `allowance`."""
-    started = perf_counter()
+    started, system = perf_counter(), UnitSystem.SI
     try:
         request = operation.request.model_validate_json(body)
+        system = request.unit_system
         price = operation.price(request)
         limits.check(price)
         if allowance is not None and (price.lengthy or price.work > allowance):
@@ -98,7 +100,7 @@ def perform(
     except ValidationError as error:
         return problem_of(error)
     except FlowError as error:
-        return from_flow(error)
+        return from_flow(error, system)
     times = {"parse": parsed - started, "compute": computed - parsed, "encode": perf_counter() - computed}
     timing = ", ".join(f"{name};dur={1e3 * seconds:.2f}" for name, seconds in times.items())
     return reply._replace(headers={**reply.headers, "Server-Timing": timing})

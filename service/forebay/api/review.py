@@ -22,8 +22,12 @@ def reviewed(
     return Outcome(result, layout, data, review_layout(layout, readings, data=data))
 
 
-def readings_of(columns: dict[str, Any]) -> Readings:
+def readings_of(columns: dict[str, Any], assumed_temperature: float | None = None) -> Readings:
     """What a review looks at of sampled columns; points without a value do not count."""
     points, speeds = columns["x"] + 1j * columns["y"], columns["speed"]
     known = np.isfinite(speeds)
-    return Readings(points=points[known], max_speed=float(speeds[known].max()) if known.any() else None)
+    return Readings(
+        points=points[known],
+        max_speed=float(speeds[known].max()) if known.any() else None,
+        assumed_temperature=assumed_temperature,
+    )

@@ -6,7 +6,7 @@ from typing import Any
 from pydantic import ValidationError
 from pydantic_core import ErrorDetails
 
-from forebay.api.problems import MOST_ERRORS, Problem, pointer
+from forebay.api.problems import LONGEST_TOKEN, MOST_ERRORS, Problem, pointer
 from forebay.flow.errors import Path
 
 UNIONS = frozenset({"shore", "fluid"})
@@ -67,6 +67,20 @@ def _text(detail: ErrorDetails) -> str:
     words = OWN_WORDS.get(detail["type"])
     text = detail["msg"] if words is None else words.format(**detail.get("ctx", {}))
     return text[:LONGEST_DETAIL]
+
+
+def require_known_once(given: Sequence[tuple[str, str]], known: Sequence[str]) -> None:
+    """Refuse query parameters that a route does not have, and repeated ones, of which one would be lost.
+
+    Raises Problem invalid-request that names each.
+    """
+    names = [name for name, _ in given]
+    faults = {name: "Unknown parameter" for name in names if name not in known}
+    faults |= {name: "Given more than once" for name in known if names.count(name) > 1}
+    if faults:
+        raise problem_of_query(
+            [{"loc": (name[:LONGEST_TOKEN],), "msg": text} for name, text in faults.items()]
+        )
 
 
 def problem_of_query(details: Sequence[Any]) -> Problem:

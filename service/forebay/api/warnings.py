@@ -5,6 +5,7 @@ from typing import Any, Protocol
 
 from forebay.api.numbers import round_number
 from forebay.api.problems import API_NAMES, pointer
+from forebay.api.units import UnitSystem
 from forebay.flow.errors import Path
 
 
@@ -28,7 +29,7 @@ class Notice(Protocol):
 
     @property
     def path(self) -> Path:
-        """Steps from the layout to what it is about."""
+        """Steps to what it is about."""
         ...
 
     @property
@@ -42,30 +43,44 @@ class Notice(Protocol):
         ...
 
     @property
+    def unit(self) -> str | None:
+        """UCUM code of both in SI."""
+        ...
+
+    @property
+    def in_layout(self) -> bool:
+        """Whether `path` starts at the layout, not at the request."""
+        ...
+
+    @property
     def source(self) -> str:
         """Where the limit is published."""
         ...
 
 
-def written_warnings(notices: Iterable[Notice], digits: int) -> list[dict[str, Any]]:
-    """Warnings of an answer; `pointer` leads into the request, numbers are in SI as in the message."""
+def written_warnings(notices: Iterable[Notice], system: UnitSystem, digits: int) -> list[dict[str, Any]]:
+    """Warnings of an answer; `pointer` leads into the request, `unit` is that of `value` and `limit`."""
     return [
         {
             "code": notice.code,
             "severity": str(notice.severity),
             "message": notice.message,
-            "pointer": pointer(_in_request(notice.path)),
-            "value": _number(notice.value, digits),
-            "limit": _number(notice.limit, digits),
+            "pointer": pointer(_in_request(notice)),
+            "value": _number(notice.value, notice, system, digits),
+            "limit": _number(notice.limit, notice, system, digits),
+            "unit": None if notice.unit is None else system.code(notice.unit),
             "source": notice.source,
         }
         for notice in notices
     ]
 
 
-def _in_request(path: Path) -> Path:
-    return ("layout", *(API_NAMES.get(step, step) if isinstance(step, str) else step for step in path))
+def _in_request(notice: Notice) -> Path:
+    steps = (API_NAMES.get(step, step) if isinstance(step, str) else step for step in notice.path)
+    return ("layout", *steps) if notice.in_layout else tuple(steps)
 
 
-def _number(value: float | None, digits: int) -> float | None:
-    return None if value is None else round_number(float(value), digits)
+def _number(value: float | None, notice: Notice, system: UnitSystem, digits: int) -> float | None:
+    if value is None:
+        return None
+    return round_number(system.write(float(value), notice.unit or "1"), digits)

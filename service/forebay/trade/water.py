@@ -103,7 +103,7 @@ def _check(field: str, value: float, limits: tuple[float, float], unit: str) -> 
     lowest, highest = limits
     if not lowest <= value <= highest:
         raise WaterRangeError(
-            f"{field} is {value:g} {unit}, must be from {lowest:g} to {highest:g} {unit}",
+            f"{field} must be from {lowest:g} to {highest:g} {unit}",
             (field,),
             lowest=lowest,
             highest=highest,

@@ -8,6 +8,7 @@ import numpy as np
 
 from forebay.flow import derived
 from forebay.flow.arrays import BoolArray, ComplexArray, FloatArray
+from forebay.flow.features import WATER
 from forebay.flow.layout import Layout
 from forebay.flow.model import FlowModel, compile_layout
 from forebay.flow.terms import Jet
@@ -15,6 +16,9 @@ from forebay.trade.water import STANDARD_GRAVITY, water_properties
 
 STILL = 1e-9
 """Vorticity below this part of speed over the layout's scale is rounding: the point is irrotational [-]."""
+
+ON_LINE = 4.0 * float(np.finfo(np.float64).eps)
+"""Distance from a line element, over the size of the coordinates, within which a point lies on it [-]."""
 
 
 class Quantity(StrEnum):
@@ -41,15 +45,16 @@ IRROTATIONAL_ONLY = frozenset({Quantity.POTENTIAL, Quantity.PRESSURE_COEFFICIENT
 
 
 class PointStatus(StrEnum):
-    """Why a point has no value."""
+    """Why a point has no value; or has one that is the mean of both sides of a line element."""
 
     ON_SINGULARITY = "on-singularity"
     ON_LAND = "on-land"
+    ON_LINE_ELEMENT = "on-line-element"
 
 
 @dataclass(frozen=True, slots=True)
 class Flagged:
-    """A point without a value: its index and the reason."""
+    """A point without a value, or on a line element: its index and the reason."""
 
     index: int
     status: PointStatus
@@ -61,7 +66,7 @@ class FieldSamples:
 
     points : shape (n,), x + iy [m]
     columns : x, y [m], u, v, speed [m/s] and what was asked for, SI
-    flagged : points on land or on a singularity, by index
+    flagged : points on land, on a singularity or on a line element in the water, by index
     """
 
     points: ComplexArray
@@ -99,14 +104,31 @@ def sample_field(layout: Layout, points: ComplexArray, quantities: Collection[st
         column = np.full(points.shape, np.nan)
         column[fine] = values
         columns[name] = column
-    return FieldSamples(points, columns, _flags(wet, free))
+    return FieldSamples(points, columns, _flags(wet, free, fine & _on_lines(model, points)))
 
 
-def _flags(wet: BoolArray, free: BoolArray) -> tuple[Flagged, ...]:
+def _flags(wet: BoolArray, free: BoolArray, on_line: BoolArray) -> tuple[Flagged, ...]:
     return tuple(
-        Flagged(int(index), PointStatus.ON_SINGULARITY if wet[index] else PointStatus.ON_LAND)
-        for index in np.flatnonzero(~(wet & free))
+        Flagged(int(index), _status(wet=bool(wet[index]), on_line=bool(on_line[index])))
+        for index in np.flatnonzero(~(wet & free) | on_line)
     )
+
+
+def _status(*, wet: bool, on_line: bool) -> PointStatus:
+    if on_line:
+        return PointStatus.ON_LINE_ELEMENT
+    return PointStatus.ON_SINGULARITY if wet else PointStatus.ON_LAND
+
+
+def _on_lines(model: FlowModel, points: ComplexArray) -> BoolArray:
+    """Which points lie on a line element in the water, where the velocity across it jumps."""
+    on_line, reach = np.zeros(points.shape, dtype=np.bool_), ON_LINE * (np.abs(points) + model.scale)
+    for line in model.lines:
+        if line.on == WATER:
+            chord = line.end - line.start
+            share = np.clip(((points - line.start) / chord).real, 0.0, 1.0)
+            on_line |= np.abs(points - line.start - share * chord) <= reach
+    return on_line
 
 
 def _columns(model: FlowModel, z: ComplexArray, wanted: list[Quantity]) -> dict[str, FloatArray]:

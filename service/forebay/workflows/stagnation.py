@@ -12,7 +12,8 @@ def search_stagnation(layout: Layout, window: Window | None = None) -> Stagnatio
     Parameters
     ----------
     layout : the site
-    window : rectangle to which the answer is restricted; default all of the water where the velocity is rational,
+    window : rectangle to which the answer is restricted; default all of the water where the velocity is
+    rational,
         else a generous region about the elements (see `flow.stagnation.regions`)
 
     Returns

@@ -156,7 +156,7 @@ def _sampled_place(fluid: Fluid, state: SampledState, normals: FloatArray) -> St
 
 def _full_tensor(tensor: FloatArray, field: str) -> FloatArray:
     if np.shape(tensor) not in {(2, 2), (3, 3)}:
-        raise TensorShapeError(f"{field} has shape {np.shape(tensor)}", (field,))
+        raise TensorShapeError(f"{field} must have as many columns as rows, two or three of each", (field,))
     return padded(tensor)
 
 
@@ -166,7 +166,9 @@ def _unit_normals(normals: tuple[tuple[float, ...], ...]) -> FloatArray:
     for k, normal in enumerate(normals):
         largest = max((abs(component) for component in normal), default=0.0)
         if len(normal) not in {2, 3} or largest == 0.0:
-            raise ZeroNormalError(f"normal is {list(normal)}", ("planes", k, "normal"))
+            raise ZeroNormalError(
+                "a normal has two or three components, not all of them zero", ("planes", k, "normal")
+            )
         scaled = np.array(normal) / largest
         units[k, : len(normal)] = scaled / np.linalg.norm(scaled)
     return units

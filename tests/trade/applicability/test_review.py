@@ -52,8 +52,8 @@ ambient-zero bank-shear bed-friction-unknown channel-end-split core-near-wall
 density-difference-unknown depth-range-unknown friction-length intake-elevation-unknown line-ends
 mixing-left-out near-field near-field-overlap near-field-result outfall-jet-reach outfall-jet-speed
 outfall-passive pier-lee port-area-unknown rigid-lid rigid-lid-failed rotational-field
-salient-corner shallow-wake transverse-mixing turbulence-left-out uneven-depth wind-drift
-wind-unknown
+salient-corner shallow-wake transverse-mixing turbulence-left-out uneven-depth water-temperature-assumed
+wind-drift wind-unknown
 """
 
 

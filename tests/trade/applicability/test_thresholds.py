@@ -24,7 +24,7 @@ from forebay.flow.layout import (
     Vortex,
 )
 from forebay.trade.applicability.ideal import END_SHARE
-from forebay.trade.applicability.review import CATALOGUE, RULES
+from forebay.trade.applicability.review import CATALOGUE, RULES, evaluate
 from forebay.trade.applicability.site import Readings, Site, SiteData
 
 RULE = {kind.code: rule for kind, rule in RULES}
@@ -204,6 +204,7 @@ ALWAYS = [
     ("density-difference-unknown", site(STILL, SiteData(density_difference=0.0)), site(STILL), 1),
     ("depth-range-unknown", uneven(4.0), site(STILL), 1),
     ("intake-elevation-unknown", lined(), pair(30.0), 1),
+    ("water-temperature-assumed", site(STILL), site(STILL, readings=Readings(assumed_temperature=10.0)), 1),
 ]
 
 
@@ -211,6 +212,12 @@ ALWAYS = [
 def test_condition(code, silent, loud, count):
     assert raised(code, silent) == []
     assert [warning.code for warning in raised(code, loud)] == [code] * count
+
+
+@pytest.mark.parametrize("loud", [row[2] for row in (*THRESHOLDS, *ALWAYS)])
+def test_unit_stands_where_something_is_compared(loud):
+    for warning in evaluate(loud):
+        assert (warning.unit is not None) is (warning.value is not None or warning.limit is not None)
 
 
 def test_every_warning_is_tested():

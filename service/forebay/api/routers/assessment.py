@@ -1,13 +1,13 @@
 """assessment: the whole job for one layout in one answer."""
 
-from dataclasses import asdict
+from dataclasses import asdict, replace
 from typing import Any
 
 from fastapi import APIRouter
 
 from forebay.api.limits import Price
 from forebay.api.operation import Operation, Outcome
-from forebay.api.review import readings_of, reviewed
+from forebay.api.review import COMPUTED, readings_of, reviewed
 from forebay.api.routers import field, stagnation, stress, withdrawal
 from forebay.api.routers.serving import serve
 from forebay.api.schemas.assessment import CAUTIONS, AssessmentRequest, AssessmentResult
@@ -25,7 +25,9 @@ def compute(request: AssessmentRequest, _media_type: str) -> Outcome:
     )
     assessment = assess_layout(layout, questions)
     samples = assessment.samples
-    readings = None if samples is None else readings_of(samples.columns)
+    assumed = request.layout.water.assumed_temperature
+    readings = COMPUTED if samples is None else readings_of(samples.columns, assumed)
+    readings = replace(readings, has_dissipation=samples is not None)
     return reviewed(request, layout, written(assessment, request), readings)
 
 
@@ -39,7 +41,7 @@ def written(assessment: Assessment, request: AssessmentRequest) -> dict[str, Any
         "boundary_residual": assessment.boundary_residual,
         "transects": [asdict(integral) for integral in assessment.transects],
         "field": samples and request.at and field.written(samples, request.at),
-        "stress": samples and {"states": [stress.written(state) for state in assessment.stress]},
+        "stress": samples and stress.all_written(assessment.stress, request.flow_layout().water),
         "cautions": CAUTIONS,
     }
 

@@ -8,12 +8,13 @@ from starlette.responses import Response
 
 from forebay.api import envelope
 from forebay.api.media import JSON, negotiate
-from forebay.api.problems import Problem
+from forebay.api.problems import Problem, written_facts
 from forebay.api.routers.serving import documented
 from forebay.api.schemas.catalogues import CriteriaResult, LimitsResult, WaterResult
 from forebay.api.schemas.common import Answer
 from forebay.api.schemas.review import WarningsResult
 from forebay.api.units import UnitSystem
+from forebay.api.validation import require_known_once
 from forebay.flow.errors import FlowError
 from forebay.trade.applicability.review import CATALOGUE
 from forebay.trade.criteria import NOT_LISTED, Criterion
@@ -45,12 +46,29 @@ Salinity = Annotated[
     ),
 ]
 Units = Annotated[UnitSystem, Query(description="Units of the parameters and of the answer")]
+Digits = Annotated[
+    int,
+    Query(
+        ge=4,
+        le=17,
+        description="Significant digits of the answer's numbers; 17 gives each exactly",
+        json_schema_extra={"unit": "1"},
+        examples=[9],
+    ),
+]
+WATER_PARAMETERS = ("temperature", "salinity", "unit_system", "digits")
+"""Query parameters of GET /v1/water."""
+
+PLAIN = envelope.Written()
+"""How an answer is written for which nothing can be asked."""
 
 
-def answer(request: Request, model: type[Answer], result: dict[str, Any], units: UnitSystem) -> Response:
+def answer(
+    request: Request, model: type[Answer], result: dict[str, Any], written: envelope.Written = PLAIN
+) -> Response:
     """Envelope of a catalogue."""
     media_type = negotiate(request.headers.get("accept"), (JSON,))
-    document = envelope.document(model, result, request=envelope.Written(units))
+    document = envelope.document(model, result, request=written)
     return Response(envelope.encode(document), media_type=media_type)
 
 
@@ -60,19 +78,21 @@ async def read_water(
     temperature: Temperature,
     salinity: Salinity = 0.0,
     unit_system: Units = UnitSystem.SI,
+    digits: Digits = 9,
     request: Request,
 ) -> Response:
-    result = water(unit_system.read(temperature, "Cel"), salinity)
-    return answer(request, WaterResult, result, unit_system)
+    require_known_once(request.query_params.multi_items(), WATER_PARAMETERS)
+    result = water(temperature, salinity, unit_system)
+    return answer(request, WaterResult, result, envelope.Written(unit_system, digits))
 
 
-def water(temperature: float, salinity: float) -> dict[str, Any]:
+def water(temperature: float, salinity: float, units: UnitSystem) -> dict[str, Any]:
     """Properties in SI with their sources; an error names the query parameter."""
     try:
-        properties = water_properties(temperature, salinity)
+        properties = water_properties(units.read(temperature, "Cel"), salinity)
     except FlowError as error:
         errors = ({"parameter": str(error.path[0]), "detail": error.detail},)
-        raise Problem(error.code, error.detail, errors=errors, facts=error.facts) from None
+        raise Problem(error.code, error.detail, errors=errors, facts=written_facts(error, units)) from None
     return {**asdict(properties), "sources": SOURCES, "left_out": LEFT_OUT}
 
 
@@ -84,7 +104,7 @@ def water(temperature: float, salinity: float) -> dict[str, Any]:
 )
 async def read_criteria(request: Request) -> Response:
     result = {"criteria": [criterion(record) for record in list_criteria()], "not_listed": NOT_LISTED}
-    return answer(request, CriteriaResult, result, UnitSystem.SI)
+    return answer(request, CriteriaResult, result)
 
 
 def criterion(record: Criterion) -> dict[str, Any]:
@@ -108,7 +128,7 @@ def criterion(record: Criterion) -> dict[str, Any]:
     **documented(WarningsResult),
 )
 async def read_warnings(request: Request) -> Response:
-    return answer(request, WarningsResult, {"warnings": [asdict(kind) for kind in CATALOGUE]}, UnitSystem.SI)
+    return answer(request, WarningsResult, {"warnings": [asdict(kind) for kind in CATALOGUE]})
 
 
 @router.get(
@@ -118,4 +138,4 @@ async def read_warnings(request: Request) -> Response:
     **documented(LimitsResult),
 )
 async def read_limits(request: Request) -> Response:
-    return answer(request, LimitsResult, request.app.state.limits._asdict(), UnitSystem.SI)
+    return answer(request, LimitsResult, request.app.state.limits._asdict())

@@ -11,13 +11,22 @@ from forebay.api.review import readings_of, reviewed
 from forebay.api.routers.serving import serve
 from forebay.api.schemas.field import FieldResult, SampleRequest
 from forebay.api.schemas.places import At
-from forebay.workflows.sample import FieldSamples, sample_field
+from forebay.workflows.sample import FieldSamples, Quantity, sample_field
+
+OF_DENSITY = frozenset({Quantity.PRESSURE_GRADIENT_ALONG, Quantity.PRESSURE_GRADIENT_ACROSS})
+"""Quantities that depend on the density of the water."""
 
 
 def compute(request: SampleRequest, _media_type: str) -> Outcome:
     layout = request.flow_layout()
     samples = sample_field(layout, request.at.positions(request.unit_system), request.wanted())
-    return reviewed(request, layout, written(samples, request.at), readings_of(samples.columns))
+    readings = readings_of(samples.columns, assumed(request))
+    return reviewed(request, layout, written(samples, request.at), readings)
+
+
+def assumed(request: SampleRequest) -> float | None:
+    """Temperature [degC] that nobody gave, if what is asked for depends on it."""
+    return request.layout.water.assumed_temperature if OF_DENSITY & set(request.wanted()) else None
 
 
 def written(samples: FieldSamples, at: At) -> dict[str, Any]:
@@ -39,9 +48,10 @@ SAMPLE = Operation(
     summary="Velocity and derived quantities at points, along a line or on a grid",
     description=(
         "Columns of the same length as the points. A point on land or on a singularity has null "
-        "values and is listed in `flagged`. Derivatives are exact, not differences. `head_change` and "
-        "`pressure_coefficient` are Bernoulli against the ambient speed. With `Accept: text/csv` the "
-        "columns come as a table."
+        "values and is listed in `flagged`, as is a point on a line element in the water, where the "
+        "velocity jumps and the mean of both sides is given. Derivatives are exact, not differences. "
+        "`head_change` and `pressure_coefficient` are Bernoulli against the ambient speed. With "
+        "`Accept: text/csv` the columns come as a table."
     ),
     request=SampleRequest,
     result=FieldResult,

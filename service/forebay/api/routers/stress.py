@@ -1,16 +1,22 @@
 """stress/tensor: stress from velocity gradients, measured velocities, or a layout."""
 
+from collections.abc import Sequence
 from dataclasses import asdict
 from typing import Any
 
 from fastapi import APIRouter
 
 from forebay.api.limits import Price
+from forebay.api.names import refuse_repeated
 from forebay.api.operation import Operation, Outcome
 from forebay.api.routers.serving import serve
 from forebay.api.schemas.stress import StressRequest, StressResult
+from forebay.flow.layout import Water
+from forebay.flow.stress import Fluid
 from forebay.flow.stress_state import StressState
+from forebay.trade.applicability.missing import temperature_assumed
 from forebay.trade.applicability.site import Readings
+from forebay.trade.fluids import newtonian_fluid
 from forebay.workflows.layout_stress import compute_layout_stress
 from forebay.workflows.review import review_layout
 from forebay.workflows.stress import compute_stress
@@ -23,15 +29,29 @@ EFFORT_A_STATE = 10_000
 
 
 def compute(request: StressRequest, _media_type: str) -> Outcome:
-    fluid = request.flow_fluid()
+    fluid, units, assumed = request.flow_fluid(), request.unit_system, request.assumed_temperature
+    notices = () if assumed is None else (temperature_assumed(assumed, ("fluid",), in_layout=False),)
     if request.layout is None or request.at is None:
-        states = tuple(state.to_flow(request.unit_system) for state in request.states or ())
-        return Outcome({"states": [written(state) for state in compute_stress(fluid, states)]})
-    layout = request.layout.to_flow(request.unit_system)
-    found = compute_layout_stress(fluid, layout, request.at.positions(request.unit_system))
-    data = request.layout.site_data(request.unit_system)
-    notices = review_layout(layout, Readings(has_dissipation=True), data=data)
-    return Outcome({"states": [written(state) for state in found]}, layout, data, notices)
+        refuse_repeated(request.states or (), "states")
+        states = tuple(state.to_flow(units) for state in request.states or ())
+        return Outcome(all_written(compute_stress(fluid, states), fluid), warnings=notices)
+    layout, data = request.layout.to_flow(units), request.layout.site_data(units)
+    found = compute_layout_stress(fluid, layout, request.at.positions(units))
+    own = request.layout.water.assumed_temperature if request.fluid is None else None
+    readings = Readings(has_dissipation=True, assumed_temperature=own)
+    notices = (*review_layout(layout, readings, data=data), *notices)
+    return Outcome(all_written(found, fluid), layout, data, notices)
+
+
+def all_written(states: Sequence[StressState], fluid: Water | Fluid) -> dict[str, Any]:
+    """Fields of every state, and of the fluid that they are of."""
+    known = newtonian_fluid(fluid)
+    properties = {
+        "dynamic_viscosity": known.dynamic_viscosity,
+        "density": known.density,
+        "second_viscosity": known.second_viscosity,
+    }
+    return {"fluid": properties, "states": [written(state) for state in states]}
 
 
 def written(state: StressState) -> dict[str, Any]:

@@ -13,7 +13,6 @@ from forebay.api.schemas.quantities import (
     KinematicValue,
     OwnUnitValue,
     PressureValue,
-    RatioValue,
     SalinityValue,
     SurfaceTensionValue,
     TemperatureValue,
@@ -45,7 +44,7 @@ class LimitsResult(Answer):
     max_elements: Annotated[CountValue, Field(description="Elements and structures of a layout")]
     max_pairs: Annotated[CountValue, Field(description="Pairs of element and point")]
     max_values: Annotated[CountValue, Field(description="Numbers in an answer")]
-    deadline: Annotated[TimeValue, Field(description="Longest computation")]
+    deadline: Annotated[TimeValue, Field(description="Longest computation, waiting for a worker included")]
     workers: Annotated[CountValue, Field(description="Processes for large computations")]
     queue: Annotated[CountValue, Field(description="Large computations that may wait")]
 
@@ -83,10 +82,19 @@ class WarningValue(Answer):
         str, Field(description="Permanent name; GET /v1/warnings explains it", examples=["rigid-lid"])
     ]
     severity: Annotated[str, Field(description="note, caution or unsafe-to-use", examples=["caution"])]
-    message: Annotated[str, Field(description="What an engineer reads")]
+    message: Annotated[
+        str, Field(description="What an engineer reads; its numbers are in SI and name their units")
+    ]
     pointer: Annotated[str, Field(description="What it is about", examples=["#/layout/elements/0"])]
-    value: Annotated[RatioValue, Field(description="Number compared, in the unit that the message names")]
-    limit: Annotated[RatioValue, Field(description="Number it was compared with")]
+    value: Annotated[OwnUnitValue, Field(description="Number compared, in `unit`")]
+    limit: Annotated[OwnUnitValue, Field(description="Number it was compared with, in `unit`")]
+    unit: Annotated[
+        str | None,
+        Field(
+            description="UCUM code of `value` and `limit` in the request's unit system; 1 for pure numbers",
+            examples=["m"],
+        ),
+    ]
     source: Annotated[str, Field(description="Where the limit is published")]
 
 

@@ -7,6 +7,7 @@ import numpy as np
 from pydantic import Field, model_validator
 from pydantic_core import PydanticCustomError
 
+from forebay.api.names import refuse_repeated
 from forebay.api.schemas.common import Answer, Name, Strict
 from forebay.api.schemas.layout import LayoutRequest
 from forebay.api.schemas.quantities import (
@@ -21,6 +22,7 @@ from forebay.api.schemas.quantities import (
 )
 from forebay.api.units import UnitSystem
 from forebay.flow.contour import ContourStatus
+from forebay.flow.errors import FlowError
 from forebay.flow.paths import Arc, BrokenPathError, Piece, Straight
 from forebay.flow.paths import Contour as FlowContour
 
@@ -29,6 +31,13 @@ MAX_CONTOURS = 1000
 
 MAX_SEGMENTS = 100_000
 """Vertices of a polyline, or segments of a path."""
+
+
+class EmptyContourError(FlowError):
+    """A contour has no length: it is a point, along which nothing can be integrated."""
+
+    code = "contour-without-length"
+    title = "A contour has no length"
 
 
 class Circle(Strict):
@@ -119,7 +128,7 @@ class Contour(Strict):
     def to_flow(self, units: UnitSystem) -> FlowContour:
         """Contour in SI.
 
-        Raises BrokenPathError with the path from this contour.
+        Raises BrokenPathError, whose path is that of the piece at fault, or empty if there is no length.
         """
         if self.polyline is not None:
             points = np.array([units.position(pair) for pair in self.polyline])
@@ -127,11 +136,7 @@ class Contour(Strict):
         if self.circle is not None:
             centre, radius = units.position(self.circle.centre), units.read(self.circle.radius, "m")
             return FlowContour.circle(self.name, centre, radius)
-        try:
-            return FlowContour(self.name, tuple(piece.to_flow(units) for piece in self.path or ()))
-        except BrokenPathError as error:
-            error.path = ("path", *error.path)
-            raise
+        return FlowContour(self.name, tuple(piece.to_flow(units) for piece in self.path or ()))
 
 
 Contours = Annotated[list[Contour], Field(max_length=MAX_CONTOURS, description="Contours")]
@@ -139,12 +144,15 @@ Contours = Annotated[list[Contour], Field(max_length=MAX_CONTOURS, description="
 
 def flow_contours(contours: list[Contour], units: UnitSystem, field: str) -> tuple[FlowContour, ...]:
     """Contours in SI; an error names its place below the request's `field`."""
+    refuse_repeated(contours, field)
     converted = []
     for index, contour in enumerate(contours):
         try:
             converted.append(contour.to_flow(units))
         except BrokenPathError as error:
-            error.path = (field, index, *error.path)
+            if not error.path:
+                raise EmptyContourError("all its points are one", (field, index)) from None
+            error.path = (field, index, "path", *error.path)
             raise
     return tuple(converted)
 

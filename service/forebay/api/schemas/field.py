@@ -21,6 +21,16 @@ from forebay.api.schemas.quantities import (
 )
 from forebay.workflows.sample import PointStatus, Quantity
 
+BOTH_SIDES = "at a point on a line element in the water, the mean of both sides"
+"""What a velocity is where it jumps."""
+
+BRANCH = (
+    "on the branch of principal logarithms: cuts run from each element with discharge or circulation, and "
+    "from its images, so that a difference across a cut is off by that element's flux or circulation; "
+    "contour/integrate has no cuts"
+)
+"""Which of its many values a potential has."""
+
 
 class SampleRequest(LayoutRequest):
     """Field of a layout at points."""
@@ -42,10 +52,13 @@ class SampleRequest(LayoutRequest):
 
 
 class Flagged(Answer):
-    """A point without a value."""
+    """A point without a value, or with one to know more about."""
 
     index: Annotated[CountValue, Field(description="Index of the point, from 0")]
-    status: Annotated[PointStatus, Field(description="Why")]
+    status: Annotated[
+        PointStatus,
+        Field(description="Why there is none; `on-line-element`: the values are means of both sides"),
+    ]
 
 
 class FieldResult(Answer):
@@ -53,12 +66,12 @@ class FieldResult(Answer):
 
     x: list[LengthValue]
     y: list[LengthValue]
-    u: list[SpeedValue]
-    v: list[SpeedValue]
+    u: Annotated[list[SpeedValue], Field(description=f"Velocity along x; {BOTH_SIDES}")]
+    v: Annotated[list[SpeedValue], Field(description=f"Velocity along y; {BOTH_SIDES}")]
     speed: list[SpeedValue]
     direction_deg: list[AngleValue] = []
-    potential: list[FluxValue] = []
-    stream_function: list[FluxValue] = []
+    potential: Annotated[list[FluxValue], Field(description=f"Velocity potential; {BRANCH}")] = []
+    stream_function: Annotated[list[FluxValue], Field(description=f"Stream function; {BRANCH}")] = []
     pressure_coefficient: list[RatioValue] = []
     head_change: list[LengthValue] = []
     pressure_gradient_along: list[PressureGradientValue] = []
@@ -71,4 +84,6 @@ class FieldResult(Answer):
     acceleration_x: list[AccelerationValue] = []
     acceleration_y: list[AccelerationValue] = []
     shape: Annotated[list[CountValue], Field(description="[ny, nx] of a grid, row by row; [n] otherwise")]
-    flagged: Annotated[list[Flagged], Field(description="Points without a value")]
+    flagged: Annotated[
+        list[Flagged], Field(description="Points without a value, and points on a line element")
+    ]

@@ -31,6 +31,10 @@ class WarningKindValue(Answer):
     threshold: Annotated[str, Field(description="When it is raised")]
     formula: Annotated[str, Field(description="What is compared")]
     source: Annotated[str, Field(description="Where the threshold is published")]
+    unit: Annotated[
+        str | None,
+        Field(description="UCUM code of what is compared; null if nothing is", examples=["m"]),
+    ]
 
 
 class WarningsResult(Answer):

@@ -13,6 +13,7 @@ from forebay.api.schemas.quantities import (
     CountValue,
     CovarianceValue,
     Density,
+    DensityValue,
     DynamicViscosity,
     MetresPerSecond,
     Pascals,
@@ -25,6 +26,7 @@ from forebay.api.schemas.quantities import (
     RatioValue,
     SecondViscosity,
     SpeedValue,
+    ViscosityValue,
 )
 from forebay.api.units import UnitSystem
 from forebay.flow.gradient_fit import VelocitySamples
@@ -142,7 +144,7 @@ class State(Strict):
 
 def _tensor(rows: list[list[float]]) -> Any:  # noqa: ANN401
     if len({len(row) for row in rows} | {len(rows)}) != 1:
-        return np.empty((0, 0))
+        return np.empty((0, 0))  # which the computation refuses, as it does every tensor that is not square
     return np.array(rows, dtype=np.float64)
 
 
@@ -175,6 +177,11 @@ class StressRequest(ComputeRequest):
         if self.layout is None:
             raise TypeError("a request without fluid and layout passed its validation")
         return self.layout.water.to_flow(self.unit_system)
+
+    @property
+    def assumed_temperature(self) -> float | None:
+        """Temperature [degC] that nobody gave, of a `fluid` that is water; None of any other."""
+        return self.fluid.assumed_temperature if isinstance(self.fluid, Water) else None
 
 
 class CircleValue(Answer):
@@ -242,7 +249,21 @@ class StateValue(Answer):
     standard_errors: StandardErrorsValue | None = None
 
 
+class FluidValue(Answer):
+    """The fluid whose stress it is."""
+
+    dynamic_viscosity: ViscosityValue
+    density: DensityValue
+    second_viscosity: Annotated[
+        ViscosityValue,
+        Field(
+            description="Factor of div u in the stress; null where Stokes' hypothesis sets -2/3 of dynamic"
+        ),
+    ]
+
+
 class StressResult(Answer):
     """Stress of every state, in order."""
 
+    fluid: Annotated[FluidValue, Field(description="The fluid used")]
     states: list[StateValue]

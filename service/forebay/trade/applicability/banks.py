@@ -24,6 +24,7 @@ BANK_SHEAR = WarningKind(
     ),
     formula="an intake nearer than Q / (2 pi h U) draws from the bank itself",
     source="sink beside a wall (own check); slow bank water: open-channel hydraulics",
+    unit="m",
 )
 
 CORE_NEAR_WALL = WarningKind(
@@ -33,6 +34,7 @@ CORE_NEAR_WALL = WarningKind(
     threshold="distance < 2 core radii (rankine) or 3 (lamb-oseen)",
     formula="strain by the image over vorticity a^2 / (8 d^2), 3 % at 2 a; exp(-d^2 / a^2) = 1e-4 at 3 a",
     source="Lamb-Oseen and Rankine vortex profiles (own check)",
+    unit="m",
 )
 
 SALIENT_CORNER = WarningKind(
@@ -44,6 +46,7 @@ SALIENT_CORNER = WarningKind(
     threshold="interior angle > 180 deg",
     formula="speed ~ r^(pi/alpha - 1)",
     source="corner flow (Batchelor 1967, section 6.5)",
+    unit="deg",
 )
 
 CHANNEL_END_SPLIT = WarningKind(
@@ -55,6 +58,7 @@ CHANNEL_END_SPLIT = WarningKind(
     threshold="zero ambient velocity in a channel, and a net discharge",
     formula="net discharge / 2 at each end",
     source="convention of this service",
+    unit="m3/s",
 )
 
 

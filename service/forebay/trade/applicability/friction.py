@@ -25,6 +25,7 @@ FRICTION_LENGTH = WarningKind(
     threshold="largest distance between elements or piers > 0.3 L_f",
     formula="L_f = h / c_f",
     source="shallow-flow momentum balance (Chen and Jirka 1995); share customary",
+    unit="m",
 )
 
 TRANSVERSE_MIXING = WarningKind(
@@ -36,6 +37,7 @@ TRANSVERSE_MIXING = WarningKind(
     threshold="sigma > w / 4",
     formula="sigma = sqrt(2 eps x / U), eps = 0.6 h u*, u* = U sqrt(c_f), w = Q / (h U)",
     source="Fischer et al. 1979, Mixing in Inland and Coastal Waters, chapter 5",
+    unit="m",
 )
 
 MIXING_LEFT_OUT = WarningKind(

@@ -19,6 +19,7 @@ LINE_ENDS = WarningKind(
     ),
     formula="v = (sigma / 2 pi) ln((s - x) / x) along, sigma / 2 across; equal at x = s / (1 + exp(pi))",
     source="line source potential (own check)",
+    unit="m",
 )
 
 ROTATIONAL_FIELD = WarningKind(
@@ -28,6 +29,7 @@ ROTATIONAL_FIELD = WarningKind(
     threshold="vorticity of the ambient gradient not zero, or a vortex with a core",
     formula="omega = dv/dx - du/dy",
     source="Kelvin's and Bernoulli's theorems (Batchelor 1967, sections 3.5 and 5.3)",
+    unit="1/s",
 )
 
 AMBIENT_ZERO = WarningKind(
@@ -37,6 +39,7 @@ AMBIENT_ZERO = WarningKind(
     threshold="ambient velocity zero, and an intake",
     formula="width Q / (h U) for U -> 0",
     source="sink in a uniform current (Bear 1979, Hydraulics of Groundwater; own check)",
+    unit="m/s",
 )
 
 

@@ -1,6 +1,7 @@
 """What is not known of a site and would have to be, for the other rules to be evaluated."""
 
 from collections.abc import Iterator
+from dataclasses import replace
 
 from forebay.flow.errors import Path
 from forebay.flow.layout import Sink
@@ -30,6 +31,16 @@ DENSITY_DIFFERENCE_UNKNOWN = _unknown(
 DEPTH_RANGE_UNKNOWN = _unknown("depth-range-unknown", "range of depth", "the effect of an uneven bed")
 INTAKE_ELEVATION_UNKNOWN = _unknown(
     "intake-elevation-unknown", "elevation of an intake", "whether its near field reaches one depth or two"
+)
+
+WATER_TEMPERATURE_ASSUMED = WarningKind(
+    code="water-temperature-assumed",
+    severity=Severity.NOTE,
+    meaning="no water temperature is given: density and viscosity are those at the default temperature",
+    threshold="temperature missing where an answer depends on it; value: the temperature assumed [Cel]",
+    formula="none",
+    source="convention of this service",
+    unit="Cel",
 )
 
 
@@ -73,6 +84,20 @@ def intake_elevation_unknown(site: Site) -> Iterator[ApplicabilityWarning]:
     for path, element in site.elements():
         if isinstance(element, Sink):
             yield _of(INTAKE_ELEVATION_UNKNOWN, element.name, path)
+
+
+def water_temperature_assumed(site: Site) -> Iterator[ApplicabilityWarning]:
+    """An answer that depends on a temperature that the layout does not give."""
+    assumed = site.readings.assumed_temperature
+    if assumed is not None:
+        yield temperature_assumed(assumed, ("water", "temperature"))
+
+
+def temperature_assumed(temperature: float, path: Path, *, in_layout: bool = True) -> ApplicabilityWarning:
+    """The note that a temperature [degC] is the default one; `path` from the layout or from the request."""
+    message = f"No water temperature is given: density and viscosity are those at {temperature:g} degC."
+    raised = WATER_TEMPERATURE_ASSUMED.raised(message, path, value=temperature)
+    return replace(raised, in_layout=in_layout)
 
 
 def _of(kind: WarningKind, name: str, path: Path) -> ApplicabilityWarning:

@@ -25,6 +25,7 @@ NEAR_FIELD = WarningKind(
     threshold="always, for every point source and sink; value: one depth, limit: two depths [m]",
     formula=RATIO,
     source=SOURCE,
+    unit="m",
 )
 
 NEAR_FIELD_OVERLAP = WarningKind(
@@ -37,6 +38,7 @@ NEAR_FIELD_OVERLAP = WarningKind(
     threshold="distance below two depths (below one depth if the opening is at mid-depth)",
     formula=RATIO,
     source=SOURCE,
+    unit="m",
 )
 
 NEAR_FIELD_RESULT = WarningKind(
@@ -46,6 +48,7 @@ NEAR_FIELD_RESULT = WarningKind(
     threshold="distance below two depths (below one depth if the opening is at mid-depth)",
     formula=RATIO,
     source=SOURCE,
+    unit="m",
 )
 
 

@@ -32,6 +32,7 @@ OUTFALL_JET_SPEED = WarningKind(
     threshold="U0 / Ua > 1",
     formula="U0 = Q / port area, Ua the current",
     source=JETS,
+    unit="1",
 )
 
 OUTFALL_JET_REACH = WarningKind(
@@ -41,6 +42,7 @@ OUTFALL_JET_REACH = WarningKind(
     threshold="distance < 5 l_M",
     formula="l_M = sqrt(Q U0) / Ua, U0 = Q / port area",
     source=JETS,
+    unit="m",
 )
 
 

@@ -34,6 +34,7 @@ RULES: tuple[tuple[WarningKind, Rule], ...] = (
     (ideal.ROTATIONAL_FIELD, ideal.rotational_field),
     (ideal.LINE_ENDS, ideal.line_ends),
     (ideal.AMBIENT_ZERO, ideal.ambient_zero),
+    (missing.WATER_TEMPERATURE_ASSUMED, missing.water_temperature_assumed),
     (missing.BED_FRICTION_UNKNOWN, missing.bed_friction_unknown),
     (missing.PORT_AREA_UNKNOWN, missing.port_area_unknown),
     (missing.INTAKE_ELEVATION_UNKNOWN, missing.intake_elevation_unknown),

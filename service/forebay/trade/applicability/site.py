@@ -50,11 +50,13 @@ class Readings:
 
     points : where values were asked for [m];  max_speed : largest speed among them [m/s]
     has_dissipation : whether strain, dissipation or G are in it
+    assumed_temperature : of the water [degC], where the answer depends on it and nobody gave it
     """
 
     points: ComplexArray | None = None
     max_speed: float | None = None
     has_dissipation: bool = False
+    assumed_temperature: float | None = None
 
 
 Thing = Element | Pier

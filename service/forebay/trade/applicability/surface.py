@@ -31,6 +31,7 @@ RIGID_LID = WarningKind(
     threshold="F > 0.3 (depth changes by 4.5 %), up to 0.5",
     formula="F = V / sqrt(g h); relative change of depth F^2 / 2",
     source=LID,
+    unit="1",
 )
 
 RIGID_LID_FAILED = WarningKind(
@@ -40,6 +41,7 @@ RIGID_LID_FAILED = WarningKind(
     threshold="F > 0.5 (depth changes by 12.5 %)",
     formula="F = V / sqrt(g h); relative change of depth F^2 / 2",
     source=LID,
+    unit="1",
 )
 
 WIND_DRIFT = WarningKind(
@@ -49,6 +51,7 @@ WIND_DRIFT = WarningKind(
     threshold="0.03 W > 0.3 U",
     formula="drift = 0.03 W, W the wind speed at 10 m",
     source="AMS Glossary of Meteorology, wind drift: 2.5 to 3 % of the wind speed",
+    unit="m/s",
 )
 
 UNEVEN_DEPTH = WarningKind(
@@ -58,6 +61,7 @@ UNEVEN_DEPTH = WarningKind(
     threshold="(largest - least depth) / mean depth > 0.2",
     formula="div (h u) = 0",
     source="shallow-water continuity; threshold customary",
+    unit="1",
 )
 
 

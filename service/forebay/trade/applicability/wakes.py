@@ -30,6 +30,7 @@ PIER_LEE = WarningKind(
     threshold="Re = U D / nu > 50, which is every pier in a current",
     formula="shedding frequency f = 0.2 U / D; lee of at least 5 D",
     source="bluff-body shedding, Strouhal number about 0.2 (Blevins, Flow-Induced Vibration)",
+    unit="1",
 )
 
 SHALLOW_WAKE = WarningKind(
@@ -39,6 +40,7 @@ SHALLOW_WAKE = WarningKind(
     threshold="S < 0.2 vortex street, 0.2 to 0.5 unsteady bubble, > 0.5 steady bubble",
     formula="S = c_f D / h",
     source="Chen and Jirka 1995, Fluid Dynamics Research 16, 11-34",
+    unit="1",
 )
 
 

@@ -19,8 +19,9 @@ class ApplicabilityWarning:
     """A number was computed, but this is where it should not be trusted.
 
     code : permanent name;  severity : how serious;  message : what an engineer reads, in SI
-    path : steps from the layout to what it is about
-    value, limit : what was compared, in the unit that the message names, None if there is nothing to compare
+    path : steps to what it is about, from the layout if `in_layout`, else from the request
+    value, limit : what was compared, in `unit`, None if there is nothing to compare
+    unit : UCUM code of value and limit, "1" for pure numbers, None without either
     source : where the limit is published
     """
 
@@ -31,6 +32,8 @@ class ApplicabilityWarning:
     value: float | None
     limit: float | None
     source: str
+    unit: str | None = None
+    in_layout: bool = True
 
 
 @dataclass(frozen=True, slots=True)
@@ -38,6 +41,7 @@ class WarningKind:
     """Entry of the catalogue.
 
     meaning : what is wrong with the numbers;  threshold : when it is raised;  formula : what is compared
+    unit : UCUM code of what is compared, "1" for pure numbers, None if nothing is
     """
 
     code: str
@@ -46,9 +50,13 @@ class WarningKind:
     threshold: str
     formula: str
     source: str
+    unit: str | None = None
 
     def raised(
         self, message: str, path: Path = (), *, value: float | None = None, limit: float | None = None
     ) -> ApplicabilityWarning:
         """An occurrence of this kind."""
-        return ApplicabilityWarning(self.code, self.severity, message, path, value, limit, self.source)
+        unit = None if value is None and limit is None else self.unit
+        return ApplicabilityWarning(
+            self.code, self.severity, message, path, value, limit, self.source, unit=unit
+        )
