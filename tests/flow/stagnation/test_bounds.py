@@ -89,7 +89,12 @@ def test_discs_hold_on_every_shore(shore, kinds):
     field = BoundedField(model)
     generator = np.random.default_rng(5)
     at = np.array([s.at for s in model.singularities] + [line.start for line in model.lines])
-    z = np.concatenate([at + 10.0 ** generator.uniform(-1, 1) * np.exp(1j * generator.uniform(0, 6, at.size)) for _ in range(12)])
+    z = np.concatenate(
+        [
+            at + 10.0 ** generator.uniform(-1, 1) * np.exp(1j * generator.uniform(0, 6, at.size))
+            for _ in range(12)
+        ]
+    )
     z = z[model.wet(z)]
     room = np.min(np.abs(z[:, None] - at), axis=1)
     for line in model.lines:

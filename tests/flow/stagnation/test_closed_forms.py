@@ -70,7 +70,9 @@ def test_cylinder_with_circulation_below_the_limit(circulation):
     assert_allclose(places(search), [complex(-across, height), complex(across, height)], atol=ROUNDING)
 
 
-@pytest.mark.parametrize(("ratio", "radius"), [(1.25, 2.0), (1.5, 2.618033988749895), (2.0, 3.732050807568877)])
+@pytest.mark.parametrize(
+    ("ratio", "radius"), [(1.25, 2.0), (1.5, 2.618033988749895), (2.0, 3.732050807568877)]
+)
 def test_cylinder_with_circulation_beyond_the_limit(ratio, radius):
     """One point detaches to r = a (k + sqrt(k^2 - 1)), k = Gamma / (4 pi U a)."""
     search = found(ambient=Ambient(1 + 0j), structures=(Pier("p", 0j, 1.0, 4 * pi * ratio),))
@@ -182,7 +184,10 @@ def test_vortex_in_a_basin_has_the_corners_alone():
     search = found(Vortex("v", 5 + 3j, 1.0), shore=Basin(0j, 1 + 0j, 10.0, 6.0))
     assert search.degree == 0
     assert {point.on for point in search.points} == {
-        "right bank/near end", "right bank/far end", "far end/left bank", "left bank/near end"
+        "right bank/near end",
+        "right bank/far end",
+        "far end/left bank",
+        "left bank/near end",
     }
 
 
@@ -196,7 +201,9 @@ def test_source_and_sink_in_a_basin_mirror_each_other():
     ("layout", "at", "on"),
     [
         (  # two sinks at the limit spacing q / (pi U), Javandel and Tsang 1986
-            Layout(4.0, ambient=Ambient(0.5), elements=(Sink("a", 0.5j / pi, 2.0), Sink("b", -0.5j / pi, 2.0))),
+            Layout(
+                4.0, ambient=Ambient(0.5), elements=(Sink("a", 0.5j / pi, 2.0), Sink("b", -0.5j / pi, 2.0))
+            ),
             1 / (2 * pi),
             "water",
         ),
@@ -206,7 +213,9 @@ def test_source_and_sink_in_a_basin_mirror_each_other():
             "bank",
         ),
         (  # intake upstream of an equal outfall at q = pi U d
-            Layout(1.0, ambient=Ambient(0.5), elements=(Sink("a", -1 + 0j, pi / 2), Source("b", 1 + 0j, pi / 2))),
+            Layout(
+                1.0, ambient=Ambient(0.5), elements=(Sink("a", -1 + 0j, pi / 2), Source("b", 1 + 0j, pi / 2))
+            ),
             0.0,
             "water",
         ),
@@ -231,7 +240,9 @@ def test_double_points_are_degenerate(layout, at, on):
 def test_double_sinks_near_the_limit_are_two_points():
     """At a spacing 1e-10 from the limit the zeros lie 1e-5 apart and are told from each other."""
     half = 0.5 / pi * (1 + 1e-10)
-    search = found(Sink("a", 1j * half, 2.0), Sink("b", -1j * half, 2.0), depth=4.0, ambient=Ambient(0.5 + 0j))
+    search = found(
+        Sink("a", 1j * half, 2.0), Sink("b", -1j * half, 2.0), depth=4.0, ambient=Ambient(0.5 + 0j)
+    )
     assert [point.kind for point in search.points] == [StagnationKind.SADDLE] * 2
 
 

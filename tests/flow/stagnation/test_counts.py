@@ -5,7 +5,18 @@ from dataclasses import replace
 import numpy as np
 import pytest
 
-from forebay.flow.layout import Ambient, Basin, Channel, Doublet, Layout, OpenWater, Sink, Source, StraightBank, Vortex
+from forebay.flow.layout import (
+    Ambient,
+    Basin,
+    Channel,
+    Doublet,
+    Layout,
+    OpenWater,
+    Sink,
+    Source,
+    StraightBank,
+    Vortex,
+)
 from forebay.flow.model import compile_layout
 from forebay.flow.stagnation.count import UncountableFieldError, far_field
 from forebay.flow.stagnation.result import SearchMethod, Window
@@ -57,7 +68,9 @@ def test_many(shore, count):
 
 
 def _far(*elements, shore=OpenWater(), velocity=0j):  # noqa: B008 - frozen
-    return far_field(compile_layout(Layout(1.0, shore=shore, ambient=Ambient(velocity), elements=elements)).rational)
+    return far_field(
+        compile_layout(Layout(1.0, shore=shore, ambient=Ambient(velocity), elements=elements)).rational
+    )
 
 
 @pytest.mark.parametrize(
@@ -77,7 +90,10 @@ def test_first_moment_that_does_not_vanish(elements, order):
 
 def test_ends_of_a_channel():
     channel = Channel(0j, 1 + 0j, 10.0)
-    assert (_far(Sink("t", 3j, 1.0), shore=channel).left, _far(Sink("t", 3j, 1.0), shore=channel).right) == (0, 0)
+    assert (_far(Sink("t", 3j, 1.0), shore=channel).left, _far(Sink("t", 3j, 1.0), shore=channel).right) == (
+        0,
+        0,
+    )
     still = _far(Sink("t", 3j, 1.0), Source("s", 8 + 3j, 1.0), shore=channel)
     assert (still.left, still.right) == (1, 1)
     drained = _far(Sink("t", 3j, 5.0), shore=channel, velocity=0.5 + 0j)  # takes all that comes

@@ -1,12 +1,13 @@
 """All zeros of a `PoleField` at once, by Aberth's iteration written with the kernel itself.
 
-With zeros z and poles p of order m, W'/W = alpha + sum K(tau - z) - sum m K(tau - p), K = X. Moving one zero so
-that this holds at its present place, the others kept, gives X(step) = W'/W + sum m K - alpha - sum' K; for
+With zeros z and poles p of order m, W'/W = alpha + sum K(tau - z) - sum m K(tau - p), K = X. Moving one zero
+so that this holds at its present place, the others kept, gives X(step) = W'/W + sum m K - alpha - sum' K; for
 X = coth(d/2)/2 this is Aberth's iteration in exp(tau), yet nothing overflows however long the channel.
 
 References
 ----------
-O. Aberth, Iteration methods for finding all zeros of a polynomial simultaneously, Math. Comp. 27 (1973) 339-344.
+O. Aberth, Iteration methods for finding all zeros of a polynomial simultaneously, Math. Comp. 27 (1973)
+339-344.
 """
 
 import math
@@ -45,8 +46,18 @@ class PoleOrders:
     cell: float = 0.0
 
 
-@njit(cache=True, error_model="numpy", inline="always")  # type: ignore[untyped-decorator]
-def _velocity(t, kappa, offset, constant, poles, strengths, centres, moments):  # noqa: ANN001, ANN202, PLR0913
+@njit(cache=True, error_model="numpy", inline="always")
+def _velocity(  # noqa: PLR0913, PLR0917 - compiled, so that the parts of a field are passed one by one
+    t: complex,
+    kappa: float,
+    offset: float,
+    constant: complex,
+    poles: ComplexArray,
+    strengths: ComplexArray,
+    centres: ComplexArray,
+    moments: ComplexArray,
+) -> tuple[complex, complex, float]:
+    """W_tau, its derivative, and the sum of the absolute parts."""
     w = constant
     slope = 0j
     size = abs(constant)
@@ -70,8 +81,8 @@ def _velocity(t, kappa, offset, constant, poles, strengths, centres, moments):  
     return w, slope, size
 
 
-@njit(cache=True, error_model="numpy", inline="always")  # type: ignore[untyped-decorator]
-def _copies(d, kappa, cell):  # noqa: ANN001, ANN202
+@njit(cache=True, error_model="numpy", inline="always")
+def _copies(d: complex, kappa: float, cell: float) -> complex:
     """K(d), or with a cell (closed basin) the sum over its nearest copies along the basin."""
     total = kernel(d, kappa)
     if cell > 0.0:
@@ -80,10 +91,24 @@ def _copies(d, kappa, cell):  # noqa: ANN001, ANN202
     return total
 
 
-@njit(cache=True, error_model="numpy")  # type: ignore[untyped-decorator]
-def _iterate(  # noqa: PLR0913, PLR0917, C901
-    z, kappa, offset, constant, poles, strengths, centres, moments, at, orders, tilt, cell, extent, sweeps
-):  # noqa: ANN001, ANN202
+@njit(cache=True, error_model="numpy")
+def _iterate(  # noqa: PLR0913, PLR0917, PLR0912, C901 - as _velocity; one compiled loop
+    z: ComplexArray,
+    kappa: float,
+    offset: float,
+    constant: complex,
+    poles: ComplexArray,
+    strengths: ComplexArray,
+    centres: ComplexArray,
+    moments: ComplexArray,
+    at: ComplexArray,
+    orders: FloatArray,
+    tilt: float,
+    cell: float,
+    extent: float,
+    sweeps: int,
+) -> tuple[BoolArray, int]:
+    """Sweeps over all zeros, each moved with the others kept; changes `z`, says which still move."""
     n = z.shape[0]
     active = np.ones(n, np.bool_)
     for sweep in range(sweeps):
@@ -111,10 +136,7 @@ def _iterate(  # noqa: PLR0913, PLR0917, C901
             for j in range(n):
                 if j != i:
                     r -= _copies(t - z[j], kappa, cell)
-            if kappa == 0.0:
-                step = 1.0 / r
-            else:
-                step = np.log((r + 0.5) / (r - 0.5))
+            step = 1.0 / r if kappa == 0.0 else np.log((r + 0.5) / (r - 0.5))
             if not math.isfinite(abs(step)):
                 step = 1e-3 * extent * complex(math.cos(i + sweep), math.sin(i + sweep))
             if abs(step) > extent:
@@ -152,7 +174,8 @@ def _starts(field: PoleField, orders: PoleOrders, extent: float) -> ComplexArray
     distance = np.abs(found - np.repeat(orders.at, orders.orders.astype(int)))
     kept = np.sort(np.argsort(distance, kind="stable")[: orders.zero_count])
     angles = np.arange(kept.size) * 2.399963
-    return found[kept] + (1e-3 * distance[kept] + 1e-9 * extent) * np.exp(1j * angles)
+    moved: ComplexArray = found[kept] + (1e-3 * distance[kept] + 1e-9 * extent) * np.exp(1j * angles)
+    return moved
 
 
 def _rest(field: PoleField, place: complex) -> complex:
@@ -179,7 +202,7 @@ def _inverse(x: ComplexArray, kappa: float, extent: float) -> ComplexArray:
 
 
 def _extent(field: PoleField, orders: PoleOrders) -> float:
-    """Longest step of the iteration [-]: twice the spread of the poles, or as far as the current is matched."""
+    """Longest step [-]: twice the spread of the poles, or as far as they match the current."""
     spread = 2.0 * max(float(np.ptp(orders.at.real)), float(np.ptp(orders.at.imag)))
     if field.kappa > 0.0:
         return 2.0 * math.pi
@@ -193,7 +216,7 @@ def _extent(field: PoleField, orders: PoleOrders) -> float:
 
 
 def all_zeros(field: PoleField, orders: PoleOrders) -> tuple[ComplexArray, BoolArray]:
-    """Approximate zeros of W_tau in one period and whether the iteration settled, shape (zero_count,) each."""
+    """Approximate zeros of W_tau in one period, and whether each has settled; shape (zero_count,)."""
     extent = _extent(field, orders)
     zeros = _starts(field, orders, extent)
     active, _ = _iterate(

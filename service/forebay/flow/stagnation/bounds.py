@@ -1,7 +1,9 @@
 """What the parts of a flow that are no sums of poles can do over a disc: bounds for each kind of term.
 
-For a disc of radius R about z every function here bounds the remainder |T(z+d) - T(z) - T_z d - T_zbar conj(d)|,
-|d| <= R. A line element c [log(z - a) - log(z - b)] may be continued across itself, so that only its ends count;
+For a disc of radius R about z every function here bounds the remainder |T(z+d) - T(z) - T_z d - T_zbar
+conj(d)|,
+|d| <= R. A line element c [log(z - a) - log(z - b)] may be continued across itself, so that only its ends
+count;
 farther away the mean over the line of 1/(z - s) is the sharper bound. In a strip the copies of a line other
 than the nearest are smooth: with R(d) = coth(d/2)/2 - 1/d, |R_k| <= S rho^(1-k), S <= 1/2, rho >= 2.1.
 """
@@ -11,9 +13,9 @@ import math
 import numpy as np
 
 from forebay.flow.arrays import ComplexArray, FloatArray
+from forebay.flow.features import CoredVortex
 from forebay.flow.layout import CoreModel
 from forebay.flow.lines import LineTerm
-from forebay.flow.model import CoredVortex
 from forebay.flow.shores import Frame
 
 _REST_SUM, _REST_REACH = 0.5, 2.1
@@ -49,7 +51,7 @@ def segment_distance(z: ComplexArray, start: complex, end: complex) -> FloatArra
     """Distance from a straight segment, shape of z."""
     run = end - start
     part = np.clip(((z - start) * np.conj(run)).real / abs(run) ** 2, 0.0, 1.0)
-    return np.abs(z - start - part * run)
+    return np.asarray(np.abs(z - start - part * run), dtype=np.float64)
 
 
 def _segment_bound(z: ComplexArray, radius: FloatArray, start: complex, end: complex) -> FloatArray:
@@ -81,7 +83,10 @@ def _strip_bound(w: ComplexArray, reach: FloatArray, start: complex, end: comple
     turns = np.round((w - 0.5 * (start + end)).imag / (2.0 * math.pi))
     near = w - 2j * math.pi * turns
     close = _segment_bound(near, reach, start, end) + smooth_bound(reach)
-    gap = np.maximum(np.maximum(min(start.real, end.real) - w.real, w.real - max(start.real, end.real)), 0.0) - reach
+    gap = (
+        np.maximum(np.maximum(min(start.real, end.real) - w.real, w.real - max(start.real, end.real)), 0.0)
+        - reach
+    )
     e = np.exp(-np.maximum(gap, 0.5))
     return np.where(gap > 0.5, np.minimum(close, 0.5 * e * (1.0 + e) / (1.0 - e) ** 3 * reach**2), close)
 
@@ -122,7 +127,7 @@ def wedge_line_bounds(
 
 
 def _site_level(d: ComplexArray, stretch: float, n: float, log_reach: FloatArray) -> FloatArray:
-    """For X + 1/2 of far poles, pulled back to the site: bound, slope and level of the mapped plane together."""
+    """For X + 1/2 of far poles, pulled back to the site, in units of n / (|z| (1 - q))."""
     distance = np.maximum(np.abs(d) - stretch, 1e-300)
     q = -np.expm1(-log_reach)
     bound = pole_bound(d, stretch, n * log_reach)
@@ -137,7 +142,7 @@ def exponent_of(frame: Frame) -> float:
 
 
 def log_radius(radius: FloatArray, size: FloatArray) -> FloatArray:
-    """Radius that a disc at distance `size` from the vertex has in the plane of logarithms; inf if it holds it."""
+    """Radius in the plane of logarithms of a disc at distance `size` from the vertex; inf if it holds it."""
     q = radius / size
     return np.where(q < 1.0, -np.log1p(-np.minimum(q, 0.999999)), np.inf)
 
@@ -167,8 +172,8 @@ def wedge_rest_bound(n: float, size: FloatArray, log_reach: FloatArray) -> Float
 def core_bound(vortex: CoredVortex, z: ComplexArray, radius: FloatArray) -> FloatArray:
     """Remainder of a cored vortex's own W over discs, shape (n,) [m/s].
 
-    Rankine: 0 inside, as a point vortex outside, 2 G R / a^2 across the rim. Lamb-Oseen: half the largest second
-    derivative on the disc times R^2.
+    Rankine: 0 inside, as a point vortex outside, 2 G R / a^2 across the rim. Lamb-Oseen: half the largest
+    second derivative on the disc times R^2.
     """
     strength = abs(vortex.circulation) / (2.0 * math.pi)
     a = vortex.core.radius
@@ -182,7 +187,7 @@ def core_bound(vortex: CoredVortex, z: ComplexArray, radius: FloatArray) -> Floa
 
 
 def core_tail_bound(vortex: CoredVortex, at: complex, z: ComplexArray, radius: FloatArray) -> FloatArray:
-    """For what a core at `at` changes in a point vortex: nothing beyond a Rankine core, exp(-r^2/a^2) in the other."""
+    """For what a core changes in a point vortex: nothing beyond a Rankine core, else exp(-r^2/a^2)."""
     a = vortex.core.radius
     nearest = np.maximum(np.abs(z - at) - radius, 0.0) / a
     if vortex.core.model is CoreModel.RANKINE:

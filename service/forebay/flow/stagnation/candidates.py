@@ -11,7 +11,7 @@ from forebay.flow.stagnation.certificate import Certificates, certify
 
 
 def depths(frame: Frame, tau: ComplexArray) -> FloatArray:
-    """Signed distance from each straight wall of the mapped plane, positive in the water; shape (n, walls)."""
+    """Distance from each straight wall of the mapped plane, positive in the water; shape (n, walls)."""
     columns = []
     if frame.mirrored:
         columns.append(tau.imag)

@@ -1,6 +1,7 @@
 """Proof that a disc holds exactly one zero of W_tau, by the size of W and the change of W' over the disc.
 
-If |W'(tau+t) - W'| <= V for |t| <= r and |W| <= (|W'| - V) r, Newton's map with the frozen slope sends the disc
+If |W'(tau+t) - W'| <= V for |t| <= r and |W| <= (|W'| - V) r, Newton's map with the frozen slope sends the
+disc
 into itself and contracts, so that the disc holds one simple zero; wherever V < |W'| there is at most one.
 
 References
@@ -76,8 +77,8 @@ def certify(field: PoleField, at: ComplexArray) -> Certificates:
 
     Notes
     -----
-    Allowed for: rounding of the sum (8 eps of the sum of absolute terms) and eps in every position, also those of
-    the poles, so that the disc holds the zero of the site as given, not of its rounded image.
+    Allowed for: rounding of the sum (8 eps of the sum of absolute terms) and eps in every position, also
+    those of the poles, so that the disc holds the zero of the site as given, not of its rounded image.
     Cost O(n m), three to five passes.
     """
     velocity, slope = field.jet(at)
@@ -91,7 +92,9 @@ def certify(field: PoleField, at: ComplexArray) -> Certificates:
     change = variation(at, np.where(np.isfinite(radius), radius, 0.0), *parts)[1]
     granted = np.isfinite(radius) & (change < 0.5 * size)
     unique = _unique_radius(at, size, near, parts)
-    return Certificates(at, slope, np.where(granted, radius, np.nan), np.maximum(unique, np.where(granted, radius, 0)))
+    return Certificates(
+        at, slope, np.where(granted, radius, np.nan), np.maximum(unique, np.where(granted, radius, 0))
+    )
 
 
 def _unique_radius(

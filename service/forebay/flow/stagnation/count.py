@@ -1,11 +1,13 @@
 """How many zeros the velocity must have: the count that a search is held against.
 
 dF = W dz is a differential on the water closed by its mirror image along all walls, a closed surface of
-b - 1 handles for b boundaries; it has 2 (b - 1) - 2 more zeros than poles. A zero in the water stands twice on
-that surface, one on a wall once, and so do poles; each pier adds a handle, hence 2. What is left is the far field:
+b - 1 handles for b boundaries; it has 2 (b - 1) - 2 more zeros than poles. A zero in the water stands twice
+on
+that surface, one on a wall once, and so do poles; each pier adds a handle, hence 2. What is left is the far
+field:
 
-    open water      D = p + 2P - 2k     k = 0 with a current, else the first moment of the field that is not zero
-    straight bank   D = p + 2P - k
+    open water      D = p + 2P - 2k     k = 0 with a current, else the first moment of the field that is not
+    zero straight bank   D = p + 2P - k
     channel, corner D = p + 2P - k' - k"   k = 0 at an end where water moves, else W_tau ~ exp(-k |tau|) there
     dead end        D = p + 2P - 1 - k
     basin           D = p + 2P - 2
@@ -88,7 +90,9 @@ def _moments(field: PoleField) -> tuple[ComplexArray, FloatArray]:
     orders = np.arange(_MOST_ORDERS)
     powers = ((field.poles - middle) / scale)[:, None] ** orders
     coefficients = np.concatenate([[field.constant], field.strengths @ powers / scale])
-    sizes = np.concatenate([[abs(field.constant)], np.abs(field.strengths) @ np.ones_like(powers, dtype=float) / scale])
+    sizes = np.concatenate(
+        [[abs(field.constant)], np.abs(field.strengths) @ np.ones_like(powers, dtype=float) / scale]
+    )
     for centre, moments in zip(field.centres, field.moments, strict=True):
         away = (centre - middle) / scale
         for n in range(1, min(moments.size, _MOST_ORDERS - 1) + 1):
@@ -112,9 +116,14 @@ def _end_series(field: PoleField, side: float) -> tuple[ComplexArray, FloatArray
     decay = np.exp(side * field.poles - edge)
     powers = decay[:, None] ** np.arange(1, _MOST_ORDERS)
     start = side * 0.5 + field.offset
-    coefficients = np.concatenate([[field.constant + start * field.strengths.sum()], side * (field.strengths @ powers)])
+    coefficients = np.concatenate(
+        [[field.constant + start * field.strengths.sum()], side * (field.strengths @ powers)]
+    )
     sizes = np.concatenate(
-        [[abs(field.constant) + abs(start) * np.abs(field.strengths).sum()], np.abs(field.strengths) @ np.abs(powers)]
+        [
+            [abs(field.constant) + abs(start) * np.abs(field.strengths).sum()],
+            np.abs(field.strengths) @ np.abs(powers),
+        ]
     )
     series = np.concatenate([[0.5], np.ones(_MOST_ORDERS - 1)])
     ranks = np.arange(_MOST_ORDERS)

@@ -33,10 +33,13 @@ class Zero:
 
 
 def wall_name(model: FlowModel, at: complex) -> str:
-    """Name of the straight wall at a place, of both walls in a corner: "right bank/closed end"; else "water"."""
+    """Name of the straight wall at a place, of both walls in a corner: "right bank/closed end"; else "water".
+
+    Both banks of a corner of 360 degrees are one line: a place on it is on both.
+    """
     reach = TOUCHING * model.scale
     names = [wall.name for wall in model.walls if float(wall.distance(np.asarray(at))) <= reach]
-    if len(names) > 1 and "first bank" in names:
+    if "first bank" in names and abs(at - model.walls[0].point) <= reach:
         return VERTEX
     return "/".join(names) if names else WATER
 
@@ -94,7 +97,7 @@ def _kind(zero: Zero, slope: complex, skew: complex) -> StagnationKind:
 
 
 def vertex_strain(model: FlowModel, jet: Jet) -> float:
-    """|dW/dz| at the vertex, W ~ (z - vertex)^(k pi/alpha - 1): finite at 90 degrees, 0 below, unbounded above."""
+    """|dW/dz| at the vertex, W ~ (z - vertex)^(pi/alpha - 1): finite at 90 degrees, 0 below, nan above."""
     near_vertex = abs(complex(jet.slope[0]))
     exponent = np.pi / _angle(model)
     if exponent > 2.0 + 1e-9:
@@ -112,18 +115,23 @@ def _outflow(model: FlowModel, zero: Zero, slope: complex, skew: complex) -> flo
     """Angle of the eigenvector of the velocity gradient along which water leaves [deg].
 
     With W = a d + b conj(d) and b imaginary, velocity along d = exp(i t) is real multiple of d where
-    |a| sin(arg a + 2 t) = Im b.
+    |a| sin(arg a + 2 t) = -Im b.
     """
     if zero.on == VERTEX:
         return _vertex_outflow(model)
-    sine = np.clip(skew.imag / abs(slope), -1.0, 1.0)
+    sine = np.clip(-skew.imag / abs(slope), -1.0, 1.0)
     angle = 0.5 * (np.arcsin(sine) - np.angle(slope))
     forward = complex(np.exp(1j * angle))
     turned = _points_into_land(model, zero, forward)
-    degrees = float(np.degrees(angle)) % 180.0
     if turned is None:
-        return degrees if degrees < 180.0 else 0.0
-    return float(np.degrees(np.angle(-forward if turned else forward))) % 360.0
+        return _degrees(forward, 180.0)
+    return _degrees(-forward if turned else forward)
+
+
+def _degrees(direction: complex, period: float = 360.0) -> float:
+    """Angle of a direction in [0, period) [deg]; an angle of rounding below 0 is 0."""
+    degrees = float(np.degrees(np.angle(direction))) % period
+    return degrees if degrees < period * (1.0 - 4.0 * EPS) else 0.0
 
 
 def _points_into_land(model: FlowModel, zero: Zero, direction: complex) -> bool | None:
@@ -146,6 +154,6 @@ def _vertex_outflow(model: FlowModel) -> float:
     for direction in away:
         along = model.velocity(np.array([first.point + reach * direction]))[0] * direction
         if along.real > 0.0:
-            return float(np.degrees(np.angle(direction))) % 360.0
+            return _degrees(direction)
     bisector = first.direction * np.exp(0.5j * _angle(model))
-    return float(np.degrees(np.angle(bisector))) % 360.0
+    return _degrees(bisector)

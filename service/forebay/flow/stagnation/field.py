@@ -6,8 +6,9 @@ import numpy as np
 
 from forebay.flow.arrays import BoolArray, ComplexArray, FloatArray
 from forebay.flow.core_images import REACH, core_images
+from forebay.flow.features import CoredVortex
 from forebay.flow.lines import LineTerm
-from forebay.flow.model import CoredVortex, FlowModel
+from forebay.flow.model import FlowModel
 from forebay.flow.poles import PoleField
 from forebay.flow.stagnation.bounds import (
     core_bound,
@@ -34,7 +35,7 @@ LINEAR = 1e-12
 
 @dataclass(frozen=True, slots=True)
 class Discs:
-    """W and its derivatives at centres, the bound of the rest over discs about them, and rounding, shape (n,)."""
+    """W and its derivatives at centres, bounds of the rest over discs and of rounding; shape (n,)."""
 
     velocity: ComplexArray
     slope: ComplexArray
@@ -50,13 +51,17 @@ class Discs:
     def where(self, chosen: BoolArray) -> "Discs":
         """The chosen ones."""
         return Discs(
-            self.velocity[chosen], self.slope[chosen], self.skew[chosen], self.rest[chosen], self.rounding[chosen]
+            self.velocity[chosen],
+            self.slope[chosen],
+            self.skew[chosen],
+            self.rest[chosen],
+            self.rounding[chosen],
         )
 
     @property
     def definiteness(self) -> FloatArray:
         """Smallest stretching of the linear map d -> W_z d + W_zbar conj(d) [1/s]."""
-        return np.abs(np.abs(self.slope) - np.abs(self.skew))
+        return np.asarray(np.abs(np.abs(self.slope) - np.abs(self.skew)), dtype=np.float64)
 
 
 class BoundedField:
@@ -92,10 +97,8 @@ class BoundedField:
         """Discs about z, shape (n,) [m]; `lock` is added to W where it is continued across a line [m/s]."""
         jet = self.model.jet(z)
         velocity = jet.velocity if lock is None else jet.velocity + lock
-        if self.frame.map.affine:
-            rest = self._straight_rest(z, radius)
-        else:
-            rest = self._corner_rest(z, radius, jet)
+        straight = self.frame.map.affine
+        rest = self._straight_rest(z, radius) if straight else self._corner_rest(z, radius, jet)
         rounding = EPS * (ROUNDING * self.model.magnitude(z) + 4.0 * np.abs(jet.slope) * np.abs(z))
         return Discs(velocity, jet.slope, jet.skew, np.where(np.isfinite(velocity), rest, np.inf), rounding)
 
@@ -120,7 +123,9 @@ class BoundedField:
             own = core_bound(core, z, radius)
             if self.frame.kappa > 0.0:
                 strength = abs(core.circulation) / (2.0 * np.pi)
-                far = strength * rate * pole_bound(tau - place, 0.0, reach) + core_tail_bound(core, core.at, z, radius)
+                far = strength * rate * pole_bound(tau - place, 0.0, reach) + core_tail_bound(
+                    core, core.at, z, radius
+                )
                 own = np.minimum(own + strength * rate * smooth_bound(reach), far)
             rest = rest + own + self._image_tails(core, z, radius)
         return rest
@@ -136,9 +141,10 @@ class BoundedField:
     def _corner_rest(self, z: ComplexArray, radius: FloatArray, jet: Jet) -> FloatArray:
         """Remainder in a corner: what is far is bounded in the mapped plane and pulled back together.
 
-        With q = R / |z| and r = -log(1 - q), f(tau) n / z leaves a remainder of at most n / (|z| (1 - q)) times
-        E(n r) + |f| q^2 + n |f'| (q^2 + r - q), E that of f. f and f' are taken from the flow itself, less what is near,
-        so that what cancels far away stays cancelled.
+        With q = R / |z| and r = -log(1 - q), f(tau) n / z leaves a remainder of at most n / (|z| (1 - q))
+        times
+        E(n r) + |f| q^2 + n |f'| (q^2 + r - q), E that of f. f and f' are taken from the flow itself, less
+        what is near, so that what cancels far away stays cancelled.
         """
         n, tau = self._exponent, self.frame.map.forward(z)
         rate = np.abs(self.frame.map.slope(z))

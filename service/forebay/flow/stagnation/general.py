@@ -1,8 +1,8 @@
-"""Search of flows that are no sums of poles: certified quadtree, counted by the turning along the region's edge.
+"""Search of flows that are no sums of poles: certified quadtree, counted by the turning along the edge.
 
-Along a wall W_tau is real and does not turn except by pi at its zeros and poles; along the edges of the region and
-round the slits it turns by a proven amount T in all. With Z the zeros (centres count -1), P the pole orders and N
-the piers in the region, and M the right-angled corners of dead ends and basins,
+Along a wall W_tau is real and does not turn except by pi at its zeros and poles; along the edges of the
+region and round the slits it turns by a proven amount T in all. With Z the zeros (centres count -1),
+P the pole orders and N the piers in the region, and M the right-angled corners of dead ends and basins,
 
     2 Z_water + Z_wall = T / pi + 2 P_water + P_wall + 2 N - M / 2
 """
@@ -11,7 +11,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from forebay.flow.arrays import ComplexArray, FloatArray
+from forebay.flow.arrays import BoolArray, ComplexArray, FloatArray
 from forebay.flow.layout import Doublet
 from forebay.flow.model import FlowModel
 from forebay.flow.stagnation.bounds import exponent_of
@@ -79,7 +79,7 @@ class GeneralSearch:
         return round(turn / np.pi + weight + 2 * piers - 0.5 * corners)
 
     def _boundary(self) -> tuple[float | None, list[Zero]]:
-        """Turning of W_tau along everything that bounds the region in the water, and zeros at ends of lines."""
+        """Turning of W_tau along all that bounds the region in the water, and zeros at ends of lines."""
         edges = None
         base = self.region
         for nudge in _NUDGES:
@@ -89,7 +89,9 @@ class GeneralSearch:
                 break
             except UnprovenTurningError:
                 continue
-        slits = [slit for slit in self.slits if self._holds(self._tau(0.5 * (slit.line.start + slit.line.end)))]
+        slits = [
+            slit for slit in self.slits if self._holds(self._tau(0.5 * (slit.line.start + slit.line.end)))
+        ]
         hidden: list[Zero] = []
         for slit in slits:
             edge = SlitTurning(self.field, slit)
@@ -98,14 +100,9 @@ class GeneralSearch:
             except UnprovenTurningError:
                 edges = None
                 continue
-            edges = edges + turn + self._frame_turning(slit) if edges is not None else None
+            edges = edges + turn if edges is not None else None
             hidden += [self._artefact(at, count, slit) for at, count in edge.hidden if count > 0]
         return edges, hidden
-
-    def _frame_turning(self, slit: Slit) -> float:
-        """What W_tau turns more than W along a slit between two places of a wall of a corner; 0 elsewhere."""
-        del slit
-        return 0.0
 
     def _tau(self, z: complex) -> complex:
         return complex(self.model.frame.map.forward(np.array([z]))[0])
@@ -119,11 +116,9 @@ class GeneralSearch:
         """Turning of W_tau along an edge; arg dz/dtau = Im tau / n is added in a corner."""
         path = self.region.path(edge)
 
-        def disc(tau: ComplexArray, radius: FloatArray):  # noqa: ANN202
+        def disc(tau: ComplexArray, radius: FloatArray) -> tuple[ComplexArray, BoolArray]:
             z = self.model.frame.map.inverse(tau)
-            reach = site_radius(self.model, z, 1.0).real * 0.0
-            scaled = [float(site_radius(self.model, z[k : k + 1], float(r))[0].real) for k, r in enumerate(radius)]
-            return self.field.proves(z, reach + np.array(scaled))
+            return self.field.proves(z, site_radius(self.model, z, radius))
 
         turn = turning(disc, path)
         if not self.model.frame.map.affine:
@@ -162,7 +157,10 @@ class GeneralSearch:
         limits += [abs(pier.at - pole.at) - pier.radius for pier in self.model.piers]
         limits += [float(slit.distance(np.array([pole.at]))[0]) for slit in self.slits]
         if pole.sides == 2:
-            limits.append(2.0 * float(np.min([w.distance(np.asarray(pole.at)) for w in self.model.walls], initial=np.inf)))
+            limits.append(
+                2.0
+                * float(np.min([w.distance(np.asarray(pole.at)) for w in self.model.walls], initial=np.inf))
+            )
         for part in _HOLES:
             radius = part * min(limits)
             try:
@@ -221,13 +219,15 @@ class GeneralSearch:
             marks = np.abs(depths(self.model.frame, middle)) < 2.0 * spread
             tau = on_walls(self.model.frame, middle, marks)
             z = complex(self.model.frame.map.inverse(tau)[0])
-            reach = float(site_radius(self.model, np.array([z]), 2.0 * spread)[0].real)
+            reach = float(site_radius(self.model, np.array([z]), 2.0 * spread)[0])
             gaps = np.concatenate([np.abs(others - z), np.abs(self.model.singular_places - z)])
             room = 0.5 * float(np.min(gaps[np.isfinite(gaps)], initial=self.model.scale))
             small = spread <= _CLUSTER * self.region.size
             cluster = enclose(self.field.proves, z, reach, room) if small else None
             if cluster is None:
-                self.unresolved.append(Window((z.real - reach, z.real + reach), (z.imag - reach, z.imag + reach)))
+                self.unresolved.append(
+                    Window((z.real - reach, z.real + reach), (z.imag - reach, z.imag + reach))
+                )
             elif cluster.zeros != 0:
                 zeros += self._cluster_zero(z, cluster.radius, cluster.zeros, int(marks.sum()))
         return zeros
@@ -250,7 +250,7 @@ class GeneralSearch:
         return Zero(at, wall, TIP * slit.length, count, 0, is_artefact=True)
 
     def _vertex_zero(self) -> list[Zero]:
-        """The vertex of a corner whose left edge bounds the region; its order is the turning there over pi."""
+        """The vertex of a corner beyond the left edge; its order is the turning there over pi."""
         if self.model.frame.map.affine or "left" not in self.region.edges:
             return []
         nearest = self.model.frame.map.inverse(np.array([complex(self.region.left, 0.0)]))[0]

@@ -2,7 +2,8 @@
 
 Every term of W_tau has a majorant about a point at distance rho of its nearest copy: with X the kernel and
 S the sum of |d - copies|^-2, the Taylor coefficients of X obey |X_k| <= S rho^(1-k) for k >= 1, so that
-|X(d + t)| is bounded, coefficient by coefficient, by M(t) = |X| + S t / (1 - t/rho). For X = 1/d this is exact.
+|X(d + t)| is bounded, coefficient by coefficient, by M(t) = |X| + S t / (1 - t/rho). For X = 1/d this is
+exact.
 """
 
 import math
@@ -16,7 +17,7 @@ _TURN = 2.0 * math.pi
 _FAR = 3.0
 
 
-@njit(cache=True, error_model="numpy", inline="always")  # type: ignore[untyped-decorator]
+@njit(cache=True, error_model="numpy", inline="always")
 def kernel(d: complex, kappa: float) -> complex:
     """X(d) = 1/d for kappa = 0, coth(d/2)/2 for kappa = 1/4, for iterations: X' = -(X^2 - kappa)."""
     if kappa == 0.0:
@@ -31,7 +32,7 @@ def kernel(d: complex, kappa: float) -> complex:
     return complex(sign * m * (1.0 + e) * q, -4.0 * e * s * c * q)
 
 
-@njit(cache=True, error_model="numpy", inline="always")  # type: ignore[untyped-decorator]
+@njit(cache=True, error_model="numpy", inline="always")
 def reach(d: complex, kappa: float) -> tuple[float, float]:
     """Distance rho to the nearest copy of the pole, and S, the sum over copies of distance^-2."""
     if kappa == 0.0:
@@ -49,9 +50,9 @@ def reach(d: complex, kappa: float) -> tuple[float, float]:
     return rho, 0.5 / x * m * (1.0 + e) / (m * m + 4.0 * e * s * s)
 
 
-@njit(cache=True, error_model="numpy", inline="always")  # type: ignore[untyped-decorator]
+@njit(cache=True, error_model="numpy", inline="always")
 def simple_bounds(d: complex, radius: float, kappa: float) -> tuple[float, float]:
-    """Bounds for X on |t| <= radius: of X(d+t) - X - X' t, and of X'(d+t) - X'; inf if a copy is that near."""
+    """Bounds on |t| <= radius of X(d+t) - X - X' t and of X'(d+t) - X'; inf if a copy is that near."""
     rho, s = reach(d, kappa)
     q = radius / rho
     if q >= 1.0:
@@ -68,9 +69,9 @@ def simple_bounds(d: complex, radius: float, kappa: float) -> tuple[float, float
     return value, slope
 
 
-@njit(cache=True, error_model="numpy")  # type: ignore[untyped-decorator]
+@njit(cache=True, error_model="numpy")
 def _far_multipole(x: float, moments: ComplexArray) -> float:
-    """Bound for the third derivative of sum c X^n where |Re d| >= x, X = coth(d/2)/2: it decays like exp(-x)."""
+    """Bound for the third derivative of sum c X^n, X = coth(d/2)/2, |Re d| >= x: it decays like exp(-x)."""
     e = math.exp(-x)
     p = 1.0 / (1.0 - e)
     m, u = 0.5 + e * p, e * p * p
@@ -87,7 +88,7 @@ def _far_multipole(x: float, moments: ComplexArray) -> float:
     return total
 
 
-@njit(cache=True, error_model="numpy")  # type: ignore[untyped-decorator]
+@njit(cache=True, error_model="numpy")
 def multipole_bounds(d: complex, radius: float, kappa: float, moments: ComplexArray) -> tuple[float, float]:
     """The same bounds for d/dt sum_n c_n X^n, from the majorant M(t): derivatives of sum |c_n| M^n."""
     rho, s = reach(d, kappa)
@@ -123,8 +124,8 @@ def multipole_bounds(d: complex, radius: float, kappa: float, moments: ComplexAr
     return value, slope
 
 
-@njit(cache=True, error_model="numpy")  # type: ignore[untyped-decorator]
-def variation(
+@njit(cache=True, error_model="numpy")
+def variation(  # noqa: PLR0913, PLR0917 - compiled, so that the parts of a field are passed one by one
     tau: ComplexArray,
     radius: FloatArray,
     kappa: float,
@@ -133,7 +134,7 @@ def variation(
     centres: ComplexArray,
     moments: ComplexArray,
 ) -> tuple[FloatArray, FloatArray]:
-    """Bounds on discs |t| <= radius of |W(tau+t) - W - W' t| and |W'(tau+t) - W'|; inf where a pole is inside."""
+    """Bounds on |t| <= radius of |W(tau+t) - W - W' t| and |W'(tau+t) - W'|; inf around a pole."""
     n = tau.shape[0]
     value = np.zeros(n)
     slope = np.zeros(n)
@@ -150,7 +151,7 @@ def variation(
     return value, slope
 
 
-@njit(cache=True, error_model="numpy")  # type: ignore[untyped-decorator]
+@njit(cache=True, error_model="numpy")
 def sensitivity(
     tau: ComplexArray,
     kappa: float,

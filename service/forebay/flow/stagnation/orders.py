@@ -26,7 +26,9 @@ def trimmed(field: PoleField, radii: FloatArray) -> PoleField:
         return field
     orders = np.arange(1, field.moments.shape[1] + 1)
     with np.errstate(divide="ignore", over="ignore", under="ignore"):
-        on_wall = orders * np.abs(field.moments) * np.where(radii > 0.0, radii, 1.0)[:, None] ** (-orders - 1.0)
+        on_wall = (
+            orders * np.abs(field.moments) * np.where(radii > 0.0, radii, 1.0)[:, None] ** (-orders - 1.0)
+        )
     weak = (on_wall < _NEGLIGIBLE * on_wall.max(axis=1, keepdims=True)) & (radii > 0.0)[:, None]
     moments = np.where(weak, 0.0, field.moments)
     present = np.flatnonzero(np.any(moments != 0.0, axis=0))

@@ -1,8 +1,8 @@
-"""Certified quadtree: halves boxes of the mapped plane until each is free of zeros or belongs to a proven one.
+"""Certified quadtree: halves boxes of the mapped plane until each is free or belongs to a proven zero.
 
-A box is free when |W| exceeds what W can change by over the disc that holds it. A box on which W changes little
-starts Newton's iteration; a zero is accepted with the proof that it is the only one in its disc. A box across a line
-element is looked at twice, with W continued from either side.
+A box is free when |W| exceeds what W can change by over the disc that holds it. A box on which W changes
+little starts Newton's iteration; a zero is accepted with the proof that it is the only one in its disc. A box
+across a line element is looked at twice, with W continued from either side.
 """
 
 from dataclasses import dataclass, field, replace
@@ -31,7 +31,7 @@ _RADII = (8.0, 4.0, 2.0, 1.0, 0.5, 0.25)
 
 @dataclass(frozen=True, slots=True)
 class Boxes:
-    """Boxes of one size: centres in the mapped plane, half-sides, line they are continued across (-1 none), side."""
+    """Boxes of one size: centres, half-sides, line that W is continued across (-1 none), from which side."""
 
     at: ComplexArray
     half: complex
@@ -76,11 +76,11 @@ class FoundZero:
 class Quadtree:
     """One search; `zeros` and `leftover` after `run`.
 
-    field, slits : the flow;  region : where to look
+    flow, slits : the flow;  region : where to look
     holes, hole_radii : discs known to be free of zeros, or left to others [m]
     """
 
-    field: BoundedField
+    flow: BoundedField
     slits: list[Slit]
     region: Region
     holes: ComplexArray
@@ -117,12 +117,12 @@ class Quadtree:
 
     def _open(self, boxes: Boxes) -> tuple[Boxes, Discs, ComplexArray, FloatArray]:
         """Boxes that may hold a zero, with their discs."""
-        z = self.field.frame.map.inverse(boxes.at)
-        radius = site_radius(self.field.model, z, abs(boxes.half)).real * (1.0 + 1e-9)
+        z = self.flow.frame.map.inverse(boxes.at)
+        radius = site_radius(self.flow.model, z, abs(boxes.half)) * (1.0 + 1e-9)
         wet = ~self._dry(z, radius) & ~self._known(boxes, z, radius)
         boxes, unsettled = self._locked(boxes.where(wet), z[wet], radius[wet])
-        z = self.field.frame.map.inverse(boxes.at)
-        radius = site_radius(self.field.model, z, abs(boxes.half)).real * (1.0 + 1e-9)
+        z = self.flow.frame.map.inverse(boxes.at)
+        radius = site_radius(self.flow.model, z, abs(boxes.half)) * (1.0 + 1e-9)
         discs = self._discs(boxes, z, radius)
         maybe = ~(np.abs(discs.velocity) > discs.spread(radius)) | unsettled
         discs = replace(discs, rest=np.where(unsettled, np.inf, discs.rest)).where(maybe)
@@ -131,7 +131,7 @@ class Quadtree:
     def _dry(self, z: ComplexArray, radius: FloatArray) -> BoolArray:
         """Inside a pier, or in a disc that is left out."""
         dry = np.zeros(z.shape, dtype=np.bool_)
-        for pier in self.field.model.piers:
+        for pier in self.flow.model.piers:
             dry |= np.abs(z - pier.at) + radius < pier.radius
         for hole, reach in zip(self.holes, self.hole_radii, strict=True):
             dry |= np.abs(z - hole) + radius <= reach
@@ -174,7 +174,7 @@ class Quadtree:
     def _discs(self, boxes: Boxes, z: ComplexArray, radius: FloatArray) -> Discs:
         lock = self._lock(boxes.line, boxes.side, z)
         parts = [
-            self.field.discs(z[k : k + CHUNK], radius[k : k + CHUNK], lock[k : k + CHUNK])
+            self.flow.discs(z[k : k + CHUNK], radius[k : k + CHUNK], lock[k : k + CHUNK])
             for k in range(0, max(z.size, 1), CHUNK)
         ]
         names = ("velocity", "slope", "skew", "rest", "rounding")
@@ -216,7 +216,7 @@ class Quadtree:
         """Newton's iteration for W + W_z d + W_zbar conj(d) = 0; where it runs away the start is kept."""
         at = z.copy()
         for _ in range(8):
-            jet = self.field.model.jet(at)
+            jet = self.flow.model.jet(at)
             velocity = jet.velocity + self._lock(line, side, at)
             a, b = jet.slope, jet.skew
             with np.errstate(divide="ignore", invalid="ignore"):
@@ -236,7 +236,7 @@ class Quadtree:
         Discs up to 8 `scale` [m] are tried for uniqueness.
         """
         lock = self._lock(line, side, z)
-        point = self.field.discs(z, np.zeros(z.shape), lock)
+        point = self.flow.discs(z, np.zeros(z.shape), lock)
         definite = point.definiteness
         with np.errstate(divide="ignore", invalid="ignore"):
             radius = 2.0 * (np.abs(point.velocity) + point.rounding) / definite
@@ -260,12 +260,12 @@ class Quadtree:
     def _change(self, z: ComplexArray, radii: FloatArray, lock: ComplexArray) -> FloatArray:
         """Bounds for the change of the derivatives over discs, shape of radii.
 
-        2/R times the remainder over twice the radius R: Cauchy's estimate for analytic parts, and at least as much for
-        the others.
+        2/R times the remainder over twice the radius R: Cauchy's estimate for analytic parts, and at least
+        as much for the others.
         """
         at = np.repeat(z, radii.shape[1])
         flat = radii.ravel()
-        rest = self.field.discs(at, 2.0 * flat, np.repeat(lock, radii.shape[1])).rest
+        rest = self.flow.discs(at, 2.0 * flat, np.repeat(lock, radii.shape[1])).rest
         with np.errstate(divide="ignore", invalid="ignore"):
             return np.where(flat > 0.0, rest * 2.0 / flat, np.inf).reshape(radii.shape)
 

@@ -17,7 +17,7 @@ from forebay.flow.stagnation.result import WATER
 from forebay.flow.stagnation.turning import rational_disc
 
 MARGIN = 1e-4
-"""Candidates this far outside the water, as part of the extent, are looked at: their zero may lie on the wall [-]."""
+"""Candidates this far on land, as part of the extent, may belong to a zero on the wall [-]."""
 
 LINKED = 1e-4
 """Unproven candidates this close, as part of the extent, are taken together [-]."""
@@ -36,7 +36,9 @@ class RationalSearch:
         self.far = FarField() if closed else far_field(self.field)
         places = np.concatenate([self.field.poles, self.field.centres])
         inside = places[np.abs(places.real) <= self.frame.length * (1 + 1e-9)]
-        self.extent = max(float(np.ptp(inside.real)), float(np.ptp(inside.imag)), 1e-6) if inside.size else 1.0
+        self.extent = (
+            max(float(np.ptp(inside.real)), float(np.ptp(inside.imag)), 1e-6) if inside.size else 1.0
+        )
         if self.field.kappa > 0.0:
             self.extent = min(self.extent, np.pi)
         self.unproven = 0
@@ -76,7 +78,8 @@ class RationalSearch:
         """Radius of the pier round each multipole centre in the mapped plane, 0 for a doublet [-]."""
         first = len(self.model.layout.elements) + 1
         reach = [
-            pier.radius * float(np.abs(self.frame.map.slope(np.asarray(pier.at)))) for pier in self.model.piers
+            pier.radius * float(np.abs(self.frame.map.slope(np.asarray(pier.at))))
+            for pier in self.model.piers
         ]
         owners = self.field.moment_owners
         return np.array([reach[owner - first] if owner >= first else 0.0 for owner in owners])
@@ -84,7 +87,8 @@ class RationalSearch:
     def _clear(self, found: Certificates, marks: BoolArray) -> BoolArray:
         """Not on land: on a wall, or further inside than the radius of inclusion."""
         depth = np.where(marks, np.inf, depths(self.frame, found.at))
-        return np.all(depth > np.where(found.granted, found.radius, 0.0)[:, None], axis=1)
+        radius = np.where(found.granted, found.radius, 0.0)
+        return np.asarray(np.all(depth > radius[:, None], axis=1), dtype=np.bool_)
 
     def _simple(self, found: Certificates, marks: BoolArray) -> list[Zero]:
         zeros = []
@@ -94,7 +98,9 @@ class RationalSearch:
             radius = self._site_radius(complex(z), float(found.radius[k]))
             walls = int(marks[k].sum())
             if walls:
-                zeros.append(Zero(complex(z), wall_name(self.model, complex(z)), radius, 1, 1 if walls == 1 else 0))
+                zeros.append(
+                    Zero(complex(z), wall_name(self.model, complex(z)), radius, 1, 1 if walls == 1 else 0)
+                )
                 continue
             zero = self._beside_piers(complex(z), radius, float(found.unique[k] * stretch[k]))
             if zero is not None:
@@ -116,7 +122,11 @@ class RationalSearch:
     def _site_radius(self, z: complex, radius: float) -> float:
         """Radius in the site [m] of a disc of the mapped plane; eps of the coordinates is added."""
         rate = float(np.abs(self.frame.map.slope(np.asarray(z))))
-        mapped = radius / rate if self.frame.map.affine else np.expm1(radius / self._exponent) * self._exponent / rate
+        mapped = (
+            radius / rate
+            if self.frame.map.affine
+            else np.expm1(radius / self._exponent) * self._exponent / rate
+        )
         return float(mapped) + 4.0 * EPS * abs(z)
 
     @property
@@ -182,7 +192,7 @@ class RationalSearch:
 
 
 def pole_weight(model: FlowModel) -> int:
-    """p: orders of the elements' poles, 2 per order in the water, 1 on a wall; elements at one place count once."""
+    """p: orders of the elements' poles, 2 per order in the water, 1 on a wall; one place, one pole."""
     places: dict[complex, tuple[complex, int, int]] = {}
     for element in model.singularities:
         total, order, sides = places.get(element.at, (0j, 0, 2 if element.on == WATER else 1))

@@ -1,11 +1,11 @@
-"""Where a search that has no far-field count looks: a rectangle of the mapped plane, along the walls themselves."""
+"""Where a search without a far-field count looks: a rectangle of the mapped plane, walls included."""
 
 import math
 from dataclasses import dataclass, replace
 
 import numpy as np
 
-from forebay.flow.arrays import ComplexArray
+from forebay.flow.arrays import ComplexArray, FloatArray
 from forebay.flow.model import FlowModel
 from forebay.flow.stagnation.bounds import exponent_of
 from forebay.flow.stagnation.result import Window
@@ -50,7 +50,7 @@ class Region:
             "left": (complex(self.left, self.top), complex(self.left, self.bottom)),
         }
         start, end = corners[edge]
-        return start + (end - start) * np.linspace(0.0, 1.0, 65)
+        return np.asarray(start + (end - start) * np.linspace(0.0, 1.0, 65), dtype=np.complex128)
 
     def widened(self, part: float) -> "Region":
         """The region with every edge in the water moved outwards by a part of its size."""
@@ -59,9 +59,7 @@ class Region:
             self,
             left=self.left - step if "left" in self.edges else self.left,
             right=self.right + step if "right" in self.edges else self.right,
-            bottom=max(self.bottom - step, 0.0 if "half" in self.edges else -math.inf)
-            if "bottom" in self.edges
-            else self.bottom,
+            bottom=self.bottom - step if "bottom" in self.edges else self.bottom,
             top=self.top + step if "top" in self.edges else self.top,
         )
 
@@ -76,7 +74,7 @@ def features(model: FlowModel) -> list[ComplexArray]:
     still = _ambient_null(model)
     if still is not None:
         outlines.append(np.array([still]))
-    return [model.frame.map.forward(outline) for outline in outlines]
+    return [np.asarray(model.frame.map.forward(outline), dtype=np.complex128) for outline in outlines]
 
 
 def _ambient_null(model: FlowModel) -> complex | None:
@@ -88,15 +86,20 @@ def _ambient_null(model: FlowModel) -> complex | None:
     away = np.linalg.solve(matrix, -np.array([ambient.velocity.real, ambient.velocity.imag]))
     at = ambient.at + complex(away[0], away[1])
     near = abs(at - ambient.at) < 1e3 * model.scale
+    if (
+        not model.frame.map.affine
+    ):  # in the vertex itself it has no place in the mapped plane, and is looked at anyway
+        near &= abs(at - model.walls[0].point) > 1e-3 * model.scale
     return at if near and bool(model.wet(np.array([at]))[0]) else None
 
 
 def default_region(model: FlowModel) -> Region:
     """A generous region about all features.
 
-    Channel, dead end and corner: four widths (in a corner: four in the logarithm) beyond the outermost feature.
-    Unbounded water: three sizes of the layout, and four times the distance at which the total strength matches the
-    current, at most a hundred sizes. Basin: all of it.
+    Channel, dead end and corner: four widths (in a corner: four in the logarithm) beyond the outermost
+    feature.
+    Unbounded water: three sizes of the layout, and four times the distance at which the total strength
+    matches the current, at most a hundred sizes. Basin: all of it.
     """
     places = np.concatenate([*features(model), *_home(model)])
     low = complex(places.real.min(), places.imag.min())
@@ -118,7 +121,7 @@ def _home(model: FlowModel) -> list[ComplexArray]:
 
 
 def _total_strength(model: FlowModel) -> float:
-    """Sum of |g| of all elements; of a doublet and a pier the strength times their length over the scale [m2/s]."""
+    """Sum of |g| of all elements, doublets left out [m2/s]."""
     points = sum(abs(element.strength) for element in model.singularities)
     lines = sum(abs(line.flux) * abs(line.end - line.start) for line in model.lines)
     circulations = sum(abs(pier.circulation) for pier in model.piers)
@@ -158,7 +161,7 @@ def _fitted(model: FlowModel, low: complex, high: complex) -> Region:
     if frame.mirrored and frame.kappa > 0.0:
         bottom, top = 0.0, math.pi
         edges = ["left", "right"]
-    elif frame.mirrored and bottom <= 0.02 * (top - bottom):
+    elif frame.mirrored and bottom <= 0.03 * max(top - bottom, right - left):
         bottom = 0.0
         edges.remove("bottom")
     if frame.closed:
@@ -179,9 +182,7 @@ def _grown(model: FlowModel, region: Region) -> Region:
             break
         places = np.concatenate(cut)
         pad = 2.0 * _PAD * region.size
-        low = complex(
-            min(region.left, places.real.min() - pad), min(region.bottom, places.imag.min() - pad)
-        )
+        low = complex(min(region.left, places.real.min() - pad), min(region.bottom, places.imag.min() - pad))
         high = complex(max(region.right, places.real.max() + pad), max(region.top, places.imag.max() + pad))
         region = _fitted(model, low, high)
     return region
@@ -205,8 +206,9 @@ def _is_cut(region: Region, outline: ComplexArray) -> bool:
     return not (beyond or inside)
 
 
-def site_radius(model: FlowModel, z: ComplexArray, radius: float) -> ComplexArray:
+def site_radius(model: FlowModel, z: ComplexArray, radius: FloatArray | float) -> FloatArray:
     """Radius in the site that holds the image of a disc of the mapped plane about tau(z), shape of z [m]."""
     rate = np.abs(model.frame.map.slope(z))
     n = exponent_of(model.frame)
-    return radius / rate if model.frame.map.affine else n * np.expm1(radius / n) / rate
+    site = radius / rate if model.frame.map.affine else n * np.expm1(radius / n) / rate
+    return np.asarray(site, dtype=np.float64)

@@ -70,8 +70,8 @@ class StagnationSearch:
     expected_count : number of points that the independent count implies
     found_count : number of points found, `len(points)`
     complete : whether every point is certified and the weights found add up to `degree`
-    degree : zeros of the velocity on the mirror-closed water, from its poles and far field, or from its turning
-        along the edge of the searched region; each zero in the water weighs 2, each on a wall 1
+    degree : zeros of the velocity on the mirror-closed water, from its poles and far field, or from its
+        turning along the edge of the searched region; a zero in the water weighs 2, one on a wall 1
     weight : the same sum over what was found
     unresolved : places that the search could neither clear nor resolve; empty when complete
     """

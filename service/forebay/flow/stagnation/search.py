@@ -1,6 +1,7 @@
 """The search: picks the method, adds up the weights, puts the points in order."""
 
 from forebay.flow.model import FlowModel
+from forebay.flow.stagnation.corners import corner_zeros
 from forebay.flow.stagnation.count import UncountableFieldError
 from forebay.flow.stagnation.describe import Zero, describe
 from forebay.flow.stagnation.general import GeneralSearch
@@ -19,13 +20,15 @@ def search_model(model: FlowModel, window: Window | None = None) -> StagnationSe
 
     Notes
     -----
-    Where the velocity is rational everything is found and counted, and the window only picks. Water that stands
-    still everywhere has no stagnation points to list: no points, and `complete` false.
+    Where the velocity is rational everything is found and counted, and the window only picks. Water that
+    stands still everywhere has no stagnation points to list: no points, and `complete` false.
     """
     if model.is_rational:
         found = _search_rational(model)
         return found if window is None else _restricted(found, window)
     region = default_region(model) if window is None else region_of(model, window)
+    if region.size == 0.0:  # the window lies on land
+        return StagnationSearch((), 0, 0, complete=True, method=SearchMethod.WINDING, degree=0, weight=0)
     found = _search_general(model, region)
     return found if window is None else _restricted(found, window)
 
@@ -52,13 +55,16 @@ def _search_rational(model: FlowModel) -> StagnationSearch:
     except UncountableFieldError:
         return StagnationSearch((), 0, 0, complete=False, method=SearchMethod.DEGREE, degree=0, weight=0)
     zeros = search.run()
-    proven = search.unproven == 0
-    return _answer(_points(model, zeros), zeros, SearchMethod.DEGREE, search.degree, proven=proven)
+    zeros += corner_zeros(model, zeros)
+    points = _points(model, zeros)
+    # weights of zeros of a rational flow are never negative: proven ones that make up the degree are all
+    return _answer(points, zeros, SearchMethod.DEGREE, search.degree, proven=True)
 
 
 def _search_general(model: FlowModel, region: Region) -> StagnationSearch:
     search = GeneralSearch(model, region)
     zeros = search.run()
+    zeros += corner_zeros(model, zeros)
     proven = search.degree is not None and not search.unresolved
     found = _answer(_points(model, zeros), zeros, SearchMethod.WINDING, search.degree or 0, proven=proven)
     return StagnationSearch(

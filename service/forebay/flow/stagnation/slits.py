@@ -1,8 +1,9 @@
 """Line elements as slits: how far the velocity turns round them, and what hides at their ends.
 
-At an end the velocity is logarithmically unbounded, and a saddle sits exponentially close to an end that faces a
-current; it is a property of the constant strength. Small discs about the ends are therefore left out of the search
-and looked at by themselves. A slit has index 0 or 1 as the current across it is strong or weak.
+At an end the velocity is logarithmically unbounded, and a saddle sits exponentially close to an end that
+faces a
+current; it is a property of the constant strength. Small discs about the ends are therefore left out of the
+search and looked at by themselves. A slit has index 0 or 1 as the current across it is strong or weak.
 """
 
 from dataclasses import dataclass
@@ -10,8 +11,9 @@ from dataclasses import dataclass
 import numpy as np
 
 from forebay.flow.arrays import BoolArray, ComplexArray, FloatArray, IntArray
+from forebay.flow.features import Line
 from forebay.flow.lines import LineTerm
-from forebay.flow.model import FlowModel, Line
+from forebay.flow.model import FlowModel
 from forebay.flow.segments import Segment
 from forebay.flow.stagnation.field import BoundedField
 from forebay.flow.stagnation.result import WATER
@@ -59,7 +61,7 @@ class Slit:
         return np.minimum(np.abs(z - self.line.start), np.abs(z - self.line.end))
 
     def lock(self, z: ComplexArray, side: IntArray) -> ComplexArray:
-        """What turns the model's W at z into that continued from a side (1 left, -1 right, 0 neither) [m/s]."""
+        """What makes the model's W at z the one continued from a side (1 left, -1 right, 0 neither) [m/s]."""
         whole = Segment(self.term.panels[0].start, self.term.panels[-1].end)
         local = self.local(z)
         beside = (local.real > 0.0) & (local.real < self.length) & (side != 0)
@@ -94,7 +96,7 @@ class SlitTurning:
         self.hidden: list[tuple[complex, int]] = []
 
     def total(self) -> float:
-        """Turning along the slit's edge with the water on the left, from wall to wall where it touches one [rad]."""
+        """Turning along the edge, the water on the left, from wall to wall where it touches one [rad]."""
         slit = self._slit
         if slit.in_wall:
             return self._along_wall()
@@ -131,7 +133,9 @@ class SlitTurning:
         centre = slit.line.end if at_end else slit.line.start
         first, last = (-1, 1) if at_end else (1, -1)
         back = float(np.angle(slit.tangent)) - (np.pi if at_end else 0.0)
-        turn = self._arc(centre, back, back + np.pi, first) + self._arc(centre, back + np.pi, back + 2 * np.pi, last)
+        turn = self._arc(centre, back, back + np.pi, first) + self._arc(
+            centre, back + np.pi, back + 2 * np.pi, last
+        )
         place = np.array([centre + TIP * slit.length * slit.tangent * (-1.0 if at_end else 1.0)])
         ahead = self._limit(at_end=at_end)
         closing = np.angle(ahead / self._disc(last)(place, np.zeros(1))[0][0])
@@ -156,7 +160,9 @@ class SlitTurning:
         ahead = self._arc(centre, theta, heading, beyond)
         behind = self._arc(centre, heading + np.pi, theta, before)
         if abs((slit.tangent / along).real) > 1e-6:
-            limit = complex(np.conj(along) * (slit.tangent / along).real * slit.line.flux * (1.0 if at_end else -1.0))
+            limit = complex(
+                np.conj(along) * (slit.tangent / along).real * slit.line.flux * (1.0 if at_end else -1.0)
+            )
             place = np.array([centre + TIP * slit.length * out])
             beside = [complex(self._disc(side)(place, np.zeros(1))[0][0]) for side in (beyond, before)]
             zeros = round((float(np.angle(limit / beside[0])) - ahead) / np.pi)

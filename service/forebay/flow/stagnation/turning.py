@@ -54,7 +54,9 @@ def turning(disc: Disc, path: ComplexArray, *, halvings: int = 30) -> float:
         if start.size == 0:
             return total
         middle = 0.5 * (start + end)
-        velocity, proven = disc(middle, 0.5 * np.abs(end - start) * (1.0 + 4.0 * EPS) + 4.0 * EPS * np.abs(middle))
+        velocity, proven = disc(
+            middle, 0.5 * np.abs(end - start) * (1.0 + 4.0 * EPS) + 4.0 * EPS * np.abs(middle)
+        )
         done = np.flatnonzero(proven)
         none = np.zeros(done.size)
         first = disc(start[done], none)[0]
