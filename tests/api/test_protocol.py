@@ -168,6 +168,10 @@ def test_endless_body_is_not_taken_in_for_ever():
     assert taken <= DRAIN_LIMITS * LIMIT + 512
 
 
+async def never_asked(scope, receive, send):
+    raise AssertionError("a refused body reached the application")
+
+
 def test_silent_client_is_not_waited_for_for_ever(monkeypatch):
     monkeypatch.setattr("forebay.api.body_limit.DRAIN_SECONDS", 0.01)
     sent = []
@@ -179,7 +183,7 @@ def test_silent_client_is_not_waited_for_for_ever(monkeypatch):
         await asyncio.Event().wait()
 
     scope = {"type": "http", "headers": [(b"content-length", b"2000")]}
-    asyncio.run(BodyLimit(None, LIMIT)(scope, silent, send))
+    asyncio.run(BodyLimit(never_asked, LIMIT)(scope, silent, send))
     assert sent[-1] == {"type": "http.response.body", "body": b""}
 
 

@@ -10,6 +10,9 @@ FloatArray = npt.NDArray[np.float64]
 EXACT_POWER = 22
 """Largest n for which 10^n is a double without error."""
 
+DOUBT = 2.0 * float(np.finfo(np.float64).eps)
+"""Distance from a tie, over the number, within which the rounding of a product decides [-]."""
+
 EVERY_DIGIT = 17
 """Significant digits that identify any double."""
 
@@ -37,7 +40,7 @@ def round_array(values: FloatArray, digits: int) -> FloatArray:
     """Round every finite value to `digits` significant digits; NaN stays, infinities become NaN.
 
     Powers of ten up to 1e22 are exact, so that n / 10^k is the double nearest to the decimal number and
-    prints short; the rare values beyond are rounded through text.
+    prints short; the rare values beyond, and those next to a tie, are rounded through text.
     """
     flat = np.array(values, dtype=np.float64).ravel()
     if digits < EVERY_DIGIT and flat.size <= FEW:
@@ -54,7 +57,11 @@ def _round_block(block: FloatArray, digits: int) -> None:
         power = digits - 1 - np.floor(np.log10(np.abs(block)))
         usual = np.abs(power) <= EXACT_POWER
         scale = 10.0 ** np.where(usual, np.abs(power), 0.0)
-        rounded = np.where(power >= 0, np.rint(block * scale) / scale, np.rint(block / scale) * scale)
-    far = ~usual & np.isfinite(block) & (block != 0.0)
-    rounded[far] = [_round_text(value, digits) for value in block[far].tolist()]
-    np.copyto(block, rounded, where=usual | far)
+        scaled = np.where(power >= 0, block * scale, block / scale)
+        whole = np.rint(scaled)
+        rounded = np.where(power >= 0, whole / scale, whole * scale)
+        # the scaling itself rounds, which may make a tie of what is none
+        doubtful = np.abs(np.abs(scaled - whole) - 0.5) <= DOUBT * np.abs(scaled)
+    textual = (~usual | doubtful) & np.isfinite(block) & (block != 0.0)
+    rounded[textual] = [_round_text(value, digits) for value in block[textual].tolist()]
+    np.copyto(block, rounded, where=usual | textual)

@@ -15,7 +15,8 @@ from forebay.api.csv_table import MEDIA_TYPE as CSV_SENT
 from forebay.api.csv_table import encode_csv
 from forebay.api.limits import Limits, Price
 from forebay.api.media import CSV, JSON
-from forebay.api.problems import Problem, from_flow
+from forebay.api.problems import Problem
+from forebay.api.refusals import from_flow
 from forebay.api.schemas.common import Answer, ComputeRequest
 from forebay.api.units import UnitSystem
 from forebay.api.validation import problem_of

@@ -7,8 +7,6 @@ from typing import Any, NamedTuple
 
 from typing_extensions import override
 
-from forebay.api.numbers import round_number
-from forebay.api.units import UnitSystem
 from forebay.flow.errors import FlowError, Path
 
 MEDIA_TYPE = "application/problem+json"
@@ -18,18 +16,6 @@ MOST_ERRORS = 20
 
 LONGEST_TOKEN = 80
 """Characters of a member name that a pointer repeats; a longer name ends the pointer at its parent."""
-
-FACT_UNITS = {
-    "through": "m/s",
-    "trace": "1/s",
-    "net_discharge": "m3/s",
-    "temperature": "Cel",
-    "salinity": "g/kg",
-}
-"""SI units of measured facts, by the fact's name or by the field that its error is about."""
-
-FACT_DIGITS = 6
-"""Significant digits of a measured fact."""
 
 API_NAMES = {"start": "from", "end": "to", "interior_angle": "interior_angle_deg"}
 """Names of layout fields where the API's differ from those of the flow."""
@@ -180,25 +166,6 @@ def pointer(path: Path) -> str:
             break
         parts.append("/" + text.replace("~", "~0").replace("/", "~1"))
     return "#" + "".join(parts)
-
-
-def from_flow(error: FlowError, system: UnitSystem = UnitSystem.SI) -> Problem:
-    """Problem of a FlowError: the pointer starts at the layout where the error belongs to it."""
-    steps = tuple(API_NAMES.get(step, step) if isinstance(step, str) else step for step in error.path)
-    path = ("layout", *steps) if error.in_layout else steps
-    errors = ({"pointer": pointer(path), "detail": error.detail},) if path else ()
-    return Problem(error.code, error.detail, errors=errors, facts=written_facts(error, system))
-
-
-def written_facts(error: FlowError, system: UnitSystem) -> dict[str, Any]:
-    """Facts in the client's units, six digits of each measured one; `unit` names the unit they share."""
-    unit = next((unit for name, unit in FACT_UNITS.items() if name in {*error.facts, *error.path[-1:]}), None)
-    if unit is None:
-        return dict(error.facts)
-    facts = {
-        name: round_number(system.write(float(fact), unit), FACT_DIGITS) for name, fact in error.facts.items()
-    }
-    return {**facts, "unit": system.code(unit)} if facts else {}
 
 
 def from_status(status: int, headers: Mapping[str, str] | None = None) -> Problem:

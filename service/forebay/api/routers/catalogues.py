@@ -8,7 +8,8 @@ from starlette.responses import Response
 
 from forebay.api import envelope
 from forebay.api.media import JSON, negotiate
-from forebay.api.problems import Problem, written_facts
+from forebay.api.problems import Problem
+from forebay.api.refusals import written_facts
 from forebay.api.routers.serving import documented
 from forebay.api.schemas.catalogues import CriteriaResult, LimitsResult, WaterResult
 from forebay.api.schemas.common import Answer
