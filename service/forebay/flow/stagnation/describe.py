@@ -7,7 +7,6 @@ import numpy as np
 from forebay.flow.model import FlowModel
 from forebay.flow.placement import TOUCHING
 from forebay.flow.stagnation.result import WATER, StagnationKind, StagnationPoint
-from forebay.flow.terms import Jet
 
 VERTEX = "vertex"
 """Name of the corner's vertex as a wall."""
@@ -33,7 +32,7 @@ class Zero:
 
 
 def wall_name(model: FlowModel, at: complex) -> str:
-    """Name of the straight wall at a place, of both walls in a corner: "right bank/closed end"; else "water".
+    """Name of the straight wall at a place, else "water"; of both in a corner, as "right bank/closed end".
 
     Both banks of a corner of 360 degrees are one line: a place on it is on both.
     """
@@ -44,35 +43,49 @@ def wall_name(model: FlowModel, at: complex) -> str:
     return "/".join(names) if names else WATER
 
 
-def describe(model: FlowModel, zero: Zero) -> StagnationPoint:
-    """Stagnation point at a proven zero; at the end of a line no speed or strain has a meaning."""
-    if zero.is_artefact:
-        return _artefact(model, zero)
-    jet = model.jet(np.array([zero.at]))
-    speed = float(np.abs(model.velocity(np.array([zero.at])))[0])
-    slope, skew = complex(jet.slope[0]), complex(jet.skew[0])
-    strain = abs(slope)
-    if zero.on == VERTEX:
-        strain, speed = vertex_strain(model, jet), 0.0
+def describe(model: FlowModel, zeros: list[Zero]) -> tuple[StagnationPoint, ...]:
+    """Stagnation points at proven zeros, sorted by x; at the end of a line speed and strain mean nothing."""
+    if not zeros:
+        return ()
+    z = np.array([zero.at for zero in zeros], dtype=np.complex128)
+    psi = model.potential(z).imag
+    regular = np.array([not zero.is_artefact for zero in zeros])
+    jet = model.jet(np.where(regular, z, complex(np.nan, np.nan)))
+    points = [
+        _point(
+            model,
+            zero,
+            float(psi[k]),
+            (complex(jet.velocity[k]), complex(jet.slope[k]), complex(jet.skew[k])),
+        )
+        if regular[k]
+        else _artefact(zero, float(psi[k]))
+        for k, zero in enumerate(zeros)
+    ]
+    return tuple(sorted(points, key=lambda point: (point.at.real, point.at.imag)))
+
+
+def _point(
+    model: FlowModel, zero: Zero, psi: float, jet: tuple[complex, complex, complex]
+) -> StagnationPoint:
+    velocity, slope, skew = jet
+    at_vertex = zero.on == VERTEX
     kind = _kind(zero, slope, skew)
-    outflow = np.nan
-    if kind in (StagnationKind.SADDLE, StagnationKind.WALL):
-        outflow = _outflow(model, zero, slope, skew)
+    has_outflow = kind in (StagnationKind.SADDLE, StagnationKind.WALL)
     return StagnationPoint(
         at=zero.at,
         kind=kind,
         on=zero.on,
-        residual_speed=speed,
-        strain_rate=strain,
-        outflow_deg=float(outflow),
-        stream_function=float(model.potential(np.array([zero.at])).imag[0]),
+        residual_speed=0.0 if at_vertex else abs(velocity),
+        strain_rate=_vertex_strain(model, slope) if at_vertex else abs(slope),
+        outflow_deg=_outflow(model, zero, slope, skew) if has_outflow else float(np.nan),
+        stream_function=psi,
         inclusion_radius=zero.radius,
         multiplicity=zero.multiplicity,
-        is_artefact=zero.is_artefact,
     )
 
 
-def _artefact(model: FlowModel, zero: Zero) -> StagnationPoint:
+def _artefact(zero: Zero, psi: float) -> StagnationPoint:
     nothing = float(np.nan)
     return StagnationPoint(
         at=zero.at,
@@ -81,7 +94,7 @@ def _artefact(model: FlowModel, zero: Zero) -> StagnationPoint:
         residual_speed=nothing,
         strain_rate=nothing,
         outflow_deg=nothing,
-        stream_function=float(model.potential(np.array([zero.at])).imag[0]),
+        stream_function=psi,
         inclusion_radius=zero.radius,
         multiplicity=zero.multiplicity,
         is_artefact=True,
@@ -96,13 +109,12 @@ def _kind(zero: Zero, slope: complex, skew: complex) -> StagnationKind:
     return StagnationKind.SADDLE if abs(slope) > abs(skew) else StagnationKind.CENTRE
 
 
-def vertex_strain(model: FlowModel, jet: Jet) -> float:
+def _vertex_strain(model: FlowModel, slope: complex) -> float:
     """|dW/dz| at the vertex, W ~ (z - vertex)^(pi/alpha - 1): finite at 90 degrees, 0 below, nan above."""
-    near_vertex = abs(complex(jet.slope[0]))
     exponent = np.pi / _angle(model)
     if exponent > 2.0 + 1e-9:
         return 0.0
-    return near_vertex if exponent > 2.0 - 1e-9 else float(np.nan)
+    return abs(slope) if exponent > 2.0 - 1e-9 else float(np.nan)
 
 
 def _angle(model: FlowModel) -> float:

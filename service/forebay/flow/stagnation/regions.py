@@ -23,6 +23,10 @@ _PAD = 1e-3
 """A feature nearer to an edge than this part of the region is taken in whole [-]."""
 
 
+_NEAREST_TO_VERTEX = 1e-7
+"""Distance from a corner's vertex, over the layout's scale, at which a region ends [-]."""
+
+
 @dataclass(frozen=True, slots=True)
 class Region:
     """Rectangle left <= Re tau <= right, bottom <= Im tau <= top [-]; sides that are walls are not edges.
@@ -164,6 +168,10 @@ def _fitted(model: FlowModel, low: complex, high: complex) -> Region:
     elif frame.mirrored and bottom <= 0.03 * max(top - bottom, right - left):
         bottom = 0.0
         edges.remove("bottom")
+    if not frame.map.affine:
+        bank = model.walls[0]
+        nearest = np.asarray(bank.point + _NEAREST_TO_VERTEX * model.scale * bank.direction)
+        left = max(left, float(frame.map.forward(nearest).real))
     if frame.closed:
         left = 0.0
         edges.remove("left")

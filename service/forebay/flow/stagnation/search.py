@@ -56,7 +56,7 @@ def _search_rational(model: FlowModel) -> StagnationSearch:
         return StagnationSearch((), 0, 0, complete=False, method=SearchMethod.DEGREE, degree=0, weight=0)
     zeros = search.run()
     zeros += corner_zeros(model, zeros)
-    points = _points(model, zeros)
+    points = describe(model, zeros)
     # weights of zeros of a rational flow are never negative: proven ones that make up the degree are all
     return _answer(points, zeros, SearchMethod.DEGREE, search.degree, proven=True)
 
@@ -66,7 +66,7 @@ def _search_general(model: FlowModel, region: Region) -> StagnationSearch:
     zeros = search.run()
     zeros += corner_zeros(model, zeros)
     proven = search.degree is not None and not search.unresolved
-    found = _answer(_points(model, zeros), zeros, SearchMethod.WINDING, search.degree or 0, proven=proven)
+    found = _answer(describe(model, zeros), zeros, SearchMethod.WINDING, search.degree or 0, proven=proven)
     return StagnationSearch(
         points=found.points,
         expected_count=found.expected_count,
@@ -77,10 +77,6 @@ def _search_general(model: FlowModel, region: Region) -> StagnationSearch:
         weight=found.weight,
         unresolved=tuple(search.unresolved),
     )
-
-
-def _points(model: FlowModel, zeros: list[Zero]) -> tuple[StagnationPoint, ...]:
-    return tuple(sorted((describe(model, zero) for zero in zeros), key=lambda p: (p.at.real, p.at.imag)))
 
 
 def _answer(
