@@ -242,8 +242,11 @@ def test_cylinder_front_strain(service):
 def test_cylinder_with_circulation_stagnates_where_published(service, current, radius, circulation, angles):
     # sin(theta) = Gamma / (4 pi U a), anticlockwise positive
     points = service.stagnation(_cylinder(current, radius, circulation))["points"]
-    found = sorted(degrees(atan2(point["y"], point["x"])) % 360 for point in points)
-    assert found == pytest.approx(sorted(angle % 360 for angle in angles), abs=6e-5)  # four decimals
+    # from -90 to 270, so that rounding about 0 does not become 360
+    found = sorted((degrees(atan2(point["y"], point["x"])) + 90) % 360 - 90 for point in points)
+    assert found == pytest.approx(
+        sorted((angle + 90) % 360 - 90 for angle in angles), abs=6e-5
+    )  # four decimals
     assert {point["on"] for point in points} == {"P1"}
     assert {point["kind"] for point in points} == {"wall"}
 

@@ -13,10 +13,6 @@ import numpy as np
 from forebay.flow.arrays import ComplexArray
 
 
-_VERTEX = 1e-300
-"""Distances from a vertex below this count as this, so that its logarithm is finite [-]."""
-
-
 class ConformalMap(Protocol):
     """tau(z) with its first two derivatives and its inverse; arrays of any shape."""
 
@@ -102,12 +98,14 @@ class LogarithmMap:
         return float(np.pi) / self.angle
 
     def forward(self, z: ComplexArray) -> ComplexArray:
-        """tau(z) [-]; Re tau = -690 n at the vertex."""
+        """tau(z) [-]; Re tau is -inf at the vertex."""
         local = (z - self.vertex) * (np.conj(self.along) / self.unit)
         half = 0.5 * self.angle
-        modulus = np.log(np.maximum(np.abs(local), _VERTEX))
-        argument = np.angle(local * np.exp(-1j * half)) + half
-        return np.asarray(self.exponent * (modulus + 1j * argument), dtype=np.complex128)
+        tau = np.empty(np.shape(local), dtype=np.complex128)
+        with np.errstate(divide="ignore"):
+            tau.real = self.exponent * np.log(np.abs(local))
+        tau.imag = self.exponent * (np.angle(local * np.exp(-1j * half)) + half)
+        return tau
 
     def slope(self, z: ComplexArray) -> ComplexArray:
         """dtau/dz = n / (z - vertex) [1/m]."""
