@@ -163,7 +163,7 @@ def test_a_line_stays_on_the_bank():
     model = flow_of(Sink("s", 1j, 1.0), velocity=0.5, shore=StraightBank(0j, 1 + 0j))
     trace = followed(model, -10.0, TraceRules(tolerance=1e-5, keep_paths=True))
     assert trace.names == ("ambient",)
-    # W is real on the bank to the last digit; psi, on to whose level the line is put back, is a sum rounded at 1e-17
+    # W is real on the bank to the last digit; psi, to whose level the line is put back, is rounded at 1e-17
     assert np.abs(trace.paths[0].imag).max() < 1e-15
 
 
