@@ -15,18 +15,18 @@ KINDS = (*POINT_KINDS, *BANK_KINDS)
 QUICK, ALL = 27, 1000
 """Layouts tried in every run, and with -m slow."""
 
-CELLS_IN_USE = 63
-"""Random layouts put one element in each cell; the largest fill the water, but for a basin's balance."""
+CELLS = 11
+"""Random layouts put one element in each of 121 cells: up to 100 elements."""
 
 
 def _layout(seed: int) -> Layout:
     """The seed decides about shore, number and kinds; piers are left to the residual that they report."""
     generator = np.random.default_rng(seed)
     shore_name = list(SHORES)[seed % len(SHORES)]
-    count = int(generator.integers(3, CELLS_IN_USE))
+    count = int(generator.integers(3, 101))
     kinds = list(KINDS)
     generator.shuffle(kinds)
-    return random_layout(shore_name, seed, kinds=kinds[: 1 + seed % len(kinds)], count=count)
+    return random_layout(shore_name, seed, kinds=kinds[: 1 + seed % len(kinds)], count=count, cells=CELLS)
 
 
 def _newton_step(oracle: Oracle, z: complex) -> float:

@@ -62,9 +62,9 @@ def element_of(  # noqa: PLR0911 - one return a kind
             raise ValueError(kind)
 
 
-def _at(shore: Shore, cell: int, jitter: tuple[float, float] = (0.5, 0.5)) -> complex:
-    row, column = divmod(cell, CELLS)
-    return place(shore, (row + jitter[0]) / CELLS, (column + jitter[1]) / CELLS)
+def _at(shore: Shore, cell: int, jitter: tuple[float, float] = (0.5, 0.5), *, cells: int = CELLS) -> complex:
+    row, column = divmod(cell, cells)
+    return place(shore, (row + jitter[0]) / cells, (column + jitter[1]) / cells)
 
 
 def balanced(elements: Sequence[Element], at: complex, name: str = "balance") -> tuple[Element, ...]:
@@ -83,6 +83,7 @@ def assemble(
     *,
     speed: float = 0.0,
     piers: Sequence[int] = (),
+    cells: int = CELLS,
 ) -> Layout:
     """Build a layout from (kind, cell, strength) triples; no two share a cell.
 
@@ -90,43 +91,51 @@ def assemble(
     """
     shore = SHORES[shore_name]
     elements = [
-        _thing(shore, kind, cell, strength, f"{kind} {number}")
+        _thing(shore, kind, cell, strength, name=f"{kind} {number}", cells=cells)
         for number, (kind, cell, strength) in enumerate(things)
     ]
     if shore_name in BASINS:
-        elements = list(balanced(elements, _at(shore, 0)))
+        elements = list(balanced(elements, _at(shore, 0, cells=cells)))
     along = getattr(shore, "along", 1 + 0j)
     current = speed * along if shore_name in STRAIGHT_THROUGH else 0j
     structures = tuple(
-        Pier(f"pier {number}", _at(shore, cell), 0.02 * SPAN, circulation=0.3 * (number - 1))
+        Pier(f"pier {number}", _at(shore, cell, cells=cells), 0.02 * SPAN, circulation=0.3 * (number - 1))
         for number, cell in enumerate(piers)
     )
     return Layout(4.0, ambient=Ambient(current), shore=shore, elements=tuple(elements), structures=structures)
 
 
-def _thing(shore: Shore, kind: str, cell: int, strength: float, name: str) -> Element:
+def _thing(shore: Shore, kind: str, cell: int, strength: float, *, name: str, cells: int) -> Element:
     if kind in BANK_KINDS:
-        return element_of(kind, name, bank_place(shore, cell / CELLS**2), strength)
-    at = _at(shore, cell)
-    return element_of(kind, name, at, strength, _at(shore, cell, (0.7, 0.8)))
+        return element_of(kind, name, bank_place(shore, cell / cells**2), strength)
+    at = _at(shore, cell, cells=cells)
+    return element_of(kind, name, at, strength, _at(shore, cell, (0.7, 0.8), cells=cells))
 
 
 def random_layout(
-    shore_name: str, seed: int, *, kinds: Sequence[str] = ALL_KINDS, count: int = 6, piers: int = 0
+    shore_name: str,
+    seed: int,
+    *,
+    kinds: Sequence[str] = ALL_KINDS,
+    count: int = 6,
+    piers: int = 0,
+    cells: int = CELLS,
 ) -> Layout:
     """Random layout of `count` elements of the given kinds, strengths between 0.3 and 3, and a current."""
     generator = np.random.default_rng(seed)
-    cells = 1 + generator.permutation(CELLS**2 - 1)[: count + piers]
+    chosen = 1 + generator.permutation(cells**2 - 1)[: count + piers]
     things = [
         (
             kinds[(number + seed) % len(kinds)],
             int(cell),
             float(generator.uniform(0.3, 3.0) * generator.choice((-1.0, 1.0))),
         )
-        for number, cell in enumerate(cells[:count])
+        for number, cell in enumerate(chosen[:count])
     ]
     speed = float(generator.uniform(0.1, 0.6) * generator.choice((-1.0, 1.0)))
-    return assemble(shore_name, things, speed=speed, piers=[int(cell) for cell in cells[count:]])
+    return assemble(
+        shore_name, things, speed=speed, piers=[int(cell) for cell in chosen[count:]], cells=cells
+    )
 
 
 def without_current(layout: Layout) -> Layout:

@@ -52,8 +52,12 @@ def subtitle(scene: Scene, options: FlowNetOptions) -> str:
     kind = type(layout.shore).__name__
     words = "".join(f" {letter.lower()}" if letter.isupper() else letter for letter in kind).strip()
     depth = f"{figures(units.lengthwise(layout.depth, 1))} {units.length}"
-    counts = f"{len(layout.elements)} elements, {len(layout.structures)} structures"
+    counts = ", ".join((_count(len(layout.elements), "element"), _count(len(layout.structures), "structure")))
     return f"{words.capitalize()}, mean depth {depth}; {counts}; plan view, depth-mean potential flow"
+
+
+def _count(number: int, noun: str) -> str:
+    return f"{number} {noun}" if number == 1 else f"{number} {noun}s"
 
 
 def draw_key(
