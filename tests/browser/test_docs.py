@@ -3,6 +3,9 @@
 import shutil
 import threading
 import time
+from contextlib import suppress
+from urllib.error import HTTPError
+from urllib.request import urlopen
 
 import pytest
 import uvicorn
@@ -34,6 +37,17 @@ def serve(app):
     return server, thread, server.servers[0].sockets[0].getsockname()[1]
 
 
+def await_readiness(address):
+    """Wait for the kernels: where nothing is cached they compile first, and the page would wait for them."""
+    deadline = time.monotonic() + 300.0
+    while time.monotonic() < deadline:
+        with suppress(HTTPError), urlopen(f"{address}/readyz", timeout=60.0) as answer:
+            if answer.status == 200:
+                return
+        time.sleep(0.2)
+    pytest.fail("the service did not become ready in five minutes")
+
+
 class Prefixed:
     """A proxy that publishes the application under /tools/forebay and strips the prefix."""
 
@@ -54,7 +68,9 @@ class Prefixed:
 def address(request):
     app = create_app(Settings(workers=1))
     server, thread, port = serve(Prefixed(app) if request.param else app)
-    yield f"http://127.0.0.1:{port}{request.param}"
+    address = f"http://127.0.0.1:{port}{request.param}"
+    await_readiness(address)
+    yield address
     server.should_exit = True
     thread.join()
 
