@@ -39,7 +39,7 @@ def _enclosed(layout: Layout, ring: ComplexArray) -> complex:
             total += 1j * outflow(element) / layout.depth * _turns(ring, element.at)
         elif isinstance(element, Vortex):
             total += element.circulation * _turns(ring, element.at)
-    for pier in layout.structures:
+    for pier in layout.piers:
         total += pier.circulation * _turns(ring, pier.at)
     return total
 

@@ -27,6 +27,7 @@ from forebay.flow.layout import (
     Sink,
     Source,
     StraightBank,
+    Surveyed,
     Vortex,
     outflow,
 )
@@ -68,6 +69,8 @@ class HalfPlaneMap:
     def __init__(self, shore: Shore) -> None:
         self.shore = shore
         match shore:
+            case Surveyed():
+                raise NotImplementedError
             case OpenWater():
                 self.origin, self.along = CONTEXT.mpc(0), CONTEXT.mpc(1)
             case StraightBank() | Channel() | DeadEnd():
@@ -91,6 +94,8 @@ class HalfPlaneMap:
         t: Number
         slope: Number
         match self.shore:
+            case Surveyed():
+                raise NotImplementedError
             case OpenWater() | StraightBank():
                 t, slope = local, CONTEXT.mpc(1)
             case Channel(width=width):
@@ -216,6 +221,8 @@ class Oracle:
         flip = CONTEXT.conj
         found: list[tuple[Number, int]]
         match self.layout.shore:
+            case Surveyed():
+                raise NotImplementedError
             case OpenWater():
                 found = [(local, 1)]
             case StraightBank():

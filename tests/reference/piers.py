@@ -65,7 +65,7 @@ def circle_theorem(layout: Layout, place: complex) -> Sum:
     For W this adds -(a/z)^2 conj(W0(c + a^2 / conj z)), W0 the velocity without the pier. Cancelling the pole
     of the fraction analytically is left out: 45 digits bear it.
     """
-    (pier,) = layout.structures
+    (pier,) = layout.piers
     centre, radius = exact(pier.at), CONTEXT.mpf(pier.radius)
     z = exact(place)
 
@@ -109,8 +109,7 @@ class Schwarz:
             self.along = np.clongdouble(shore.along) / np.abs(np.clongdouble(shore.along))
         poles = [(self._local(_long(s)), self._turned(g, k), k) for s, g, k in _poles(layout)]
         piers = [
-            (self._local(np.clongdouble(p.at)), np.longdouble(p.radius), p.circulation)
-            for p in layout.structures
+            (self._local(np.clongdouble(p.at)), np.longdouble(p.radius), p.circulation) for p in layout.piers
         ]
         if mirrored:
             poles += [(np.conj(s), np.conj(g), order) for s, g, order in poles]

@@ -33,16 +33,16 @@ def _about(pier: Pier) -> np.ndarray:
 @pytest.mark.parametrize("seed", range(6))
 def test_one_pier_in_open_water_is_exact(seed):
     layout = random_layout("open-water", seed, kinds=POINT_KINDS, count=8, piers=1)
-    assert _compare_with_circle_theorem(layout, _about(layout.structures[0])) <= ROUNDING
+    assert _compare_with_circle_theorem(layout, _about(layout.piers[0])) <= ROUNDING
 
 
 def test_one_pier_with_circulation():
-    assert _compare_with_circle_theorem(ONE, _about(ONE.structures[0])) <= ROUNDING
+    assert _compare_with_circle_theorem(ONE, _about(ONE.piers[0])) <= ROUNDING
 
 
 def test_pier_in_a_strain():
     layout = replace(ONE, ambient=Ambient(0.2 + 0.1j, ((0.03, 0.02), (0.02, -0.03)), 2 - 1j))
-    assert _compare_with_circle_theorem(layout, _about(ONE.structures[0])) <= ROUNDING
+    assert _compare_with_circle_theorem(layout, _about(ONE.piers[0])) <= ROUNDING
 
 
 def test_element_close_to_a_pier():
@@ -63,7 +63,7 @@ def _two(gap: float) -> Layout:
 @pytest.mark.parametrize("layout", [_two(2.0), _two(0.5), CROWD], ids=["far", "near", "bank"])
 def test_several_piers(layout):
     model, reference = compile_layout(layout), Schwarz(layout)
-    z = np.concatenate([_about(pier) for pier in layout.structures])
+    z = np.concatenate([_about(pier) for pier in layout.piers])
     z = z[model.wet(z)]
     error = np.abs(model.velocity(z) - reference.velocity(z)) / model.magnitude(z)
     # the boundary condition is met to the reported residual; the maximum principle carries it into the water
@@ -79,7 +79,7 @@ def test_flow_round_piers_meets_what_determines_it(shore_name, piers, seed):
     layout = random_layout(shore_name, seed, kinds=ALL_KINDS, count=7, piers=piers)
     model = compile_layout(layout)
     residual = max(ROUNDING, 2 * model.boundary_residual)
-    for pier in layout.structures:
+    for pier in layout.piers:
         _check_pier(model, pier, residual)
     for wall in wall_samples(SHORES[shore_name]):
         normal = (model.velocity(wall.points) * wall.along).imag

@@ -47,7 +47,7 @@ CROWD = Layout(
 
 def test_no_water_crosses_piers_or_bank():
     flow = Schwarz(CROWD)
-    for pier in CROWD.structures:
+    for pier in CROWD.piers:
         z = rim(pier)
         normal = (flow.velocity(z) * (z - pier.at) / pier.radius).real
         assert np.abs(normal).max() < 1e-14  # speeds are of order one; doubles on the way out

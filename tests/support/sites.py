@@ -15,6 +15,7 @@ from forebay.flow.layout import (
     OpenWater,
     Shore,
     StraightBank,
+    Surveyed,
 )
 
 ComplexArray = NDArray[np.complex128]
@@ -52,6 +53,8 @@ BASINS = frozenset({"basin", "basin-long"})
 def _frame(shore: Shore) -> tuple[complex, complex]:
     """Origin and direction of the frame in which the water is easily described."""
     match shore:
+        case Surveyed():
+            raise NotImplementedError
         case OpenWater():
             return 0j, 1 + 0j
         case StraightBank() | Channel() | DeadEnd():
@@ -72,6 +75,8 @@ def place(shore: Shore, across: float, along: float) -> complex:
     origin, unit = _frame(shore)
     local: complex
     match shore:
+        case Surveyed():
+            raise NotImplementedError
         case OpenWater():
             local = complex((s - 0.5) * SPAN, (a - 0.5) * SPAN)
         case StraightBank():
@@ -111,6 +116,8 @@ def wall_samples(shore: Shore, count: int = 41) -> tuple[WallSample, ...]:
         return _line(name, origin + unit * start, origin + unit * end, fractions)
 
     match shore:
+        case Surveyed():
+            raise NotImplementedError
         case OpenWater():
             return ()
         case StraightBank():

@@ -21,6 +21,7 @@ from forebay.flow.layout import (
     Sink,
     Source,
     StraightBank,
+    Surveyed,
     Vortex,
 )
 
@@ -51,7 +52,7 @@ def _moved(
     elements = tuple(_moved_element(element, move, turn, spin, scale) for element in layout.elements)
     structures = tuple(
         replace(p, at=move(p.at), radius=p.radius * scale, circulation=spin * p.circulation * scale)
-        for p in layout.structures
+        for p in layout.piers
     )
     ambient = Ambient(turn(layout.ambient.velocity))
     return replace(layout, ambient=ambient, shore=shore, elements=elements, structures=structures)
@@ -59,6 +60,8 @@ def _moved(
 
 def _moved_shore(shore: Shore, move: Move, turn: Move, scale: float = 1.0) -> Shore:
     match shore:
+        case Surveyed():
+            raise NotImplementedError
         case OpenWater():
             return shore
         case StraightBank():
@@ -100,6 +103,8 @@ def enlarged(layout: Layout, scale: float) -> Layout:
 def _mirrored_shore(shore: Shore) -> Shore:
     """The mirror image with the water on the left again."""
     match shore:
+        case Surveyed():
+            raise NotImplementedError
         case OpenWater():
             return shore
         case StraightBank():
@@ -129,7 +134,7 @@ def mirrored(layout: Layout) -> Layout:
 def strengthened(layout: Layout, factor: float) -> Layout:
     """Current, discharges, circulations and moments times a positive factor."""
     elements = tuple(_strengthened_element(element, factor) for element in layout.elements)
-    structures = tuple(replace(p, circulation=p.circulation * factor) for p in layout.structures)
+    structures = tuple(replace(p, circulation=p.circulation * factor) for p in layout.piers)
     ambient = Ambient(layout.ambient.velocity * factor)
     return replace(layout, ambient=ambient, elements=elements, structures=structures)
 

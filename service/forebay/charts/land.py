@@ -5,7 +5,16 @@ from typing import assert_never
 import numpy as np
 
 from forebay.flow.arrays import ComplexArray
-from forebay.flow.layout import Basin, Channel, Corner, DeadEnd, OpenWater, Shore, StraightBank
+from forebay.flow.layout import (
+    Basin,
+    Channel,
+    Corner,
+    DeadEnd,
+    OpenWater,
+    Shore,
+    StraightBank,
+    Surveyed,
+)
 from forebay.flow.shores import Wall
 from forebay.flow.stagnation.result import Window
 
@@ -19,7 +28,7 @@ def reach_of(window: Window, place: complex) -> float:
     return abs(middle - place) + 2 * abs(complex(window.x[1] - window.x[0], window.y[1] - window.y[0]))
 
 
-def land_rings(shore: Shore, window: Window) -> list[ComplexArray]:
+def land_rings(shore: Shore, window: Window) -> list[ComplexArray]:  # noqa: PLR0911
     """Closed rings round the land in and about the window, x + iy [m]; a ring within another is its hole."""
     match shore:
         case OpenWater():
@@ -41,7 +50,18 @@ def land_rings(shore: Shore, window: Window) -> list[ComplexArray]:
             rim = np.array([-1 - 1j, 1 - 1j, 1 + 1j, -1 + 1j]) * far
             water = np.array([0, 1j * width, length + 1j * width, length])
             return [np.asarray(corner + along * ring, dtype=np.complex128) for ring in (rim, water)]
+        case Surveyed():
+            return surveyed_land(shore, window)
     assert_never(shore)
+
+
+def surveyed_land(shore: Surveyed, window: Window) -> list[ComplexArray]:
+    """Land outside the outer ring, and the islands."""
+    outer = np.array(shore.outer)
+    middle = complex(outer.mean())
+    far = reach_of(window, middle) + 2 * float(np.max(np.abs(outer - middle)))
+    square = middle + far * np.array([-1 - 1j, 1 - 1j, 1 + 1j, -1 + 1j])
+    return [square, outer, *(np.array(island.points) for island in shore.islands)]
 
 
 def half_plane(point: complex, along: complex, reach: float) -> ComplexArray:

@@ -120,9 +120,9 @@ def add_elements(builder: PoleBuilder, layout: Layout, frame: Frame) -> None:
 
 def _imaging(at: complex, layout: Layout) -> tuple[Pier, ...]:
     """Piers in which an element gets exact images: all if there are few, else the near ones."""
-    if len(layout.elements) * len(layout.structures) <= _FEW_IMAGES:
-        return layout.structures
-    return tuple(pier for pier in layout.structures if abs(at - pier.at) < _NEAR * pier.radius)
+    if len(layout.elements) * len(layout.piers) <= _FEW_IMAGES:
+        return layout.piers
+    return tuple(pier for pier in layout.piers if abs(at - pier.at) < _NEAR * pier.radius)
 
 
 def _add_doublet(
@@ -138,11 +138,11 @@ def _add_doublet(
         builder.add_moments(at, np.array([part * complex(frame.map.slope(np.asarray(at)))]), owner)
 
 
-def add_piers(builder: PoleBuilder, piers: tuple[Pier, ...], first_owner: int) -> None:
+def add_piers(builder: PoleBuilder, piers: tuple[Pier, ...], owners: list[int]) -> None:
     """Add the circulation round every pier as a vortex at its centre."""
-    for k, pier in enumerate(piers):
+    for owner, pier in zip(owners, piers, strict=True):
         if pier.circulation != 0.0:
-            builder.add_pole(pier.at, -1j * pier.circulation / (2.0 * np.pi), first_owner + k)
+            builder.add_pole(pier.at, -1j * pier.circulation / (2.0 * np.pi), owner)
 
 
 def ambient_constant(layout: Layout, frame: Frame) -> complex:

@@ -1,16 +1,28 @@
 """The far ends of the water: where it comes from and goes to when no element does."""
 
 from dataclasses import dataclass
+from itertools import pairwise
 from math import nan
 
-from forebay.flow.layout import Basin, Channel, Corner, DeadEnd, Layout, OpenWater, StraightBank, outflow
+from forebay.flow.layout import (
+    Basin,
+    Channel,
+    Corner,
+    DeadEnd,
+    Layout,
+    OpenEdge,
+    OpenWater,
+    StraightBank,
+    Surveyed,
+    outflow,
+)
 
 
 @dataclass(frozen=True, slots=True)
 class End:
     """A far end of the water.
 
-    name : "ambient", "upstream", "downstream" or "open-end"
+    name : "ambient", "upstream", "downstream", "open-end" or the name of an open edge
     inflow : water entering there per depth [m2/s], negative if it leaves; nan where unbounded
     speed : current there [m/s], always >= 0
     direction : unit complex pointing out of the site towards the end; 0 where all directions count
@@ -40,6 +52,29 @@ def ends_of(layout: Layout) -> tuple[End, ...]:
             return (End("open-end", -net, abs(net) / shore.width, shore.along),)
         case Basin():
             return ()
+        case Surveyed():
+            return tuple(_edge_end(shore, edge, layout) for edge in shore.edges)
+
+
+def inflows(shore: Surveyed, layout: Layout) -> tuple[float, ...]:
+    """Discharge of each open edge into the water per depth [m2/s]; continuity gives the one left open."""
+    given = sum(edge.discharge for edge in shore.edges if edge.discharge is not None) / layout.depth
+    rest = -_net(layout) - given
+    return tuple(rest if e.discharge is None else e.discharge / layout.depth for e in shore.edges)
+
+
+def edge_points(shore: Surveyed, edge: OpenEdge) -> tuple[complex, ...]:
+    """Vertices of an open edge from its first to its last, x + iy [m]."""
+    count = len(shore.outer)
+    return tuple(shore.outer[(edge.first + k) % count] for k in range(edge.count + 1))
+
+
+def _edge_end(shore: Surveyed, edge: OpenEdge, layout: Layout) -> End:
+    points = edge_points(shore, edge)
+    inflow = inflows(shore, layout)[shore.edges.index(edge)]
+    length = sum(abs(b - a) for a, b in pairwise(points))
+    chord = points[-1] - points[0]
+    return End(edge.name, inflow, abs(inflow) / length, -1j * chord / abs(chord))
 
 
 def _net(layout: Layout) -> float:

@@ -60,6 +60,15 @@ class FarField:
         offset = z - self.centre
         return (offset * np.conj(self.axis)).real if self.axis else np.abs(offset)
 
+    @property
+    def is_round(self) -> bool:
+        """Whether the far field begins on a circle."""
+        return not self.axis
+
+    def ahead(self, z: ComplexArray, _heading: ComplexArray) -> FloatArray:
+        """Distance to an end that must not be overrun, shape (n,): inf, since water goes on beyond [m]."""
+        return np.full(z.shape, inf)
+
     def reached(self, z: ComplexArray, heading: ComplexArray, *, forward: bool) -> IntArray:
         """Index of the end that each point has reached, -1 for none.
 
@@ -108,18 +117,19 @@ def far_field_of(model: FlowModel, places: ComplexArray) -> FarField:
         stations = ((places - centre) * np.conj(shore.along)).real
         reach = float(np.max(np.abs(stations))) + _STATION * shore.width
         return FarField(_ordered_ends(model, shore.along), centre, size, reach, shore.along)
-    ends = tuple(_far_end(model, k) for k in range(len(model.ends)))
+    ends = tuple(far_end(model, k) for k in range(len(model.ends)))
     return FarField(ends, centre, size, _circle(model, size), 0j)
 
 
 def _ordered_ends(model: FlowModel, along: complex) -> tuple[FarEnd, ...]:
     """Ends of a channel, the one against `along` first."""
-    ends = [_far_end(model, k) for k in range(len(model.ends))]
+    ends = [far_end(model, k) for k in range(len(model.ends))]
     reversed_current = (model.layout.ambient.velocity * along.conjugate()).real < 0.0
     return tuple(reversed(ends) if reversed_current else ends)
 
 
-def _far_end(model: FlowModel, k: int) -> FarEnd:
+def far_end(model: FlowModel, k: int) -> FarEnd:
+    """The k-th end of the water, and whether water comes from it or goes to it."""
     end, inflow = model.ends[k], _inflow(model, k)
     if model.layout.ambient.has_gradient or isnan(inflow):
         return FarEnd(end.name, end.speed, gives=True, takes=True)

@@ -92,6 +92,23 @@ class Pier:
 
 
 @dataclass(frozen=True, slots=True)
+class Outline:
+    """Solid of any shape: groyne, jetty, quay, island.
+
+    points : vertices, anticlockwise, the first not repeated at the end, x + iy [m]; what lies on or behind a
+    bank is cut off when the layout is compiled
+    circulation : round one that stands free in the water, anticlockwise positive [m2/s]
+    """
+
+    name: str
+    points: tuple[complex, ...]
+    circulation: float = 0.0
+
+
+Structure = Pier | Outline
+
+
+@dataclass(frozen=True, slots=True)
 class OpenWater:
     """No bank anywhere."""
 
@@ -141,7 +158,48 @@ class Basin:
     width: float
 
 
-Shore = OpenWater | StraightBank | Channel | Corner | DeadEnd | Basin
+class EdgeProfile(StrEnum):
+    """How the water crosses an open edge."""
+
+    EQUIPOTENTIAL = "equipotential"
+    UNIFORM = "uniform"
+
+
+@dataclass(frozen=True, slots=True)
+class OpenEdge:
+    """Part of the outer ring of surveyed water where water comes in or goes out.
+
+    first, count : the edges first ... first + count - 1 of the ring, edge k from point k to point k + 1
+    discharge : into the water [m3/s]; None on at most one edge, which continuity then gives
+    profile : square to the edge with one potential on it, or the same speed everywhere
+    """
+
+    name: str
+    first: int
+    count: int
+    discharge: float | None
+    profile: EdgeProfile
+
+
+@dataclass(frozen=True, slots=True)
+class Island:
+    """Island in surveyed water; points clockwise, x + iy [m]; circulation anticlockwise positive [m2/s]."""
+
+    name: str
+    points: tuple[complex, ...]
+    circulation: float = 0.0
+
+
+@dataclass(frozen=True, slots=True)
+class Surveyed:
+    """Water within a polygon; `outer` anticlockwise, x + iy [m], so that water lies left of every ring."""
+
+    outer: tuple[complex, ...]
+    islands: tuple[Island, ...] = ()
+    edges: tuple[OpenEdge, ...] = ()
+
+
+Shore = OpenWater | StraightBank | Channel | Corner | DeadEnd | Basin | Surveyed
 
 
 @dataclass(frozen=True, slots=True)
@@ -178,14 +236,30 @@ class Water:
 
 @dataclass(frozen=True, slots=True)
 class Layout:
-    """A site: water, current, shore, elements and structures; `depth` [m] is the mean depth."""
+    """A site: water, current, shore, elements and structures.
+
+    depth : mean depth [m]
+    tolerance : largest error of the stream function that outlines and surveyed shores are solved to, as part
+    of the flow through [-]
+    """
 
     depth: float
     water: Water = field(default_factory=Water)
     ambient: Ambient = field(default_factory=Ambient)
     shore: Shore = field(default_factory=OpenWater)
     elements: tuple[Element, ...] = ()
-    structures: tuple[Pier, ...] = ()
+    structures: tuple[Structure, ...] = ()
+    tolerance: float = 1e-4
+
+    @property
+    def piers(self) -> tuple[Pier, ...]:
+        """The piers among the structures, in order."""
+        return tuple(s for s in self.structures if isinstance(s, Pier))
+
+    @property
+    def outlines(self) -> tuple[Outline, ...]:
+        """The outlines among the structures, in order."""
+        return tuple(s for s in self.structures if isinstance(s, Outline))
 
 
 def outflow(element: Element) -> float:

@@ -17,6 +17,7 @@ from forebay.flow.core_centres import CoreCentre, centre_chords, core_centre, wi
 from forebay.flow.cores import CoreTerm, core_term
 from forebay.flow.corner_chords import corner_chords
 from forebay.flow.ends import End, ends_of
+from forebay.flow.errors import UnsolvedStructureError
 from forebay.flow.features import (
     CoredVortex,
     Line,
@@ -32,6 +33,7 @@ from forebay.flow.layout import (
     LineSink,
     LineSource,
     Pier,
+    Surveyed,
     Vortex,
     outflow,
 )
@@ -297,7 +299,7 @@ class FlowModel:
     @property
     def piers(self) -> tuple[Pier, ...]:
         """The piers."""
-        return self.layout.structures
+        return self.layout.piers
 
     @cached_property
     def ends(self) -> tuple[End, ...]:
@@ -349,15 +351,17 @@ def compile_layout(layout: Layout) -> FlowModel:
     terms = _terms(layout, frame)
     builder = PoleBuilder(frame, scale)
     add_elements(builder, layout, frame)
-    first_pier = len(layout.elements) + 1
-    add_piers(builder, layout.structures, first_pier)
+    owners = [k for k, s in enumerate(layout.structures, len(layout.elements) + 1) if isinstance(s, Pier)]
+    add_piers(builder, layout.piers, owners)
     constant, offset = ambient_constant(layout, frame), offset_of(layout, frame)
     model = FlowModel(layout, frame, builder.build(constant, offset), terms, scale, 0.0)
-    if not layout.structures:
+    if layout.outlines or isinstance(layout.shore, Surveyed):
+        raise UnsolvedStructureError("outlines and surveyed shores cannot be solved yet", ("structures",))
+    if not layout.piers:
         return model
-    solution = solve_piers(layout.structures, frame, model.rational, model.velocity)
-    for k, (pier, moments) in enumerate(zip(layout.structures, solution.moments, strict=True)):
-        builder.add_moments(pier.at, moments, first_pier + k)
+    solution = solve_piers(layout.piers, frame, model.rational, model.velocity)
+    for owner, pier, moments in zip(owners, layout.piers, solution.moments, strict=True):
+        builder.add_moments(pier.at, moments, owner)
     return FlowModel(layout, frame, builder.build(constant, offset), terms, scale, solution.residual)
 
 

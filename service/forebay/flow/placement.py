@@ -30,10 +30,14 @@ from forebay.flow.layout import (
     LineSink,
     LineSource,
     OpenWater,
+    Outline,
+    Pier,
     Shore,
     Sink,
     Source,
     StraightBank,
+    Structure,
+    Surveyed,
     Vortex,
     outflow,
 )
@@ -63,8 +67,8 @@ def scale_of(layout: Layout) -> tuple[complex, float]:
     radius, the width of a channel or dead end, the diagonal of a basin; 1 m if there is none of these.
     """
     points = [at for element in layout.elements for _, at in places(element)]
-    points += [pier.at for pier in layout.structures]
-    radii = [pier.radius for pier in layout.structures]
+    points += [at for structure in layout.structures for at in _footprint(structure)]
+    radii = [pier.radius for pier in layout.piers]
     radii += [
         element.core.radius for element in layout.elements if isinstance(element, Vortex) and element.core
     ]
@@ -89,6 +93,16 @@ def _home(shore: Shore) -> complex:
             return shore.vertex
         case Basin():
             return shore.corner
+        case Surveyed():
+            return shore.outer[0]
+
+
+def _footprint(structure: Structure) -> tuple[complex, ...]:
+    match structure:
+        case Pier():
+            return (structure.at,)
+        case Outline():
+            return structure.points
 
 
 def _size(shore: Shore) -> float:
@@ -97,8 +111,15 @@ def _size(shore: Shore) -> float:
             return shore.width
         case Basin():
             return abs(complex(shore.length, shore.width))
+        case Surveyed():
+            return _diagonal(shore.outer)
         case OpenWater() | StraightBank() | Corner():
             return 0.0
+
+
+def _diagonal(points: tuple[complex, ...]) -> float:
+    xs, ys = [p.real for p in points], [p.imag for p in points]
+    return abs(complex(max(xs) - min(xs), max(ys) - min(ys)))
 
 
 def check_layout(layout: Layout, frame: Frame, scale: float) -> None:
@@ -212,7 +233,7 @@ def _check_line(element: LineSource | LineSink, frame: Frame, scale: float, path
 
 def _check_core(at: complex, core: Core, layout: Layout, frame: Frame, path: Path) -> None:
     gap = _gap(at, frame.walls)
-    gap = min([gap, *(abs(at - pier.at) - pier.radius for pier in layout.structures)])
+    gap = min([gap, *(abs(at - pier.at) - pier.radius for pier in layout.piers)])
     if core.model is CoreModel.RANKINE and core.radius > gap:
         raise ElementOnLandError(f"the core reaches {core.radius - gap:.4g} m into land", path)
 
@@ -222,11 +243,12 @@ def _gap(at: complex, walls: tuple[Wall, ...]) -> float:
 
 
 def _check_structures(layout: Layout, frame: Frame, scale: float) -> None:
-    for k, pier in enumerate(layout.structures):
+    piers = [(k, pier) for k, pier in enumerate(layout.structures) if isinstance(pier, Pier)]
+    for rank, (k, pier) in enumerate(piers):
         _check_wet(pier.at, frame, scale, ("structures", k, "at"))
         if _gap(pier.at, frame.walls) - pier.radius <= TOUCHING * scale:
             raise OverlappingStructuresError("the pier touches a bank", ("structures", k, "radius"))
-        for j, other in enumerate(layout.structures[:k]):
+        for j, other in piers[:rank]:
             if abs(pier.at - other.at) - pier.radius - other.radius <= TOUCHING * scale:
                 raise OverlappingStructuresError(f"the pier touches structures/{j}", ("structures", k, "at"))
         for i, element in enumerate(layout.elements):

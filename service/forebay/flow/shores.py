@@ -6,7 +6,7 @@ from math import ceil, exp, inf, log, pi
 import numpy as np
 
 from forebay.flow.arrays import BoolArray, ComplexArray, FloatArray
-from forebay.flow.layout import Basin, Channel, Corner, DeadEnd, OpenWater, Shore, StraightBank
+from forebay.flow.layout import Basin, Channel, Corner, DeadEnd, OpenWater, Shore, StraightBank, Surveyed
 from forebay.flow.maps import AffineMap, ConformalMap, LogarithmMap
 from forebay.flow.poles import PERIODIC, RATIONAL
 
@@ -130,7 +130,7 @@ def frame_of(shore: Shore, middle: complex, size: float) -> Frame:
     size : typical distance of the elements from each other [m], the unit of a corner's map
     """
     match shore:
-        case OpenWater():
+        case OpenWater() | Surveyed():
             return Frame(AffineMap(middle, 1.0 + 0j), RATIONAL, (), mirrored=False)
         case StraightBank():
             return _straight(Wall("bank", shore.point, shore.along, inf, inf), middle)

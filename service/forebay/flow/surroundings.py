@@ -8,8 +8,9 @@ import numpy as np
 from forebay.flow.arrays import BoolArray, ComplexArray, FloatArray, IntArray
 from forebay.flow.far_field import FarField, far_field_of
 from forebay.flow.kernels.nearest import nearest_sites
-from forebay.flow.layout import Doublet, Element, outflow
+from forebay.flow.layout import Doublet, Element, Surveyed, outflow
 from forebay.flow.model import FlowModel
+from forebay.flow.open_edges import OpenEdges, open_edges_of
 
 _NEAR = 0.005
 """Radius of capture over the distance to the next site, and the other velocity over the element's own [-]."""
@@ -112,7 +113,7 @@ class Surroundings:
 
     sites: Sites
     lines: LineFaces
-    far: FarField
+    far: FarField | OpenEdges
 
 
 def survey(model: FlowModel, stagnation: ComplexArray) -> Surroundings:
@@ -145,9 +146,14 @@ def survey(model: FlowModel, stagnation: ComplexArray) -> Surroundings:
         radius=radius,
         strength=strength,
     )
-    return Surroundings(
-        sites, lines, far_field_of(model, places if places.size else np.zeros(1, dtype=np.complex128))
-    )
+    return Surroundings(sites, lines, _far(model, places))
+
+
+def _far(model: FlowModel, places: ComplexArray) -> FarField | OpenEdges:
+    """Where streamlines leave the site for good."""
+    if isinstance(model.layout.shore, Surveyed):
+        return open_edges_of(model, model.layout.shore)
+    return far_field_of(model, places if places.size else np.zeros(1, dtype=np.complex128))
 
 
 def _spacing(places: ComplexArray) -> FloatArray:

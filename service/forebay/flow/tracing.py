@@ -227,6 +227,9 @@ class _Run:
         distance, index = self.surroundings.sites.nearest(lines.z)
         lines.distance = np.where(np.isfinite(distance), distance, self.model.scale)
         lines.step = np.minimum(lines.step, _REACH * lines.distance)
+        if not self.surroundings.far.is_round:
+            ahead = self.surroundings.far.ahead(lines.z, self._heading())
+            lines.step = np.minimum(lines.step, 0.9 * np.maximum(ahead, 1e-12 * self.model.scale))
         return index
 
     def _record(self, moved: BoolArray) -> None:

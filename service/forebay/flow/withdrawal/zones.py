@@ -11,7 +11,7 @@ from math import inf
 import numpy as np
 
 from forebay.flow.arrays import ComplexArray, FloatArray
-from forebay.flow.layout import Basin, Channel, DeadEnd
+from forebay.flow.layout import Basin, Channel, DeadEnd, Surveyed
 from forebay.flow.model import FlowModel
 from forebay.flow.surroundings import Surroundings
 from forebay.flow.traces import Stop, Traces
@@ -141,7 +141,7 @@ def canvas_of(model: FlowModel, surroundings: Surroundings, intakes: tuple[str, 
     if speed > 0.0 and not isinstance(shore, Channel | DeadEnd):
         taken = [e.discharge for e in model.layout.elements if e.name in intakes]  # type: ignore[union-attr]
         extent = max(extent, 3.0 * max(taken, default=0.0) / model.layout.depth / speed)
-    if isinstance(shore, Basin):
+    if isinstance(shore, Basin | Surveyed):
         extent = inf
     return Canvas(model, surroundings, extent)
 
@@ -194,7 +194,7 @@ def zone_outline(
             divides, (mouth, arrivals), sector.high, canvas.clamped(canvas.drawn(traces.paths[2 * k + 1]))
         )
         far = all(traces.stops[i] is Stop.FAR_END for i in (2 * k, 2 * k + 1))
-        closure = _arc(canvas, left[-1], right[-1]) if far and not canvas.surroundings.far.axis else left[:0]
+        closure = _arc(canvas, left[-1], right[-1]) if far and canvas.surroundings.far.is_round else left[:0]
         parts += [left, closure, right[::-1]]
     return np.concatenate(parts)
 
@@ -234,8 +234,11 @@ def _arc(canvas: Canvas, start: complex, end: complex) -> ComplexArray:
 
 def _whole_water(canvas: Canvas) -> ComplexArray:
     """All of the water within the extent."""
-    if isinstance(canvas.model.layout.shore, Basin):
+    shore = canvas.model.layout.shore
+    if isinstance(shore, Basin):
         return np.array([wall.point for wall in canvas.model.walls], dtype=np.complex128)
+    if isinstance(shore, Surveyed):
+        return np.array(shore.outer, dtype=np.complex128)
     circle = canvas.centre + canvas.extent * np.exp(2j * np.pi * np.arange(_CORNERS) / _CORNERS)
     wet = canvas.model.wet(circle)
     if bool(np.all(wet)):

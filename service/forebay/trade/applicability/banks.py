@@ -87,7 +87,7 @@ def core_near_wall(site: Site) -> Iterator[ApplicabilityWarning]:
         if not isinstance(element, Vortex) or element.core is None:
             continue
         limit = _reach(element.core)
-        walls = [distance_to(pier, element.at) for pier in site.layout.structures]
+        walls = [distance_to(pier, element.at) for pier in site.layout.piers]
         distance = min([bank_distance(site.layout.shore, element.at), *walls])
         if distance < limit:
             yield CORE_NEAR_WALL.raised(

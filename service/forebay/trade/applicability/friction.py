@@ -64,7 +64,7 @@ TURBULENCE_LEFT_OUT = WarningKind(
 def friction_length(site: Site) -> Iterator[ApplicabilityWarning]:
     """Layouts that are long against the friction length."""
     friction = site.data.bed_friction
-    things = (*site.layout.elements, *site.layout.structures)
+    things = (*site.layout.elements, *site.layout.piers)
     if not friction or not things:
         return
     places = np.array([end for thing in things for end in ends_of(thing)])

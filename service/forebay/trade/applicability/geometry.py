@@ -1,6 +1,7 @@
 """Distances between things of a layout, before anything is computed."""
 
 import math
+from collections.abc import Iterable
 
 from forebay.flow.layout import (
     Basin,
@@ -14,10 +15,11 @@ from forebay.flow.layout import (
     Pier,
     Shore,
     StraightBank,
+    Surveyed,
 )
 
 
-def bank_distance(shore: Shore, z: complex) -> float:
+def bank_distance(shore: Shore, z: complex) -> float:  # noqa: PLR0911
     """Distance from a place in the water to the nearest bank [m]; infinite in open water."""
     match shore:
         case OpenWater():
@@ -34,6 +36,13 @@ def bank_distance(shore: Shore, z: complex) -> float:
         case Basin(corner=corner, along=along, length=length, width=width):
             ahead = _within(_ahead(z, corner, along), length)
             return min(_within(_across(z, corner, along), width), ahead)
+        case Surveyed():
+            return _to_rings(z, (shore.outer, *(island.points for island in shore.islands)))
+
+
+def _to_rings(z: complex, rings: Iterable[tuple[complex, ...]]) -> float:
+    sides = [side for ring in rings for side in zip(ring, ring[1:] + ring[:1], strict=True)]
+    return min(_to_segment(z, start, end) for start, end in sides)
 
 
 def _across(z: complex, point: complex, along: complex) -> float:

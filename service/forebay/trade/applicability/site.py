@@ -77,8 +77,9 @@ class Site:
 
     def piers(self) -> Iterator[tuple[Path, Pier]]:
         """Piers with their paths."""
-        for index, pier in enumerate(self.layout.structures):
-            yield ("structures", index), pier
+        for index, structure in enumerate(self.layout.structures):
+            if isinstance(structure, Pier):
+                yield ("structures", index), structure
 
     def compact(self) -> Iterator[tuple[Path, Source | Sink]]:
         """Sources and sinks at a point."""
@@ -109,7 +110,7 @@ class Site:
 
     @cached_property
     def _things(self) -> tuple[Thing, ...]:
-        return (*self.layout.elements, *self.layout.structures)
+        return (*self.layout.elements, *self.layout.piers)
 
     @cached_property
     def _order(self) -> dict[int, int]:
