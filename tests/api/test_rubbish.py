@@ -81,7 +81,10 @@ PLACES = {
 @pytest.mark.parametrize(("pointer", "body"), PLACES.items(), ids=PLACES)
 def test_no_number_is_no_number(client, number, pointer, body):
     problem = assert_problem(client.post(SAMPLE, content=body % number), 422, "invalid-request")
-    assert pointers(problem) == {pointer}
+    if pointer.endswith("/discharge") and number == "{}":  # an object is a discharge with its own unit
+        assert pointers(problem) == {f"{pointer}/value", f"{pointer}/unit"}
+    else:
+        assert pointers(problem) == {pointer}
 
 
 def test_whole_number_may_be_written_with_a_point(client):

@@ -9,7 +9,7 @@ from pydantic_core import ErrorDetails
 from forebay.api.problems import LONGEST_TOKEN, MOST_ERRORS, Problem, pointer
 from forebay.flow.errors import Path
 
-UNIONS = frozenset({"shore", "fluid"})
+UNIONS = frozenset({"shore", "fluid", "discharge"})
 """Members whose value is of one of several kinds."""
 
 LISTS_OF_UNIONS = frozenset({"elements"})
@@ -43,7 +43,7 @@ def problem_of(error: ValidationError) -> Problem:
 def without_tags(location: Path) -> Path:
     """Steps of a validation error's location without the tags of unions, which are no members of the body.
 
-    A tag stands after `shore`, after `fluid`, and after the index of an element.
+    A tag stands after `shore`, `fluid` and `discharge`, and after the index of an element.
     """
     before = ("", "", *location)
     return tuple(

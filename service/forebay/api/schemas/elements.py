@@ -5,8 +5,8 @@ from typing import Annotated, Literal
 from pydantic import Field
 
 from forebay.api.schemas.common import Name, Strict
+from forebay.api.schemas.discharges import Discharge, read_discharge
 from forebay.api.schemas.quantities import (
-    CubicMetresPerSecond,
     Moment,
     PortArea,
     Position,
@@ -29,7 +29,7 @@ class Core(Strict):
 class _Discharging(Strict):
     name: Name
     at: Annotated[Position, Field(description="Position")]
-    discharge: Annotated[CubicMetresPerSecond, Field(description="Discharge over the whole depth, positive")]
+    discharge: Annotated[Discharge, Field(description="Discharge over the whole depth, positive")]
 
 
 PortAreaField = Annotated[
@@ -45,7 +45,7 @@ class Source(_Discharging):
 
     def to_flow(self, units: UnitSystem) -> flow.Source:
         """Source in SI."""
-        return flow.Source(self.name, units.position(self.at), units.read(self.discharge, "m3/s"))
+        return flow.Source(self.name, units.position(self.at), read_discharge(self.discharge, units))
 
 
 class Sink(_Discharging):
@@ -55,14 +55,14 @@ class Sink(_Discharging):
 
     def to_flow(self, units: UnitSystem) -> flow.Sink:
         """Sink in SI."""
-        return flow.Sink(self.name, units.position(self.at), units.read(self.discharge, "m3/s"))
+        return flow.Sink(self.name, units.position(self.at), read_discharge(self.discharge, units))
 
 
 class _Spread(Strict):
     name: Name
     start: Annotated[Position, Field(alias="from", description="One end")]
     end: Annotated[Position, Field(alias="to", description="Other end", examples=[[52.0, 0.0]])]
-    discharge: Annotated[CubicMetresPerSecond, Field(description="Discharge of the whole line, positive")]
+    discharge: Annotated[Discharge, Field(description="Discharge of the whole line, positive")]
 
 
 class LineSource(_Spread):
@@ -74,7 +74,7 @@ class LineSource(_Spread):
     def to_flow(self, units: UnitSystem) -> flow.LineSource:
         """Line source in SI."""
         ends = units.position(self.start), units.position(self.end)
-        return flow.LineSource(self.name, *ends, units.read(self.discharge, "m3/s"))
+        return flow.LineSource(self.name, *ends, read_discharge(self.discharge, units))
 
 
 class LineSink(_Spread):
@@ -85,7 +85,7 @@ class LineSink(_Spread):
     def to_flow(self, units: UnitSystem) -> flow.LineSink:
         """Line sink in SI."""
         ends = units.position(self.start), units.position(self.end)
-        return flow.LineSink(self.name, *ends, units.read(self.discharge, "m3/s"))
+        return flow.LineSink(self.name, *ends, read_discharge(self.discharge, units))
 
 
 class Vortex(Strict):
