@@ -9,7 +9,7 @@ from starlette.testclient import TestClient
 
 from forebay.api.limits import Limits
 from forebay.api.media import JSON
-from forebay.api.operation import Reply
+from forebay.api.outcome import Reply
 from forebay.api.problems import Problem
 from forebay.api.work import Workshop
 from forebay.app import create_app

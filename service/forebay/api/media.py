@@ -7,6 +7,10 @@ CSV = "text/csv"
 SVG = "image/svg+xml"
 PNG = "image/png"
 HTML = "text/html"
+NPY = "application/x-npy"
+ARROW = "application/vnd.apache.arrow.stream"
+JSON_LINES = ("application/jsonl", "application/x-ndjson")
+"""Two names of one format, neither registered, both in use."""
 
 
 def negotiate(accept: str | None, offered: tuple[str, ...]) -> str:

@@ -4,50 +4,24 @@ The way is a plain function of its arguments, so that it runs in the event loop,
 """
 
 from collections.abc import Callable
-from dataclasses import dataclass, field
+from dataclasses import dataclass
 from time import perf_counter
 from typing import Any, Generic, NamedTuple, TypeVar
 
 from pydantic import ValidationError
 
 from forebay.api import envelope
-from forebay.api.csv_table import MEDIA_TYPE as CSV_SENT
-from forebay.api.csv_table import encode_csv
+from forebay.api.encoders.envelope_json import ENVELOPE
 from forebay.api.limits import Limits, Price
-from forebay.api.media import CSV, JSON
+from forebay.api.outcome import Answered, Encoder, Outcome, Reply
 from forebay.api.problems import Problem
 from forebay.api.refusals import from_flow
 from forebay.api.schemas.common import Answer, ComputeRequest
 from forebay.api.units import UnitSystem
 from forebay.api.validation import problem_of
-from forebay.api.warnings import Notice
 from forebay.flow.errors import FlowError
-from forebay.flow.layout import Layout
-from forebay.trade.applicability.site import SiteData
 
 R = TypeVar("R", bound=ComputeRequest)
-
-
-@dataclass(frozen=True, slots=True)
-class Outcome:
-    """What a computation hands back.
-
-    result : fields of the answer in SI; complex values are positions
-    layout : the layout it was computed for;  data : what else is known of the site
-    warnings : where the numbers should not be trusted
-    picture : encoded picture instead of a result
-    """
-
-    result: dict[str, Any] = field(default_factory=dict)
-    layout: Layout | None = None
-    data: SiteData | None = None
-    warnings: tuple[Notice, ...] = ()
-    picture: bytes | None = None
-
-    @property
-    def site(self) -> tuple[Layout, SiteData | None] | None:
-        """What the digest is of."""
-        return None if self.layout is None else (self.layout, self.data)
 
 
 @dataclass(frozen=True)
@@ -62,20 +36,21 @@ class Operation(Generic[R]):
     result: type[Answer] | None
     compute: Callable[[R, str], Outcome]
     price: Callable[[R], Price]
-    media_types: tuple[str, ...] = (JSON,)
+    encoders: tuple[Encoder, ...] = (ENVELOPE,)
 
     @property
     def tag(self) -> str:
         """Group in the documentation: the family in the path."""
         return self.path.split("/")[2]
 
+    @property
+    def media_types(self) -> tuple[str, ...]:
+        """What this installation can answer with, the default first."""
+        return tuple(encoder.media_type for encoder in self.encoders if encoder.is_available())
 
-class Reply(NamedTuple):
-    """An answer on its way out."""
-
-    media_type: str
-    body: bytes
-    headers: dict[str, str]
+    def encoder(self, media_type: str) -> Encoder:
+        """Encoder of one of the media types."""
+        return next(encoder for encoder in self.encoders if encoder.media_type == media_type)
 
 
 class Deferred(NamedTuple):
@@ -102,20 +77,17 @@ def perform(
         return problem_of(error)
     except FlowError as error:
         return from_flow(error, system)
+    except Problem as problem:
+        return problem
     times = {"parse": parsed - started, "compute": computed - parsed, "encode": perf_counter() - computed}
     timing = ", ".join(f"{name};dur={1e3 * seconds:.2f}" for name, seconds in times.items())
     return reply._replace(headers={**reply.headers, "Server-Timing": timing})
 
 
 def _encode(operation: Operation[Any], request: ComputeRequest, outcome: Outcome, media_type: str) -> Reply:
-    if outcome.picture is not None:
-        codes = ", ".join(dict.fromkeys(notice.code for notice in outcome.warnings))
-        return Reply(media_type, outcome.picture, {"Forebay-Warnings": codes} if codes else {})
-    if operation.result is None:
-        raise TypeError(f"{operation.operation_id} gave neither a result nor a picture")
-    document = envelope.document(
-        operation.result, outcome.result, request=request, site=outcome.site, notices=outcome.warnings
-    )
-    if media_type == CSV:
-        return Reply(CSV_SENT, *encode_csv(document))
-    return Reply(JSON, envelope.encode(document), {})
+    document = {}
+    if operation.result is not None:
+        document = envelope.document(
+            operation.result, outcome.result, request=request, site=outcome.site, notices=outcome.warnings
+        )
+    return operation.encoder(media_type).encode(Answered(request, outcome, document))

@@ -9,7 +9,8 @@ import orjson
 
 from forebay.api.examples import rehearsals
 from forebay.api.media import JSON
-from forebay.api.operation import Operation, Reply, perform
+from forebay.api.operation import Operation, perform
+from forebay.api.outcome import Reply
 from forebay.api.routers.registry import OPERATIONS
 from forebay.api.work import Workshop
 

@@ -4,7 +4,7 @@ from typing import Any
 
 import numpy as np
 
-from forebay.api.operation import Outcome
+from forebay.api.outcome import Outcome
 from forebay.api.schemas.layout import LayoutRequest
 from forebay.flow.layout import Layout
 from forebay.trade.applicability.site import Readings

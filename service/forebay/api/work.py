@@ -11,7 +11,8 @@ import anyio
 from pebble import ProcessExpired, ProcessPool
 
 from forebay.api.limits import Limits
-from forebay.api.operation import Deferred, Operation, Reply, perform
+from forebay.api.operation import Deferred, Operation, perform
+from forebay.api.outcome import Reply
 from forebay.api.problems import Problem
 
 INLINE_BODY = 16 * 1024

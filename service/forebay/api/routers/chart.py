@@ -4,9 +4,10 @@ from dataclasses import replace
 
 from fastapi import APIRouter
 
+from forebay.api.encoders.pictures import PICTURES
 from forebay.api.limits import Price
-from forebay.api.media import PNG, SVG
-from forebay.api.operation import Operation, Outcome
+from forebay.api.operation import Operation
+from forebay.api.outcome import Outcome
 from forebay.api.review import reviewed
 from forebay.api.routers.serving import serve
 from forebay.api.schemas.chart import ChartRequest
@@ -36,7 +37,7 @@ FLOW_NET = Operation(
     result=None,
     compute=compute,
     price=price,
-    media_types=(SVG, PNG),
+    encoders=PICTURES,
 )
 
 router = APIRouter()

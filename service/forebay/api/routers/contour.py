@@ -4,8 +4,11 @@ from dataclasses import asdict
 
 from fastapi import APIRouter
 
+from forebay.api.encoders.envelope_json import ENVELOPE
+from forebay.api.encoders.json_lines import json_lines
 from forebay.api.limits import Price
-from forebay.api.operation import Operation, Outcome
+from forebay.api.operation import Operation
+from forebay.api.outcome import Outcome
 from forebay.api.review import reviewed
 from forebay.api.routers.serving import serve
 from forebay.api.schemas.contour import ContourRequest, ContourResult, flow_contours
@@ -46,6 +49,7 @@ INTEGRATE = Operation(
     result=ContourResult,
     compute=compute,
     price=price,
+    encoders=(ENVELOPE, *json_lines("contours")),
 )
 
 router = APIRouter()

@@ -4,9 +4,13 @@ from typing import Any
 
 from fastapi import APIRouter
 
+from forebay.api.encoders.arrow import STREAM
+from forebay.api.encoders.csv_table import TABLE
+from forebay.api.encoders.envelope_json import ENVELOPE
+from forebay.api.encoders.npy import ARRAY
 from forebay.api.limits import Price
-from forebay.api.media import CSV, JSON
-from forebay.api.operation import Operation, Outcome
+from forebay.api.operation import Operation
+from forebay.api.outcome import Outcome
 from forebay.api.review import readings_of, reviewed
 from forebay.api.routers.serving import serve
 from forebay.api.schemas.field import FieldResult, SampleRequest
@@ -57,7 +61,7 @@ SAMPLE = Operation(
     result=FieldResult,
     compute=compute,
     price=price,
-    media_types=(JSON, CSV),
+    encoders=(ENVELOPE, TABLE, ARRAY, STREAM),
 )
 
 router = APIRouter()

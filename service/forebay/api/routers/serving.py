@@ -1,16 +1,18 @@
 """How an operation becomes a route: one handler for all, and what its documentation says."""
 
-from typing import Any
+from typing import TYPE_CHECKING, Any
 
 from fastapi import APIRouter, Request
 from starlette.responses import Response
 
 from forebay.api.examples import request_example
-from forebay.api.media import CSV, JSON, negotiate, require_json
+from forebay.api.media import JSON, negotiate, require_json
 from forebay.api.operation import Operation
 from forebay.api.problems import MEDIA_TYPE, Problem
 from forebay.api.schemas.common import Answer, ComputeRequest
-from forebay.api.work import Workshop
+
+if TYPE_CHECKING:
+    from forebay.api.work import Workshop
 
 COMPUTE_STATUSES = (400, 406, 413, 415, 422, 500, 503, 504)
 """Statuses of the problems that a compute route can answer with."""
@@ -62,11 +64,10 @@ def body_of(operation: Operation[Any]) -> dict[str, Any]:
 def answer_of(operation: Operation[Any]) -> dict[str, Any]:
     """Answer with status 200 as OpenAPI says it, one entry for each media type."""
     content: dict[str, Any] = {}
-    for media_type in operation.media_types:
-        if media_type == JSON and operation.result is not None:
-            content[JSON] = {"schema": envelope_reference(operation.result)}
-        else:
-            content[media_type] = {"schema": {"type": "string"}} if media_type == CSV else {"schema": {}}
+    for encoder in operation.encoders:
+        is_envelope = encoder.media_type == JSON and operation.result is not None
+        schema = envelope_reference(operation.result) if is_envelope else dict(encoder.schema)  # type: ignore[arg-type]
+        content[encoder.media_type] = {"schema": schema}
     return {"description": "Computed", "content": content}
 
 

@@ -6,7 +6,8 @@ from typing import Any
 from fastapi import APIRouter
 
 from forebay.api.limits import Price
-from forebay.api.operation import Operation, Outcome
+from forebay.api.operation import Operation
+from forebay.api.outcome import Outcome
 from forebay.api.review import reviewed
 from forebay.api.routers.serving import serve
 from forebay.api.schemas.stagnation import StagnationRequest, StagnationResult

@@ -8,7 +8,8 @@ from fastapi import APIRouter
 
 from forebay.api.limits import Price
 from forebay.api.names import refuse_repeated
-from forebay.api.operation import Operation, Outcome
+from forebay.api.operation import Operation
+from forebay.api.outcome import Outcome
 from forebay.api.routers.serving import serve
 from forebay.api.schemas.stress import StressRequest, StressResult
 from forebay.flow.layout import Water

@@ -5,8 +5,11 @@ from typing import Any
 
 from fastapi import APIRouter
 
+from forebay.api.encoders.envelope_json import ENVELOPE
+from forebay.api.encoders.json_lines import json_lines
 from forebay.api.limits import Price
-from forebay.api.operation import Operation, Outcome
+from forebay.api.operation import Operation
+from forebay.api.outcome import Outcome
 from forebay.api.review import reviewed
 from forebay.api.routers.serving import serve
 from forebay.api.schemas.withdrawal import WithdrawalRequest, WithdrawalResult
@@ -45,6 +48,7 @@ TRACE = Operation(
     result=WithdrawalResult,
     compute=compute,
     price=price,
+    encoders=(ENVELOPE, *json_lines("intakes")),
 )
 
 router = APIRouter()
