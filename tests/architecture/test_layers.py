@@ -16,7 +16,7 @@ OUTERMOST = {"__main__", "assess", "demo", "report", "server"}
 
 THIRD_PARTY = {
     "flow": {"numpy", "scipy", "numba"},
-    "trade": {"numpy", "scipy", "gsw"},
+    "trade": {"numpy", "scipy", "gsw", "pyproj", "shapely"},
     "charts": {"numpy", "scipy", "matplotlib", "contourpy"},
     "workflows": {"numpy", "scipy"},
 }

@@ -3,7 +3,7 @@
 from collections.abc import Mapping, Sequence
 from typing import Protocol
 
-from forebay.flow.errors import FlowError, LayoutError
+from forebay.flow.errors import FlowError, LayoutError, Path
 
 RESERVED = frozenset(
     {
@@ -50,12 +50,15 @@ class Named(Protocol):
         ...
 
 
-def refuse_reserved(parts: Mapping[str, Sequence[Named]]) -> None:
-    """Raise ReservedNameError, path (part, index, "name"), if something in the parts of a layout has one."""
+def refuse_reserved(parts: Mapping[str, Sequence[Named]], above: Path = ()) -> None:
+    """Raise ReservedNameError if something in the parts of a layout has such a name.
+
+    above : path of what holds the parts; that of the error is (*above, part, index, "name")
+    """
     for part, things in parts.items():
         for index, thing in enumerate(things):
             if thing.name in RESERVED:
-                raise ReservedNameError("answers use this word for themselves", (part, index, "name"))
+                raise ReservedNameError("answers use this word for themselves", (*above, part, index, "name"))
 
 
 def refuse_repeated(things: Sequence[Named], field: str) -> None:

@@ -1,0 +1,1 @@
+"""Surveyed geometry on its way in: map grids, water polygons, open edges, outlines."""
