@@ -24,11 +24,14 @@ def engineers_table(request: Json, answer: Json) -> str:
     result, units = answer["result"], answer["units"]
     sections = [
         heading(request["layout"], answer["provenance"], units),
-        intakes_section(result["withdrawal"]["intakes"], units),
+        summary_section(result["summary"]),
+        intakes_section(result["withdrawal"], units),
         stagnation_section(result["stagnation"], units),
-        transects_section(result["transects"], units),
-        ends_section(result["ends"], units),
+        transects_section(result["transects"] or (), units),
+        ends_section(result["ends"] or (), units),
         points_section(result["field"], units),
+        verdicts_section(result["verdicts"]),
+        failures_section(result["parts"]),
         warnings_section(answer["warnings"]),
         cautions_section(result["cautions"]),
     ]
@@ -57,8 +60,49 @@ def counts(words: Iterable[str]) -> dict[str, int]:
     return totals
 
 
-def intakes_section(intakes: Sequence[Json], units: Json) -> list[str]:
+def summary_section(summary: Sequence[str]) -> list[str]:
+    """The whole in a few lines."""
+    return ["SUMMARY", *bulleted(summary)]
+
+
+def bulleted(texts: Iterable[str]) -> list[str]:
+    """Texts as wrapped items of a list."""
+    return [line for text in texts for line in bullet(text)]
+
+
+def bullet(text: str) -> list[str]:
+    """One item of a list, wrapped."""
+    return wrap(text, WIDTH, initial_indent="  - ", subsequent_indent="    ", break_on_hyphens=False)
+
+
+def verdicts_section(verdicts: Sequence[Json]) -> list[str]:
+    """Each rule that was applied, with value, limit and outcome."""
+    outcomes = {True: "met", False: "NOT MET", None: "not judged"}
+    rows = [
+        (
+            verdict["subject"],
+            f"{verdict['rule']} ({verdict['criterion']})",
+            number(verdict["value"]),
+            number(verdict["limit"]),
+            verdict["unit"],
+            outcomes[verdict["pass"]],
+        )
+        for verdict in verdicts
+    ]
+    columns = ("of", "rule", "value", "limit", "unit", "outcome")
+    return ["VERDICTS", *table(columns, rows, right={2, 3})] if rows else []
+
+
+def failures_section(parts: Sequence[Json]) -> list[str]:
+    """Parts that could not be computed, with the reason."""
+    failed = [part for part in parts if part["status"] == "failed"]
+    lines = [f"{part['part']}: {part['reason']} ({part['problem']})" for part in failed]
+    return ["NOT COMPUTED", *bulleted(lines)] if lines else []
+
+
+def intakes_section(withdrawal: Json | None, units: Json) -> list[str]:
     """Each intake: discharge, width of its zone far upstream, origins of its water, recirculation."""
+    intakes = () if withdrawal is None else withdrawal["intakes"]
     rows = [row for intake in intakes for row in intake_rows(intake)]
     names = (
         "intake",
@@ -98,8 +142,10 @@ def recirculation(intake: Json) -> str:
     return f"{percent(share)} +- {100 * bound:.1g}"
 
 
-def stagnation_section(search: Json, units: Json) -> list[str]:
+def stagnation_section(search: Json | None, units: Json) -> list[str]:
     """Where the water stands still, and whether that is all."""
+    if search is None:
+        return []
     points = search["points"]
     verdict = "complete" if search["complete"] else "NOT shown to be complete"
     title = f"STAGNATION POINTS: {len(points)} found, {verdict} ({search['method']})"
@@ -184,19 +230,12 @@ def warning_lines(alike: Sequence[Json]) -> list[str]:
     others = ", ".join(other["pointer"] for other in alike[1:])
     elsewhere = f" Likewise at {others}." if others else ""
     text = f"{warning['severity']}: {warning['message']}{threshold}{source}{elsewhere} ({warning['code']})"
-    return wrap(text, WIDTH, initial_indent="  - ", subsequent_indent="    ", break_on_hyphens=False)
+    return bullet(text)
 
 
 def cautions_section(cautions: Iterable[str]) -> list[str]:
     """What no number above can take away."""
-    return [
-        "CAUTIONS",
-        *(
-            line
-            for text in cautions
-            for line in wrap(text, WIDTH, initial_indent="  - ", subsequent_indent="    ")
-        ),
-    ]
+    return ["CAUTIONS", *bulleted(cautions)]
 
 
 def table(columns: Row, rows: Sequence[Row], right: set[int]) -> list[str]:

@@ -207,7 +207,7 @@ def test_what_is_known_of_a_site_silences_its_notes(ready_client):
 def test_assessment_answers_what_was_asked(ready_client):
     layout = a_layout(elements=[SINK])
     bare = ready_client.post("/v1/assessment", json={"layout": layout}).json()["result"]
-    assert (bare["field"], bare["stress"], bare["transects"]) == (None, None, [])
+    assert (bare["field"], bare["stress"], bare["transects"]) == (None, None, None)
     assert len(bare["cautions"]) == 3
     assert bare["withdrawal"]["intakes"][0]["shares"][0]["from"] == "ambient"
     at = {"points": [[0, 0]]}

@@ -67,6 +67,22 @@ ANSWER: dict[str, Any] = {
             "speed": [0.1204, None],
             "flagged": [{"index": 1, "status": "on-singularity"}],
         },
+        "summary": ["Mean depth 4 m.", "Engineers decide."],
+        "verdicts": [
+            {
+                "part": "stagnation",
+                "subject": "stagnation points",
+                "criterion": "own",
+                "rule": "all found",
+                "value": 1.0,
+                "limit": 1.0,
+                "margin": None,
+                "unit": "1",
+                "pass": True,
+                "source": "own check",
+            }
+        ],
+        "parts": [{"part": "flow", "status": "ok", "problem": None, "reason": None}],
         "cautions": ["Screening level.", "Engineers decide."],
     },
     "units": {
@@ -134,6 +150,29 @@ def test_gives_stagnation_points_with_their_certificate():
 def test_says_when_the_stagnation_search_is_not_complete():
     search = {**ANSWER["result"]["stagnation"], "complete": False}
     assert "NOT shown to be complete" in engineers_table(REQUEST, changed(stagnation=search))
+
+
+def test_begins_with_the_summary():
+    lines = engineers_table(REQUEST, ANSWER).splitlines()
+    assert lines[lines.index("SUMMARY") + 1 :][:2] == ["  - Mean depth 4 m.", "  - Engineers decide."]
+
+
+@pytest.mark.parametrize(
+    ("passed", "word"),
+    [(True, "met"), (False, "NOT MET"), (None, "not judged")],
+    ids=["met", "missed", "open"],
+)
+def test_gives_verdicts_with_their_outcome(passed, word):
+    verdict = {**ANSWER["result"]["verdicts"][0], "pass": passed}
+    text = engineers_table(REQUEST, changed(verdicts=[verdict]))
+    assert " ".join(line_with(text, "all found")) == f"stagnation points all found (own) 1 1 1 {word}"
+
+
+def test_says_which_parts_failed_and_why():
+    parts = [{"part": "stress", "status": "failed", "problem": "water-range", "reason": "Too hot."}]
+    text = engineers_table(REQUEST, changed(parts=parts, stagnation=None, withdrawal=None))
+    assert "NOT COMPUTED\n  - stress: Too hot. (water-range)" in text
+    assert "STAGNATION" not in text
 
 
 def test_gives_fluxes_with_their_sign_convention():

@@ -44,19 +44,20 @@ def units_of(model: type[Answer]) -> Mapping[str, str]:
     units: dict[str, str] = {}
     for part in (schema, *schema.get("$defs", {}).values()):
         for name, field in part.get("properties", {}).items():
-            unit = _unit_in(field)
+            unit = unit_in(field)
             if unit is not None and units.setdefault(name, unit) != unit:
                 raise ValueError(f"{model.__name__}: {name} is in {units[name]} and in {unit}")
     return units
 
 
-def _unit_in(field: Json) -> str | None:
+def unit_in(field: Json) -> str | None:
+    """SI unit of a field in a JSON schema, None if it holds no number or one with a unit elsewhere."""
     if "unit" in field:
         return str(field["unit"])
     items = field.get("items")
     inner = [items] if isinstance(items, dict) else []
     inner += [*field.get("prefixItems", ()), *field.get("anyOf", ()), *field.get("oneOf", ())]
-    return next((unit for unit in map(_unit_in, inner) if unit is not None), None)
+    return next((unit for unit in map(unit_in, inner) if unit is not None), None)
 
 
 class Presenter:

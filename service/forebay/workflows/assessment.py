@@ -1,6 +1,7 @@
 """Assess a layout: everything that is asked of one site, in one answer."""
 
 from dataclasses import dataclass, field
+from functools import partial
 
 import numpy as np
 
@@ -8,18 +9,23 @@ from forebay.flow.arrays import ComplexArray
 from forebay.flow.contour import ContourIntegral, integrate_contour
 from forebay.flow.ends import End
 from forebay.flow.layout import Layout, LineSink, Sink
-from forebay.flow.model import compile_layout
+from forebay.flow.model import FlowModel, compile_layout
 from forebay.flow.paths import Contour
 from forebay.flow.stagnation.result import StagnationSearch
 from forebay.flow.stagnation.search import search_model
 from forebay.flow.stress_state import StressState
 from forebay.flow.withdrawal.analysis import withdraw
-from forebay.flow.withdrawal.result import IntakeWithdrawal
+from forebay.flow.withdrawal.result import IntakeWithdrawal, OriginKind
 from forebay.workflows.layout_stress import compute_layout_stress
+from forebay.workflows.parts import Part, attempt
 from forebay.workflows.sample import FieldSamples, sample_field
 
 NOWHERE = np.empty(0, dtype=np.complex128)
 """No points."""
+
+NO_INTAKE = "The layout has no intake"
+NO_TRANSECTS = "The request has no `transects`"
+NO_POINTS = "The request has no `at`"
 
 
 @dataclass(frozen=True, slots=True)
@@ -36,22 +42,47 @@ class Questions:
 
 
 @dataclass(frozen=True, slots=True)
-class Assessment:
-    """Everything about one site.
+class FarField:
+    """The flow far away, and how well it meets the walls.
 
-    intakes : where each intake's water comes from;  stagnation : where the water stands still
-    ends : the far field
-    boundary_residual : largest velocity through a pier's wall over the reference speed [-]
-    transects, samples, stress : answers to the questions asked, empty or None if there were none
+    ends : far ends of the water
+    boundary_residual : largest velocity through a structure's wall over the reference speed [-]
     """
 
-    intakes: tuple[IntakeWithdrawal, ...]
-    stagnation: StagnationSearch
     ends: tuple[End, ...]
     boundary_residual: float
-    transects: tuple[ContourIntegral, ...]
-    samples: FieldSamples | None
-    stress: tuple[StressState, ...]
+
+
+@dataclass(frozen=True, slots=True)
+class Recirculation:
+    """Water of an outfall in an intake.
+
+    share, share_error : part of the intake's water and its error [-];  discharge : the same as a flow [m3/s]
+    """
+
+    intake: str
+    outfall: str
+    share: float
+    share_error: float
+    discharge: float
+
+
+@dataclass(frozen=True, slots=True)
+class Assessment:
+    """Everything about one site, part by part; a part that failed leaves the others as they are.
+
+    flow : the far field;  stagnation : where the water stands still
+    withdrawal : where each intake's water comes from;  recirculation : what of it outfalls gave
+    transects, field, stress : answers to the questions asked
+    """
+
+    flow: Part[FarField]
+    stagnation: Part[StagnationSearch]
+    withdrawal: Part[tuple[IntakeWithdrawal, ...]]
+    recirculation: Part[tuple[Recirculation, ...]]
+    transects: Part[tuple[ContourIntegral, ...]]
+    field: Part[FieldSamples]
+    stress: Part[tuple[StressState, ...]]
 
 
 def assess_layout(layout: Layout, questions: Questions | None = None) -> Assessment:
@@ -68,20 +99,62 @@ def assess_layout(layout: Layout, questions: Questions | None = None) -> Assessm
 
     Raises
     ------
-    LayoutError : the layout describes something that cannot be
-    WaterRangeError : its water is outside the range in which viscosity is known, if points are given
+    LayoutError : the layout describes something that cannot be; whatever else goes wrong is the status of
+        the part that it went wrong in
     """
     questions = questions or Questions()
     model = compile_layout(layout)
-    search = search_model(model, None)
-    names = tuple(element.name for element in layout.elements if isinstance(element, Sink | LineSink))
-    has_points = questions.points.size > 0
+    search = attempt(partial(search_model, model, None))
+    withdrawal = _withdrawal(model, search)
     return Assessment(
-        intakes=withdraw(model, search, names) if names else (),
+        flow=Part.of(FarField(model.ends, model.boundary_residual)),
         stagnation=search,
-        ends=model.ends,
-        boundary_residual=model.boundary_residual,
-        transects=tuple(integrate_contour(model, transect) for transect in questions.transects),
-        samples=sample_field(layout, questions.points, questions.quantities) if has_points else None,
-        stress=compute_layout_stress(layout.water, layout, questions.points) if has_points else (),
+        withdrawal=withdrawal,
+        recirculation=_recirculation(withdrawal),
+        transects=_transects(model, questions),
+        field=_field(layout, questions),
+        stress=_stress(layout, questions),
     )
+
+
+def _withdrawal(model: FlowModel, search: Part[StagnationSearch]) -> Part[tuple[IntakeWithdrawal, ...]]:
+    elements = model.layout.elements
+    names = tuple(element.name for element in elements if isinstance(element, Sink | LineSink))
+    if not names:
+        return Part.not_asked(NO_INTAKE)
+    if search.answer is None:
+        return Part(search.status, None, search.problem, search.reason)
+    return attempt(partial(withdraw, model, search.answer, names))
+
+
+def _recirculation(withdrawal: Part[tuple[IntakeWithdrawal, ...]]) -> Part[tuple[Recirculation, ...]]:
+    if withdrawal.answer is None:
+        return Part(withdrawal.status, None, withdrawal.problem, withdrawal.reason)
+    return Part.of(
+        tuple(
+            Recirculation(
+                intake.name, share.origin, share.share, intake.share_error, share.share * intake.arriving
+            )
+            for intake in withdrawal.answer
+            for share in intake.shares
+            if share.kind is OriginKind.OUTFALL
+        )
+    )
+
+
+def _transects(model: FlowModel, questions: Questions) -> Part[tuple[ContourIntegral, ...]]:
+    if not questions.transects:
+        return Part.not_asked(NO_TRANSECTS)
+    return attempt(lambda: tuple(integrate_contour(model, transect) for transect in questions.transects))
+
+
+def _field(layout: Layout, questions: Questions) -> Part[FieldSamples]:
+    if questions.points.size == 0:
+        return Part.not_asked(NO_POINTS)
+    return attempt(partial(sample_field, layout, questions.points, questions.quantities))
+
+
+def _stress(layout: Layout, questions: Questions) -> Part[tuple[StressState, ...]]:
+    if questions.points.size == 0:
+        return Part.not_asked(NO_POINTS)
+    return attempt(partial(compute_layout_stress, layout.water, layout, questions.points))

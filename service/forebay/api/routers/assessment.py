@@ -1,4 +1,4 @@
-"""assessment: the whole job for one layout in one answer."""
+"""assessment: the whole job for one layout in one answer, or as a calculation sheet."""
 
 from dataclasses import asdict, replace
 from typing import Any
@@ -6,42 +6,74 @@ from typing import Any
 from fastapi import APIRouter
 
 from forebay.api.limits import Price
-from forebay.api.operation import Operation, Outcome
+from forebay.api.operation import Operation
+from forebay.api.outcome import Outcome
 from forebay.api.review import COMPUTED, readings_of, reviewed
 from forebay.api.routers import field, stagnation, stress, withdrawal
 from forebay.api.routers.serving import serve
-from forebay.api.schemas.assessment import CAUTIONS, AssessmentRequest, AssessmentResult
+from forebay.api.schemas.assessment import CAUTIONS, AssessmentRequest, AssessmentResult, PartName
 from forebay.api.schemas.contour import flow_contours
+from forebay.api.summary import Told, summary_of
+from forebay.api.verdicts import verdicts_of
 from forebay.workflows.assessment import NOWHERE, Assessment, Questions, assess_layout
+from forebay.workflows.parts import Part
 from forebay.workflows.withdrawal import Withdrawal
 
 
 def compute(request: AssessmentRequest, _media_type: str) -> Outcome:
-    layout, units = request.flow_layout(), request.unit_system
-    questions = Questions(
+    layout = request.flow_layout()
+    assessment = assess_layout(layout, questions_of(request))
+    samples = assessment.field.answer
+    assumed = request.layout.water.assumed_temperature
+    readings = COMPUTED if samples is None else readings_of(samples.columns, assumed)
+    readings = replace(readings, has_dissipation=assessment.stress.answer is not None)
+    outcome = reviewed(request, layout, written(assessment, request), readings)
+    return replace(outcome, result=told(assessment, outcome, request) | outcome.result)
+
+
+def questions_of(request: AssessmentRequest) -> Questions:
+    """What a request asks beside intakes and stagnation points, in SI."""
+    units = request.unit_system
+    return Questions(
         transects=flow_contours(request.transects, units, "transects"),
         points=NOWHERE if request.at is None else request.at.positions(units),
         quantities=tuple(dict.fromkeys(str(quantity) for quantity in request.quantities)),
     )
-    assessment = assess_layout(layout, questions)
-    samples = assessment.samples
-    assumed = request.layout.water.assumed_temperature
-    readings = COMPUTED if samples is None else readings_of(samples.columns, assumed)
-    readings = replace(readings, has_dissipation=samples is not None)
-    return reviewed(request, layout, written(assessment, request), readings)
+
+
+def told(assessment: Assessment, outcome: Outcome, request: AssessmentRequest) -> dict[str, Any]:
+    """Summary, verdicts, and what became of each part."""
+    parts = [part_written(name, getattr(assessment, name)) for name in PartName]
+    verdicts = verdicts_of(assessment)
+    layout = request.flow_layout()
+    about = Told(layout, assessment, parts, verdicts, outcome.warnings, request.unit_system)
+    return {"summary": summary_of(about), "verdicts": verdicts, "parts": parts}
+
+
+def part_written(name: PartName, part: Part[Any]) -> dict[str, Any]:
+    """Fields of what became of a part."""
+    return {"part": name, "status": part.status, "problem": part.problem, "reason": part.reason}
 
 
 def written(assessment: Assessment, request: AssessmentRequest) -> dict[str, Any]:
-    """Fields of an assessment."""
-    samples = assessment.samples
+    """Answers of the parts; None for a part without one."""
+    flow, search, intakes = assessment.flow.answer, assessment.stagnation.answer, assessment.withdrawal.answer
+    transects, samples, states = (
+        assessment.transects.answer,
+        assessment.field.answer,
+        assessment.stress.answer,
+    )
+    recirculation = assessment.recirculation.answer
+    ends = flow and [{"name": end.name, "inflow": end.inflow, "end_speed": end.speed} for end in flow.ends]
     return {
-        "withdrawal": withdrawal.written(Withdrawal(assessment.intakes)),
-        "stagnation": stagnation.written(assessment.stagnation),
-        "ends": [{"name": end.name, "inflow": end.inflow, "end_speed": end.speed} for end in assessment.ends],
-        "boundary_residual": assessment.boundary_residual,
-        "transects": [asdict(integral) for integral in assessment.transects],
+        "withdrawal": None if intakes is None else withdrawal.written(Withdrawal(intakes)),
+        "recirculation": None if recirculation is None else [asdict(found) for found in recirculation],
+        "stagnation": search and stagnation.written(search),
+        "ends": ends,
+        "boundary_residual": flow and flow.boundary_residual,
+        "transects": transects and [asdict(integral) for integral in transects],
         "field": samples and request.at and field.written(samples, request.at),
-        "stress": samples and stress.all_written(assessment.stress, request.flow_layout().water),
+        "stress": states and stress.all_written(states, request.flow_layout().water),
         "cautions": CAUTIONS,
     }
 
@@ -58,9 +90,10 @@ ASSESS = Operation(
     summary="The whole job for one layout in one answer",
     description=(
         "Where each intake's water comes from, where the water stands still, the far field; with "
-        "`transects` the fluxes over them, with `at` the field and its stress there. Screening "
-        "level: not for the safety of divers, swimmers or craft; regulators' criteria and licensed "
-        "engineers decide."
+        "`transects` the fluxes over them, with `at` the field and its stress there. `parts` says of "
+        "each part whether it was computed; one that fails does not sink the others. `summary` tells "
+        "the whole in ten lines, `verdicts` every rule that was applied. Screening level: not for the "
+        "safety of divers, swimmers or craft; regulators' criteria and licensed engineers decide."
     ),
     request=AssessmentRequest,
     result=AssessmentResult,

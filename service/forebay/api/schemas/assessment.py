@@ -1,5 +1,6 @@
 """Request and answer of assessment."""
 
+from enum import StrEnum
 from typing import Annotated
 
 from pydantic import Field
@@ -9,10 +10,12 @@ from forebay.api.schemas.contour import Contours, ContourValue
 from forebay.api.schemas.field import FieldResult
 from forebay.api.schemas.layout import LayoutRequest
 from forebay.api.schemas.places import At
-from forebay.api.schemas.quantities import FluxValue, RatioValue, SpeedValue
+from forebay.api.schemas.quantities import DischargeValue, FluxValue, OwnUnitValue, RatioValue, SpeedValue
+from forebay.api.schemas.sheet import SheetRequest
 from forebay.api.schemas.stagnation import StagnationResult
 from forebay.api.schemas.stress import StressResult
 from forebay.api.schemas.withdrawal import WithdrawalResult
+from forebay.workflows.parts import PartStatus
 from forebay.workflows.sample import Quantity
 
 CAUTIONS = (
@@ -21,6 +24,18 @@ CAUTIONS = (
     "Regulators' criteria and licensed engineers decide.",
 )
 """What no number of an assessment can take away."""
+
+
+class PartName(StrEnum):
+    """Parts of an assessment, in the order in which they are told."""
+
+    FLOW = "flow"
+    STAGNATION = "stagnation"
+    WITHDRAWAL = "withdrawal"
+    RECIRCULATION = "recirculation"
+    TRANSECTS = "transects"
+    FIELD = "field"
+    STRESS = "stress"
 
 
 class AssessmentRequest(LayoutRequest):
@@ -34,6 +49,9 @@ class AssessmentRequest(LayoutRequest):
         list[Quantity],
         Field(max_length=len(Quantity), fail_fast=True, description="Further columns of the field"),
     ] = []
+    sheet: Annotated[
+        SheetRequest, Field(description="Title block of the calculation sheet (`Accept: text/html` or PDF)")
+    ] = SheetRequest()
 
 
 class EndValue(Answer):
@@ -44,19 +62,71 @@ class EndValue(Answer):
     end_speed: Annotated[SpeedValue, Field(description="Current there")]
 
 
-class AssessmentResult(Answer):
-    """Everything about one site."""
+class RecirculationValue(Answer):
+    """Water of an outfall in an intake."""
 
-    withdrawal: WithdrawalResult
-    stagnation: StagnationResult
-    ends: list[EndValue]
+    intake: Annotated[str, Field(examples=["town intake"])]
+    outfall: Annotated[str, Field(examples=["works outfall"])]
+    share: Annotated[RatioValue, Field(description="Part of the intake's water")]
+    share_error: Annotated[RatioValue, Field(description="Largest error of the share", examples=[1e-9])]
+    discharge: Annotated[DischargeValue, Field(description="The same as a discharge")]
+
+
+class PartValue(Answer):
+    """What became of one part."""
+
+    part: Annotated[
+        PartName, Field(description="Member of the result that holds its answer", examples=["withdrawal"])
+    ]
+    status: Annotated[
+        PartStatus, Field(description="`ok`; `failed`, which does not sink the others; `not-asked`")
+    ]
+    problem: Annotated[
+        str | None,
+        Field(description="Code of what went wrong, explained at /problems/{code}; null unless failed"),
+    ]
+    reason: Annotated[str | None, Field(description="Why there is no answer; null if there is one")]
+
+
+class VerdictValue(Answer):
+    """Whether something is as a rule wants it."""
+
+    part: Annotated[PartName, Field(description="Where it belongs", examples=["stagnation"])]
+    subject: Annotated[str, Field(description="What is judged", examples=["stagnation points"])]
+    criterion: Annotated[str, Field(description="Whose rule it is", examples=["forebay"])]
+    rule: Annotated[str, Field(description="What the rule wants", examples=["the independent count is met"])]
+    value: OwnUnitValue
+    limit: OwnUnitValue
+    margin: Annotated[OwnUnitValue, Field(description="Room left, negative where the rule is not met")]
+    unit: Annotated[str, Field(description="UCUM code of value, limit and margin", examples=["1"])]
+    passed: Annotated[bool | None, Field(alias="pass", description="Null if it could not be judged")]
+    source: Annotated[str, Field(description="Where the rule stands")]
+
+
+class AssessmentResult(Answer):
+    """Everything about one site. A part without an answer is null; `parts` says why."""
+
+    summary: Annotated[
+        list[str], Field(max_length=10, description="The whole in ten lines, in the units of the answer")
+    ]
+    verdicts: Annotated[
+        list[VerdictValue], Field(description="Every rule that was applied, with its outcome")
+    ]
+    parts: Annotated[list[PartValue], Field(description="What became of each part")]
+    withdrawal: WithdrawalResult | None
+    recirculation: Annotated[
+        list[RecirculationValue] | None,
+        Field(description="Water of outfalls in intakes; null without intakes"),
+    ]
+    stagnation: StagnationResult | None
+    ends: list[EndValue] | None
     boundary_residual: Annotated[
         RatioValue,
         Field(
             description="Largest velocity through a pier's wall, over the reference speed", examples=[1e-14]
         ),
     ]
-    transects: list[ContourValue]
+    transects: list[ContourValue] | None
     field: FieldResult | None
     stress: StressResult | None
     cautions: Annotated[list[str], Field(description="What no number can take away")]

@@ -1,0 +1,85 @@
+"""Verdicts of an assessment: every rule that was applied to it, with its outcome."""
+
+from typing import Any
+
+from forebay.flow.stagnation.result import StagnationSearch
+from forebay.flow.withdrawal.result import IntakeWithdrawal, WithdrawalStatus
+from forebay.workflows.assessment import Assessment
+
+Verdict = dict[str, Any]
+
+OWN = "forebay"
+"""Criterion of the rules by which this service judges its own numbers."""
+
+OWN_SOURCE = "this service's own check of its numbers"
+
+CERTAIN_SHARE = 1e-6
+"""Error of a share up to which the service calls it certain [-]: far below what screening can tell."""
+
+TIGHT_WALL = 1e-6
+"""Velocity through a wall, over the reference speed, up to which the service calls it tight [-]."""
+
+
+def verdicts_of(assessment: Assessment) -> list[Verdict]:
+    """Every verdict, in the order of the parts."""
+    flow, search, withdrawal = (
+        assessment.flow.answer,
+        assessment.stagnation.answer,
+        assessment.withdrawal.answer,
+    )
+    verdicts = [] if flow is None else [wall_verdict(flow.boundary_residual)]
+    verdicts += [] if search is None else [completeness_verdict(search)]
+    return [*verdicts, *(share_verdict(intake) for intake in withdrawal or ())]
+
+
+def wall_verdict(residual: float) -> Verdict:
+    """Whether no water passes the walls of structures."""
+    return {
+        "part": "flow",
+        "subject": "walls of structures",
+        "criterion": OWN,
+        "rule": "velocity through them, over the reference speed",
+        **most(residual, TIGHT_WALL, "1"),
+        "source": OWN_SOURCE,
+    }
+
+
+def completeness_verdict(search: StagnationSearch) -> Verdict:
+    """Whether every stagnation point was found."""
+    return {
+        "part": "stagnation",
+        "subject": "stagnation points",
+        "criterion": OWN,
+        "rule": "found, weighted, equal to the independent count",
+        "value": float(search.weight),
+        "limit": float(search.degree),
+        "margin": None,
+        "unit": "1",
+        "pass": search.complete,
+        "source": OWN_SOURCE,
+    }
+
+
+def share_verdict(intake: IntakeWithdrawal) -> Verdict:
+    """Whether the origins of an intake's water are certain."""
+    verdict = {
+        "part": "withdrawal",
+        "subject": intake.name,
+        "criterion": OWN,
+        "rule": "error of the shares of its water",
+        **most(intake.share_error, CERTAIN_SHARE, "1"),
+        "source": OWN_SOURCE,
+    }
+    doubtful = intake.status in {WithdrawalStatus.INCOMPLETE, WithdrawalStatus.UNRESOLVED}
+    return verdict | {"pass": False} if doubtful else verdict
+
+
+def most(value: float, limit: float, unit: str) -> Verdict:
+    """Outcome of a rule that puts an upper limit on a value; NaN does not meet it."""
+    return {
+        "value": value,
+        "limit": limit,
+        "margin": limit - value,
+        "unit": unit,
+        "pass": bool(value <= limit),
+    }
