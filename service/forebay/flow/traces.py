@@ -46,12 +46,14 @@ class Crossing:
     line : index into `Surroundings.lines`
     at : where it met the line, just off it on the side reached first [m]
     arriving, leaving : normal speed on the side reached first and on the other [m/s]
+    time : travel time up to there [s]
     """
 
     line: int
     at: complex
     arriving: float
     leaving: float
+    time: float
 
 
 @dataclass(frozen=True, slots=True)

@@ -271,7 +271,8 @@ class _Run:
         leaving = arriving + self.sense * float(faces.flux[k])
         if leaving <= 0.0 or not faces.in_water[k]:
             return False
-        self._record_crossing(i, Crossing(k, complex(lines.z[i]), arriving, leaving))
+        crossing = Crossing(k, complex(lines.z[i]), arriving, leaving, float(lines.time[i]))
+        self._record_crossing(i, crossing)
         lines.z[i : i + 1], change = self._other_side(lines.z[i : i + 1], unit, local, abs(span))
         lines.psi[i] += change
         lines.w[i : i + 1] = self.model.velocity(lines.z[i : i + 1])
