@@ -1,10 +1,12 @@
 """The OpenAPI document: committed, valid, complete, and a unit, an example and bounds on its numbers."""
 
 import json
+import re
 
 import pytest
 from openapi_spec_validator import validate
 
+from forebay.api.examples import request_example
 from forebay.api.problems import MEDIA_TYPE, catalogue, flow_errors
 from forebay.api.routers.registry import OPERATIONS
 from forebay.app import create_app
@@ -15,7 +17,7 @@ from support.tree import ROOT
 DOCUMENT = create_app(Settings(workers=1)).openapi()
 SCHEMAS = DOCUMENT["components"]["schemas"]
 
-OPERATION_IDS = {
+PROMISED = {
     "sampleField",
     "searchStagnation",
     "integrateContour",
@@ -38,15 +40,108 @@ def test_document_is_valid():
     validate(DOCUMENT)
 
 
-def test_operation_ids_are_the_promised_ones():
-    assert set(OPERATIONS) == OPERATION_IDS
-    for operation in OPERATIONS.values():
-        assert DOCUMENT["paths"][operation.path]["post"]["operationId"] == operation.operation_id
+def operations():
+    """Every operation of the document with its path and method."""
+    return [
+        (path, method, operation)
+        for path, item in DOCUMENT["paths"].items()
+        for method, operation in item.items()
+    ]
+
+
+def named(triple):
+    return triple[2]["operationId"]
+
+
+def test_promised_operation_ids_are_there():
+    assert set(OPERATIONS) >= PROMISED
+
+
+@pytest.mark.parametrize("operation", OPERATIONS.values(), ids=OPERATIONS)
+def test_operation_id_is_the_one_of_the_registry(operation):
+    assert DOCUMENT["paths"][operation.path]["post"]["operationId"] == operation.operation_id
 
 
 def test_operation_ids_are_unique():
-    ids = [operation["operationId"] for item in DOCUMENT["paths"].values() for operation in item.values()]
+    ids = [named(triple) for triple in operations()]
     assert len(set(ids)) == len(ids)
+    assert all(re.fullmatch(r"[a-z]+([A-Z][a-z]+)+", name) for name in ids)
+
+
+@pytest.mark.parametrize("triple", operations(), ids=named)
+def test_operation_says_what_it_is_and_where_it_belongs(triple):
+    _, _, operation = triple
+    assert operation["summary"]
+    (tag,) = operation["tags"]
+    assert tag in {known["name"] for known in DOCUMENT["tags"]}
+
+
+def test_each_tag_is_used():
+    assert {tag["name"] for tag in DOCUMENT["tags"]} == {t for _, _, o in operations() for t in o["tags"]}
+
+
+@pytest.mark.parametrize("triple", operations(), ids=named)
+def test_what_can_fail_anywhere_is_declared(triple):
+    _, _, operation = triple
+    assert {"200", "413", "500"} <= set(operation["responses"])
+    statuses = {str(kind.status) for kind in catalogue().values()}
+    access = {"401", "403", "429"} & statuses
+    is_open = operation.get("security") == []
+    assert set(operation["responses"]) & access == (set() if is_open else access)
+    for status, response in operation["responses"].items():
+        if status != "200":
+            assert list(response["content"]) == [MEDIA_TYPE]
+            assert response["description"] != "Problem"
+            assert response["content"][MEDIA_TYPE]["example"]["status"] == int(status)
+
+
+@pytest.mark.parametrize("triple", operations(), ids=named)
+def test_parameters_have_examples_or_lists_of_values(triple):
+    for parameter in triple[2].get("parameters", []):
+        schema = parameter["schema"]
+        choices = SCHEMAS[schema["$ref"].rsplit("/", 1)[1]] if "$ref" in schema else schema
+        assert choices.get("examples") or choices.get("enum"), parameter["name"]
+
+
+def test_only_those_who_watch_need_no_token():
+    assert DOCUMENT["security"] == [{}, {"bearerToken": []}]
+    open_ones = {named(triple) for triple in operations() if triple[2].get("security") == []}
+    assert open_ones == {"isAlive", "isReady"}
+
+
+def test_addresses_are_relative_so_that_they_lead_below_a_prefix():
+    assert [server["url"] for server in DOCUMENT["servers"]] == ["."]
+
+
+def test_a_review_leads_to_operations_that_take_its_body():
+    responses = DOCUMENT["paths"]["/v1/layout/review"]["post"]["responses"]
+    example = request_example("reviewLayout")
+    assert responses["200"]["links"]
+    for link in responses["200"]["links"].values():
+        assert link["requestBody"] == "$request.body"
+        OPERATIONS[link["operationId"]].request.model_validate(example)
+
+
+def unions(part):
+    """Every choice between several named kinds."""
+    if isinstance(part, dict):
+        choices = part.get("oneOf", [])
+        kinds = [SCHEMAS[c["$ref"].rsplit("/", 1)[1]] for c in choices if "$ref" in c]
+        if len(kinds) > 1 and all("kind" in kind.get("properties", {}) for kind in kinds):
+            yield part
+        for inner in part.values():
+            yield from unions(inner)
+    elif isinstance(part, list):
+        for inner in part:
+            yield from unions(inner)
+
+
+def test_every_choice_of_kinds_has_a_discriminator():
+    found = list(unions(SCHEMAS))
+    assert len(found) >= 2  # shores and elements
+    for union in found:
+        assert union["discriminator"]["propertyName"] == "kind"
+        assert len(union["discriminator"]["mapping"]) == len(union["oneOf"])
 
 
 def test_document_says_what_the_answers_are_not_for():
@@ -59,10 +154,7 @@ def test_document_says_what_the_answers_are_not_for():
 @pytest.mark.parametrize("operation", OPERATIONS.values(), ids=OPERATIONS)
 def test_every_failure_of_a_compute_route_is_declared(operation):
     responses = DOCUMENT["paths"][operation.path]["post"]["responses"]
-    assert set(responses) == {"200", "400", "406", "413", "415", "422", "500", "503", "504"}
-    for status, response in responses.items():
-        if status != "200":
-            assert list(response["content"]) == [MEDIA_TYPE]
+    assert set(responses) >= {"200", "400", "406", "413", "415", "422", "500", "503", "504"}
 
 
 @pytest.mark.parametrize("code", catalogue())
@@ -92,7 +184,7 @@ def test_every_flow_error_has_a_code_of_its_own():
 
 def numbers(schema, path, unit=None):
     """Every schema of a number with its place, and whether a unit stands on it or on what holds it."""
-    unit = schema.get("unit", unit)
+    unit = schema.get("x-unit", unit)
     if schema.get("type") in ("number", "integer"):
         yield path, schema, unit
     for name, inner in schema.get("properties", {}).items():
@@ -158,8 +250,9 @@ def test_the_walk_finds_numbers():
 
 @pytest.mark.parametrize("name", sorted(REQUESTS))
 def test_requests_forbid_unknown_fields(name):
-    if SCHEMAS[name].get("type") == "object":
-        assert SCHEMAS[name]["additionalProperties"] is False
+    for part in (SCHEMAS[name], *SCHEMAS[name].get("anyOf", ())):
+        if part.get("type") == "object":
+            assert part["additionalProperties"] is False
 
 
 def test_kinds_of_another_issue_are_not_in_the_schema():

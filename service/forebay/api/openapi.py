@@ -8,8 +8,9 @@ from pydantic import BaseModel
 from pydantic.json_schema import models_json_schema
 
 from forebay import __version__
+from forebay.api.openapi_dialect import translated
 from forebay.api.problems import MEDIA_TYPE, Problem, ProblemKind, catalogue
-from forebay.api.routers.serving import ENVELOPES, REQUESTS
+from forebay.api.routers.serving import ENVELOPES, REQUESTS, problem_responses
 from forebay.api.schemas.catalogues import ProblemDocument, ProblemExplanation, Provenance, WarningValue
 
 REFERENCE = "#/components/schemas/{model}"
@@ -45,6 +46,29 @@ TAGS = {
 }
 """Groups of routes in the order of the page."""
 
+EVERYWHERE = (413, 500)
+"""Statuses of the problems that every route can answer with, whatever it does."""
+
+ACCESS = (401, 403, 429)
+"""Statuses of the problems that every route but the open ones can answer with, if the service has tokens."""
+
+OPEN_ROUTES = frozenset({"isAlive", "isReady"})
+"""Operations that need no token anywhere: whoever watches the service has none."""
+
+TOKEN = {
+    "type": "http",
+    "scheme": "bearer",
+    "description": "Where the service has been given tokens; on loopback it needs none",
+}
+
+NEXT = {
+    "searchStagnation": "Where the water of this layout stands still",
+    "traceWithdrawal": "Where the water of its intakes comes from",
+    "assessLayout": "The whole job for it",
+    "drawFlowNet": "Its picture",
+}
+"""Operations that take the body of a review as it is."""
+
 
 def build_document(app: FastAPI) -> dict[str, Any]:
     """OpenAPI 3.1 document of an application."""
@@ -65,10 +89,13 @@ def build_document(app: FastAPI) -> dict[str, Any]:
     schemas |= {name: _envelope(result.__name__) for name, result in ENVELOPES.items()}
     schemas["Problem"] = schemas.pop("ProblemDocument")
     document["components"]["schemas"] = dict(sorted(schemas.items()))
+    document["components"]["securitySchemes"] = {"bearerToken": TOKEN}
+    document["security"] = [{}, {"bearerToken": []}]
     for item in document["paths"].values():
         for operation in item.values():
-            _name_problems(operation["responses"])
-    return document
+            _complete(operation)
+    translated_document: dict[str, Any] = translated(document)
+    return translated_document
 
 
 def _model_schemas() -> dict[str, Any]:
@@ -98,6 +125,30 @@ def _envelope(result: str) -> dict[str, Any]:
             "provenance": references["Provenance"],
         },
     }
+
+
+def _complete(operation: dict[str, Any]) -> None:
+    """Declare what holds for all routes: access, failures, and after a review what to do next."""
+    is_open, responses = operation["operationId"] in OPEN_ROUTES, operation["responses"]
+    if is_open:
+        operation["security"] = []
+    _declare_failures(responses, EVERYWHERE if is_open else (*EVERYWHERE, *ACCESS))
+    _name_problems(responses)
+    if operation["operationId"] == "reviewLayout":
+        responses["200"]["links"] = {
+            name: {"operationId": name, "requestBody": "$request.body", "description": text}
+            for name, text in NEXT.items()
+        }
+
+
+def _declare_failures(responses: dict[str, Any], statuses: tuple[int, ...]) -> None:
+    """Add the problems that any route can answer with, in the order of their statuses."""
+    known = {kind.status for kind in catalogue().values()}
+    for status, response in problem_responses(tuple(known & set(statuses))).items():
+        responses.setdefault(str(status), response)
+    ordered = sorted(responses.items())
+    responses.clear()
+    responses.update(ordered)
 
 
 def _name_problems(responses: dict[str, Any]) -> None:

@@ -5,7 +5,7 @@ from importlib.resources import files
 from typing import Annotated, Literal
 
 import orjson
-from fastapi import APIRouter, Request
+from fastapi import APIRouter, Path, Request
 from pydantic import BaseModel, Field
 from starlette.responses import Response
 
@@ -112,7 +112,10 @@ async def openapi(request: Request) -> Response:
         **problem_responses((404, 406)),
     },
 )
-async def explain(code: str, request: Request) -> Response:
+async def explain(
+    code: Annotated[str, Path(description="Last part of a problem's `type`", examples=["invalid-request"])],
+    request: Request,
+) -> Response:
     media_type = negotiate(request.headers.get("accept"), (JSON, HTML))
     return explanation(code, media_type)
 

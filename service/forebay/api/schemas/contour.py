@@ -20,6 +20,7 @@ from forebay.api.schemas.quantities import (
     Position,
     PositiveMetres,
 )
+from forebay.api.schemas.ways import describe_ways
 from forebay.api.units import UnitSystem
 from forebay.flow.contour import ContourStatus
 from forebay.flow.errors import FlowError
@@ -71,7 +72,7 @@ class ArcSegment(Strict):
 class Segment(Strict):
     """Exactly one of `line`, `arc`."""
 
-    model_config = {"json_schema_extra": {"oneOf": [{"required": ["line"]}, {"required": ["arc"]}]}}
+    model_config = {"json_schema_extra": describe_ways(("line",), ("arc",))}
 
     line: Annotated[LineSegment | None, Field(description="Straight segment")] = None
     arc: Annotated[ArcSegment | None, Field(description="Arc of a circle")] = None
@@ -95,9 +96,7 @@ class Contour(Strict):
     """Exactly one of `polyline`, `circle`, `path`."""
 
     model_config = {
-        "json_schema_extra": {
-            "oneOf": [{"required": ["polyline"]}, {"required": ["circle"]}, {"required": ["path"]}]
-        }
+        "json_schema_extra": describe_ways(("polyline",), ("circle",), ("path",), only={"closed": "polyline"})
     }
 
     name: Name

@@ -9,6 +9,7 @@ from pydantic_core import PydanticCustomError
 
 from forebay.api.schemas.common import Strict
 from forebay.api.schemas.quantities import Metres, PointCount, Position
+from forebay.api.schemas.ways import describe_ways
 from forebay.api.units import UnitSystem
 
 ComplexArray = npt.NDArray[np.complex128]
@@ -51,16 +52,7 @@ class Grid(Strict):
 class At(Strict):
     """Exactly one of `points`, `x` with `y`, `line`, `grid`."""
 
-    model_config = {
-        "json_schema_extra": {
-            "oneOf": [
-                {"required": ["points"]},
-                {"required": ["x", "y"]},
-                {"required": ["line"]},
-                {"required": ["grid"]},
-            ]
-        }
-    }
+    model_config = {"json_schema_extra": describe_ways(("points",), ("x", "y"), ("line",), ("grid",))}
 
     points: Annotated[
         Annotated[list[Position], Field(min_length=1, fail_fast=True)] | None,

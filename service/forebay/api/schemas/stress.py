@@ -28,6 +28,7 @@ from forebay.api.schemas.quantities import (
     SpeedValue,
     ViscosityValue,
 )
+from forebay.api.schemas.ways import describe_ways
 from forebay.api.units import UnitSystem
 from forebay.flow.gradient_fit import VelocitySamples
 from forebay.flow.layout import Water as FlowWater
@@ -103,13 +104,7 @@ class State(Strict):
     """Exactly one of `velocity_gradient`, `strain_rate`, `velocity_samples`."""
 
     model_config = {
-        "json_schema_extra": {
-            "oneOf": [
-                {"required": ["velocity_gradient"]},
-                {"required": ["strain_rate"]},
-                {"required": ["velocity_samples"]},
-            ]
-        }
+        "json_schema_extra": describe_ways(("velocity_gradient",), ("strain_rate",), ("velocity_samples",))
     }
 
     name: Name
@@ -152,7 +147,7 @@ class StressRequest(ComputeRequest):
     """Stress of given states, or in the flow of a layout."""
 
     model_config = {
-        "json_schema_extra": {"oneOf": [{"required": ["states"]}, {"required": ["layout", "at"]}]}
+        "json_schema_extra": describe_ways(("states", "fluid"), ("layout", "at"), shared=frozenset({"fluid"}))
     }
 
     fluid: Annotated[Fluid | None, Field(description="The fluid; a layout's own water if absent")] = None
