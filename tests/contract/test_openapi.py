@@ -253,9 +253,3 @@ def test_requests_forbid_unknown_fields(name):
     for part in (SCHEMAS[name], *SCHEMAS[name].get("anyOf", ())):
         if part.get("type") == "object":
             assert part["additionalProperties"] is False
-
-
-def test_kinds_of_another_issue_are_not_in_the_schema():
-    text = json.dumps(DOCUMENT)
-    assert '"surveyed"' not in text
-    assert '"outline"' not in text

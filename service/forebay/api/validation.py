@@ -9,10 +9,10 @@ from pydantic_core import ErrorDetails
 from forebay.api.problems import LONGEST_TOKEN, MOST_ERRORS, Problem, pointer
 from forebay.flow.errors import Path
 
-UNIONS = frozenset({"shore", "fluid", "discharge"})
+UNIONS = frozenset({"shore", "fluid", "discharge", "passing_discharge"})
 """Members whose value is of one of several kinds."""
 
-LISTS_OF_UNIONS = frozenset({"elements"})
+LISTS_OF_UNIONS = frozenset({"elements", "criteria", "structures"})
 """Members whose items are each of one of several kinds."""
 
 LONGEST_DETAIL = 300
@@ -43,7 +43,7 @@ def problem_of(error: ValidationError) -> Problem:
 def without_tags(location: Path) -> Path:
     """Steps of a validation error's location without the tags of unions, which are no members of the body.
 
-    A tag stands after `shore`, `fluid` and `discharge`, and after the index of an element.
+    A tag stands after `shore`, `fluid` and `discharge`, and after the index of an element or structure.
     """
     before = ("", "", *location)
     return tuple(

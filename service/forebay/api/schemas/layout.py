@@ -1,5 +1,6 @@
 """A layout as a client writes it, and its conversion into the flow's own values."""
 
+from collections.abc import Iterator
 from typing import Annotated
 
 from pydantic import Field
@@ -7,6 +8,7 @@ from pydantic import Field
 from forebay.api.names import refuse_reserved
 from forebay.api.schemas.common import ComputeRequest, Strict
 from forebay.api.schemas.elements import Element, LineSource, Pier, Source
+from forebay.api.schemas.outlines import Outline
 from forebay.api.schemas.quantities import (
     BedFriction,
     DensityDifference,
@@ -14,14 +16,24 @@ from forebay.api.schemas.quantities import (
     PerSecond,
     Position,
     Salinity,
+    Tolerance,
     Velocity,
     WaterTemperature,
     WindSpeed,
 )
-from forebay.api.schemas.shores import OpenWater, Shore
+from forebay.api.schemas.shores import Banks, OpenWater
+from forebay.api.schemas.surveyed import GridCode, SurveyedShore
 from forebay.api.units import UnitSystem
 from forebay.flow import layout as flow
 from forebay.trade.applicability.site import SiteData
+from forebay.trade.survey.conflicts import check_conflicts
+from forebay.trade.survey.errors import UnsuitableGridError
+from forebay.trade.survey.grids import MapGrid, projected_grid
+from forebay.trade.survey.rings import Change
+from forebay.trade.survey.water import SurveyedWater
+
+Shore = Annotated[Banks | SurveyedShore, Field(discriminator="kind", description="Banks")]
+Structure = Annotated[Pier | Outline, Field(discriminator="kind", description="A structure")]
 
 MAX_ELEMENTS = 2000
 """Elements that the schema admits; a service may set a lower limit."""
@@ -35,6 +47,12 @@ EFFORT_A_PAIR = 100
 
 EFFORT_A_PIER_PAIR = 400_000
 """Work to solve the flow round piers, for each pair of them, counted likewise."""
+
+EFFORT_A_VERTEX = 60_000
+"""Work to solve the flow along rings and outlines, for each vertex, counted likewise."""
+
+EFFORT_A_VERTEX_PAIR = 3_000
+"""The same, for each pair of vertices: a dozen unknowns a vertex, all of which feel each other."""
 
 
 class Water(Strict):
@@ -98,8 +116,18 @@ class Layout(Strict):
         list[Element], Field(max_length=MAX_ELEMENTS, description="What draws, gives or turns")
     ] = []
     structures: Annotated[
-        list[Pier], Field(max_length=MAX_STRUCTURES, description="What stands in the water")
+        list[Structure], Field(max_length=MAX_STRUCTURES, description="What stands in the water")
     ] = []
+    grid: GridCode | None = None
+    tolerance: Annotated[
+        Tolerance,
+        Field(
+            description=(
+                "Largest error of the stream function along outlines and surveyed rings, as part of the flow "
+                "through; the answer's `boundary` says what was reached"
+            )
+        ),
+    ] = 1e-4
 
     bed_friction: Annotated[
         BedFriction | None, Field(description="(friction velocity / speed)^2; for warnings only")
@@ -119,24 +147,79 @@ class Layout(Strict):
         return len(self.elements) + len(self.structures)
 
     @property
+    def vertices(self) -> int:
+        """Number of vertices of rings and outlines."""
+        outlines = sum(structure.size for structure in self.structures if isinstance(structure, Outline))
+        return outlines + (self.shore.size if isinstance(self.shore, SurveyedShore) else 0)
+
+    @property
     def effort(self) -> int:
-        """Work before the first point: checks of each pair of things, and the solution round the piers."""
-        return EFFORT_A_PAIR * self.size**2 + EFFORT_A_PIER_PAIR * len(self.structures) ** 2
+        """Work before the first point: checks of each pair of things, and the solution along all walls."""
+        piers = sum(isinstance(structure, Pier) for structure in self.structures)
+        walls = EFFORT_A_VERTEX * self.vertices + EFFORT_A_VERTEX_PAIR * self.vertices**2
+        return EFFORT_A_PAIR * self.size**2 + EFFORT_A_PIER_PAIR * piers**2 + walls
 
     def to_flow(self, units: UnitSystem) -> flow.Layout:
         """Layout in SI, with complex positions.
 
-        Raises ReservedNameError if a name means something else in an answer.
+        Raises LayoutError: ReservedNameError if a name means something else in an answer, or what is wrong
+        with surveyed geometry.
         """
         refuse_reserved({"elements": self.elements, "structures": self.structures})
-        return flow.Layout(
+        water = self.surveyed(units)
+        layout = flow.Layout(
             depth=units.read(self.depth, "m"),
             water=self.water.to_flow(units),
             ambient=self.ambient.to_flow(units),
-            shore=self.shore.to_flow(units),
+            shore=self._plain_shore(units) if water is None else water.shore,
             elements=tuple(element.to_flow(units) for element in self.elements),
-            structures=tuple(pier.to_flow(units) for pier in self.structures),
+            structures=tuple(self._flow_structures(units)),
+            tolerance=self.tolerance,
         )
+        check_conflicts(layout)
+        return layout
+
+    def _plain_shore(self, units: UnitSystem) -> flow.Shore:
+        if isinstance(self.shore, SurveyedShore):
+            raise TypeError("surveyed water is converted by its survey")
+        return self.shore.to_flow(units)
+
+    def _flow_structures(self, units: UnitSystem) -> Iterator[flow.Structure]:
+        for index, structure in enumerate(self.structures):
+            if isinstance(structure, Outline):
+                yield structure.to_flow(units, ("structures", index))
+            else:
+                yield structure.to_flow(units)
+
+    def surveyed(self, units: UnitSystem) -> SurveyedWater | None:
+        """Surveyed water on the plan of the layout, with what was done to it; None on other shores.
+
+        Raises LayoutError, whose path leads to what is wrong.
+        """
+        if not isinstance(self.shore, SurveyedShore):
+            return None
+        if self.shore.grid is not None and self.grid not in (None, self.shore.grid):
+            raise UnsuitableGridError("it differs from the layout's own", ("shore", "grid"))
+        return self.shore.survey(units, self.grid)
+
+    def map_grid(self, units: UnitSystem) -> MapGrid | None:
+        """Grid in which x, y are metres; None if nobody has said where the plan lies.
+
+        Raises LayoutError: there is no such grid, or it does not serve.
+        """
+        water = self.surveyed(units)
+        if water is not None:
+            return water.grid
+        return None if self.grid is None else projected_grid(self.grid, ("grid",))
+
+    def mended(self, units: UnitSystem) -> tuple[Change, ...]:
+        """What was mended, moved and left out of rings and outlines."""
+        water = self.surveyed(units)
+        changes = [] if water is None else [*water.changes]
+        for index, structure in enumerate(self.structures):
+            if isinstance(structure, Outline):
+                changes += structure.traced(units, ("structures", index))[1]
+        return tuple(changes)
 
     def site_data(self, units: UnitSystem) -> SiteData:
         """What is known of the site beside its flow, in SI."""

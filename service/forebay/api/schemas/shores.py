@@ -99,7 +99,4 @@ class Basin(Strict):
         return flow.Basin(units.position(self.corner), unit_direction(self.along), length, width)
 
 
-Shore = Annotated[
-    OpenWater | StraightBank | Channel | Corner | DeadEnd | Basin,
-    Field(discriminator="kind", description="Banks"),
-]
+Banks = OpenWater | StraightBank | Channel | Corner | DeadEnd | Basin
