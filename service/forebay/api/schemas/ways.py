@@ -54,6 +54,16 @@ def describe_ways(
     return rewrite
 
 
+def describe_pair(one: str, other: str) -> Json:
+    """What `json_schema_extra` adds for two fields that are both given or both left out."""
+
+    def given(name: str) -> Json:
+        return {"required": [name], "properties": {name: {"not": {"type": "null"}}}}
+
+    absent = {"properties": {other: {"type": "null"}}}
+    return {"if": given(one), "then": given(other), "else": absent}
+
+
 def _without_null(schema: Json) -> Json:
     """Schema of a field that is required here: null and the default are gone."""
     kept = {key: value for key, value in schema.items() if key not in {"default", "anyOf"}}

@@ -1,0 +1,108 @@
+"""Every operation under requests made from its schema and against it: each answer is one that is declared.
+
+All checks of the library hold. One is made exact: a request that fits the schema must be answered, unless
+what it describes cannot be computed (a problem with a code of its own) or breaks a rule between values that
+JSON Schema has no words for; those rules are listed here, so that a new one is a decision.
+"""
+
+import copy
+import re
+import time
+
+import orjson
+import pytest
+import schemathesis
+from hypothesis import HealthCheck, settings
+from schemathesis.core.failures import ServerError
+from schemathesis.openapi.checks import RejectedPositiveData
+
+from forebay.api.examples import OPEN_WATER
+from forebay.api.problems import flow_errors
+from forebay.app import create_app
+from forebay.settings import Settings
+
+RULES = (
+    "A window runs from smaller to larger in x and in y",
+    "`x` and `y` differ in length",
+    r"A discharge should be from \S+ to \S+ m3/s",
+)
+"""Rules between values of one request, as patterns of the refusal's text."""
+
+SMALL = Settings(workers=1, max_points=2000, max_pairs=200_000, max_elements=20, deadline=5.0)
+"""Limits under which no request takes long: what is looked for here does not depend on size."""
+
+PATIENCE = 60.0
+"""Longest wait for an answer [s]: the deadline, and a machine that does other things beside."""
+
+COMPILATION = 600.0
+"""Longest wait for readiness [s]: a fresh machine compiles every kernel first."""
+
+PROMISES = ("not-ready", "busy", "deadline-exceeded")
+"""Problems with a status from 500 on by which the service keeps its word."""
+
+
+def application():
+    """The service, with a small site in its examples: the demonstration takes ten times as long."""
+    app = create_app(SMALL)
+    document = copy.deepcopy(app.openapi())
+    for item in document["paths"].values():
+        for content in item.get("post", {}).get("requestBody", {}).get("content", {}).values():
+            if "layout" in content.get("example", {}):
+                content["example"]["layout"] = OPEN_WATER
+    app.state.openapi_bytes = orjson.dumps(document)
+    return app
+
+
+APP = application()
+QUICK, LONG = (schemathesis.openapi.from_asgi("/openapi.json", APP) for _ in range(2))
+
+
+def code_of(response):
+    return response.json()["type"].removeprefix("/problems/")
+
+
+def is_impossible(response):
+    """Whether a refusal says that what was described cannot be computed, however well it was written."""
+    code, texts = code_of(response), [error["detail"] for error in response.json().get("errors", ())]
+    breaks_rules = texts and all(any(re.search(rule, text) for rule in RULES) for text in texts)
+    return code in flow_errors() or (code == "invalid-request" and breaks_rules)
+
+
+def filter_failure(context, failure, case, response):
+    """Whether a failure of a check is one."""
+    if isinstance(failure, ServerError):
+        return code_of(response) not in PROMISES
+    refused = isinstance(failure, RejectedPositiveData) and response.status_code == 422
+    return not (refused and is_impossible(response))
+
+
+for schema in (QUICK, LONG):
+    schema.hook(filter_failure)
+
+
+@pytest.fixture(scope="module", autouse=True)
+def readiness():
+    deadline = time.monotonic() + COMPILATION
+    while QUICK["/readyz"]["GET"].Case().call(timeout=PATIENCE).status_code != 200:
+        assert time.monotonic() < deadline
+        time.sleep(0.5)
+
+
+def checked(examples):
+    """Settings of a run that is the same every time."""
+    return settings(
+        max_examples=examples, deadline=None, derandomize=True, suppress_health_check=list(HealthCheck)
+    )
+
+
+@QUICK.parametrize()
+@checked(10)
+def test_answers_are_the_declared_ones(case):
+    case.call_and_validate(timeout=PATIENCE)
+
+
+@pytest.mark.slow
+@LONG.parametrize()
+@checked(300)
+def test_answers_are_the_declared_ones_at_length(case):
+    case.call_and_validate(timeout=PATIENCE)
