@@ -39,6 +39,8 @@ _STILL = 1e-25
 """Speed over the speed of reference below which a line has come to rest [-]."""
 _TOUCH = 1e-9
 """Distance from a line element, over its length, at which it is reached [-]."""
+_ABREAST = 1e-6
+"""Distance ahead to a line element, over its length, within which a line beside its plane is there [-]."""
 _CLOSED = 1e-10
 """Flux between a line and its own seed, over the strengths, below which the line has closed [-]."""
 _LEAST_STEP = 1e-13
@@ -250,7 +252,7 @@ class _Run:
         ahead, index = faces.ahead(lines.z, self._heading())
         lines.step = np.minimum(lines.step, 0.9 * ahead)
         near = np.abs(faces.local(lines.z).imag[np.arange(index.size), index]) <= _TOUCH
-        arrived = np.isfinite(ahead) & near
+        arrived = (ahead <= _ABREAST * faces.lengths[index]) & near
         if not np.any(arrived):
             return stay
         for i in np.nonzero(arrived)[0]:
