@@ -69,6 +69,6 @@ def error_bound(value: float | None) -> str:
     return figure(value, 1)
 
 
-def counted(number: int, noun: str) -> str:
+def counted(number: int, noun: str, plural: str | None = None) -> str:
     """Number with its noun: `1 sink`, `2 sinks`."""
-    return f"{number} {noun}" if number == 1 else f"{number} {noun}s"
+    return f"{number} {noun if number == 1 else plural or noun + 's'}"

@@ -7,8 +7,11 @@ CSV = "text/csv"
 SVG = "image/svg+xml"
 PNG = "image/png"
 HTML = "text/html"
+PDF = "application/pdf"
 NPY = "application/x-npy"
 ARROW = "application/vnd.apache.arrow.stream"
+GEOJSON = "application/geo+json"
+COVERAGE = "application/prs.coverage+json"
 JSON_LINES = ("application/jsonl", "application/x-ndjson")
 """Two names of one format, neither registered, both in use."""
 

@@ -17,7 +17,7 @@ class Outcome:
     result : fields of the answer in SI; complex values are positions
     layout : the layout it was computed for;  data : what else is known of the site
     warnings : where the numbers should not be trusted
-    picture : encoded picture instead of a result
+    picture : encoded picture instead of a result;  pictures : those that go with a result, by caption
     """
 
     result: dict[str, Any] = field(default_factory=dict)
@@ -25,6 +25,7 @@ class Outcome:
     data: SiteData | None = None
     warnings: tuple[Notice, ...] = ()
     picture: bytes | None = None
+    pictures: Mapping[str, bytes] = field(default_factory=dict)
 
     @property
     def site(self) -> tuple[Layout, SiteData | None] | None:

@@ -20,6 +20,13 @@ MOST_INTAKES = 3
 MOST_ORIGINS = 3
 """Origins of an intake's water that its line names."""
 
+NAMES = {
+    Severity.UNSAFE_TO_USE: ("UNSAFE TO USE", "UNSAFE TO USE"),
+    Severity.CAUTION: ("caution", "cautions"),
+    Severity.NOTE: ("note", "notes"),
+}
+"""Severities in words, the gravest first."""
+
 CAUTION = (
     "Screening level, not for the safety of divers, swimmers or craft; regulators' criteria and licensed "
     "engineers decide."
@@ -123,10 +130,8 @@ def verdict_line(verdicts: Sequence[dict[str, Any]]) -> str:
 
 def warning_line(notices: Sequence[Notice]) -> str:
     """How many warnings of each severity, and which of the graver ones."""
-    counts = {
-        severity: sum(notice.severity == severity for notice in notices) for severity in reversed(Severity)
-    }
+    counts = {kind: sum(notice.severity == kind for notice in notices) for kind in NAMES}
     grave = dict.fromkeys(notice.code for notice in notices if notice.severity != Severity.NOTE)
     named = f": {', '.join(grave)}" if grave else ""
-    told = ", ".join(f"{count} {severity}" for severity, count in counts.items())
+    told = ", ".join(counted(count, *NAMES[kind]) for kind, count in counts.items() if count) or "none"
     return f"Warnings: {told}{named}."

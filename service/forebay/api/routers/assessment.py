@@ -1,11 +1,15 @@
 """assessment: the whole job for one layout in one answer, or as a calculation sheet."""
 
 from dataclasses import asdict, replace
+from functools import partial
 from typing import Any
 
 from fastapi import APIRouter
 
+from forebay.api.encoders.envelope_json import ENVELOPE
+from forebay.api.encoders.sheets import SHEETS
 from forebay.api.limits import Price
+from forebay.api.media import JSON
 from forebay.api.operation import Operation
 from forebay.api.outcome import Outcome
 from forebay.api.review import COMPUTED, readings_of, reviewed
@@ -14,13 +18,25 @@ from forebay.api.routers.serving import serve
 from forebay.api.schemas.assessment import CAUTIONS, AssessmentRequest, AssessmentResult, PartName
 from forebay.api.schemas.contour import flow_contours
 from forebay.api.summary import Told, summary_of
+from forebay.api.units import UnitSystem
 from forebay.api.verdicts import verdicts_of
+from forebay.charts.options import FlowNetOptions
+from forebay.charts.units import SI, US
 from forebay.workflows.assessment import NOWHERE, Assessment, Questions, assess_layout
-from forebay.workflows.parts import Part
+from forebay.workflows.assessment_picture import draw_assessment
+from forebay.workflows.parts import Part, attempt
 from forebay.workflows.withdrawal import Withdrawal
 
+NET_CAPTION = (
+    "Flow net: streamlines of equal flux, equipotentials, speed, stagnation points, dividing streamlines. "
+    "Plan, depth-mean potential flow."
+)
 
-def compute(request: AssessmentRequest, _media_type: str) -> Outcome:
+PICTURE_SIZE = (640, 520)
+"""Width and height of a sheet's flow net [px], at which its letters are as large as those of a table."""
+
+
+def compute(request: AssessmentRequest, media_type: str) -> Outcome:
     layout = request.flow_layout()
     assessment = assess_layout(layout, questions_of(request))
     samples = assessment.field.answer
@@ -28,7 +44,20 @@ def compute(request: AssessmentRequest, _media_type: str) -> Outcome:
     readings = COMPUTED if samples is None else readings_of(samples.columns, assumed)
     readings = replace(readings, has_dissipation=assessment.stress.answer is not None)
     outcome = reviewed(request, layout, written(assessment, request), readings)
-    return replace(outcome, result=told(assessment, outcome, request) | outcome.result)
+    outcome = replace(outcome, result=told(assessment, outcome, request) | outcome.result)
+    return outcome if media_type == JSON else replace(outcome, pictures=pictures_of(assessment, request))
+
+
+def pictures_of(assessment: Assessment, request: AssessmentRequest) -> dict[str, bytes]:
+    """Pictures of a sheet by their captions; a picture that failed is a caption that says so."""
+    units = US if request.unit_system is UnitSystem.US else SI
+    title = request.sheet.site or "Flow net"
+    options = FlowNetOptions(title=title, size=PICTURE_SIZE, units=units)
+    layout = request.flow_layout()
+    net = attempt(partial(draw_assessment, layout, assessment, options))
+    if net.answer is None:
+        return {f"The flow net could not be drawn: {net.reason} ({net.problem}).": b""}
+    return {NET_CAPTION: net.answer.data}
 
 
 def questions_of(request: AssessmentRequest) -> Questions:
@@ -99,6 +128,7 @@ ASSESS = Operation(
     result=AssessmentResult,
     compute=compute,
     price=price,
+    encoders=(ENVELOPE, *SHEETS),
 )
 
 router = APIRouter()

@@ -1,0 +1,58 @@
+"""Widths of a table's columns, from what stands in them: numbers stay whole, words share the rest."""
+
+import re
+from collections.abc import Sequence
+
+ROOM = 108.0
+"""Characters that fit side by side on a page of the narrower paper."""
+
+PADDING = 2.5
+"""Space between columns, in characters."""
+
+WIDEST = 140.0
+"""Characters of words beyond which a column is broken into lines in any case."""
+
+LONGEST_WHOLE = 15.0
+"""Characters up to which a word stays whole at the cost of other columns."""
+
+HEADING = 0.95
+"""Width of a character in a heading, over that of one in a cell."""
+
+TAGS = re.compile(r"<[^>]*>|&(\w+|#\w+);")
+
+
+def column_widths(
+    headings: Sequence[str], rows: Sequence[Sequence[str]], whole: Sequence[bool]
+) -> list[float]:
+    """Share of the table's width [%] for each column; they add to 100.
+
+    headings : text of the heads, broken only at spaces;  whole : columns that must not be broken, of numbers
+
+    Columns of numbers are as wide as their longest one. Columns of words share what is left as their longest
+    texts do, but none is narrower than its longest word where there is room for that.
+    """
+    texts = [[plain(row[index]) for row in rows] for index in range(len(headings))]
+    least = [
+        PADDING + max(HEADING * longest_word(heading), *(longest_word(text) for text in column), 1.0)
+        for heading, column in zip(headings, texts, strict=True)
+    ]
+    wanted = [PADDING + min(WIDEST, max(len(text) for text in column)) for column in texts]
+    narrow = [min(width, LONGEST_WHOLE) for width in least]
+    fixed = [
+        max(full, low) if is_whole else low for full, low, is_whole in zip(wanted, narrow, whole, strict=True)
+    ]
+    spare = max(ROOM - sum(fixed), 0.0)
+    more = [max(full - width, 0.0) for full, width in zip(wanted, fixed, strict=True)]
+    share = min(spare / sum(more), 1.0) if sum(more) else 0.0
+    widths = [width + share * extra for width, extra in zip(fixed, more, strict=True)]
+    return [round(100.0 * width / sum(widths), 2) for width in widths]
+
+
+def plain(cell: str) -> str:
+    """Text of a cell without its markup."""
+    return TAGS.sub(lambda tag: "x" if tag.group(1) else "", cell)
+
+
+def longest_word(text: str) -> int:
+    """Characters of the longest part of a text that has no space in it."""
+    return max((len(word) for word in text.split()), default=0)
