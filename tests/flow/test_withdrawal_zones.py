@@ -285,3 +285,18 @@ def test_zone_of_a_basin_with_one_outfall_is_the_basin():
     outline = shapely.Polygon(np.stack([answer.zone.real, answer.zone.imag], axis=1))
     # its edge runs a hair off the walls, further where the water is slow: a millionth of the flux
     assert_allclose(outline.area, 6000.0, rtol=1e-3)
+
+
+def test_zone_far_from_the_origin_of_a_map_grid_is_the_same():
+    def area(origin):
+        layout = Layout(
+            4.0,
+            ambient=Ambient(0.35 + 0j),
+            shore=StraightBank(origin, 1 + 0j),
+            elements=(Sink("intake", origin + 5j, 1.8), Source("outfall", origin + 80, 1.0)),
+        )
+        zone = withdrawals(layout)[0].zone
+        return shapely.Polygon([(z.real - origin.real, z.imag - origin.imag) for z in zone]).area
+
+    # the line is traced 3e-7 of the flux inside its edge there, and drawn to 1e-4 of the layout's size
+    assert area(480_000 + 5_540_000j) == pytest.approx(area(0j), rel=1e-4)

@@ -28,6 +28,8 @@ _SAG = 1e-4
 _MOST_BETWEEN = 8
 _HAIR, _WIDE_HAIR = 1e-9, 1e-6
 """Distance from the edge of a sector, over its flux, at which its edge is traced [-]; see `Canvas.hair`."""
+_ROUNDINGS = 1e4
+"""Roundings of the coordinates that fit across a hair at least [-]."""
 _CORNERS = 180
 
 
@@ -90,9 +92,12 @@ class Canvas:
         """Distance from the edge of a sector, over its flux, at which its edge is traced [-].
 
         Where nothing comes from far away, a line along a wall runs far out before it returns: the nearer to
-        the wall, the further, until the water stands still to rounding.
+        the wall, the further, until the water stands still to rounding. Far from the origin of the
+        coordinates, as in a map grid, a hair must be wide enough to be seen beside their rounding.
         """
-        return _HAIR if any(end.gives for end in self.surroundings.far.ends) else _WIDE_HAIR
+        rounding = float(np.finfo(np.float64).eps) * abs(self.centre) / self.model.scale
+        hair = _HAIR if any(end.gives for end in self.surroundings.far.ends) else _WIDE_HAIR
+        return max(hair, _ROUNDINGS * rounding)
 
 
 def filled_in(model: FlowModel, path: ComplexArray, sag: float) -> ComplexArray:
