@@ -3,6 +3,7 @@
 from dataclasses import dataclass
 from functools import cached_property
 from itertools import pairwise
+from math import acos, ceil
 from typing import ClassVar
 
 import numpy as np
@@ -37,6 +38,10 @@ class Straight:
     def swept_area(self) -> float:
         """Area between the piece and the origin, int (x dy - y dx)/2 [m2]."""
         return 0.5 * (self.start.conjugate() * self.end).imag
+
+    def vertices(self, _flatness: float) -> list[complex]:
+        """Where it begins [m]."""
+        return [self.start]
 
     def part(self, low: float, high: float) -> "Straight":
         """The piece between two shares."""
@@ -78,6 +83,11 @@ class Arc:
         """Area between the arc and the origin, int (x dy - y dx)/2 [m2]."""
         chord = (self.centre.conjugate() * (self.end - self.start)).imag
         return 0.5 * (chord + self.radius**2 * self.turn)
+
+    def vertices(self, flatness: float) -> list[complex]:
+        """Beginnings of chords whose middles lie `flatness` radii inside the arc [m]: r (1 - cos(a / 2))."""
+        count = max(1, ceil(abs(self.turn) / (2.0 * acos(1.0 - flatness))))
+        return [self.part(number / count, 1.0).start for number in range(count)]
 
     def part(self, low: float, high: float) -> "Arc":
         """The arc between two shares."""
@@ -132,6 +142,11 @@ class Contour:
     def closed(self) -> bool:
         """Whether it ends where it began."""
         return abs(self.pieces[-1].end - self.pieces[0].start) <= self._reach
+
+    def traced(self, flatness: float) -> ComplexArray:
+        """Vertices of chords that stand for the contour, x + iy [m]; arcs are `flatness` of a radius off."""
+        pieces = [piece.vertices(flatness) for piece in self.pieces]
+        return np.array([*(place for piece in pieces for place in piece), self.pieces[-1].end])
 
     @property
     def enclosed_area(self) -> float | None:

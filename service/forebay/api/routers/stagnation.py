@@ -1,13 +1,17 @@
 """stagnation/search: where the water stands still."""
 
+from collections.abc import Iterator
 from dataclasses import asdict
 from typing import Any
 
+import numpy as np
 from fastapi import APIRouter
 
+from forebay.api.encoders.envelope_json import ENVELOPE
+from forebay.api.encoders.geojson import Feature, geojson
 from forebay.api.limits import Price
 from forebay.api.operation import Operation
-from forebay.api.outcome import Outcome
+from forebay.api.outcome import Answered, Outcome
 from forebay.api.review import reviewed
 from forebay.api.routers.serving import serve
 from forebay.api.schemas.stagnation import StagnationRequest, StagnationResult
@@ -30,6 +34,14 @@ def written(search: StagnationSearch) -> dict[str, Any]:
     return {"points": points, **fields}
 
 
+def features(answered: Answered) -> Iterator[Feature]:
+    """A place on the map for each stagnation point."""
+    points = zip(answered.outcome.result["points"], answered.document["result"]["points"], strict=True)
+    for point, properties in points:
+        at = np.array([complex(point["x"], point["y"])])
+        yield Feature("stagnation-point", "Point", at, properties)
+
+
 def price(request: StagnationRequest) -> Price:
     return Price(elements=request.layout.size, lengthy=True)
 
@@ -47,6 +59,7 @@ SEARCH = Operation(
     result=StagnationResult,
     compute=compute,
     price=price,
+    encoders=(ENVELOPE, geojson(features)),
 )
 
 router = APIRouter()

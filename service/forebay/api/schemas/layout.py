@@ -3,34 +3,33 @@
 from collections.abc import Iterator
 from typing import Annotated
 
-from pydantic import Field
+import numpy as np
+from pydantic import Field, PrivateAttr
 
 from forebay.api.names import refuse_reserved
 from forebay.api.schemas.common import ComputeRequest, Strict
-from forebay.api.schemas.elements import Element, LineSource, Pier, Source
+from forebay.api.schemas.conditions import Conditions
+from forebay.api.schemas.elements import Element, Pier
 from forebay.api.schemas.outlines import Outline
 from forebay.api.schemas.quantities import (
-    BedFriction,
-    DensityDifference,
-    DepthMetres,
     PerSecond,
     Position,
     Salinity,
     Tolerance,
     Velocity,
     WaterTemperature,
-    WindSpeed,
 )
 from forebay.api.schemas.shores import Banks, OpenWater
 from forebay.api.schemas.surveyed import GridCode, SurveyedShore
 from forebay.api.units import UnitSystem
 from forebay.flow import layout as flow
+from forebay.flow.placement import places
 from forebay.trade.applicability.site import SiteData
 from forebay.trade.survey.conflicts import check_conflicts
 from forebay.trade.survey.errors import UnsuitableGridError
-from forebay.trade.survey.grids import MapGrid, projected_grid
+from forebay.trade.survey.grids import MapGrid, projected_grid, scale_error
 from forebay.trade.survey.rings import Change
-from forebay.trade.survey.water import SurveyedWater
+from forebay.trade.survey.water import SurveyedWater, corners
 
 Shore = Annotated[Banks | SurveyedShore, Field(discriminator="kind", description="Banks")]
 Structure = Annotated[Pier | Outline, Field(discriminator="kind", description="A structure")]
@@ -105,10 +104,9 @@ class Ambient(Strict):
         return flow.Ambient(complex(u, v), ((ux, uy), (vx, vy)), units.position(self.at))
 
 
-class Layout(Strict):
+class Layout(Conditions):
     """A site: water, current, banks, what draws and gives, what stands in the way."""
 
-    depth: Annotated[DepthMetres, Field(description="Mean depth")]
     water: Annotated[Water, Field(description="Water properties")] = Water()
     ambient: Annotated[Ambient, Field(description="Ambient current")] = Ambient()
     shore: Annotated[Shore, Field(description="Banks; open water if absent")] = OpenWater(kind="open-water")
@@ -129,18 +127,6 @@ class Layout(Strict):
         ),
     ] = 1e-4
 
-    bed_friction: Annotated[
-        BedFriction | None, Field(description="(friction velocity / speed)^2; for warnings only")
-    ] = None
-    wind_speed: Annotated[WindSpeed | None, Field(description="At 10 m height; for warnings only")] = None
-    density_difference: Annotated[
-        DensityDifference | None, Field(description="Between layers; for warnings only")
-    ] = None
-    depth_range: Annotated[
-        Annotated[list[DepthMetres], Field(min_length=2, max_length=2, fail_fast=True)] | None,
-        Field(description="Least and largest depth; for warnings only", examples=[[3.2, 4.6]]),
-    ] = None
-
     @property
     def size(self) -> int:
         """Number of elements and structures."""
@@ -158,6 +144,14 @@ class Layout(Strict):
         piers = sum(isinstance(structure, Pier) for structure in self.structures)
         walls = EFFORT_A_VERTEX * self.vertices + EFFORT_A_VERTEX_PAIR * self.vertices**2
         return EFFORT_A_PAIR * self.size**2 + EFFORT_A_PIER_PAIR * piers**2 + walls
+
+    _known: dict[UnitSystem, tuple[flow.Layout, SiteData]] = PrivateAttr(default_factory=dict)
+
+    def converted(self, units: UnitSystem) -> tuple[flow.Layout, SiteData]:
+        """`to_flow` and `site_data`, once for all the requests that share this layout: it is frozen."""
+        if units not in self._known:
+            self._known[units] = self.to_flow(units), self.site_data(units)
+        return self._known[units]
 
     def to_flow(self, units: UnitSystem) -> flow.Layout:
         """Layout in SI, with complex positions.
@@ -208,9 +202,13 @@ class Layout(Strict):
         Raises LayoutError: there is no such grid, or it does not serve.
         """
         water = self.surveyed(units)
-        if water is not None:
-            return water.grid
-        return None if self.grid is None else projected_grid(self.grid, ("grid",))
+        if water is not None or self.grid is None:
+            return None if water is None else water.grid
+        grid = projected_grid(self.grid, ("grid",))
+        stand = [at for element in self.elements for _, at in places(element.to_flow(units))]
+        if stand:
+            scale_error(grid, corners(np.array(stand)), ("grid",))
+        return grid
 
     def mended(self, units: UnitSystem) -> tuple[Change, ...]:
         """What was mended, moved and left out of rings and outlines."""
@@ -222,24 +220,11 @@ class Layout(Strict):
         return tuple(changes)
 
     def site_data(self, units: UnitSystem) -> SiteData:
-        """What is known of the site beside its flow, in SI."""
-        areas = {
-            element.name: units.read(element.port_area, "m2")
-            for element in self.elements
-            if isinstance(element, Source | LineSource) and element.port_area is not None
-        }
-        depths = sorted(units.read(depth, "m") for depth in self.depth_range or ())
-        return SiteData(
-            bed_friction=self.bed_friction,
-            port_areas=areas,
-            wind_speed=_read(units, self.wind_speed, "m/s"),
-            density_difference=_read(units, self.density_difference, "kg/m3"),
-            depth_range=(depths[0], depths[1]) if depths else None,
-        )
+        """What is known of the site beside its flow, in SI.
 
-
-def _read(units: UnitSystem, value: float | None, si_unit: str) -> float | None:
-    return None if value is None else units.read(value, si_unit)
+        Raises ElevationOutsideWaterError for an elevation above the surface.
+        """
+        return self.data_of(self.elements, units)
 
 
 class LayoutRequest(ComputeRequest):
@@ -249,8 +234,8 @@ class LayoutRequest(ComputeRequest):
 
     def flow_layout(self) -> flow.Layout:
         """Layout in SI."""
-        return self.layout.to_flow(self.unit_system)
+        return self.layout.converted(self.unit_system)[0]
 
     def site_data(self) -> SiteData:
         """What is known of the site beside its flow, in SI."""
-        return self.layout.site_data(self.unit_system)
+        return self.layout.converted(self.unit_system)[1]
