@@ -17,6 +17,7 @@ ROUTES = (
     "/v1/stagnation/search",
     "/v1/contour/integrate",
     "/v1/withdrawal/trace",
+    "/v1/screen/check",
     "/v1/stress/tensor",
     "/v1/criteria",
     "/v1/warnings",

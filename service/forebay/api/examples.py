@@ -47,10 +47,14 @@ CHANNEL: dict[str, Any] = {
 """A small site between banks."""
 
 
+OF_NAMED_ELEMENTS = frozenset({"checkScreen", "checkSubmergence"})
+"""Operations whose example names elements of its own site, so that no other can stand in for it."""
+
+
 def rehearsals(operation_id: str) -> list[dict[str, Any]]:
     """Requests, each answered quickly, that between them take the kernels an operation needs."""
     example = request_example(operation_id)
-    if "layout" not in example:
+    if "layout" not in example or operation_id in OF_NAMED_ELEMENTS:
         return [example]
     return [example | {"layout": layout} for layout in (OPEN_WATER, CHANNEL)]
 

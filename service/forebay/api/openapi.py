@@ -39,6 +39,7 @@ TAGS = {
     "contour": "Circulation and flux",
     "stress": "Strain and stress",
     "withdrawal": "Where intakes' water comes from",
+    "screen": "Fish-protection screens",
     "layout": "Judging a layout before computing",
     "chart": "Pictures",
     "catalogues": "Limits, warnings, criteria, water",

@@ -38,7 +38,10 @@ DEFINITIONS = {
     Quantity.MIN_SWEEPING: "velocity component along the screen face, with the pump off",
     Quantity.MIN_SWEEPING_RATIO: "sweeping velocity over approach velocity at the same place of the face",
     Quantity.MAX_EXPOSURE_TIME: "time along the face to its end or a bypass: integral of ds / sweeping speed",
-    Quantity.MAX_NONUNIFORMITY: "largest excess of approach velocity over its limit, as a share of the limit",
+    Quantity.MAX_NONUNIFORMITY: (
+        "largest excess of approach velocity over the approach limit of the same document, as a share of it; "
+        "over the mean approach velocity where no such limit goes with it"
+    ),
     Quantity.MAX_OPENING: "width of slots, or diameter of holes, of the screen",
     Quantity.MIN_OPEN_FRACTION: "open over total area of the screen: slot / (slot + wire) for wedge wire",
     Quantity.MIN_CLEARANCE: "distance of the screen from the bottom",
@@ -46,6 +49,30 @@ DEFINITIONS = {
     Quantity.MAX_FLOW_SHARE: "flow drawn as a share of the water that passes",
 }
 """What each quantity means; families of limits differ by exactly these definitions."""
+
+
+SI_UNITS = {
+    Quantity.MAX_APPROACH: "m/s",
+    Quantity.MAX_THROUGH_SLOT: "m/s",
+    Quantity.MIN_SWEEPING: "m/s",
+    Quantity.MIN_SWEEPING_RATIO: "1",
+    Quantity.MAX_EXPOSURE_TIME: "s",
+    Quantity.MAX_NONUNIFORMITY: "1",
+    Quantity.MAX_OPENING: "m",
+    Quantity.MIN_OPEN_FRACTION: "1",
+    Quantity.MIN_CLEARANCE: "m",
+    Quantity.MAX_DISCHARGE: "m3/s",
+    Quantity.MAX_FLOW_SHARE: "1",
+}
+"""SI unit of each quantity."""
+
+
+class Cleaned(StrEnum):
+    """Which screens a limit is for, by how debris is taken off."""
+
+    ANY = "any"
+    ACTIVE = "active"
+    PASSIVE = "passive"
 
 
 class Confidence(StrEnum):
@@ -75,6 +102,7 @@ class Criterion:
 
     limit, unit : as the document writes them, the number as decimal text so that nothing is rounded
     note : conditions, and how a limit from memory is known; empty if there is nothing to add
+    cleaned : which screens it is for
     """
 
     id: str
@@ -88,6 +116,7 @@ class Criterion:
     unit: str
     confidence: Confidence
     note: str = ""
+    cleaned: Cleaned = Cleaned.ANY
 
     @property
     def definition(self) -> str:

@@ -1,9 +1,9 @@
 """The records of the screen limits, by issuing body; the vocabulary is in `criteria`."""
 
 from collections.abc import Iterator
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
-from forebay.trade.criteria import Confidence, Criterion, Quantity
+from forebay.trade.criteria import Cleaned, Confidence, Criterion, Quantity
 
 READ = Confidence.DOCUMENT_READ
 MEMORY = Confidence.FROM_MEMORY
@@ -296,17 +296,36 @@ def _elsewhere() -> Iterator[Criterion]:
     )
 
 
-CRITERIA: tuple[Criterion, ...] = (
-    *_epa_new(),
-    *_epa_existing(),
-    *_nmfs_southwest(),
-    *_nmfs_west_coast(),
-    *_california(),
-    *_alaska(),
-    *_canada(),
-    *_elsewhere(),
+CLEANED = {
+    "nmfs-sw-pump-active-approach": Cleaned.ACTIVE,
+    "nmfs-sw-pump-passive-approach": Cleaned.PASSIVE,
+    "nmfs-west-active-approach": Cleaned.ACTIVE,
+    "nmfs-west-passive-approach": Cleaned.PASSIVE,
+    "cdfg-river-approach": Cleaned.ACTIVE,
+    "cdfg-canal-approach": Cleaned.ACTIVE,
+    "cdfg-uncleaned-approach": Cleaned.PASSIVE,
+}
+"""Limits that are for one way of cleaning only; every other is for both."""
+
+
+CRITERIA: tuple[Criterion, ...] = tuple(
+    replace(criterion, cleaned=CLEANED.get(criterion.id, Cleaned.ANY))
+    for criterion in (
+        *_epa_new(),
+        *_epa_existing(),
+        *_nmfs_southwest(),
+        *_nmfs_west_coast(),
+        *_california(),
+        *_alaska(),
+        *_canada(),
+        *_elsewhere(),
+    )
 )
 """Every limit, in a fixed order."""
+
+
+BY_ID = {criterion.id: criterion for criterion in CRITERIA}
+"""Every limit by its id."""
 
 
 def list_criteria(*, from_memory: bool = True) -> tuple[Criterion, ...]:

@@ -17,9 +17,9 @@ from forebay.api.schemas.review import WarningsResult
 from forebay.api.units import UnitSystem
 from forebay.api.validation import require_known_once
 from forebay.flow.errors import FlowError
-from forebay.trade.applicability.review import CATALOGUE
 from forebay.trade.criteria import NOT_LISTED, Criterion
 from forebay.trade.criteria_catalogue import list_criteria
+from forebay.trade.warning_catalogue import WARNINGS
 from forebay.trade.water import LEFT_OUT, SOURCES, water_properties
 
 router = APIRouter(tags=["catalogues"])
@@ -117,6 +117,7 @@ def criterion(record: Criterion) -> dict[str, Any]:
         "unit": record.unit_si,
         "published_limit": f"{record.limit} {record.unit}",
         "confidence": record.confidence,
+        "cleaned": record.cleaned,
         "note": record.note,
         "source": record.source,
     }
@@ -129,7 +130,7 @@ def criterion(record: Criterion) -> dict[str, Any]:
     **documented(WarningsResult),
 )
 async def read_warnings(request: Request) -> Response:
-    return answer(request, WarningsResult, {"warnings": [asdict(kind) for kind in CATALOGUE]})
+    return answer(request, WarningsResult, {"warnings": [asdict(kind) for kind in WARNINGS]})
 
 
 @router.get(

@@ -64,6 +64,7 @@ class CriterionValue(Answer):
     unit: Annotated[str, Field(description="UCUM code of the unit of `limit`", examples=["m/s"])]
     published_limit: Annotated[str, Field(description="As the document writes it", examples=["0.4 ft/s"])]
     confidence: Annotated[str, Field(description="Whether the document was read", examples=["document-read"])]
+    cleaned: Annotated[str, Field(description="Screens it is for: any, active, passive", examples=["any"])]
     note: str
     source: str
 

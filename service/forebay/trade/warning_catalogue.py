@@ -1,0 +1,9 @@
+"""Every kind of warning: of layouts, of spills, of screens, of inlets."""
+
+from forebay.trade.applicability.mixing import SPILL_KINDS
+from forebay.trade.applicability.review import CATALOGUE
+from forebay.trade.applicability.warning import WarningKind
+from forebay.trade.screens.notices import SCREEN_KINDS
+
+WARNINGS: tuple[WarningKind, ...] = (*CATALOGUE, *SPILL_KINDS, *SCREEN_KINDS)
+"""For GET /v1/warnings; codes are permanent."""
