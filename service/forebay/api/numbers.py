@@ -4,23 +4,22 @@ import math
 
 import numpy as np
 import numpy.typing as npt
+from numba import njit
 
 FloatArray = npt.NDArray[np.float64]
+IntArray = npt.NDArray[np.int64]
 
 EXACT_POWER = 22
 """Largest n for which 10^n is a double without error."""
+
+POWERS = 10.0 ** np.arange(EXACT_POWER + 1)
+"""Powers of ten without error."""
 
 DOUBT = 2.0 * float(np.finfo(np.float64).eps)
 """Distance from a tie, over the number, within which the rounding of a product decides [-]."""
 
 EVERY_DIGIT = 17
 """Significant digits that identify any double."""
-
-FEW = 50
-"""Values up to which rounding one by one through text is the faster way."""
-
-BLOCK = 65536
-"""Values rounded at a time, so that the intermediate arrays stay in the cache."""
 
 
 def round_number(value: float, digits: int) -> float | None:
@@ -43,25 +42,45 @@ def round_array(values: FloatArray, digits: int) -> FloatArray:
     prints short; the rare values beyond, and those next to a tie, are rounded through text.
     """
     flat = np.array(values, dtype=np.float64).ravel()
-    if digits < EVERY_DIGIT and flat.size <= FEW:
-        flat[:] = [_round_text(value, digits) for value in flat.tolist()]
-    elif digits < EVERY_DIGIT:
-        for start in range(0, flat.size, BLOCK):
-            _round_block(flat[start : start + BLOCK], digits)
-    flat[np.isinf(flat)] = np.nan
+    if digits >= EVERY_DIGIT:
+        flat[np.isinf(flat)] = np.nan
+        return flat.reshape(values.shape)
+    textual = np.empty(flat.size, dtype=np.int64)
+    count = _round_in_place(flat, digits, POWERS, textual)
+    for index in textual[:count].tolist():
+        flat[index] = _round_text(float(flat[index]), digits)
     return flat.reshape(values.shape)
 
 
-def _round_block(block: FloatArray, digits: int) -> None:
-    with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
-        power = digits - 1 - np.floor(np.log10(np.abs(block)))
-        usual = np.abs(power) <= EXACT_POWER
-        scale = 10.0 ** np.where(usual, np.abs(power), 0.0)
-        scaled = np.where(power >= 0, block * scale, block / scale)
+@njit(cache=True, error_model="numpy")
+def _round_in_place(values: FloatArray, digits: int, powers: FloatArray, textual: IntArray) -> int:
+    """Round what can be rounded by exact powers; the rest stays, its indices go to `textual`.
+
+    values : shape (n,), changed;  powers : 10^0 ... 10^22;  textual : shape (n,), filled from the front
+    Returns how many indices were written.
+    """
+    count = 0
+    for i in range(values.shape[0]):
+        value = values[i]
+        size = abs(value)
+        if size == 0.0 or value != value:  # noqa: PLR0124  (NaN)
+            continue
+        if size == np.inf:
+            values[i] = np.nan
+            continue
+        power = digits - 1 - math.floor(math.log10(size))
+        if abs(power) > powers.shape[0] - 1:
+            textual[count] = i
+            count += 1
+            continue
+        scaled = size * powers[power] if power >= 0 else size / powers[-power]
         whole = np.rint(scaled)
-        rounded = np.where(power >= 0, whole / scale, whole * scale)
-        # the scaling itself rounds, which may make a tie of what is none
-        doubtful = np.abs(np.abs(scaled - whole) - 0.5) <= DOUBT * np.abs(scaled)
-    textual = (~usual | doubtful) & np.isfinite(block) & (block != 0.0)
-    rounded[textual] = [_round_text(value, digits) for value in block[textual].tolist()]
-    np.copyto(block, rounded, where=usual | textual)
+        # the scaling itself rounds, which may make a tie of what is none; the logarithm may be one off
+        tie = abs(abs(scaled - whole) - 0.5) <= DOUBT * scaled
+        if tie or scaled < powers[digits - 1] or scaled > powers[digits]:
+            textual[count] = i
+            count += 1
+            continue
+        rounded = whole / powers[power] if power >= 0 else whole * powers[-power]
+        values[i] = math.copysign(rounded, value)
+    return count

@@ -15,6 +15,7 @@ from forebay.api.encoders.envelope_json import ENVELOPE
 from forebay.api.limits import Limits, Price
 from forebay.api.outcome import Answered, Encoder, Outcome, Reply
 from forebay.api.problems import Problem
+from forebay.api.reading import read_request
 from forebay.api.refusals import from_flow
 from forebay.api.schemas.common import Answer, ComputeRequest
 from forebay.api.units import UnitSystem
@@ -63,7 +64,7 @@ def perform(
     """Answer of a body, the problem that stands in its way, or Deferred if its work exceeds `allowance`."""
     started, system = perf_counter(), UnitSystem.SI
     try:
-        request = operation.request.model_validate_json(body)
+        request = read_request(operation.request, body)
         system = request.unit_system
         price = operation.price(request)
         limits.check(price)

@@ -1,6 +1,7 @@
 """Warnings as a client reads them."""
 
 from collections.abc import Iterable
+from functools import lru_cache
 from typing import Any, Protocol
 
 from forebay.api.numbers import round_number
@@ -60,19 +61,22 @@ class Notice(Protocol):
 
 def written_warnings(notices: Iterable[Notice], system: UnitSystem, digits: int) -> list[dict[str, Any]]:
     """Warnings of an answer; `pointer` leads into the request, `unit` is that of `value` and `limit`."""
-    return [
-        {
-            "code": notice.code,
-            "severity": str(notice.severity),
-            "message": notice.message,
-            "pointer": pointer(_in_request(notice)),
-            "value": _number(notice.value, notice, system, digits),
-            "limit": _number(notice.limit, notice, system, digits),
-            "unit": None if notice.unit is None else system.code(notice.unit),
-            "source": notice.source,
-        }
-        for notice in notices
-    ]
+    return [_written(notice, system, digits) for notice in notices]
+
+
+@lru_cache(maxsize=4096)
+def _written(notice: Notice, system: UnitSystem, digits: int) -> dict[str, Any]:
+    """One warning, written once for all the answers that carry it."""
+    return {
+        "code": notice.code,
+        "severity": str(notice.severity),
+        "message": notice.message,
+        "pointer": pointer(_in_request(notice)),
+        "value": _number(notice.value, notice, system, digits),
+        "limit": _number(notice.limit, notice, system, digits),
+        "unit": None if notice.unit is None else system.code(notice.unit),
+        "source": notice.source,
+    }
 
 
 def _in_request(notice: Notice) -> Path:

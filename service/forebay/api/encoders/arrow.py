@@ -1,5 +1,6 @@
 """Columns as an Apache Arrow stream, for data frames in many languages; needs the extra `arrow`."""
 
+from functools import cache
 from importlib.util import find_spec
 
 import numpy as np
@@ -10,6 +11,7 @@ from forebay.api.media import ARROW
 from forebay.api.outcome import Answered, Encoder, Reply
 
 
+@cache
 def is_installed() -> bool:
     """Whether the library is there; without it the media type is not offered."""
     return find_spec("pyarrow") is not None

@@ -4,7 +4,7 @@ from typing import Annotated, Self
 
 import numpy as np
 import numpy.typing as npt
-from pydantic import Field, model_validator
+from pydantic import Field, PrivateAttr, model_validator
 from pydantic_core import PydanticCustomError
 
 from forebay.api.schemas.common import Strict
@@ -13,6 +13,7 @@ from forebay.api.schemas.ways import describe_ways
 from forebay.api.units import UnitSystem
 
 ComplexArray = npt.NDArray[np.complex128]
+FloatArray = npt.NDArray[np.float64]
 
 WAYS = ("points", "x and y", "line", "grid")
 """Ways of saying where; a request uses exactly one."""
@@ -74,6 +75,18 @@ class At(Strict):
             raise PydanticCustomError("unequal_columns", "`x` and `y` differ in length")
         return self
 
+    _columns: tuple[FloatArray, FloatArray] | None = PrivateAttr(default=None)
+
+    def is_at(self, place: tuple[float, float]) -> bool:
+        """Whether one place alone is asked for, point by point or in columns."""
+        return self.points == [list(place)] or (self.x == [place[0]] and self.y == [place[1]])
+
+    def with_columns(self, x: FloatArray, y: FloatArray) -> Self:
+        """The same with the coordinates of arrays that were read and checked outside, shapes (n,)."""
+        changed = self.model_copy()
+        changed._columns = (x, y)  # noqa: SLF001  (of the same class)
+        return changed
+
     @property
     def count(self) -> int:
         """Number of points asked for."""
@@ -81,6 +94,8 @@ class At(Strict):
             return self.grid.nx * self.grid.ny
         if self.line is not None:
             return self.line.count
+        if self._columns is not None:
+            return len(self._columns[0])
         return len(self.points or self.x or ())
 
     @property
@@ -94,6 +109,9 @@ class At(Strict):
             return self.grid.positions(units)
         if self.line is not None:
             return self.line.positions(units)
+        if self._columns is not None:
+            x, y = (units.read_array(column, "m") for column in self._columns)
+            return x + 1j * y
         if self.points is not None:
             pairs = units.read_array(np.array(self.points, dtype=np.float64), "m")
             return pairs[:, 0] + 1j * pairs[:, 1]

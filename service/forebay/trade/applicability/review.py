@@ -1,11 +1,14 @@
 """The registry: every kind of warning with the rule that raises it, and their evaluation."""
 
-from collections.abc import Callable, Iterator
-from dataclasses import replace
+from collections.abc import Callable, Iterator, Mapping
+from dataclasses import fields, replace
+from functools import lru_cache
 from itertools import islice
+from typing import Any, NamedTuple, cast
 
+from forebay.flow.layout import Layout
 from forebay.trade.applicability import banks, friction, ideal, missing, near_field, outfalls, surface, wakes
-from forebay.trade.applicability.site import Site
+from forebay.trade.applicability.site import Readings, Site, SiteData
 from forebay.trade.applicability.warning import ApplicabilityWarning, Severity, WarningKind
 
 Rule = Callable[[Site], Iterator[ApplicabilityWarning]]
@@ -57,10 +60,57 @@ MOST_OF_A_KIND = 20
 def evaluate(site: Site) -> tuple[ApplicabilityWarning, ...]:
     """Warnings that a site raises, the most serious first, otherwise in the order of the catalogue.
 
-    At most `MOST_OF_A_KIND` of each kind.
+    At most `MOST_OF_A_KIND` of each kind. Rules that look at the layout alone are evaluated once for it.
     """
-    raised = [warning for _, rule in RULES for warning in _first_of(rule(site))]
+    data = tuple((item.name, _hashable(getattr(site.data, item.name))) for item in fields(site.data))
+    of_layout = _of_layout(_Known(site.layout, data))
+    raised = [
+        warning
+        for (_, rule), known in zip(RULES, of_layout, strict=True)
+        for warning in (_first_of(rule(site)) if known is None else known)
+    ]
     return tuple(sorted(raised, key=lambda warning: _ORDER.index(warning.severity)))
+
+
+class AnswerNeededError(Exception):
+    """A rule has asked for the answer at hand, where only the layout is given."""
+
+
+class _NoAnswer:
+    """Stands for the answer at hand, and says so when it is looked at."""
+
+    def __getattr__(self, name: str) -> Any:  # noqa: ANN401
+        raise AnswerNeededError(name)
+
+
+class _Known(NamedTuple):
+    """A site without an answer, as something that can be looked up."""
+
+    layout: Layout
+    data: tuple[tuple[str, Any], ...]
+
+    def site(self) -> Site:
+        """The site, whose readings cannot be read."""
+        data = {name: dict(value) if isinstance(value, frozenset) else value for name, value in self.data}
+        return Site(self.layout, SiteData(**data), cast("Readings", _NoAnswer()))
+
+
+def _hashable(value: Any) -> Any:  # noqa: ANN401
+    return frozenset(value.items()) if isinstance(value, Mapping) else value
+
+
+@lru_cache(maxsize=64)
+def _of_layout(known: _Known) -> tuple[list[ApplicabilityWarning] | None, ...]:
+    """Warnings of each rule in turn; None for a rule that needs the answer at hand."""
+    site = known.site()
+    return tuple(_without_answer(rule, site) for _, rule in RULES)
+
+
+def _without_answer(rule: Rule, site: Site) -> list[ApplicabilityWarning] | None:
+    try:
+        return _first_of(rule(site))
+    except AnswerNeededError:
+        return None
 
 
 def _first_of(warnings: Iterator[ApplicabilityWarning]) -> list[ApplicabilityWarning]:
