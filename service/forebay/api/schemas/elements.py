@@ -7,6 +7,8 @@ from pydantic import Field
 from forebay.api.schemas.common import Name, Strict
 from forebay.api.schemas.discharges import Discharge, read_discharge
 from forebay.api.schemas.quantities import (
+    Elevation,
+    ExcessDensity,
     Moment,
     PortArea,
     Position,
@@ -15,6 +17,7 @@ from forebay.api.schemas.quantities import (
 )
 from forebay.api.units import UnitSystem
 from forebay.flow import layout as flow
+from forebay.trade.applicability.site import PortShape
 
 
 class Core(Strict):
@@ -26,10 +29,33 @@ class Core(Strict):
     radius: Annotated[PositiveMetres, Field(description="Core radius")]
 
 
+ElevationField = Annotated[
+    Elevation | None,
+    Field(description="Height of the opening's centre above the bed, at most the depth; absent: unknown"),
+]
+OpeningRadius = Annotated[
+    PositiveMetres | None,
+    Field(
+        description="Radius of the opening or its screen in plan, inside which there is no water",
+        examples=[0.4],
+    ),
+]
+ExcessDensityField = Annotated[
+    ExcessDensity | None,
+    Field(description="Density of its water less that of the water around; negative: it rises"),
+]
+PortShapeField = Annotated[
+    PortShape | None,
+    Field(description="One round port, or a slot as long as the line; by kind if absent", examples=["slot"]),
+]
+
+
 class _Discharging(Strict):
     name: Name
     at: Annotated[Position, Field(description="Position")]
     discharge: Annotated[Discharge, Field(description="Discharge over the whole depth, positive")]
+    elevation: ElevationField = None
+    opening_radius: OpeningRadius = None
 
 
 PortAreaField = Annotated[
@@ -42,6 +68,7 @@ class Source(_Discharging):
 
     kind: Literal["source"]
     port_area: PortAreaField = None
+    excess_density: ExcessDensityField = None
 
     def to_flow(self, units: UnitSystem) -> flow.Source:
         """Source in SI."""
@@ -70,6 +97,8 @@ class LineSource(_Spread):
 
     kind: Literal["line-source"]
     port_area: PortAreaField = None
+    port_shape: PortShapeField = None
+    excess_density: ExcessDensityField = None
 
     def to_flow(self, units: UnitSystem) -> flow.LineSource:
         """Line source in SI."""
@@ -81,6 +110,7 @@ class LineSink(_Spread):
     """Screen bay: a sink spread evenly along a line."""
 
     kind: Literal["line-sink"]
+    elevation: ElevationField = None
 
     def to_flow(self, units: UnitSystem) -> flow.LineSink:
         """Line sink in SI."""

@@ -1,12 +1,15 @@
 """Request and answer of field/sample."""
 
-from typing import Annotated
+from enum import StrEnum
+from typing import Annotated, Self
 
-from pydantic import Field
+import numpy as np
+from pydantic import Field, model_validator
+from pydantic_core import PydanticCustomError
 
 from forebay.api.schemas.common import Answer
 from forebay.api.schemas.layout import LayoutRequest
-from forebay.api.schemas.places import At
+from forebay.api.schemas.places import At, Column, FloatArray
 from forebay.api.schemas.quantities import (
     AccelerationValue,
     AngleValue,
@@ -14,11 +17,14 @@ from forebay.api.schemas.quantities import (
     CurvatureValue,
     FluxValue,
     LengthValue,
+    Metres,
     PressureGradientValue,
     RateValue,
     RatioValue,
     SpeedValue,
 )
+from forebay.api.units import UnitSystem
+from forebay.workflows.near_field import PlaceStatus
 from forebay.workflows.sample import PointStatus, Quantity
 
 BOTH_SIDES = "at a point on a line element in the water, the mean of both sides"
@@ -32,10 +38,68 @@ BRANCH = (
 """Which of its many values a potential has."""
 
 
+class FieldModel(StrEnum):
+    """What the flow is taken for."""
+
+    DEPTH_MEAN = "depth-mean"
+    POINT_INTAKE_3D = "point-intake-3d"
+
+
+Place = Annotated[
+    list[Metres],
+    Field(min_length=2, max_length=3, fail_fast=True, examples=[[120.0, 6.0], [120.0, 6.0, 1.5]]),
+]
+
+
+class HeightedAt(At):
+    """Places in plan, in three dimensions with their heights above the bed."""
+
+    points: Annotated[
+        Annotated[list[Place], Field(min_length=1, fail_fast=True)] | None,
+        Field(
+            description="Points one by one, all of them [x, y] or all [x, y, z]",
+            examples=[[[10.0, 5.0], [20.0, 5.0]]],
+        ),
+    ] = None
+    z: Annotated[
+        Metres | Column | None,
+        Field(description="Height above the bed, one for all or one a point", examples=[1.5]),
+    ] = None
+
+    @model_validator(mode="after")
+    def _one_height(self) -> Self:
+        """Check that heights are given in one way, and for every place."""
+        sizes = {len(point) for point in self.points or ()}
+        if len(sizes) > 1 or (3 in sizes and self.z is not None):
+            raise PydanticCustomError("one_way", "Heights stand in every point, or in `z`, or nowhere")
+        if isinstance(self.z, list) and len(self.z) != self.count:
+            raise PydanticCustomError("unequal_columns", "`z` differs in length from the points")
+        return self
+
+    def heights(self, units: UnitSystem) -> FloatArray | None:
+        """Heights above the bed in SI, shape (n,); None if there are none."""
+        if self.points is not None and len(self.points[0]) == 3:
+            return units.read_array(np.array([point[2] for point in self.points], dtype=np.float64), "m")
+        if self.z is None:
+            return None
+        column = np.full(self.count, self.z) if isinstance(self.z, float | int) else np.array(self.z)
+        return units.read_array(column.astype(np.float64), "m")
+
+
 class SampleRequest(LayoutRequest):
     """Field of a layout at points."""
 
-    at: Annotated[At, Field(description="Where")]
+    model: Annotated[
+        FieldModel,
+        Field(
+            description=(
+                "`point-intake-3d`: sources and sinks with an `elevation` are points between bed and "
+                "surface, everything else keeps its depth-mean flow; places need heights"
+            ),
+            examples=["depth-mean"],
+        ),
+    ] = FieldModel.DEPTH_MEAN
+    at: Annotated[HeightedAt, Field(description="Where")]
     quantities: Annotated[
         list[Quantity],
         Field(
@@ -45,6 +109,15 @@ class SampleRequest(LayoutRequest):
             examples=[["head_change"]],
         ),
     ] = []
+
+    @model_validator(mode="after")
+    def _heights_with_depth(self) -> Self:
+        """Check that heights come with the model that knows them, and with no other."""
+        if (self.at.heights(self.unit_system) is None) is (self.model is FieldModel.POINT_INTAKE_3D):
+            raise PydanticCustomError(
+                "heights", "Heights (`z`, or three entries a point) go with the model point-intake-3d"
+            )
+        return self
 
     def wanted(self) -> tuple[str, ...]:
         """Names of the further columns, each once."""
@@ -56,7 +129,7 @@ class Flagged(Answer):
 
     index: Annotated[CountValue, Field(description="Index of the point, from 0")]
     status: Annotated[
-        PointStatus,
+        PointStatus | PlaceStatus,
         Field(description="Why there is none; `on-line-element`: the values are means of both sides"),
     ]
 
@@ -68,7 +141,21 @@ class FieldResult(Answer):
     y: list[LengthValue]
     u: Annotated[list[SpeedValue], Field(description=f"Velocity along x; {BOTH_SIDES}")]
     v: Annotated[list[SpeedValue], Field(description=f"Velocity along y; {BOTH_SIDES}")]
-    speed: list[SpeedValue]
+    speed: Annotated[
+        list[SpeedValue], Field(description="Of the velocity, its vertical part included if known")
+    ]
+    z: Annotated[list[LengthValue], Field(description="Height above the bed; point-intake-3d only")] = []
+    w: Annotated[list[SpeedValue], Field(description="Velocity upwards; point-intake-3d only")] = []
+    wall_leak: Annotated[
+        SpeedValue,
+        Field(
+            description=(
+                "Largest velocity through banks and piers that the images of the openings leave, an estimate "
+                "of the error; zero to rounding on straight banks, rectangles and corners of 180/n degrees; "
+                "point-intake-3d only"
+            )
+        ),
+    ] = None
     direction_deg: list[AngleValue] = []
     potential: Annotated[list[FluxValue], Field(description=f"Velocity potential; {BRANCH}")] = []
     stream_function: Annotated[list[FluxValue], Field(description=f"Stream function; {BRANCH}")] = []

@@ -3,6 +3,7 @@
 import math
 from collections.abc import Iterator, Mapping
 from dataclasses import dataclass, field
+from enum import StrEnum
 from functools import cached_property
 
 import numpy as np
@@ -26,15 +27,26 @@ from forebay.flow.layout import (
 from forebay.trade.applicability.geometry import distance_to, ends_of
 
 
+class PortShape(StrEnum):
+    """How an outfall's water comes out."""
+
+    ROUND = "round"
+    SLOT = "slot"
+
+
 @dataclass(frozen=True, slots=True)
 class SiteData:
     """What a layout does not say; None or a missing name stands for unknown.
 
     bed_friction : c_f = (friction velocity / speed)^2 [-]
     port_areas : area of an outfall's port by its name [m2]
-    wind_speed : at 10 m [m/s]
-    density_difference : between layers [kg/m3]
+    wind_speed : at 10 m [m/s];  wind_direction : where it blows to, anticlockwise from +x [deg]
+    density_difference : between layers [kg/m3];  interface_elevation : of their interface above the bed [m]
     depth_range : least and largest depth [m]
+    tidal_period : after which the current reverses [s];  latitude : north positive [deg]
+    elevations : of openings above the bed, by name [m];  opening_radii : in plan, by name [m]
+    excess_densities : of outfalls' water over the water around, by name [kg/m3]
+    port_shapes : of outfalls by name; a point's port is round, a line's a slot, if nothing is known
     """
 
     bed_friction: float | None = None
@@ -42,6 +54,14 @@ class SiteData:
     wind_speed: float | None = None
     density_difference: float | None = None
     depth_range: tuple[float, float] | None = None
+    wind_direction: float | None = None
+    interface_elevation: float | None = None
+    tidal_period: float | None = None
+    latitude: float | None = None
+    elevations: Mapping[str, float] = field(default_factory=dict)
+    opening_radii: Mapping[str, float] = field(default_factory=dict)
+    excess_densities: Mapping[str, float] = field(default_factory=dict)
+    port_shapes: Mapping[str, PortShape] = field(default_factory=dict)
 
 
 @dataclass(frozen=True, slots=True)
@@ -50,12 +70,14 @@ class Readings:
 
     points : where values were asked for [m];  max_speed : largest speed among them [m/s]
     has_dissipation : whether strain, dissipation or G are in it
+    resolves_openings : whether the near field of openings of known elevation is in the numbers
     assumed_temperature : of the water [degC], where the answer depends on it and nobody gave it
     """
 
     points: ComplexArray | None = None
     max_speed: float | None = None
     has_dissipation: bool = False
+    resolves_openings: bool = False
     assumed_temperature: float | None = None
 
 
