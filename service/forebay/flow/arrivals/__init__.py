@@ -1,0 +1,1 @@
+"""Whether, when and to which intake released water comes: shares, travel times and arrival curves."""
