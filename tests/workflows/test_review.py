@@ -26,7 +26,7 @@ def test_layout_alone():
 
 def test_answer_at_hand_adds_to_it():
     added = codes(LAYOUT, Readings(np.array([1 + 1j]), 3.0, has_dissipation=True)) - codes(LAYOUT)
-    assert added == {"near-field-result", "rigid-lid", "turbulence-left-out"}
+    assert added == {"near-field-result", "rigid-lid", "surface-speed-up", "turbulence-left-out"}
 
 
 def test_data_replace_notes():

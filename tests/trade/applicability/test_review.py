@@ -54,6 +54,8 @@ mixing-left-out near-field near-field-overlap near-field-result outfall-jet-reac
 outfall-passive pier-lee port-area-unknown rigid-lid rigid-lid-failed rotational-field
 salient-corner shallow-wake transverse-mixing turbulence-left-out uneven-depth water-temperature-assumed
 wind-drift wind-unknown
+near-field-error surface-speed-up tidal-reversal earth-rotation earth-rotation-strong layer-withdrawal
+buoyant-spreading interface-unknown tidal-period-unknown latitude-unknown
 """
 
 

@@ -3,8 +3,6 @@
 import math
 from collections.abc import Iterator
 
-import numpy as np
-
 from forebay.trade.applicability.geometry import distance_to, ends_of
 from forebay.trade.applicability.site import Site
 from forebay.trade.applicability.warning import ApplicabilityWarning, Severity, WarningKind
@@ -63,12 +61,9 @@ TURBULENCE_LEFT_OUT = WarningKind(
 
 def friction_length(site: Site) -> Iterator[ApplicabilityWarning]:
     """Layouts that are long against the friction length."""
-    friction = site.data.bed_friction
-    things = (*site.layout.elements, *site.layout.piers)
-    if not friction or not things:
+    friction, extent = site.data.bed_friction, site.extent
+    if not friction:
         return
-    places = np.array([end for thing in things for end in ends_of(thing)])
-    extent = float(np.max(np.abs(places[:, None] - places)))
     limit = FRICTION_SHARE * site.layout.depth / friction
     if extent > limit:
         yield FRICTION_LENGTH.raised(

@@ -29,6 +29,9 @@ DENSITY_DIFFERENCE_UNKNOWN = _unknown(
     "density-difference-unknown", "density difference", "withdrawal from layers and spreading of warm water"
 )
 DEPTH_RANGE_UNKNOWN = _unknown("depth-range-unknown", "range of depth", "the effect of an uneven bed")
+INTERFACE_UNKNOWN = _unknown(
+    "interface-unknown", "elevation of the interface between layers", "how near it is to an intake"
+)
 INTAKE_ELEVATION_UNKNOWN = _unknown(
     "intake-elevation-unknown", "elevation of an intake", "whether its near field reaches one depth or two"
 )
@@ -73,6 +76,13 @@ def density_difference_unknown(site: Site) -> Iterator[ApplicabilityWarning]:
         yield DENSITY_DIFFERENCE_UNKNOWN.raised(_message(DENSITY_DIFFERENCE_UNKNOWN))
 
 
+def interface_unknown(site: Site) -> Iterator[ApplicabilityWarning]:
+    """Layers of known densities, with an intake, whose interface is not known."""
+    stratified = bool(site.data.density_difference) and any(site.intakes())
+    if stratified and site.data.interface_elevation is None:
+        yield INTERFACE_UNKNOWN.raised(_message(INTERFACE_UNKNOWN))
+
+
 def depth_range_unknown(site: Site) -> Iterator[ApplicabilityWarning]:
     """No range of depth."""
     if site.data.depth_range is None:
@@ -80,9 +90,9 @@ def depth_range_unknown(site: Site) -> Iterator[ApplicabilityWarning]:
 
 
 def intake_elevation_unknown(site: Site) -> Iterator[ApplicabilityWarning]:
-    """Compact intakes, whose elevation a layout cannot give yet."""
+    """Compact intakes without an elevation."""
     for path, element in site.elements():
-        if isinstance(element, Sink):
+        if isinstance(element, Sink) and element.name not in site.data.elevations:
             yield _of(INTAKE_ELEVATION_UNKNOWN, element.name, path)
 
 

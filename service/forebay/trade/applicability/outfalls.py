@@ -5,7 +5,7 @@ from collections.abc import Iterator
 
 from forebay.flow.layout import LineSource, Source
 from forebay.trade.applicability.geometry import distance_to, ends_of
-from forebay.trade.applicability.site import Site
+from forebay.trade.applicability.site import PortShape, Site
 from forebay.trade.applicability.warning import ApplicabilityWarning, Severity, WarningKind
 
 SPEED_RATIO = 1.0
@@ -40,7 +40,10 @@ OUTFALL_JET_REACH = WarningKind(
     severity=Severity.CAUTION,
     meaning="something of interest lies where the outfall's momentum still rules",
     threshold="distance < 5 l_M",
-    formula="l_M = sqrt(Q U0) / Ua, U0 = Q / port area",
+    formula=(
+        "round port: l_M = sqrt(Q U0) / Ua; slot: l_M = m / Ua^2, m = U0 Q / length; U0 = Q / port area; "
+        "the discharge itself counts over l_Q = sqrt(port area)"
+    ),
     source=JETS,
     unit="m",
 )
@@ -74,7 +77,7 @@ def outfall_jet_reach(site: Site) -> Iterator[ApplicabilityWarning]:
     for path, element, area in _ports(site):
         nearest = _nearest(site, element)
         current = site.current
-        limit = JET_LENGTHS * element.discharge / math.sqrt(area) / current if current > 0.0 else math.inf
+        limit = JET_LENGTHS * momentum_length(site, element, area) if current > 0.0 else math.inf
         if nearest is not None and nearest[0] < limit:
             reach = (
                 f"closer than {limit:.3g} m, where its jet rules" if current > 0.0 else "in still water a jet"
@@ -85,6 +88,15 @@ def outfall_jet_reach(site: Site) -> Iterator[ApplicabilityWarning]:
                 value=nearest[0],
                 limit=limit if current > 0.0 else None,
             )
+
+
+def momentum_length(site: Site, element: Source | LineSource, area: float) -> float:
+    """Distance over which an outfall's momentum rules, l_M [m]; area : of its port [m2]."""
+    speed = element.discharge / area
+    slot = isinstance(element, LineSource) and site.data.port_shapes.get(element.name) is not PortShape.ROUND
+    if slot and isinstance(element, LineSource):
+        return speed * element.discharge / abs(element.end - element.start) / site.current**2
+    return math.sqrt(element.discharge * speed) / site.current
 
 
 def _ports(site: Site) -> Iterator[tuple[tuple[str | int, ...], Source | LineSource, float]]:

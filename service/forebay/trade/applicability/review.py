@@ -7,7 +7,18 @@ from itertools import islice
 from typing import Any, NamedTuple, cast
 
 from forebay.flow.layout import Layout
-from forebay.trade.applicability import banks, friction, ideal, missing, near_field, outfalls, surface, wakes
+from forebay.trade.applicability import (
+    banks,
+    friction,
+    ideal,
+    missing,
+    near_field,
+    outfalls,
+    stratification,
+    surface,
+    unsteadiness,
+    wakes,
+)
 from forebay.trade.applicability.site import Readings, Site, SiteData
 from forebay.trade.applicability.warning import ApplicabilityWarning, Severity, WarningKind
 
@@ -16,11 +27,18 @@ Rule = Callable[[Site], Iterator[ApplicabilityWarning]]
 RULES: tuple[tuple[WarningKind, Rule], ...] = (
     (surface.RIGID_LID_FAILED, surface.rigid_lid_failed),
     (surface.RIGID_LID, surface.rigid_lid),
+    (surface.SPEED_UP, surface.speed_up),
+    (near_field.NEAR_FIELD_ERROR, near_field.near_field_error),
     (near_field.NEAR_FIELD_RESULT, near_field.near_field_result),
     (near_field.NEAR_FIELD_OVERLAP, near_field.near_field_overlap),
     (near_field.NEAR_FIELD, near_field.near_field),
     (wakes.PIER_LEE, wakes.pier_lee),
     (wakes.SHALLOW_WAKE, wakes.shallow_wake),
+    (unsteadiness.TIDAL_REVERSAL, unsteadiness.tidal_reversal),
+    (unsteadiness.EARTH_ROTATION_STRONG, unsteadiness.earth_rotation_strong),
+    (unsteadiness.EARTH_ROTATION, unsteadiness.earth_rotation),
+    (stratification.LAYER_WITHDRAWAL, stratification.layer_withdrawal),
+    (stratification.BUOYANT_SPREADING, stratification.buoyant_spreading),
     (outfalls.OUTFALL_JET_SPEED, outfalls.outfall_jet_speed),
     (outfalls.OUTFALL_JET_REACH, outfalls.outfall_jet_reach),
     (outfalls.OUTFALL_PASSIVE, outfalls.outfall_passive),
@@ -43,7 +61,10 @@ RULES: tuple[tuple[WarningKind, Rule], ...] = (
     (missing.INTAKE_ELEVATION_UNKNOWN, missing.intake_elevation_unknown),
     (missing.DEPTH_RANGE_UNKNOWN, missing.depth_range_unknown),
     (missing.DENSITY_DIFFERENCE_UNKNOWN, missing.density_difference_unknown),
+    (missing.INTERFACE_UNKNOWN, missing.interface_unknown),
     (missing.WIND_UNKNOWN, missing.wind_unknown),
+    (unsteadiness.TIDAL_PERIOD_UNKNOWN, unsteadiness.tidal_period_unknown),
+    (unsteadiness.LATITUDE_UNKNOWN, unsteadiness.latitude_unknown),
 )
 """Each kind with its own rule."""
 

@@ -147,6 +147,12 @@ class Site:
         radii = [thing.radius if isinstance(thing, Pier) else 0.0 for thing in self._things]
         return starts, spans, np.array(radii)
 
+    @cached_property
+    def extent(self) -> float:
+        """Largest distance between ends of elements and centres of piers [m]."""
+        places = np.array([end for thing in self._things for end in ends_of(thing)], dtype=np.complex128)
+        return float(np.max(np.abs(places[:, None] - places), initial=0.0))
+
     @property
     def net_outflow(self) -> float:
         """Water that the elements add, all together [m3/s]."""

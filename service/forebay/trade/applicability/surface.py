@@ -19,6 +19,9 @@ DRIFT = 0.03
 DRIFT_SHARE = 0.3
 """Drift, as a share of the current, above which it matters [-]."""
 
+SPED_UP = 0.05
+"""First-order speed-up by a falling surface, as a share, above which it is said [-]."""
+
 UNEVENNESS = 0.2
 """Range of depth, as a share of the mean depth, above which the velocity has no potential [-]."""
 
@@ -41,6 +44,16 @@ RIGID_LID_FAILED = WarningKind(
     threshold="F > 0.5 (depth changes by 12.5 %)",
     formula="F = V / sqrt(g h); relative change of depth F^2 / 2",
     source=LID,
+    unit="1",
+)
+
+SPEED_UP = WarningKind(
+    code="surface-speed-up",
+    severity=Severity.NOTE,
+    meaning="where the surface drops, continuity raises the speed beyond the computed one",
+    threshold="(1 - F^2)^(-1/2) - 1 > 0.05, that is F > 0.305, up to F = 0.5",
+    formula="first-order speed-up (1 - F^2)^(-1/2): 5 % at F = 0.30, 15 % at F = 0.50",
+    source="shallow-water analogy of the Prandtl-Glauert rule (from memory)",
     unit="1",
 )
 
@@ -91,6 +104,22 @@ def rigid_lid_failed(site: Site) -> Iterator[ApplicabilityWarning]:
             )
 
 
+def speed_up(site: Site) -> Iterator[ApplicabilityWarning]:
+    """Speeds that a falling surface raises by more than a twentieth."""
+    for what, speed in speeds(site):
+        froude = _froude(site, speed)
+        if froude > FAILED_FROUDE:
+            continue
+        share = 1.0 / math.sqrt(1.0 - froude**2) - 1.0
+        if share > SPED_UP:
+            yield SPEED_UP.raised(
+                f"{what.capitalize()}, {speed:.3g} m/s, would be about {100.0 * share:.2g} % higher with a "
+                "surface that follows the pressure.",
+                value=share,
+                limit=SPED_UP,
+            )
+
+
 def _froude(site: Site, speed: float) -> float:
     return speed / math.sqrt(STANDARD_GRAVITY * site.layout.depth)
 
@@ -109,10 +138,19 @@ def wind_drift(site: Site) -> Iterator[ApplicabilityWarning]:
         yield WIND_DRIFT.raised(
             f"A wind of {wind:g} m/s drives the surface at about {DRIFT * wind:.2g} m/s, against a "
             "current of "
-            f"{site.current:.2g} m/s: floating matter and the top metre go their own way.",
+            f"{site.current:.2g} m/s: floating matter and the top metre go their own way{_heading(site)}.",
             value=DRIFT * wind,
             limit=DRIFT_SHARE * site.current,
         )
+
+
+def _heading(site: Site) -> str:
+    direction = site.data.wind_direction
+    if direction is None:
+        return ""
+    return (
+        f", towards {direction:g} deg turned by about 10 to 15 deg (to the right in the northern hemisphere)"
+    )
 
 
 def uneven_depth(site: Site) -> Iterator[ApplicabilityWarning]:
