@@ -6,6 +6,7 @@ from collections.abc import Mapping, MutableMapping
 from pathlib import Path
 from typing import Any
 
+from forebay.api.media import HTML, JSON, PDF
 from forebay.app import create_app
 from forebay.report import engineers_table
 from forebay.settings import Settings
@@ -20,13 +21,48 @@ class FileError(Exception):
     """A file cannot be assessed; the text says why, line by line."""
 
 
-def assess_file(path: Path) -> str:
-    """Engineer's table of the layout or assessment request in a file."""
+SHEET_TYPES = {".pdf": PDF, ".html": HTML}
+"""Media type of a calculation sheet by the end of its file's name."""
+
+
+def assess_file(path: Path, sheet: Path | None = None) -> str:
+    """Engineer's table of the layout or assessment request in a file.
+
+    With `sheet` the calculation sheet is written there too, as PDF or HTML by the end of its name.
+
+    Raises
+    ------
+    FileError : one of the files cannot be used, or the request in it is wrong
+    """
     request = as_request(read_json(path))
-    status, answer = asyncio.run(post(ROUTE, request))
-    if status != 200:
-        raise FileError(problem_text(path, answer))
+    media_type = None if sheet is None else sheet_type(sheet)
+    answer = json.loads(answer_to(path, request, JSON))
+    if sheet is not None and media_type is not None:
+        write_sheet(sheet, answer_to(path, request, media_type))
     return engineers_table(request, answer)
+
+
+def sheet_type(sheet: Path) -> str:
+    """Media type by which a file is written."""
+    if sheet.suffix.lower() not in SHEET_TYPES:
+        raise FileError(f"{sheet}: a sheet is written to a file that ends in {' or '.join(SHEET_TYPES)}")
+    return SHEET_TYPES[sheet.suffix.lower()]
+
+
+def write_sheet(sheet: Path, content: bytes) -> None:
+    """Write a sheet to its file."""
+    try:
+        sheet.write_bytes(content)
+    except OSError as error:
+        raise FileError(f"{sheet}: {error.strerror}") from error
+
+
+def answer_to(path: Path, request: Mapping[str, Any], media_type: str) -> bytes:
+    """The application's answer in a media type to the request in a file."""
+    status, answer = asyncio.run(post(ROUTE, request, media_type))
+    if status != 200:
+        raise FileError(problem_text(path, json.loads(answer)))
+    return answer
 
 
 def read_json(path: Path) -> dict[str, Any]:
@@ -55,7 +91,7 @@ def problem_text(path: Path, problem: Mapping[str, Any]) -> str:
     return "\n".join(lines)
 
 
-async def post(route: str, body: Mapping[str, Any]) -> tuple[int, dict[str, Any]]:
+async def post(route: str, body: Mapping[str, Any], accept: str) -> tuple[int, bytes]:
     """Status and answer of the application to a POST, handed over without a socket."""
     app = create_app(Settings.from_environment().model_copy(update={"deadline": DEADLINE}))
     payload = json.dumps(body).encode()
@@ -72,18 +108,18 @@ async def post(route: str, body: Mapping[str, Any]) -> tuple[int, dict[str, Any]
         sent.append(message)
 
     async with app.router.lifespan_context(app):
-        await app(scope(route, len(payload)), receive, send)
+        await app(scope(route, len(payload), accept), receive, send)
     content = b"".join(message.get("body", b"") for message in sent)
-    return int(sent[0]["status"]), json.loads(content)
+    return int(sent[0]["status"]), content
 
 
-def scope(route: str, length: int) -> dict[str, Any]:
+def scope(route: str, length: int, accept: str) -> dict[str, Any]:
     """What the application learns of a request before its body."""
     headers = [
         (b"host", b"localhost"),
         (b"content-type", b"application/json"),
         (b"content-length", str(length).encode()),
-        (b"accept", b"application/json"),
+        (b"accept", accept.encode()),
     ]
     return {
         "type": "http",

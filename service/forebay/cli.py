@@ -41,6 +41,7 @@ def build_parser() -> argparse.ArgumentParser:
     showing.add_argument("--output", type=Path, default=Path("demo-output"), help="folder for the picture")
     assessing = commands.add_parser("assess", help="assess a layout without a server")
     assessing.add_argument("file", type=Path, help="a layout, or the body of /v1/assessment, as JSON")
+    assessing.add_argument("--sheet", type=Path, help="write the calculation sheet too: a .pdf or .html file")
     commands.add_parser("openapi", help="print the OpenAPI document")
     return parser
 
@@ -65,11 +66,11 @@ def demo(chosen: argparse.Namespace) -> int:
 
 
 def assess(chosen: argparse.Namespace) -> int:
-    """Print the table of one file, or what is wrong with it."""
+    """Print the table of one file and write its sheet if asked to, or say what is wrong."""
     from forebay.assess import FileError, assess_file
 
     try:
-        print(assess_file(chosen.file))
+        print(assess_file(chosen.file, chosen.sheet))
     except FileError as problem:
         print(problem, file=sys.stderr)
         return WRONG_REQUEST

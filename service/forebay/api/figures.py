@@ -39,7 +39,9 @@ def figure(value: float | None, digits: int = 4) -> str:
     """Significant digits with a power of ten only where that is shorter; a dash if there is no value."""
     if value is None or not math.isfinite(value):
         return "–"
-    if value == 0 or 1e-3 <= abs(value) < 1e7:
+    if value == 0:
+        return "0"
+    if 1e-3 <= abs(value) < 1e7:
         text = f"{value:.{digits}g}"
         return (f"{value:.0f}" if "e" in text else text).replace("-", "−")
     mantissa, exponent = f"{value:.{digits - 1}e}".split("e")

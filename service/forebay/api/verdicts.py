@@ -11,7 +11,7 @@ Verdict = dict[str, Any]
 OWN = "forebay"
 """Criterion of the rules by which this service judges its own numbers."""
 
-OWN_SOURCE = "this service's own check of its numbers"
+OWN_SOURCE = "own check of the numbers"
 
 CERTAIN_SHARE = 1e-6
 """Error of a share up to which the service calls it certain [-]: far below what screening can tell."""

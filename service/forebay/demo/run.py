@@ -4,6 +4,7 @@ import json
 from contextlib import suppress
 from pathlib import Path
 from typing import Any
+from urllib.error import HTTPError
 from urllib.request import Request, urlopen
 
 from forebay.api.examples import request_example
@@ -32,12 +33,25 @@ def run_demo(output: Path, *, keep: bool) -> int:
         picture = output / "flow-net.svg"
         body = {"layout": request["layout"]}
         picture.write_bytes(post(f"{service.address}/v1/chart/flow-net", body, accept="image/svg+xml"))
-        print(f"\nPicture: {picture}\nAnswer:  {write_answer(output, answer)}")
+        sheets = write_sheets(output, f"{service.address}/v1/assessment", request)
+        print(f"\nPicture: {picture}\nSheet:   {sheets}\nAnswer:  {write_answer(output, answer)}")
         if keep:
             stay(service)
         else:
             print("Service: stopped; `forebay demo --keep` leaves it up, with its docs at /docs")
     return 0
+
+
+def write_sheets(output: Path, address: str, request: dict[str, Any]) -> str:
+    """Paths of the files that now hold the calculation sheet, as HTML and, where this machine can, as PDF."""
+    page = output / "calculation-sheet.html"
+    page.write_bytes(post(address, request, accept="text/html"))
+    paper = output / "calculation-sheet.pdf"
+    try:
+        paper.write_bytes(post(address, request, accept="application/pdf"))
+    except HTTPError as error:
+        return f"{page} (no PDF: {json.load(error)['detail']})"
+    return f"{paper}, {page}"
 
 
 def stay(service: Service) -> None:

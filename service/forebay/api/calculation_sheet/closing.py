@@ -5,7 +5,7 @@ from typing import Any
 
 from forebay.api.calculation_sheet.markup import Html, element, items, section
 from forebay.api.calculation_sheet.tables import number, table, word
-from forebay.api.figures import figure, quantity, unit_name
+from forebay.api.figures import quantity
 from forebay.api.schemas.assessment import AssessmentRequest
 
 Json = Mapping[str, Any]
@@ -30,10 +30,7 @@ def verdicts_section(verdicts: Sequence[Json]) -> Html:
         (
             verdict["subject"],
             f"{verdict['rule']} ({verdict['criterion']})",
-            figure(verdict["value"]),
-            figure(verdict["limit"]),
-            figure(verdict["margin"]),
-            unit_name(verdict["unit"]),
+            *(quantity(verdict[member], verdict["unit"]) for member in ("value", "limit", "margin")),
             OUTCOMES[verdict["pass"]],
             verdict["source"],
         )
@@ -45,7 +42,6 @@ def verdicts_section(verdicts: Sequence[Json]) -> Html:
         number("Value"),
         number("Limit"),
         number("Margin"),
-        word("Unit"),
         word("Outcome"),
         word("Source"),
     )
