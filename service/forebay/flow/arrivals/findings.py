@@ -84,7 +84,7 @@ def reported(release: Release, found: Findings, rules: ArrivalRules) -> ReleaseA
         name=release.name,
         arrivals=at_intakes,
         transits=_arrivals(found, lasting, release, rules, TRANSECT),
-        lost_share=max(0.0, 1.0 - captured) if known else nan,
+        lost_share=_lost(captured) if known else nan,
         outcomes=_outcomes(found, at_intakes, rules),
         curve=_curve({a.at: lasting[INTAKE, a.at] for a in at_intakes}, rules),
         share_error=found.share_error,
@@ -93,6 +93,11 @@ def reported(release: Release, found: Findings, rules: ArrivalRules) -> ReleaseA
         wet_share=found.wet_share,
         status=found.status,
     )
+
+
+def _lost(captured: float) -> float:
+    """What is not captured, 0 where that is rounding."""
+    return 1.0 - captured if 1.0 - captured > _DUST else 0.0
 
 
 def _arrivals(
