@@ -35,6 +35,11 @@ HTTP_PROBLEMS = {
         "The body is not JSON",
         "The body is truncated, nested too deep, or not UTF-8 JSON. Send valid JSON.",
     ),
+    "token-missing": ProblemKind(
+        401,
+        "A token is asked for",
+        "Send `Authorization: Bearer` with one of the service's tokens; ask those who run it for one.",
+    ),
     "not-found": ProblemKind(
         404, "No such resource", "The address names nothing here; /openapi.json lists every route."
     ),
@@ -59,6 +64,16 @@ HTTP_PROBLEMS = {
         "The request does not fit its schema",
         "A field is missing, unknown, of the wrong type or out of its bounds; `errors` points at each.",
     ),
+    "memory-exceeded": ProblemKind(
+        422,
+        "The computation needs too much memory",
+        "The worker met the limit `worker_memory` of GET /v1/limits and was replaced. Ask for less at a time.",
+    ),
+    "too-many-requests": ProblemKind(
+        429,
+        "Too many computations at a time",
+        "As many as one token may have are running. Wait for one to end, or retry after Retry-After.",
+    ),
     "internal-error": ProblemKind(
         500,
         "Internal error",
@@ -68,15 +83,39 @@ HTTP_PROBLEMS = {
         503, "The service is busy", "Every worker and the queue are full. Retry after Retry-After."
     ),
     "not-ready": ProblemKind(
-        503, "The service is starting", "Kernels are still being prepared. Retry after Retry-After."
+        503,
+        "The service is not ready",
+        "Kernels are being prepared, no worker process answers, or the service is stopping. Retry after Retry-After.",
+    ),
+    "worker-lost": ProblemKind(
+        503,
+        "The worker process was lost",
+        "The process of the computation ended from outside, twice. Retry after Retry-After.",
     ),
     "deadline-exceeded": ProblemKind(
         504,
         "The computation took too long",
-        "The work was stopped at the deadline of GET /v1/limits, counted from the request. Ask for less.",
+        "The work was stopped at the deadline of GET /v1/limits, or at that of `Prefer: wait`, counted from the "
+        "request. Ask for less, or POST /v1/estimate first.",
     ),
 }
 """Problems of the HTTP layer itself, by code."""
+
+PROXY_PROBLEMS = {
+    "malformed-request": ProblemKind(
+        400, "The request is not HTTP", "The request line or a header cannot be read. Send HTTP/1.1."
+    ),
+    "address-too-long": ProblemKind(
+        414, "The address is too long", "Send what you ask for in the body of a POST, not in the address."
+    ),
+    "headers-too-large": ProblemKind(
+        431, "The headers are too large", "Send fewer and shorter headers; cookies mean nothing here."
+    ),
+    "unreachable": ProblemKind(
+        502, "The service cannot be reached", "No replica answers the proxy. Retry after Retry-After."
+    ),
+}
+"""Problems that only a reverse proxy in front of the service answers with, by code."""
 
 FLOW_STATUS = 422
 """Status of every FlowError: the request can be read but describes something that cannot be computed."""
@@ -98,7 +137,7 @@ def catalogue() -> dict[str, ProblemKind]:
         code: ProblemKind(FLOW_STATUS, kind.title, " ".join((kind.__doc__ or "").split()))
         for code, kind in flow_errors().items()
     }
-    return HTTP_PROBLEMS | flow
+    return HTTP_PROBLEMS | PROXY_PROBLEMS | flow
 
 
 NOTHING: Mapping[str, Any] = MappingProxyType({})
