@@ -16,6 +16,7 @@ import numpy as np
 from forebay.charts.branches import Branches, single_out
 from forebay.charts.cuts import WHOLE, rounds_lower_right
 from forebay.charts.lattice import Lattice, cell_corners, exact_steps
+from forebay.charts.rings import bank_lines, closed, led_up, opening_lines
 from forebay.flow.arrays import BoolArray, ComplexArray, FloatArray, IntArray
 from forebay.flow.model import FlowModel
 
@@ -30,6 +31,10 @@ SETTLED = 1e-9
 
 BISECTIONS = 40
 """Halvings of a segment that ends on land: its end lies on the wall to 1e-12 of a cell."""
+
+
+LED = 2.5
+"""Distance, in spacings of the grid, over which a line that ends before a ring is led up to it [-]."""
 
 
 class Component(Enum):
@@ -108,7 +113,15 @@ def draw_levels(
         pairs = pairs[roomy[pairs].all(axis=1)]
     chains = join(crossings.at.size, pairs)
     lines = trim(model, [crossings.at[chain] for chain in chains])
+    lines = led_up(lines, met_by(component, model), LED * lattice.spacing)
     return LevelLines(tuple(lines), step, branches.breaks)
+
+
+def met_by(component: Component, model: FlowModel) -> list[ComplexArray]:
+    """Rings that lines of a component meet squarely: streamlines open edges, equipotentials banks."""
+    if component is Component.STREAM_FUNCTION:
+        return opening_lines(model.layout)
+    return [*bank_lines(model.layout), *map(closed, (outline.points for outline in model.layout.outlines))]
 
 
 def value_at(

@@ -23,6 +23,7 @@ from forebay.charts.margins import (
 from forebay.charts.net import FlowNet, compute_net, net_notes
 from forebay.charts.options import FlowNetOptions, Layer, Picture, Scene
 from forebay.charts.palette import DIVIDING, EQUIPOTENTIAL, INK, PAPER
+from forebay.charts.ring_marks import draw_open_edges, draw_outlines
 from forebay.charts.sheet import Box, Style, blank_sheet
 from forebay.charts.symbols import Glyph
 
@@ -79,7 +80,7 @@ def draw_scene(scene: Scene, options: FlowNetOptions) -> Picture:
     -------
     Picture, the same bytes for the same input on one machine. Groups of the SVG carry the ids
     `speed, streamlines, equipotentials, dividing-streamlines, land, walls, element-<n>, pier-<n>,
-    stagnation-point-<n>, label-<n>, title, caution, scale-bar, speed-band-<n>`.
+    outline-<n>, open-edge-<n>, stagnation-point-<n>, label-<n>, title, caution, scale-bar, speed-band-<n>`.
 
     Notes
     -----
@@ -118,6 +119,8 @@ def draw_map(frame: MapFrame, scene: Scene, net: FlowNet, *, layers: frozenset[L
         draw_lines(frame, lines, name="dividing-streamlines-casing", linewidth=4.6, color=PAPER, zorder=8.0)
         draw_lines(frame, lines, name="dividing-streamlines", linewidth=2.4, color=DIVIDING, zorder=8.1)
         drawn.glyphs.add(Glyph.DIVIDING)
+    draw_open_edges(frame, scene, drawn)
+    draw_outlines(frame, scene.model.layout.outlines, drawn)
     draw_piers(frame, scene.model.piers, drawn)
     draw_elements(frame, scene.model.layout.elements, drawn)
     if Layer.STAGNATION_POINTS in layers:

@@ -9,7 +9,7 @@ from forebay.charts.mapframe import MapFrame
 from forebay.charts.palette import FAINT_INK, FASTER, INK, LAND, LAND_HATCH, ramp_colours
 from forebay.charts.sheet import Box, Sheet
 from forebay.charts.steps import figures, round_down
-from forebay.charts.symbols import Glyph, Stamp, stamp_disc, stamp_line, stamp_point
+from forebay.charts.symbols import Glyph, Stamp, stamp_disc, stamp_line, stamp_point, stamp_solid
 from forebay.charts.units import DisplayUnits
 from forebay.flow.arrays import FloatArray
 
@@ -28,12 +28,19 @@ COLUMN = 162.0
 TEXT = 11.0
 """Size of the band's text [px at scale 1]."""
 
-LINES = {Glyph.STREAMLINE, Glyph.EQUIPOTENTIAL, Glyph.DIVIDING, Glyph.LINE_INTAKE, Glyph.LINE_OUTFALL}
+LINES = {
+    Glyph.STREAMLINE,
+    Glyph.EQUIPOTENTIAL,
+    Glyph.DIVIDING,
+    Glyph.LINE_INTAKE,
+    Glyph.LINE_OUTFALL,
+    Glyph.OPEN_EDGE,
+}
 
 
 @dataclass(frozen=True, slots=True)
 class Bearings:
-    """Ambient velocity u + iv [m/s] and the direction of north from +x [rad], if it is known."""
+    """Ambient velocity u + iv [m/s], nan where there can be none, and north from +x [rad], if known."""
 
     ambient: complex
     north: float | None
@@ -52,6 +59,9 @@ def draw_symbols(sheet: Sheet, space: Box, glyphs: Sequence[Glyph]) -> None:
             stamp_line(stamp, glyph, (x, x + 28 * unit), (y, y), name=name)
         elif glyph is Glyph.LAND:
             land_sample(sheet, Box(x + 2 * unit, y - 7 * unit, x + 26 * unit, y + 7 * unit), name=name)
+        elif glyph is Glyph.OUTLINE:
+            corners = np.array([(x + 4, y + 6), (x + 26, y + 6), (x + 20, y - 6), (x + 10, y - 6)])
+            stamp_solid(stamp, np.array([x, y]) + unit * (corners - np.array([x, y])), name=name)
         elif glyph is Glyph.PIER:
             stamp_disc(stamp, complex(middle, y), 7 * unit, name=name)
         else:
@@ -127,6 +137,8 @@ def draw_current(sheet: Sheet, left: float, top: float, ambient: complex, units:
     """The ambient current as an arrow in the plan's directions, with its speed."""
     unit = sheet.scale
     speed = abs(ambient)
+    if np.isnan(speed):
+        return
     if speed == 0.0:
         sheet.write(
             "no ambient current", (left, top + 22 * unit), size=TEXT, name="current-text", va="center"

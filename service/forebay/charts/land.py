@@ -61,7 +61,8 @@ def surveyed_land(shore: Surveyed, window: Window) -> list[ComplexArray]:
     middle = complex(outer.mean())
     far = reach_of(window, middle) + 2 * float(np.max(np.abs(outer - middle)))
     square = middle + far * np.array([-1 - 1j, 1 - 1j, 1 + 1j, -1 + 1j])
-    return [square, outer, *(np.array(island.points) for island in shore.islands)]
+    # each ring runs against the one that holds it, so that water is a hole and an island is none
+    return [square, outer[::-1], *(np.array(island.points)[::-1] for island in shore.islands)]
 
 
 def half_plane(point: complex, along: complex, reach: float) -> ComplexArray:

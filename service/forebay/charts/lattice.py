@@ -11,6 +11,7 @@ from typing import NamedTuple
 import numpy as np
 from scipy import ndimage
 
+from forebay.charts.rings import ring_lines
 from forebay.flow.arrays import BoolArray, ComplexArray, FloatArray, IntArray
 from forebay.flow.model import FlowModel
 from forebay.flow.shores import Wall
@@ -28,6 +29,12 @@ ROUNDING = 1e-9
 
 PAIRS_AT_A_TIME = 2_000_000
 """Chords times poles in one call of the model, each of which takes 16 bytes there."""
+
+SAMPLES = 8
+"""Places looked at along a ring, for each spacing of the grid [-]."""
+
+CLOSE = 0.0625
+"""Distance from a ring at which a cell counts as passed, in spacings: half that of the places [-]."""
 
 EIGHT_NEIGHBOURS = np.ones((3, 3), dtype=np.int64)
 
@@ -48,7 +55,7 @@ class Lattice:
     nodes : complex, shape (ny, nx), positions [m]
     steps : complex, shape (edges,), integral of W dz along each edge = circulation + i flux [m2/s]
     wet : shape (ny, nx), node in the water
-    usable : shape (ny-1, nx-1), cell in the water or on a wall, without singularity
+    usable : shape (ny-1, nx-1), cell in the water or on a straight wall, without singularity
     """
 
     nodes: ComplexArray
@@ -150,6 +157,7 @@ def lay_lattice(model: FlowModel, window: Window, columns: int) -> Lattice:
         closes &= np.abs(residue.real) <= rounding
     usable = near_water(wet, nodes, model.walls) & closes
     clear_singular_cells(model, nodes, usable)
+    clear_ringed_cells(ring_lines(model.layout), nodes, usable)
     return Lattice(nodes, np.concatenate([across.ravel(), upward.ravel()]), wet, usable)
 
 
@@ -204,6 +212,19 @@ def clear_singular_cells(model: FlowModel, nodes: ComplexArray, usable: BoolArra
     spacing = nodes[0, 1].real - nodes[0, 0].real
     for corner in (0.3 + 0.3j, 0.3 - 0.3j, -0.3 + 0.3j, -0.3 - 0.3j):
         mark_cells(usable, (places - nodes[0, 0]) / spacing + corner, marked=False)
+
+
+def clear_ringed_cells(rings: list[ComplexArray], nodes: ComplexArray, usable: BoolArray) -> None:
+    """Mark the cells that a ring or outline passes unusable, in place: the flow ends at its line."""
+    spacing = nodes[0, 1].real - nodes[0, 0].real
+    for ring in rings:
+        local = (ring - nodes[0, 0]) / spacing
+        counts = 1 + np.ceil(SAMPLES * np.abs(np.diff(local))).astype(np.int64)
+        index = np.repeat(np.arange(counts.size), counts)
+        share = (np.arange(index.size) - np.repeat(np.cumsum(counts) - counts, counts)) / counts[index]
+        places = local[index] + share * np.diff(local)[index]
+        for corner in (0j, CLOSE, -CLOSE, 1j * CLOSE, -1j * CLOSE):
+            mark_cells(usable, places + corner, marked=False)
 
 
 def cell_corners(lattice: Lattice, values: FloatArray) -> FloatArray:

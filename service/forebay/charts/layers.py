@@ -11,6 +11,7 @@ from forebay.charts.mapframe import MapFrame
 from forebay.charts.net import FlowNet, arrowheads
 from forebay.charts.options import Scene
 from forebay.charts.palette import FASTER, INK, LAND, LAND_HATCH, WALL, ramp_colours
+from forebay.charts.rings import bank_lines
 from forebay.charts.symbols import Glyph
 from forebay.flow.arrays import ComplexArray
 
@@ -88,15 +89,9 @@ def draw_land(frame: MapFrame, scene: Scene, drawn: Drawn) -> None:
         frame.axes.add_patch(PathPatch(path, facecolor=LAND, edgecolor="none", zorder=6.0))
         frame.axes.add_patch(PathPatch(path, zorder=6.1, **hatching))
     parts = [part for wall in scene.model.walls if (part := visible_part(wall, scene.window)) is not None]
-    if parts:
-        draw_lines(
-            frame,
-            tuple(np.array(part) for part in parts),
-            name="walls",
-            linewidth=2.6,
-            color=WALL,
-            zorder=7.0,
-        )
+    lines = [*map(np.array, parts), *bank_lines(scene.model.layout)]
+    if lines:
+        draw_lines(frame, tuple(lines), name="walls", linewidth=2.6, color=WALL, zorder=7.0)
         drawn.glyphs.add(Glyph.LAND)
 
 

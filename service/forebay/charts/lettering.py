@@ -9,24 +9,26 @@ from forebay.charts.labels import Ground, Placed, Wish, nearest_on, place_labels
 from forebay.charts.mapframe import MapFrame
 from forebay.charts.options import Scene
 from forebay.charts.palette import INK, PAPER, WALL
+from forebay.charts.ring_marks import island_wishes
 from forebay.charts.sheet import Box, Sheet, Style
 from forebay.flow.arrays import ComplexArray
 
 
 def draw_labels(frame: MapFrame, scene: Scene, drawn: Drawn) -> int:
-    """Labels of elements, piers and banks; how many found no place."""
+    """Labels of elements, structures, open edges, islands and banks; how many found no place."""
     border = 4 * frame.sheet.scale
     lines = [
         frame.on_sheet(complex(at))
         for line in scene.dividing_streamlines
         for at in spaced(line, 12 * frame.sheet.scale * frame.pixel)
     ]
+    walls = [*island_wishes(frame, scene, drawn), *wall_wishes(frame, scene.model.walls)]
     ground = Ground(frame.box.grown(-border), drawn.taken, lines, frame.sheet.scale)
     placed, left_over = place_labels(drawn.wishes, ground)
     for index, label in enumerate(placed):
         write_label(frame, label, name=f"label-{index + 1}")
     taken = [*drawn.taken, *(label.box for label in placed)]
-    for index, wishes in enumerate(wall_wishes(frame, scene.model.walls)):
+    for index, wishes in enumerate(walls):
         name_wall(frame, wishes, taken, name=f"wall-label-{index + 1}")
     return len(left_over)
 

@@ -1,5 +1,6 @@
 """What stands round the map: title, key, notes, caution."""
 
+from math import nan
 from typing import Final
 
 from forebay.charts.elements import Drawn
@@ -19,6 +20,7 @@ from forebay.charts.palette import DIVIDING, FAINT_INK
 from forebay.charts.sheet import Box, Sheet, shortened
 from forebay.charts.steps import figures
 from forebay.charts.symbols import Glyph
+from forebay.flow.layout import Surveyed
 
 CAUTION: Final = (
     "Screening level: depth-mean, steady, frictionless flow. "
@@ -53,6 +55,7 @@ def subtitle(scene: Scene, options: FlowNetOptions) -> str:
     words = "".join(f" {letter.lower()}" if letter.isupper() else letter for letter in kind).strip()
     depth = f"{figures(units.lengthwise(layout.depth, 1))} {units.length}"
     counts = ", ".join((_count(len(layout.elements), "element"), _count(len(layout.structures), "structure")))
+    words = "surveyed water" if isinstance(layout.shore, Surveyed) else words
     return f"{words.capitalize()}, mean depth {depth}; {counts}; plan view, depth-mean potential flow"
 
 
@@ -72,7 +75,9 @@ def draw_key(
         shown.remove(Glyph.CLOCKWISE_VORTEX)
     draw_symbols(sheet, Box(left, top, right, top + KEY_HEIGHT * unit), shown)
     middle = max(left + (COLUMNS * COLUMN + 4) * unit, (left + right) / 2 - 110 * unit)
-    draw_bearings(frame, middle, top, Bearings(scene.model.layout.ambient.velocity, options.north))
+    layout = scene.model.layout
+    ambient = complex(nan, nan) if isinstance(layout.shore, Surveyed) else layout.ambient.velocity
+    draw_bearings(frame, middle, top, Bearings(ambient, options.north))
     if Layer.SPEED in options.layers:
         space = Box(max(right - 330 * unit, middle + 215 * unit), top, right, top + KEY_HEIGHT * unit)
         draw_speed_scale(sheet, space, net.levels, options.units)

@@ -9,9 +9,10 @@ from forebay.charts.contours import Component, LevelLines, draw_levels
 from forebay.charts.land import visible_part
 from forebay.charts.lattice import EIGHT_NEIGHBOURS, Lattice, lay_lattice
 from forebay.charts.options import FlowNetOptions, Layer, Scene
+from forebay.charts.rings import bank_lines, middle_of, ring_lines
 from forebay.charts.steps import Tube, choose_tube, figures, speed_levels
 from forebay.charts.units import DisplayUnits
-from forebay.flow.arrays import ComplexArray, FloatArray
+from forebay.flow.arrays import BoolArray, ComplexArray, FloatArray
 from forebay.flow.layout import outflow
 from forebay.flow.model import FlowModel
 from forebay.flow.stagnation.result import WATER
@@ -83,9 +84,23 @@ def compute_net(scene: Scene, options: FlowNetOptions, pixels: float) -> FlowNet
 def speeds_on(model: FlowModel, lattice: Lattice, units: DisplayUnits) -> FloatArray:
     """Speed at the nodes in the water and next to it, in the picture's units; elsewhere nan."""
     near = ndimage.binary_dilation(lattice.wet, structure=EIGHT_NEIGHBOURS)
+    ringed = bool(ring_lines(model.layout))
+    known = lattice.wet if ringed else near
     speeds = np.full(lattice.nodes.shape, np.nan)
-    speeds[near] = np.abs(model.velocity(lattice.nodes[near])) / units.metre
-    return speeds
+    speeds[known] = np.abs(model.velocity(lattice.nodes[known])) / units.metre
+    return led_ashore(speeds, near & ~known) if ringed else speeds
+
+
+def led_ashore(speeds: FloatArray, beside: BoolArray) -> FloatArray:
+    """Speeds with those of nodes beside the water replaced by the mean of their neighbours in it.
+
+    Behind a ring the flow has no continuation that could be drawn, as it has behind a straight bank.
+    """
+    known = np.isfinite(speeds)
+    around = np.ones((3, 3))
+    total = ndimage.convolve(np.where(known, speeds, 0.0), around, mode="constant")
+    count = ndimage.convolve(known.astype(np.float64), around, mode="constant")
+    return np.where(beside & (count > 0.0), total / np.maximum(count, 1.0), speeds)
 
 
 def in_water(lattice: Lattice, speeds: FloatArray) -> FloatArray:
@@ -112,6 +127,9 @@ def tube_of(model: FlowModel, lattice: Lattice, units: DisplayUnits) -> Tube | N
 
 def reference(scene: Scene) -> complex | None:
     """A place that shall lie on a streamline of the net: a visible bank, else a saddle in the water."""
+    for line in bank_lines(scene.model.layout):
+        if scene.window.contains(middle_of(line)):
+            return middle_of(line)
     for wall in scene.model.walls:
         part = visible_part(wall, scene.window)
         if part is not None:

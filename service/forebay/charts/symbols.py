@@ -8,6 +8,7 @@ import numpy as np
 
 from forebay.charts.palette import DIVIDING, EQUIPOTENTIAL, INK, LAND, LAND_HATCH, PAPER, WALL
 from forebay.charts.sheet import Sheet
+from forebay.flow.arrays import FloatArray
 
 if TYPE_CHECKING:
     from matplotlib.axes import Axes
@@ -35,6 +36,8 @@ class Glyph(StrEnum):
     CLOCKWISE_VORTEX = "vortex, clockwise"
     DOUBLET = "doublet, source dark"
     PIER = "pier"
+    OUTLINE = "outline"
+    OPEN_EDGE = "open edge"
     LAND = "land"
 
 
@@ -98,9 +101,7 @@ def stamp_halves(stamp: Stamp, x: float, y: float, *, turned: float, name: str) 
     stamp.mark(x, y, marker=halves, radius=SYMBOL_RADIUS, gid=name, **colours)
 
 
-def stamp_line(
-    stamp: Stamp, glyph: Glyph, x: tuple[float, float], y: tuple[float, float], *, name: str
-) -> None:
+def stamp_line(stamp: Stamp, glyph: Glyph, x: tuple[float, ...], y: tuple[float, ...], *, name: str) -> None:
     """Draw a line symbol: an element's, or a sample for the key."""
     match glyph:
         case Glyph.LINE_INTAKE:
@@ -109,6 +110,9 @@ def stamp_line(
         case Glyph.LINE_OUTFALL:
             stamp.line(x, y, width=7, gid=name)
             stamp.line(x, y, width=4, color=PAPER, gid=f"{name}-sign")
+        case Glyph.OPEN_EDGE:
+            stamp.line(x, y, width=4.2, color=PAPER, gid=f"{name}-casing")
+            stamp.line(x, y, width=2.6, dashes=(1.2, 0.9), gid=name)
         case Glyph.STREAMLINE:
             stamp.line(x, y, width=1.1, gid=name)
         case Glyph.EQUIPOTENTIAL:
@@ -124,13 +128,25 @@ def stamp_disc(stamp: Stamp, place: complex, radius: float, *, name: str) -> Non
     """A pier at its true size in the units of the axes."""
     from matplotlib.patches import Circle
 
-    centre = (place.real, place.imag)
-    for style in (
+    for style in solid_styles(stamp, name):
+        stamp.axes.add_patch(Circle((place.real, place.imag), radius, zorder=stamp.zorder, **style))
+
+
+def stamp_solid(stamp: Stamp, corners: FloatArray, *, name: str) -> None:
+    """An outline in the units of the axes; corners : shape (n, 2)."""
+    from matplotlib.patches import Polygon
+
+    for style in solid_styles(stamp, name):
+        stamp.axes.add_patch(Polygon(corners, closed=True, zorder=stamp.zorder, **style))
+
+
+def solid_styles(stamp: Stamp, name: str) -> tuple[dict[str, Any], ...]:
+    """Ground, hatching and wall of a structure, one over the other."""
+    return (
         {"facecolor": LAND, "edgecolor": "none"},
         {"facecolor": "none", "edgecolor": LAND_HATCH, "hatch": "/////", "linewidth": 0.0},
         {"facecolor": "none", "edgecolor": WALL, "linewidth": stamp.sheet.points(1.8), "gid": name},
-    ):
-        stamp.axes.add_patch(Circle(centre, radius, zorder=stamp.zorder, **style))
+    )
 
 
 def turning_arrow(*, anticlockwise: bool) -> "Path":

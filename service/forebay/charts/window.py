@@ -2,8 +2,9 @@
 
 import numpy as np
 
+from forebay.charts.rings import ring_lines
 from forebay.flow.arrays import ComplexArray
-from forebay.flow.layout import outflow
+from forebay.flow.layout import Surveyed, outflow
 from forebay.flow.model import FlowModel
 from forebay.flow.stagnation.result import Window
 
@@ -15,6 +16,9 @@ CAPTURE_REACHES = 2.5
 
 MARGIN = 0.2
 """Room round everything, as a share of the larger side."""
+
+RING_MARGIN = 0.06
+"""The same round surveyed water, of which everything is seen."""
 
 LAND_STRIP = 0.06
 """Land shown beyond the water, as a share of the width of the window."""
@@ -44,7 +48,8 @@ def choose_window(model: FlowModel, aspect: float | None = None) -> Window:
     places = site_places(model)
     size = max(extent(places), site_reach(model))
     places = np.concatenate([places, wall_places(model, places, NEAR_WALL * size)])
-    margin = MARGIN * max(extent(places), 0.5 * size)
+    share = RING_MARGIN if isinstance(model.layout.shore, Surveyed) else MARGIN
+    margin = share * max(extent(places), 0.5 * size)
     low = complex(places.real.min() - margin, places.imag.min() - margin)
     high = complex(places.real.max() + margin, places.imag.max() + margin)
     window = without_hinterland(model, shaped(low, high, None))
@@ -88,6 +93,8 @@ def site_places(model: FlowModel) -> ComplexArray:
         places.extend([*around(line.start, reach), *around(line.end, reach)])
     for pier in model.piers:
         places.extend(around(pier.at, 2.5 * pier.radius))
+    for ring in ring_lines(model.layout):
+        places.extend(ring.tolist())
     for vortex in model.cores:
         places.extend(around(vortex.at, 1.5 * vortex.core.radius))
     if not places:

@@ -13,6 +13,7 @@ from forebay.api.schemas.ways import describe_pair
 from forebay.api.units import UnitSystem
 from forebay.charts.options import ALL_LAYERS, FlowNetOptions, Layer, MediaType
 from forebay.charts.units import SI, US
+from forebay.flow.placement import scale_of
 
 
 class ChartRequest(LayoutRequest):
@@ -42,7 +43,7 @@ class ChartRequest(LayoutRequest):
     ] = None
     north_deg: Annotated[
         Degrees | None,
-        Field(description="Direction of true north in the plan; axis directions are shown if absent"),
+        Field(description="Direction of true north in the plan; if absent, that of `grid` or none"),
     ] = None
 
     @model_validator(mode="after")
@@ -62,5 +63,13 @@ class ChartRequest(LayoutRequest):
             size=size,
             units=US if units is UnitSystem.US else SI,
             layers=ALL_LAYERS if self.layers is None else frozenset(self.layers),
-            north=None if self.north_deg is None else math.radians(self.north_deg),
+            north=self._north(),
         )
+
+    def _north(self) -> float | None:
+        """Direction of true north [rad]: as given, else that of the layout's map grid at its middle."""
+        if self.north_deg is not None:
+            return math.radians(self.north_deg)
+        units = self.unit_system
+        grid = self.layout.map_grid(units)
+        return None if grid is None else grid.north(scale_of(self.flow_layout())[0])

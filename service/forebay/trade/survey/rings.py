@@ -185,3 +185,10 @@ def _crossing(ring: Ring) -> RingError:
         f"the ring crosses or touches itself at x = {at.real:.9g} m, y = {at.imag:.9g} m",
         ring.vertex_path(at),
     )
+
+
+def inscribed_circle(points: ComplexArray) -> tuple[complex, float]:
+    """Centre [m] and radius [m] of the largest circle inside a ring, to 1 % of its size."""
+    spoke = shapely.maximum_inscribed_circle(polygon_of(points), tolerance=0.01 * size_of(points))
+    centre, rim = places(shapely.get_coordinates(spoke)).tolist()
+    return centre, abs(rim - centre)
