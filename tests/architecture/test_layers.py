@@ -104,8 +104,9 @@ def test_imports_have_no_cycle():
 @pytest.mark.parametrize("layer", LAYERS)
 def test_layer_is_shallow(layer):
     chains = depths(within(layer, import_graph()))
-    # flow holds two storeys: maps, poles and piers up to the model, and the algorithms that stand on it
-    assert max(chains.values()) <= (16 if layer == "flow" else 10), max(chains, key=chains.__getitem__)
+    # flow holds three storeys: maps, poles and walls up to the model, the algorithms that stand on it, and what
+    # is made of several of them (where water comes from, what becomes of a spill)
+    assert max(chains.values()) <= (22 if layer == "flow" else 10), max(chains, key=chains.__getitem__)
 
 
 def test_layers_are_all_there():

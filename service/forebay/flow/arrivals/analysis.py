@@ -1,5 +1,6 @@
 """Whether and when released water reaches intakes: one analysis for every kind of release."""
 
+from forebay.flow.arrivals.dividing import scene_of
 from forebay.flow.arrivals.fates import Follower
 from forebay.flow.arrivals.findings import ArrivalRules, Findings, reported
 from forebay.flow.arrivals.lines import find_line, find_outfall
@@ -7,7 +8,6 @@ from forebay.flow.arrivals.patches import find_patch
 from forebay.flow.arrivals.points import find_point
 from forebay.flow.arrivals.release import AlongLine, AtPoint, FromOutfall, OverDisc, OverPolygon, Release
 from forebay.flow.arrivals.result import ReleaseArrivals
-from forebay.flow.arrivals.scene import scene_of
 from forebay.flow.model import FlowModel
 from forebay.flow.stagnation.result import StagnationSearch
 

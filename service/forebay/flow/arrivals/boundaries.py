@@ -9,11 +9,12 @@ from itertools import pairwise
 import numpy as np
 
 from forebay.flow.arrays import BoolArray, ComplexArray
+from forebay.flow.arrivals.curves import Arc, Part, Rake, Straight
 from forebay.flow.arrivals.outfalls import mouth_rake, side_parts
-from forebay.flow.arrivals.rakes import Arc, Edge, Face, Rake, Straight
+from forebay.flow.arrivals.rakes import Edge, Face
 from forebay.flow.arrivals.release import OverDisc, Patch
 from forebay.flow.arrivals.scene import Scene
-from forebay.flow.arrivals.wetting import Part, wet_parts
+from forebay.flow.arrivals.wetting import wet_parts
 from forebay.flow.layout import Doublet, Sink, Source
 
 _QUARTERS = 4

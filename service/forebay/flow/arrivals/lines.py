@@ -6,21 +6,24 @@ from math import nan
 
 import numpy as np
 
-from forebay.flow.arrivals.fates import INTAKE, Follower, Target
-from forebay.flow.arrivals.findings import ArrivalRules, End, Findings, Passage
+from forebay.flow.arrivals.curves import Part, Rake, Straight
+from forebay.flow.arrivals.fates import INTAKE, Follower
+from forebay.flow.arrivals.findings import ArrivalRules, End, Findings
 from forebay.flow.arrivals.outfalls import outfall_rakes
-from forebay.flow.arrivals.rakes import Rake, Straight
 from forebay.flow.arrivals.release import AlongLine
-from forebay.flow.arrivals.result import LAST_SHARE, Outcome, ReleaseStatus
-from forebay.flow.arrivals.sampling import Accuracy, Sample, amount_of, sampled
-from forebay.flow.arrivals.scene import Scene
+from forebay.flow.arrivals.result import Outcome, ReleaseStatus
+from forebay.flow.arrivals.sampling import (
+    Accuracy,
+    Sample,
+    amount_of,
+    passage,
+    sampled,
+    status_of,
+    time_error,
+)
 from forebay.flow.arrivals.sectors import Piece
-from forebay.flow.arrivals.spread import Course, Ramps, course_of
-from forebay.flow.arrivals.timing import TIME_SHIFT
-from forebay.flow.arrivals.wetting import Part, wet_parts
-
-LEVELS = (0.0, 0.5, LAST_SHARE)
-"""Parts of what arrives whose times are reported."""
+from forebay.flow.arrivals.spread import course_of
+from forebay.flow.arrivals.wetting import wet_parts
 
 
 def find_line(follower: Follower, line: AlongLine, rules: ArrivalRules) -> Findings:
@@ -64,44 +67,6 @@ def _find(
         wet_share=wet_share,
         status=status_of(follower.scene, sample, accurate=error <= rules.tolerance),
     )
-
-
-def passage(course: Course, ramps: Ramps, whole: float, *, endless: bool) -> Passage:
-    """Passage of a course of amounts, as shares of the whole."""
-    return Passage(Course(course.time, course.amount / whole), nan if endless else float(ramps.high.max()))
-
-
-def status_of(scene: Scene, sample: Sample, *, accurate: bool) -> ReleaseStatus:
-    """The gravest of what can be said of a sample."""
-    lost = any(sector.signature.outcome is Outcome.UNRESOLVED for sector in sample.sectors)
-    if not scene.complete:
-        return ReleaseStatus.INCOMPLETE
-    if lost or sample.mixed:
-        return ReleaseStatus.UNRESOLVED
-    if not accurate:
-        return ReleaseStatus.NOT_CONVERGED
-    return ReleaseStatus.BISECTED if sample.bisected else ReleaseStatus.OK
-
-
-def time_error(
-    sample: Sample,
-    passages: dict[Target, Passage],
-    *,
-    by_area: bool,
-    first: dict[Target, float] | None = None,
-) -> float:
-    """Largest change of a reported time since the nodes were half as many, and by tracing [s]."""
-    errors = [0.0]
-    for target, found in passages.items():
-        former = sample.former_ramps(target)
-        begin = None if first is None else first.get(target)
-        course, _ = course_of(former, by_area=by_area, first=begin)
-        if course.total <= 0.0:
-            continue
-        levels = np.array(LEVELS)
-        now, before = (c.when(levels * c.total) for c in (found.course, course))
-        errors.append(float(np.max(np.abs(now - before))) + (TIME_SHIFT + sample.time_part) * float(now[-1]))
-    return max(errors)
 
 
 def _ends(sample: Sample, whole: float) -> dict[End, float]:

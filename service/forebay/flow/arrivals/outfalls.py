@@ -4,7 +4,8 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from forebay.flow.arrivals.rakes import Face, PointMouth, Rake
+from forebay.flow.arrivals.curves import Rake
+from forebay.flow.arrivals.rakes import Face, PointMouth
 from forebay.flow.arrivals.scene import Scene
 from forebay.flow.model import FlowModel
 from forebay.flow.surroundings import LineFaces

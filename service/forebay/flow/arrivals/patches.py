@@ -8,10 +8,9 @@ import numpy as np
 from forebay.flow.arrivals.boundaries import boundary_of, intakes_within
 from forebay.flow.arrivals.fates import INTAKE, Follower, Target
 from forebay.flow.arrivals.findings import ArrivalRules, End, Findings, Passage
-from forebay.flow.arrivals.lines import passage, status_of, time_error
 from forebay.flow.arrivals.release import Patch
 from forebay.flow.arrivals.result import Outcome, ReleaseStatus
-from forebay.flow.arrivals.sampling import Accuracy, Sample, sampled
+from forebay.flow.arrivals.sampling import Accuracy, Sample, passage, sampled, status_of, time_error
 from forebay.flow.arrivals.slices import ends_over, wet_area
 from forebay.flow.arrivals.spread import Course, course_of
 from forebay.flow.layout import Doublet, LineSink, Sink, Vortex

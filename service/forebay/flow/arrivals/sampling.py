@@ -1,18 +1,20 @@
 """Sectors of rakes with arrival times where they are wanted, and the amounts of water in each."""
 
 from dataclasses import dataclass
-from math import log
+from math import log, nan
 
 import numpy as np
 
 from forebay.flow.arrays import FloatArray
+from forebay.flow.arrivals.curves import Part, Rake
+from forebay.flow.arrivals.cuts import cuts_on
 from forebay.flow.arrivals.fates import Follower, Target
-from forebay.flow.arrivals.rakes import Rake
-from forebay.flow.arrivals.scene import cuts_on
+from forebay.flow.arrivals.findings import Passage
+from forebay.flow.arrivals.result import LAST_SHARE, Outcome, ReleaseStatus
+from forebay.flow.arrivals.scene import Scene
 from forebay.flow.arrivals.sectors import PROBES, Piece, Sector, divided, pieces_between
-from forebay.flow.arrivals.spread import Ramps
-from forebay.flow.arrivals.timing import Timed, endless, ramps_of, timed
-from forebay.flow.arrivals.wetting import Part
+from forebay.flow.arrivals.spread import Course, Ramps, course_of
+from forebay.flow.arrivals.timing import TIME_SHIFT, Timed, endless, ramps_of, timed
 
 _INTERVALS = 12
 """Intervals between the first nodes of a sector."""
@@ -23,6 +25,9 @@ _CHORDS = np.linspace(0.0, 1.0, 9)
 _RETRACED = 12
 """Streamlines followed again with a coarser tolerance, at most."""
 _COARSER = 10.0
+
+LEVELS = (0.0, 0.5, LAST_SHARE)
+"""Parts of what arrives whose times are reported."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -153,3 +158,41 @@ def _time_part(follower: Follower, sectors: list[Sector]) -> float:
         if fate.signature == sector.signature and times.size and times.min() > 0.0:
             parts.append(float(np.max(np.abs(fate.times / times - 1.0))))
     return max(parts)
+
+
+def passage(course: Course, ramps: Ramps, whole: float, *, endless: bool) -> Passage:
+    """Passage of a course of amounts, as shares of the whole."""
+    return Passage(Course(course.time, course.amount / whole), nan if endless else float(ramps.high.max()))
+
+
+def status_of(scene: Scene, sample: Sample, *, accurate: bool) -> ReleaseStatus:
+    """The gravest of what can be said of a sample."""
+    lost = any(sector.signature.outcome is Outcome.UNRESOLVED for sector in sample.sectors)
+    if not scene.complete:
+        return ReleaseStatus.INCOMPLETE
+    if lost or sample.mixed:
+        return ReleaseStatus.UNRESOLVED
+    if not accurate:
+        return ReleaseStatus.NOT_CONVERGED
+    return ReleaseStatus.BISECTED if sample.bisected else ReleaseStatus.OK
+
+
+def time_error(
+    sample: Sample,
+    passages: dict[Target, Passage],
+    *,
+    by_area: bool,
+    first: dict[Target, float] | None = None,
+) -> float:
+    """Largest change of a reported time since the nodes were half as many, and by tracing [s]."""
+    errors = [0.0]
+    for target, found in passages.items():
+        former = sample.former_ramps(target)
+        begin = None if first is None else first.get(target)
+        course, _ = course_of(former, by_area=by_area, first=begin)
+        if course.total <= 0.0:
+            continue
+        levels = np.array(LEVELS)
+        now, before = (c.when(levels * c.total) for c in (found.course, course))
+        errors.append(float(np.max(np.abs(now - before))) + (TIME_SHIFT + sample.time_part) * float(now[-1]))
+    return max(errors)

@@ -12,8 +12,8 @@ import numpy as np
 from scipy.special import expit
 
 from forebay.flow.arrays import FloatArray
+from forebay.flow.arrivals.curves import Rake
 from forebay.flow.arrivals.fates import Fate, Follower, Signature
-from forebay.flow.arrivals.rakes import Rake
 from forebay.flow.arrivals.result import Outcome
 
 PROBES: FloatArray = np.array([-5.0, -1.3, 0.37, 1.9, 5.5])

@@ -10,11 +10,11 @@ from dataclasses import dataclass
 import numpy as np
 
 from forebay.flow.arrays import ComplexArray, FloatArray
+from forebay.flow.arrivals.curves import Straight
+from forebay.flow.arrivals.cuts import cuts_on
 from forebay.flow.arrivals.fates import INTAKE, Follower
-from forebay.flow.arrivals.rakes import Straight
 from forebay.flow.arrivals.release import OverDisc, Patch
 from forebay.flow.arrivals.result import Outcome
-from forebay.flow.arrivals.scene import cuts_on
 from forebay.flow.arrivals.sectors import Division, Piece, divided, pieces_between
 from forebay.flow.arrivals.wetting import Amount, wet_parts
 from forebay.flow.model import FlowModel

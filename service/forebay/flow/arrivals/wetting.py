@@ -6,15 +6,13 @@ from dataclasses import dataclass
 import numpy as np
 
 from forebay.flow.arrays import BoolArray, ComplexArray, FloatArray, IntArray
-from forebay.flow.arrivals.rakes import Arc, Straight
+from forebay.flow.arrivals.curves import Arc, Part, Straight
 from forebay.flow.model import FlowModel
 
 _FINEST = 1e-9
 """Length over the scale at which the search for a wall's place ends [-]."""
 _MOST = 4096
 """Pieces under way at once: more only where the curve runs along a wall, all of which counts as water."""
-
-Part = tuple[float, float]
 
 
 def wet_parts(model: FlowModel, curves: Sequence[Straight | Arc]) -> list[list[Part]]:
