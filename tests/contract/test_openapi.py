@@ -24,6 +24,7 @@ PROMISED = {
     "computeStress",
     "traceWithdrawal",
     "checkScreen",
+    "checkSubmergence",
     "reviewLayout",
     "assessLayout",
     "drawFlowNet",

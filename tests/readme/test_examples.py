@@ -18,6 +18,7 @@ ROUTES = (
     "/v1/contour/integrate",
     "/v1/withdrawal/trace",
     "/v1/screen/check",
+    "/v1/submergence/check",
     "/v1/stress/tensor",
     "/v1/criteria",
     "/v1/warnings",

@@ -40,6 +40,7 @@ TAGS = {
     "stress": "Strain and stress",
     "withdrawal": "Where intakes' water comes from",
     "screen": "Fish-protection screens",
+    "submergence": "Inlets under a free surface",
     "layout": "Judging a layout before computing",
     "chart": "Pictures",
     "catalogues": "Limits, warnings, criteria, water",

@@ -19,6 +19,8 @@ from forebay.api.validation import require_known_once
 from forebay.flow.errors import FlowError
 from forebay.trade.criteria import NOT_LISTED, Criterion
 from forebay.trade.criteria_catalogue import list_criteria
+from forebay.trade.submergence.rules import NOT_LISTED as RULES_NOT_LISTED
+from forebay.trade.submergence.rules import RULES, Rule
 from forebay.trade.warning_catalogue import WARNINGS
 from forebay.trade.water import LEFT_OUT, SOURCES, water_properties
 
@@ -100,11 +102,15 @@ def water(temperature: float, salinity: float, units: UnitSystem) -> dict[str, A
 @router.get(
     "/v1/criteria",
     operation_id="listCriteria",
-    summary="Published limits for fish-protection screens",
+    summary="Published limits for fish-protection screens, and rules for submergence",
     **documented(CriteriaResult),
 )
 async def read_criteria(request: Request) -> Response:
-    result = {"criteria": [criterion(record) for record in list_criteria()], "not_listed": NOT_LISTED}
+    result = {
+        "criteria": [criterion(record) for record in list_criteria()],
+        "submergence_rules": [submergence_rule(rule) for rule in RULES],
+        "not_listed": NOT_LISTED | RULES_NOT_LISTED,
+    }
     return answer(request, CriteriaResult, result)
 
 
@@ -121,6 +127,13 @@ def criterion(record: Criterion) -> dict[str, Any]:
         "note": record.note,
         "source": record.source,
     }
+
+
+def submergence_rule(rule: Rule) -> dict[str, Any]:
+    """Fields of one rule."""
+    copied = ("id", "formula", "datum", "standing", "note", "source")
+    fields = {name: getattr(rule, name) for name in copied}
+    return fields | {"applies_to": sorted(rule.applies_to)}
 
 
 @router.get(

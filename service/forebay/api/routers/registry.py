@@ -18,6 +18,7 @@ from forebay.api.routers import (
     spill,
     stagnation,
     stress,
+    submergence,
     withdrawal,
 )
 
@@ -32,6 +33,7 @@ OPERATIONS: dict[str, Operation[Any]] = {
         withdrawal.TRACE,
         spill.ARRIVALS,
         screen.CHECK,
+        submergence.CHECK,
         review.REVIEW,
         chart.FLOW_NET,
     )
@@ -47,6 +49,7 @@ ROUTERS: tuple[APIRouter, ...] = (
     withdrawal.router,
     spill.router,
     screen.router,
+    submergence.router,
     review.router,
     chart.router,
     catalogues.router,

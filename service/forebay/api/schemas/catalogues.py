@@ -20,6 +20,9 @@ from forebay.api.schemas.quantities import (
     ViscosityValue,
 )
 
+from forebay.trade.submergence.inlet import Datum, InletKind
+from forebay.trade.submergence.rules import Standing
+
 
 class WaterResult(Answer):
     """Properties of water at atmospheric pressure."""
@@ -69,10 +72,23 @@ class CriterionValue(Answer):
     source: str
 
 
+class SubmergenceRuleValue(Answer):
+    """Published rule for the least submergence of an inlet."""
+
+    id: Annotated[str, Field(examples=["hydraulic-institute"])]
+    formula: str
+    datum: Annotated[Datum, Field(description="Of inlets that are not upright; else the lip")]
+    applies_to: Annotated[list[InletKind], Field(examples=[["bell"]])]
+    standing: Annotated[Standing, Field(description="quoted: read in texts that quote it")]
+    note: str
+    source: str
+
+
 class CriteriaResult(Answer):
-    """Published limits, and documents from which none is listed."""
+    """Published limits and rules, and documents from which none is listed."""
 
     criteria: list[CriterionValue]
+    submergence_rules: list[SubmergenceRuleValue]
     not_listed: Annotated[dict[str, str], Field(description="Document, and why it is not listed")]
 
 

@@ -1,0 +1,1 @@
+"""Inlets under a free surface: submergence, similarity, swirl."""
