@@ -1,10 +1,15 @@
 """From elements and structures to poles of the mapped plane, mirror images included."""
 
+from dataclasses import replace
+
 import numpy as np
 
 from forebay.flow.arrays import ComplexArray
+from forebay.flow.cores import core_term
+from forebay.flow.gradient import GradientTerm
 from forebay.flow.layout import (
     Channel,
+    Core,
     Doublet,
     Layout,
     LineSink,
@@ -14,10 +19,13 @@ from forebay.flow.layout import (
     Vortex,
     outflow,
 )
+from forebay.flow.lines import line_term
 from forebay.flow.piers import image_in
 from forebay.flow.placement import TOUCHING
 from forebay.flow.poles import PERIODIC, PoleField
+from forebay.flow.sheets.standing import DOUBLED, Footing, Footings
 from forebay.flow.shores import Frame
+from forebay.flow.terms import Term
 
 _SAME = 1e-9
 """Images closer than this in the mapped plane are one pole on a wall [-]."""
@@ -103,19 +111,60 @@ class PoleBuilder:
         )
 
 
-def add_elements(builder: PoleBuilder, layout: Layout, frame: Frame) -> None:
-    """Add every point element, with its images in the piers; element k is owner k + 1."""
+def add_elements(builder: PoleBuilder, layout: Layout, frame: Frame, standing: Footings) -> None:
+    """Add every point element, with its images in the piers; element k is owner k + 1.
+
+    standing : which elements act on one side of a ring only
+    """
     for k, element in enumerate(layout.elements):
+        _add_beneath(builder, layout, k, standing.get(k))
         match element:
             case LineSource() | LineSink():
                 continue
             case Doublet():
                 _add_doublet(builder, element, _imaging(element.at, layout), frame, owner=k + 1)
             case _:
-                seen = builder.add_pole(element.at, strength(element, layout.depth), k + 1)
+                factor = DOUBLED if k in standing else 1.0
+                seen = builder.add_pole(element.at, factor * strength(element, layout.depth), k + 1)
                 for pier in _imaging(element.at, layout):
                     builder.add_pole(image_in(pier, element.at), seen.conjugate(), k + 1)
                     builder.add_pole(pier.at, -seen.conjugate(), k + 1)
+
+
+def _add_beneath(builder: PoleBuilder, layout: Layout, k: int, footing: Footing | None) -> None:
+    """Take away in a solid what an element on its wall sends there."""
+    if footing is not None and footing.inner is not None:
+        flux = outflow(layout.elements[k]) / layout.depth
+        builder.add_pole(footing.inner, complex(-flux / (2.0 * np.pi)), k + 1)
+
+
+def terms_of(layout: Layout, frame: Frame, standing: Footings, *, one_sided: bool = True) -> tuple[Term, ...]:
+    """Every part of the flow that is no sum of poles, the rings' left out.
+
+    one_sided : whether a line on a ring shows the water's side there, rather than the mean of both
+    """
+    terms: list[Term] = []
+    if layout.ambient.has_gradient:
+        terms.append(GradientTerm.of(layout.ambient, owner=0))
+    for k, element in enumerate(layout.elements):
+        match element:
+            case LineSource() | LineSink():
+                terms.append(_line(layout, k, frame, standing.get(k) if one_sided else None, k in standing))
+            case Vortex(core=Core() as core):
+                terms.append(core_term(element.at, element.circulation, core, owner=k + 1, frame=frame))
+            case _:
+                continue
+    return tuple(terms)
+
+
+def _line(layout: Layout, k: int, frame: Frame, footing: Footing | None, doubled: bool) -> Term:  # noqa: FBT001
+    element = layout.elements[k]
+    if not isinstance(element, LineSource | LineSink):
+        raise TypeError(element)
+    flux = (DOUBLED if doubled else 1.0) * outflow(element) / layout.depth
+    seen = frame if footing is None else replace(frame, walls=(*frame.walls, footing.wall))
+    offset = offset_of(layout, frame)
+    return line_term(element.start, element.end, flux, owner=k + 1, frame=seen, offset=offset)
 
 
 def _imaging(at: complex, layout: Layout) -> tuple[Pier, ...]:

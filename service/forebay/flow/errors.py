@@ -103,6 +103,20 @@ class UnsolvedStructureError(LayoutError):
     title = "The flow round the structures could not be solved"
 
 
+class UnsolvableBoundaryError(LayoutError):
+    """An outline or a surveyed shore for which no flow can be found: it shuts off water, or does not fit."""
+
+    code = "unsolvable-boundary"
+    title = "No flow exists or can be found round the outline"
+
+
+class UnsolvedBoundaryError(LayoutError):
+    """The flow round outlines or in surveyed water could not be found to a hundredth of the flow through."""
+
+    code = "unsolved-boundary"
+    title = "The flow along the walls could not be solved"
+
+
 class UnknownNameError(FlowError):
     """A request names an element that the layout does not have, or of the wrong kind."""
 

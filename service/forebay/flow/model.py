@@ -6,18 +6,11 @@ from functools import cached_property, lru_cache
 import numpy as np
 
 from forebay.flow.arrays import BoolArray, ComplexArray, FloatArray, IntArray
-from forebay.flow.assembly import (
-    PoleBuilder,
-    add_elements,
-    add_piers,
-    ambient_constant,
-    offset_of,
-)
+from forebay.flow.assembly import terms_of
 from forebay.flow.core_centres import CoreCentre, centre_chords, core_centre, without_centres
-from forebay.flow.cores import CoreTerm, core_term
+from forebay.flow.cores import CoreTerm
 from forebay.flow.corner_chords import corner_chords
 from forebay.flow.ends import End, ends_of
-from forebay.flow.errors import UnsolvedStructureError
 from forebay.flow.features import (
     CoredVortex,
     Line,
@@ -26,24 +19,20 @@ from forebay.flow.features import (
     lines_of,
     singularities_of,
 )
-from forebay.flow.gradient import GradientTerm
-from forebay.flow.layout import (
-    Core,
-    Layout,
-    LineSink,
-    LineSource,
-    Pier,
-    Surveyed,
-    Vortex,
-    outflow,
-)
-from forebay.flow.lines import line_term
+from forebay.flow.layout import Layout, Pier
 from forebay.flow.maps import LogarithmMap
-from forebay.flow.piers import solve_piers
-from forebay.flow.placement import TOUCHING, check_layout, scale_of
+from forebay.flow.piers import PierSolution, solve_piers
+from forebay.flow.placement import TOUCHING
 from forebay.flow.poles import PoleField
-from forebay.flow.settling import settled
-from forebay.flow.shores import Frame, Wall, frame_of
+from forebay.flow.settling import Ground, grounded
+from forebay.flow.sheets.bound import BoundaryBound
+from forebay.flow.sheets.boundary import Boundary, solve_boundary
+from forebay.flow.sheets.ring import Ring
+from forebay.flow.sheets.ring_set import NO_RINGS, RingSet
+from forebay.flow.sheets.standing import Footings, footings
+from forebay.flow.sheets.task import task_of
+from forebay.flow.shores import Frame, Wall
+from forebay.flow.sources import Sources
 from forebay.flow.terms import Jet, Term
 
 AMBIENT = "ambient"
@@ -65,6 +54,7 @@ class FlowModel:
     rational : poles of the mapped plane;  terms : line elements, cores, gradient
     scale : length scale [m];  boundary_residual : largest normal velocity on the piers as part of the
     largest speed there, on a sample other than the one fitted [-]
+    rings_set : walls of outlines and surveyed shores;  boundary : how they were solved, None without any
     """
 
     layout: Layout
@@ -73,6 +63,8 @@ class FlowModel:
     terms: tuple[Term, ...]
     scale: float
     boundary_residual: float
+    rings_set: RingSet = NO_RINGS
+    boundary: Boundary | None = None
 
     def velocity(self, z: ComplexArray) -> ComplexArray:
         """Conjugate velocity W = u - iv [m/s] at z [m]; relative accuracy 1e-14 of `magnitude`."""
@@ -235,13 +227,16 @@ class FlowModel:
         inside = inside | self._at_vertex(at)
         for pier in self.piers:
             inside = inside & (np.abs(at - pier.at) >= pier.radius - reach)
+        if self.rings:
+            inside = inside & self.rings_set.wet(at, reach)
         return np.asarray(inside, dtype=np.bool_)
 
     def singular(self, z: ComplexArray, radius: float | None = None) -> IntArray:
         """Index of the place without a velocity within `radius` [m] of z, or -1.
 
         Places: `singularities` in order (a vortex with a core is none), then both ends of every line, then
-        the vertex of a corner above 180 degrees. radius : default 1e-9 of the scale.
+        the vertex of a corner above 180 degrees, then vertices of rings where the water turns by more.
+        radius : default 1e-9 of the scale.
         """
         at = np.asarray(z, dtype=np.complex128)
         reach = TOUCHING * self.scale if radius is None else radius
@@ -265,7 +260,7 @@ class FlowModel:
         places += [end for line in self.lines for end in (line.start, line.end)]
         if self._corner and self._corner.angle > np.pi:
             places.append(self._corner.vertex)
-        return np.array(places, dtype=np.complex128)
+        return np.concatenate((np.array(places, dtype=np.complex128), self.rings_set.salient))
 
     @cached_property
     def owners(self) -> tuple[str, ...]:
@@ -279,12 +274,18 @@ class FlowModel:
     @cached_property
     def singularities(self) -> tuple[Singularity, ...]:
         """The point elements."""
-        return singularities_of(self.layout, self.walls, TOUCHING * self.scale)
+        return singularities_of(self.layout, self._footholds, TOUCHING * self.scale)
 
     @cached_property
     def lines(self) -> tuple[Line, ...]:
         """The line elements."""
-        return lines_of(self.layout, self.walls, TOUCHING * self.scale)
+        return lines_of(self.layout, self._footholds, TOUCHING * self.scale)
+
+    @cached_property
+    def _footholds(self) -> tuple[Wall, ...]:
+        """The straight walls, and edges of rings on which elements stand."""
+        standing = footings(self.layout, self.rings_set, TOUCHING * self.scale)
+        return (*self.walls, *(footing.wall for footing in standing.values()))
 
     @cached_property
     def cores(self) -> tuple[CoredVortex, ...]:
@@ -300,6 +301,27 @@ class FlowModel:
     def piers(self) -> tuple[Pier, ...]:
         """The piers."""
         return self.layout.piers
+
+    @property
+    def rings(self) -> tuple[Ring, ...]:
+        """Walls of outlines and surveyed shores, water on their left."""
+        return self.rings_set.rings
+
+    @property
+    def bound(self) -> BoundaryBound | None:
+        """Bound of the error that the rings leave, None without any."""
+        return None if self.boundary is None else self.boundary.bound
+
+    @property
+    def wall_names(self) -> tuple[str, ...]:
+        """Names in the order of `nearest_wall`."""
+        names = [wall.name for wall in self.walls] + [pier.name for pier in self.piers]
+        return (*names, *(ring.name for ring in self.rings))
+
+    def rings_distance(self, z: ComplexArray) -> FloatArray:
+        """Distance to the nearest edge of a ring, open ones included, negative on land [m]."""
+        gap = self.rings_set.gap(z)
+        return np.asarray(np.where(self.rings_set.inside(z), gap, -gap), dtype=np.float64)
 
     @cached_property
     def ends(self) -> tuple[End, ...]:
@@ -317,20 +339,21 @@ class FlowModel:
         return not self.cores and self.layout.ambient.vorticity == 0.0
 
     def distance_to_wall(self, z: ComplexArray) -> FloatArray:
-        """Distance to the nearest wall or pier [m], inf without any; negative inside a pier."""
+        """Distance to the nearest wall, pier or ring's land [m], inf without any; negative within one."""
         at = np.asarray(z, dtype=np.complex128)
         distance = np.full(at.shape, np.inf)
         for wall in self.walls:
             distance = np.minimum(distance, wall.distance(at))
         for pier in self.piers:
             distance = np.minimum(distance, np.abs(at - pier.at) - pier.radius)
-        return distance
+        return np.minimum(distance, self.rings_set.distance(at)) if self.rings else distance
 
     def nearest_wall(self, z: ComplexArray) -> IntArray:
-        """Index into `walls` followed by `piers` of the nearest one, -1 without any."""
+        """Index into `walls` followed by `piers` and `rings` of the nearest one, -1 without any."""
         at = np.asarray(z, dtype=np.complex128)
         distances = [wall.distance(at) for wall in self.walls]
         distances += [np.abs(at - pier.at) - pier.radius for pier in self.piers]
+        distances += list(self.rings_set.distances(at)) if self.rings else []
         if not distances:
             return np.full(at.shape, -1, dtype=np.int64)
         return np.asarray(np.argmin(np.stack(distances), axis=0), dtype=np.int64)
@@ -342,42 +365,33 @@ def compile_layout(layout: Layout) -> FlowModel:
 
     Raises
     ------
-    LayoutError : the subclass names the fault, `path` the place (see `placement` and `piers`)
+    LayoutError : the subclass names the fault, `path` the place (see `settling.grounded`, `piers` and
+        `sheets.boundary`)
     """
-    middle, scale = scale_of(layout)
-    frame = frame_of(layout.shore, middle, scale)
-    layout = settled(layout, frame, scale)
-    check_layout(layout, frame, scale)
-    terms = _terms(layout, frame)
-    builder = PoleBuilder(frame, scale)
-    add_elements(builder, layout, frame)
-    owners = [k for k, s in enumerate(layout.structures, len(layout.elements) + 1) if isinstance(s, Pier)]
-    add_piers(builder, layout.piers, owners)
-    constant, offset = ambient_constant(layout, frame), offset_of(layout, frame)
-    model = FlowModel(layout, frame, builder.build(constant, offset), terms, scale, 0.0)
-    if layout.outlines or isinstance(layout.shore, Surveyed):
-        raise UnsolvedStructureError("outlines and surveyed shores cannot be solved yet", ("structures",))
-    if not layout.piers:
+    ground = grounded(layout)
+    standing = footings(ground.layout, ground.rings, TOUCHING * ground.scale)
+    sources = Sources.of(ground, standing)
+    terms = terms_of(ground.layout, ground.frame, standing)
+    model = FlowModel(ground.layout, ground.frame, sources.field(), terms, ground.scale, 0.0, ground.rings)
+    if ground.rings.rings:
+        return _with_rings(model, ground, standing, sources)
+    if not model.piers:
         return model
-    solution = solve_piers(layout.piers, frame, model.rational, model.velocity)
-    for owner, pier, moments in zip(owners, layout.piers, solution.moments, strict=True):
-        builder.add_moments(pier.at, moments, owner)
-    return FlowModel(layout, frame, builder.build(constant, offset), terms, scale, solution.residual)
+    solution = solve_piers(model.piers, ground.frame, model.rational, model.velocity)
+    return replace(model, rational=sources.field(solution), boundary_residual=solution.residual)
 
 
-def _terms(layout: Layout, frame: Frame) -> tuple[Term, ...]:
-    terms: list[Term] = []
-    if layout.ambient.has_gradient:
-        terms.append(GradientTerm.of(layout.ambient, owner=0))
-    offset = offset_of(layout, frame)
-    for k, element in enumerate(layout.elements):
-        match element:
-            case LineSource() | LineSink():
-                flux = outflow(element) / layout.depth
-                ends = (element.start, element.end)
-                terms.append(line_term(*ends, flux, owner=k + 1, frame=frame, offset=offset))
-            case Vortex(core=Core() as core):
-                terms.append(core_term(element.at, element.circulation, core, owner=k + 1, frame=frame))
-            case _:
-                continue
-    return tuple(terms)
+def _with_rings(model: FlowModel, ground: Ground, standing: Footings, sources: Sources) -> FlowModel:
+    """The flow with what outlines and surveyed shores add to it."""
+    means = terms_of(ground.layout, ground.frame, standing, one_sided=False)
+    bare = replace(model, terms=means, rings_set=NO_RINGS)
+
+    def with_moments(solution: PierSolution) -> FlowModel:
+        return replace(bare, rational=sources.field(solution))
+
+    task = task_of(ground, standing, bare, model.rational, with_moments)
+    boundary = solve_boundary(task)
+    rational = model.rational if boundary.piers is None else sources.field(boundary.piers)
+    residual = 0.0 if boundary.piers is None else boundary.piers.residual
+    terms = (*model.terms, *boundary.terms)
+    return replace(model, rational=rational, terms=terms, boundary_residual=residual, boundary=boundary)

@@ -18,6 +18,8 @@ from forebay.flow.poles import PoleField
 from forebay.flow.shores import Frame
 
 Velocity = Callable[[ComplexArray], ComplexArray]
+Echo = Callable[[ComplexArray, int], ComplexArray]
+"""What other walls answer to unit multipoles up to an order: velocities at points, shape (2 p order, n)."""
 
 _LADDER = (1, 2, 4, 8, 12, 16, 24, 32, 48, 64, 96, 128)
 """Highest multipole orders tried [-]."""
@@ -34,11 +36,13 @@ class PierSolution:
     moments : shape (p, n), coefficients of X(tau - centre)^n in the potential [m2/s]
     residual : largest normal velocity on an independent sample of the circles, as part of `speed` [-]
     speed : largest speed on that sample [m/s]
+    unknowns : shape (2 p n,), real and imaginary parts of the moments over powers of the radius [m2/s]
     """
 
     moments: ComplexArray
     residual: float
     speed: float
+    unknowns: FloatArray
 
 
 def image_in(pier: Pier, at: complex) -> complex:
@@ -52,7 +56,9 @@ def circle(pier: Pier, count: int, start: float = 0.0) -> tuple[ComplexArray, Co
     return pier.at + pier.radius * normal, normal
 
 
-def solve_piers(piers: tuple[Pier, ...], frame: Frame, field: PoleField, base: Velocity) -> PierSolution:
+def solve_piers(
+    piers: tuple[Pier, ...], frame: Frame, field: PoleField, base: Velocity, echo: Echo | None = None
+) -> PierSolution:
     """Multipoles that make the piers impermeable.
 
     Parameters
@@ -61,6 +67,7 @@ def solve_piers(piers: tuple[Pier, ...], frame: Frame, field: PoleField, base: V
     frame : of the shore
     field : the poles present, for its kernel only
     base : conjugate velocity [m/s] without the multipoles, including the images in the piers
+    echo : of other walls, None without any
 
     Returns
     -------
@@ -75,12 +82,17 @@ def solve_piers(piers: tuple[Pier, ...], frame: Frame, field: PoleField, base: V
     The order climbs a ladder until the residual reaches 2e-14. Piers a gap g apart need an order of about
     30 / sqrt(g / radius): 128 suffices down to gaps of a tenth of the radius.
     """
+
+    def columns(z: ComplexArray, order: int) -> ComplexArray:
+        own = _columns(piers, frame, field, z, order)
+        return own if echo is None else own + echo(z, order)
+
     best: PierSolution | None = None
     aim, last = 0.0, (0, 1.0)
     for order in _LADDER:
         if order < aim:
             continue
-        solution = _fit(piers, frame, field, base, order)
+        solution = _fit(piers, _reach(piers, frame), columns, base, order)
         if best is None or solution.residual < best.residual:
             best = solution
         if best.residual <= _ENOUGH or solution.residual > 100.0 * best.residual:
@@ -105,25 +117,26 @@ def _wanted_order(last: tuple[int, float], now: tuple[int, float]) -> float:
     return 0.8 * (now[0] + float(np.log(_ENOUGH / now[1])) / rate)
 
 
-def _fit(piers: tuple[Pier, ...], frame: Frame, field: PoleField, base: Velocity, order: int) -> PierSolution:
+def _fit(
+    piers: tuple[Pier, ...], reach: FloatArray, columns: Echo, base: Velocity, order: int
+) -> PierSolution:
     """Multipoles up to an order: as many harmonics of the normal velocity vanish on each circle."""
     count = 4 * order + 12
     z, normal = _circles(piers, count, 0.0)
-    columns = _columns(piers, frame, field, z, order)
-    matrix = _harmonics((columns * normal).real, len(piers), order).T
+    matrix = _harmonics((columns(z, order) * normal).real, len(piers), order).T
     load = -_harmonics((base(z) * normal).real[None], len(piers), order)[0]
     try:
         unknowns = np.linalg.solve(matrix, load)
     except np.linalg.LinAlgError:
-        return PierSolution(np.zeros((len(piers), order), dtype=np.complex128), np.inf, 0.0)
+        return PierSolution(np.zeros((len(piers), order), dtype=np.complex128), np.inf, 0.0, load)
     moments = (unknowns[0::2] + 1j * unknowns[1::2]).reshape(len(piers), order)
     check, outward = _circles(piers, count + 1, np.pi / 7.0)
-    velocity = base(check) + unknowns @ _columns(piers, frame, field, check, order)
+    velocity = base(check) + unknowns @ columns(check, order)
     speed = float(np.max(np.abs(velocity)))
     leak = float(np.max(np.abs((velocity * outward).real)))
     residual = leak / speed if speed > 0.0 else 0.0
-    scaled = moments * _reach(piers, frame)[:, None] ** np.arange(1, order + 1)
-    return PierSolution(scaled, residual, speed)
+    scaled = moments * reach[:, None] ** np.arange(1, order + 1)
+    return PierSolution(scaled, residual, speed, unknowns)
 
 
 def _harmonics(values: FloatArray, pier_count: int, order: int) -> FloatArray:
@@ -173,3 +186,25 @@ def _columns(
         columns[k, :, 0] = (same + mirrored) * slope
         columns[k, :, 1] = 1j * (same - mirrored) * slope
     return columns.reshape(-1, z.size)
+
+
+def multipole_potentials(
+    piers: tuple[Pier, ...], frame: Frame, field: PoleField, z: ComplexArray, order: int
+) -> ComplexArray:
+    """Potentials of the multipoles whose velocities `solve_piers` adds up, shape (2 p order, n) [-]."""
+    tau, orders = frame.map.forward(z), np.arange(1, order + 1)[:, None]
+    values = np.empty((len(piers), order, 2, z.size), dtype=np.complex128)
+    for k, (pier, reach) in enumerate(zip(piers, _reach(piers, frame), strict=True)):
+        images = frame.images(complex(frame.map.forward(np.asarray(pier.at))))
+        same, mirrored = np.zeros((2, order, z.size), dtype=np.complex128)
+        for at, conjugated, reversed_ in zip(
+            images.positions, images.conjugated, images.reversed, strict=True
+        ):
+            part = (reach * field.kernel(tau - at)) ** orders
+            part = part * (-1.0) ** orders if reversed_ else part
+            if conjugated:
+                mirrored += part
+            else:
+                same += part
+        values[k, :, 0], values[k, :, 1] = same + mirrored, 1j * (same - mirrored)
+    return values.reshape(-1, z.size)

@@ -141,12 +141,21 @@ def check_layout(layout: Layout, frame: Frame, scale: float) -> None:
 
 def _check_names(layout: Layout) -> None:
     seen: dict[str, Path] = {}
-    named = [(("elements", k, "name"), e.name) for k, e in enumerate(layout.elements)]
+    named: list[tuple[Path, str]] = [(("elements", k, "name"), e.name) for k, e in enumerate(layout.elements)]
     named += [(("structures", k, "name"), s.name) for k, s in enumerate(layout.structures)]
+    if isinstance(layout.shore, Surveyed):
+        named += _shore_names(layout.shore)
     for path, name in named:
         if name in seen:
             raise DuplicateNameError("another element or structure has this name", path)
         seen[name] = path
+
+
+def _shore_names(shore: Surveyed) -> list[tuple[Path, str]]:
+    named: list[tuple[Path, str]] = [
+        (("shore", "islands", k, "name"), island.name) for k, island in enumerate(shore.islands)
+    ]
+    return named + [(("shore", "edges", k, "name"), edge.name) for k, edge in enumerate(shore.edges)]
 
 
 def _check_ambient(ambient: Ambient, frame: Frame, scale: float) -> None:

@@ -1,26 +1,60 @@
 """Elements that stand on a bank up to rounding of their coordinates are put on to it."""
 
-from dataclasses import replace
+from dataclasses import dataclass, replace
 
 import numpy as np
 
 from forebay.flow.layout import Element, Layout, LineSink, LineSource
-from forebay.flow.placement import TOUCHING
-from forebay.flow.shores import Frame
+from forebay.flow.placement import TOUCHING, check_layout, scale_of
+from forebay.flow.sheets.build import rings_of
+from forebay.flow.sheets.checks import check_rings
+from forebay.flow.sheets.ring_set import RingSet
+from forebay.flow.sheets.standing import put_on_rings
+from forebay.flow.shores import Frame, frame_of
 
 ASHORE = 1e-5
 """How far on land, as part of the layout's scale, an element may lie and still be taken to stand on the bank:
 a millimetre in a channel of 100 m, what map coordinates are rounded to [-]."""
 
 
-def settled(layout: Layout, frame: Frame, scale: float) -> Layout:
+@dataclass(frozen=True, slots=True)
+class Ground:
+    """A layout checked and settled in its frame.
+
+    layout, frame : see there;  scale : length scale [m];  rings : of outlines and surveyed shores
+    """
+
+    layout: Layout
+    frame: Frame
+    scale: float
+    rings: RingSet
+
+
+def grounded(layout: Layout) -> Ground:
+    """A layout with everything where it stands.
+
+    Raises
+    ------
+    LayoutError : the subclass names the fault, `path` the place
+    """
+    middle, scale = scale_of(layout)
+    frame = frame_of(layout.shore, middle, scale)
+    rings = RingSet(rings_of(layout, frame, scale))
+    moved = settled(layout, frame, scale, rings)
+    check_layout(moved, frame, scale)
+    check_rings(moved, rings, TOUCHING * scale)
+    return Ground(moved, frame, scale, rings)
+
+
+def settled(layout: Layout, frame: Frame, scale: float, rings: RingSet) -> Layout:
     """The layout with sources, sinks and lines that touch a bank, or lie just ashore, exactly on it.
 
     The same object if nothing moves. Piers stay where they are: one that touches a bank is refused.
     """
     elements = tuple(_settled(element, frame, scale) for element in layout.elements)
     unmoved = all(new is old for new, old in zip(elements, layout.elements, strict=True))
-    return layout if unmoved else replace(layout, elements=elements)
+    moved = layout if unmoved else replace(layout, elements=elements)
+    return put_on_rings(moved, rings, TOUCHING * scale, ASHORE * scale)
 
 
 def _settled(element: Element, frame: Frame, scale: float) -> Element:

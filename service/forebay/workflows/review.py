@@ -1,9 +1,7 @@
 """Review of a layout: where its numbers should not be trusted."""
 
 from forebay.flow.layout import Layout
-from forebay.flow.placement import check_layout, scale_of
-from forebay.flow.settling import settled
-from forebay.flow.shores import frame_of
+from forebay.flow.settling import grounded
 from forebay.trade.applicability.review import evaluate
 from forebay.trade.applicability.site import Readings, Site, SiteData
 from forebay.trade.applicability.warning import ApplicabilityWarning
@@ -31,10 +29,8 @@ def review_layout(
     Raises
     ------
     LayoutError
-        If the layout describes something that cannot be, as `check_layout`.
+        If the layout describes something that cannot be, as `grounded`.
     """
     if readings is None:
-        middle, scale = scale_of(layout)
-        frame = frame_of(layout.shore, middle, scale)
-        check_layout(settled(layout, frame, scale), frame, scale)
+        grounded(layout)
     return evaluate(Site(layout, data or SiteData(), readings or Readings()))
