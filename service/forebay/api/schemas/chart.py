@@ -9,7 +9,7 @@ from pydantic_core import PydanticCustomError
 from forebay.api.schemas.layout import LayoutRequest
 from forebay.api.schemas.quantities import Degrees, PixelCount
 from forebay.api.schemas.stagnation import Window
-from forebay.api.schemas.ways import describe_pair
+from forebay.api.schemas.ways import describe_ways
 from forebay.api.units import UnitSystem
 from forebay.charts.options import ALL_LAYERS, FlowNetOptions, Layer, MediaType
 from forebay.charts.units import SI, US
@@ -19,7 +19,7 @@ from forebay.flow.placement import scale_of
 class ChartRequest(LayoutRequest):
     """Flow net of a layout."""
 
-    model_config = {"json_schema_extra": describe_pair("width", "height")}
+    model_config = {"json_schema_extra": describe_ways(("width", "height"), ())}
 
     window: Annotated[
         Window | None, Field(description="Part of the plan; chosen from the site if absent")

@@ -19,7 +19,7 @@ def describe_ways(
 ) -> Callable[[Json], None]:
     """What `json_schema_extra` does to the schema of a model whose fields exclude one another.
 
-    ways : fields that go together; a request uses all of one way and none of another
+    ways : fields that go together; a request uses all of one way and none of another; a way may be empty
     shared : fields of a way that other ways may use too
     only : fields of their own that are free in the way named and have their default in every other
     """
@@ -34,7 +34,7 @@ def describe_ways(
             if name in way:
                 return _without_null(properties[name])
             if name in exclusive:
-                return {"type": "null", "description": f"Not with {' and '.join(way)}"}
+                return {"type": "null", "description": f"Not with {' and '.join(way) or 'the rest alone'}"}
             if name in only and only[name] not in way:
                 default = properties[name]["default"]
                 return {**properties[name], "enum": [default], "description": f"Belongs to {only[name]}"}
@@ -42,7 +42,7 @@ def describe_ways(
 
         schema["anyOf"] = [
             {
-                "title": schema["title"] + "By" + "And".join(part.title().replace("_", "") for part in way),
+                "title": schema["title"] + _ending(way),
                 "type": "object",
                 "additionalProperties": False,
                 "properties": {name: member(name, way) for name in properties},
@@ -54,14 +54,9 @@ def describe_ways(
     return rewrite
 
 
-def describe_pair(one: str, other: str) -> Json:
-    """What `json_schema_extra` adds for two fields that are both given or both left out."""
-
-    def given(name: str) -> Json:
-        return {"required": [name], "properties": {name: {"not": {"type": "null"}}}}
-
-    absent = {"properties": {other: {"type": "null"}}}
-    return {"if": given(one), "then": given(other), "else": absent}
+def _ending(way: tuple[str, ...]) -> str:
+    """What the name of a way adds to the name of the model."""
+    return "By" + "And".join(part.title().replace("_", "") for part in way) if way else "Alone"
 
 
 def _without_null(schema: Json) -> Json:
