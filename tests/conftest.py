@@ -53,7 +53,9 @@ def answer_to_example(ready_client: TestClient) -> "Callable[[str, str], Respons
     def post(operation_id: str, system: str) -> "Response":
         request = example(operation_id, unit_system=system)
         if system == "us":  # the same numbers describe another site; its water has to stay liquid
-            (request["layout"]["water"] if "layout" in request else request["fluid"])["temperature"] = 60.0
+            water = request.get("layout", {}).get("water") or request.get("fluid")
+            if water is not None:
+                water["temperature"] = 60.0
         return ready_client.post(OPERATIONS[operation_id].path, json=request)
 
     return post

@@ -13,7 +13,9 @@ from starlette.responses import Response
 from typing_extensions import override
 
 from forebay import __version__
+from forebay.api.access import Access, Tokens
 from forebay.api.body_limit import BodyLimit
+from forebay.api.delivery import Delivery
 from forebay.api.guard import CrossOrigin, LastErrors, RequestIds
 from forebay.api.limits import Limits
 from forebay.api.metrics import Measured, Metrics
@@ -44,7 +46,9 @@ class Application(FastAPI):
 def create_app(settings: Settings | None = None) -> Application:
     """Application under the given settings, by default those of the environment."""
     settings = Settings.from_environment() if settings is None else settings
-    limits, metrics = Limits.of(settings), Metrics()
+    limits = Limits.of(settings)
+    workshop = Workshop(limits)
+    metrics = Metrics(workshop)
     app = Application(
         title="Forebay",
         version=__version__,
@@ -61,14 +65,17 @@ def create_app(settings: Settings | None = None) -> Application:
     if settings.docs:
         app.include_router(page_router)
     app.state.limits, app.state.metrics, app.state.settings = limits, metrics, settings
-    app.state.workshop = Workshop(limits)
-    app.state.readiness = Readiness(app.state.workshop)
+    app.state.workshop = workshop
+    app.state.readiness = Readiness(workshop)
     app.state.openapi_bytes = orjson.dumps(app.openapi())
     # the last one added is the outermost
     app.add_middleware(BodyLimit, limit=settings.max_body)
+    tokens = Tokens(settings.tokens, settings.tokens_file)
+    app.add_middleware(Access, tokens=tokens, concurrency=settings.token_concurrency)
     app.add_middleware(LastErrors)
+    app.add_middleware(Delivery)
     app.add_middleware(CrossOrigin, origins=settings.cors_origins)
-    app.add_middleware(Measured, metrics=metrics)
+    app.add_middleware(Measured, metrics=metrics, is_logging=settings.log)
     app.add_middleware(RequestIds)
     return app
 

@@ -2,9 +2,12 @@
 
 import os
 from collections.abc import Mapping
+from ipaddress import ip_address
+from pathlib import Path
 from typing import Annotated, Any, Self
 
-from pydantic import BaseModel, ConfigDict, Field, ValidationError, field_validator
+from pydantic import BaseModel, ConfigDict, Field, ValidationError, field_validator, model_validator
+from pydantic_core import PydanticCustomError
 
 PREFIX = "FOREBAY_"
 """Every variable of the environment starts with it."""
@@ -17,6 +20,10 @@ class SettingsError(Exception):
 def available_processors() -> int:
     """Processors this process may run on."""
     return len(os.sched_getaffinity(0)) if hasattr(os, "sched_getaffinity") else os.cpu_count() or 1
+
+
+Token = Annotated[str, Field(min_length=16, max_length=200, pattern=r"^[A-Za-z0-9._~+/=-]+$")]
+"""A bearer token (RFC 6750), long enough not to be guessed."""
 
 
 class Settings(BaseModel):
@@ -49,16 +56,57 @@ class Settings(BaseModel):
         Field(description="Origins whose pages may call the service, comma-separated; * for all"),
     ] = ("*",)
     docs: Annotated[bool, Field(description="Whether /docs is served")] = True
+    worker_memory: Annotated[
+        int, Field(ge=2**28, le=2**40, description="Memory that a worker process may take [bytes]")
+    ] = 2 * 2**30
+    drain: Annotated[
+        float,
+        Field(ge=0, le=600, description="Time from SIGTERM, when /readyz turns, to the end of listening [s]"),
+    ] = 0.0
+    tokens_file: Annotated[
+        Path | None, Field(description="File of bearer tokens, one a line, read again when it changes")
+    ] = None
+    tokens: Annotated[tuple[Token, ...], Field(description="Bearer tokens, comma-separated", repr=False)] = ()
+    token_concurrency: Annotated[
+        int, Field(ge=1, le=10000, description="Computations of one token at a time")
+    ] = 16
+    anonymous: Annotated[bool, Field(description="Whether to listen beyond this machine without tokens")] = (
+        False
+    )
+    log: Annotated[bool, Field(description="Whether a line is logged for each request, as JSON")] = True
 
-    @field_validator("cors_origins", mode="before")
+    @field_validator("cors_origins", "tokens", mode="before")
     @classmethod
     def _split(cls, value: Any) -> Any:  # noqa: ANN401
-        """Origins from one comma-separated variable."""
+        """Several values from one comma-separated variable."""
         return (
             tuple(part.strip() for part in value.split(",") if part.strip())
             if isinstance(value, str)
             else value
         )
+
+    @property
+    def has_tokens(self) -> bool:
+        """Whether a token is asked for."""
+        return self.tokens_file is not None or bool(self.tokens)
+
+    @model_validator(mode="after")
+    def _readable(self) -> Self:
+        """Check that the file of tokens is there."""
+        if self.tokens_file is not None and not os.access(self.tokens_file, os.R_OK):
+            raise PydanticCustomError("unreadable", "TOKENS_FILE: no such file, or it cannot be read")
+        return self
+
+    def check_access(self, host: str) -> None:
+        """Refuse to listen where others are without a token, unless told to.
+
+        Raises SettingsError.
+        """
+        if not (self.has_tokens or self.anonymous or _is_loopback(host)):
+            raise SettingsError(
+                f"{host} can be reached from other machines and no token is asked for: set "
+                f"{PREFIX}TOKENS_FILE or {PREFIX}TOKENS, or {PREFIX}ANONYMOUS=true behind a proxy that asks"
+            )
 
     @classmethod
     def from_environment(cls, environment: Mapping[str, str] | None = None) -> Self:
@@ -76,10 +124,21 @@ class Settings(BaseModel):
             return cls.model_validate(given)
         except ValidationError as error:
             faults = [
-                f"{PREFIX}{str(fault['loc'][0]).upper()}: {_reason(fault['type'], fault['msg'])}"
-                for fault in error.errors(include_url=False)
+                f"{PREFIX}{_name(fault['loc'])}{_reason(fault['type'], fault['msg'])}"
+                for fault in error.errors(include_url=False, include_input=False)
             ]
             raise SettingsError("; ".join(faults)) from None
+
+
+def _name(location: tuple[int | str, ...]) -> str:
+    return f"{str(location[0]).upper()}: " if location else ""
+
+
+def _is_loopback(host: str) -> bool:
+    try:
+        return ip_address(host).is_loopback
+    except ValueError:
+        return host == "localhost"
 
 
 def _reason(kind: str, message: str) -> str:

@@ -59,7 +59,9 @@ def test_head_is_get_without_a_body(client, path):
 
 
 @pytest.mark.parametrize("path", PATHS)
-@pytest.mark.parametrize("accept", ["application/xml", "application/xml;q=0.9, image/webp", "*/*;q=0", "nonsense"])
+@pytest.mark.parametrize(
+    "accept", ["application/xml", "application/xml;q=0.9, image/webp", "*/*;q=0", "nonsense"]
+)
 def test_unknown_media_type_is_refused_with_the_list(client, path, accept):
     problem = assert_problem(client.post(path, json={}, headers={"Accept": accept}), 406, "not-acceptable")
     assert problem["offered"]
@@ -211,7 +213,8 @@ def test_index_without_the_documentation_page():
 
 def test_standing_headers(client):
     headers = client.post(SAMPLE, json=a_sample()).headers
-    assert headers["cache-control"] == "no-store"
+    assert headers["cache-control"] == "private, no-cache"
+    assert client.get("/livez").headers["cache-control"] == "no-store"
     assert headers["x-content-type-options"] == "nosniff"
     assert headers["content-security-policy"].startswith("default-src 'none'")
     assert "Accept" in headers["vary"]

@@ -35,13 +35,44 @@ def test_environment_sets_them():
         ("QUEUE", "many"),
         ("ROOT_PATH", "no-slash"),
         ("HOTS", "127.0.0.1"),
+        ("TOKENS", "short"),
+        ("TOKENS", "with a space in it"),
+        ("TOKENS_FILE", "/no/such/file"),
+        ("WORKER_MEMORY", "1"),
+        ("DRAIN", "-1"),
     ],
 )
 def test_wrong_setting_is_named(name, value):
-    with pytest.raises(SettingsError, match=f"FOREBAY_{name}: "):
+    with pytest.raises(SettingsError, match=f"FOREBAY_{name}: ") as raised:
         Settings.from_environment({f"FOREBAY_{name}": value})
+    assert value not in str(raised.value) or name != "TOKENS"
 
 
 def test_settings_do_not_change():
     with pytest.raises(ValidationError):
         Settings().port = 1  # type: ignore[misc]
+
+
+TOKEN = "a-token-of-sixteen"  # noqa: S105  (of nothing)
+
+
+@pytest.mark.parametrize("host", ["127.0.0.1", "127.9.9.9", "::1", "localhost"])
+def test_loopback_needs_no_token(host):
+    Settings().check_access(host)
+
+
+EVERYWHERE = "0.0.0.0"  # noqa: S104  (nothing listens)
+
+
+@pytest.mark.parametrize("host", [EVERYWHERE, "::", "192.168.1.5", "intake.example"])
+def test_address_that_others_reach_needs_a_token_or_a_word(host, tmp_path):
+    with pytest.raises(SettingsError, match="no token is asked for"):
+        Settings().check_access(host)
+    Settings(anonymous=True).check_access(host)
+    Settings(tokens=(TOKEN,)).check_access(host)
+    (tmp_path / "tokens").write_text(TOKEN, encoding="utf-8")
+    Settings(tokens_file=tmp_path / "tokens").check_access(host)
+
+
+def test_tokens_are_not_shown():
+    assert TOKEN not in repr(Settings(tokens=(TOKEN,)))

@@ -9,8 +9,11 @@ from starlette.testclient import TestClient
 
 from forebay.api.limits import Limits
 from forebay.api.media import JSON
+from forebay.api.operation import Job
 from forebay.api.outcome import Reply
+from forebay.api.prefer import patience_in
 from forebay.api.problems import Problem
+from forebay.api.routers.registry import OPERATIONS
 from forebay.api.work import Workshop
 from forebay.app import create_app
 from forebay.settings import Settings
@@ -32,17 +35,17 @@ def test_deadline_counts_from_the_request():
     # one worker, so that the second request would have to wait for the first one's end
     async def both():
         workshop = Workshop(Limits.of(Settings(workers=1, deadline=1.0)))
-        body = orjson.dumps(example("traceWithdrawal"))
-        slow = workshop.in_process("traceWithdrawal", body, JSON, deadline=600.0)
+        job = Job(OPERATIONS["traceWithdrawal"], orjson.dumps(example("traceWithdrawal")), JSON)
+        slow = workshop.in_process(job, deadline=600.0)
         try:
             first = asyncio.create_task(slow)
             await asyncio.sleep(0)  # hands the first one over
             assert workshop.waiting == 1
             with pytest.raises(Problem) as raised:
-                await workshop.in_process("traceWithdrawal", body, JSON, deadline=1e-3)
+                await workshop.in_process(job, deadline=1e-3)
             assert not first.done()
             reply = await first
-            again = await workshop.in_process("traceWithdrawal", body, JSON, deadline=600.0)
+            again = await workshop.in_process(job, deadline=600.0)
         finally:
             workshop.close()
         return raised.value, reply, again
@@ -115,3 +118,56 @@ def test_metrics_come_in_both_formats(client, accept):
         .headers["content-type"]
         .startswith(accept.split(";")[0])
     )
+
+
+@pytest.mark.parametrize(
+    ("prefer", "patience"),
+    [
+        ("wait=10", 10.0),
+        ("respond-async, wait=3", 3.0),
+        ('Wait = "7"; x=1, handling=lenient', 7.0),
+        ("wait=0", 0.0),
+        ("wait=-1", None),
+        ("wait=soon", None),
+        ("await=5", None),
+        ("", None),
+        (None, None),
+    ],
+)
+def test_patience_is_read_as_rfc_7240_writes_it(prefer, patience):
+    assert patience_in(prefer) == patience
+
+
+def test_client_may_wait_less_but_not_more(ready_client, app):
+    response = ready_client.post(SAMPLE, json=LENGTHY, headers={"Prefer": "wait=0"})
+    assert assert_problem(response, 504, "deadline-exceeded")["deadline"] == 0
+    long = ready_client.post(SAMPLE, json=a_sample(), headers={"Prefer": "wait=1000000"})
+    assert long.headers["preference-applied"] == f"wait={app.state.limits.deadline:.0f}"
+
+
+def test_readiness_turns_when_draining_begins_and_liveness_stays():
+    stopping = create_app(Settings(workers=1))
+    client = TestClient(stopping, headers={"Origin": "x"})
+    stopping.state.readiness.detail = None
+    assert client.get("/readyz").status_code == 200
+    stopping.state.readiness.drain()
+    problem = assert_problem(client.get("/readyz"), 503, "not-ready")
+    assert "stopping" in problem["detail"]
+    assert client.get("/livez").status_code == 200
+
+
+def test_metrics_show_work_and_the_reasons_for_which_workers_ended(ready_client):
+    ready_client.post(SAMPLE, json=LENGTHY, headers={"Prefer": "wait=0"})
+    text = ready_client.get("/metrics").text
+    ended = {
+        line.split()[0]: float(line.split()[1])
+        for line in text.splitlines()
+        if "workers_ended_total{" in line
+    }
+    assert ended['forebay_workers_ended_total{reason="deadline"}'] >= 1
+    assert set(ended) == {
+        f'forebay_workers_ended_total{{reason="{reason}"}}'
+        for reason in ("deadline", "client", "memory", "lost")
+    }
+    for name in ("forebay_workers_busy", "forebay_queue_length", "forebay_sent_bytes_total"):
+        assert name in text

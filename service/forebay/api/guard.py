@@ -30,7 +30,10 @@ SECURITY_HEADERS = {
 }
 """Headers of every answer; a page sets its own policy and cacheable answers their own Cache-Control."""
 
-EXPOSED = "Retry-After, X-Request-ID, Server-Timing, Allow, Forebay-Units, Forebay-Warnings"
+EXPOSED = (
+    "Retry-After, X-Request-ID, Server-Timing, Allow, ETag, Preference-Applied, WWW-Authenticate, "
+    "Forebay-Units, Forebay-Statuses, Forebay-Warnings"
+)
 """Headers that a page of another origin may read."""
 
 

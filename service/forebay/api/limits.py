@@ -1,9 +1,37 @@
-"""What one request may ask for, and the check before any work."""
+"""What one request may ask for, what it costs, and the check before any work."""
 
+from enum import Enum
 from typing import NamedTuple, Self
 
 from forebay.flow.errors import Path, TooLargeError
 from forebay.settings import Settings
+
+PAIRS_A_SECOND = 1e8
+"""Pairs of element and point worked through in a second; a slow processor does half, a fast one thrice."""
+
+BYTES_A_VALUE = 12
+"""Bytes of a number in an answer with nine digits."""
+
+
+class Tier(Enum):
+    """Where work is done, by the bytes of the body and the work in pairs of element and point.
+
+    In the event loop what takes about a millisecond, in a thread, which nothing can stop, a fraction of a
+    second, in a worker process everything else.
+    """
+
+    INLINE = (16 * 1024, 100_000)
+    THREAD = (1024 * 1024, 20_000_000)
+
+    @property
+    def body(self) -> int:
+        """Bytes of the largest body."""
+        return self.value[0]
+
+    @property
+    def work(self) -> int:
+        """Largest work, in pairs."""
+        return self.value[1]
 
 
 class Price(NamedTuple):
@@ -34,6 +62,16 @@ class Price(NamedTuple):
         """All work in pairs; a number in the answer takes as long as ten of them."""
         return self.pairs + 10 * self.values + self.effort
 
+    @property
+    def seconds(self) -> float | None:
+        """Rough time of the work [s]; None where it depends on what the flow turns out to be."""
+        return None if self.lengthy else self.work / PAIRS_A_SECOND
+
+    @property
+    def size(self) -> int:
+        """Rough size of the answer in JSON [bytes]."""
+        return BYTES_A_VALUE * self.values
+
 
 class Limits(NamedTuple):
     """Limits of one service, as GET /v1/limits publishes them."""
@@ -46,6 +84,8 @@ class Limits(NamedTuple):
     deadline: float
     workers: int
     queue: int
+    worker_memory: int
+    token_concurrency: int
 
     @classmethod
     def of(cls, settings: Settings) -> Self:
@@ -59,6 +99,8 @@ class Limits(NamedTuple):
             deadline=settings.deadline,
             workers=settings.workers,
             queue=settings.queue,
+            worker_memory=settings.worker_memory,
+            token_concurrency=settings.token_concurrency,
         )
 
     def check(self, price: Price) -> None:

@@ -12,7 +12,7 @@ IntArray = npt.NDArray[np.int64]
 EXACT_POWER = 22
 """Largest n for which 10^n is a double without error."""
 
-POWERS = 10.0 ** np.arange(EXACT_POWER + 1)
+POWERS: FloatArray = np.power(10.0, np.arange(EXACT_POWER + 1))
 """Powers of ten without error."""
 
 DOUBT = 2.0 * float(np.finfo(np.float64).eps)

@@ -42,6 +42,7 @@ TAGS = {
     "screen": "Fish-protection screens",
     "submergence": "Inlets under a free surface",
     "layout": "Judging a layout before computing",
+    "estimate": "What a request would cost",
     "chart": "Pictures",
     "catalogues": "Limits, warnings, criteria, water",
     "operation": "Running the service",

@@ -3,7 +3,8 @@
 The way is a plain function of its arguments, so that it runs in the event loop, in a thread or in a process.
 """
 
-from collections.abc import Callable
+import asyncio
+from collections.abc import Awaitable, Callable
 from dataclasses import dataclass
 from time import perf_counter
 from typing import Any, Generic, NamedTuple, TypeVar
@@ -27,7 +28,10 @@ R = TypeVar("R", bound=ComputeRequest)
 
 @dataclass(frozen=True)
 class Operation(Generic[R]):
-    """A compute route: its names, its schemas, its computation, its price."""
+    """A compute route: its names, its schemas, its computation, its price.
+
+    compute : of a request and the media type asked for, or the limits if `is_about_limits`
+    """
 
     operation_id: str
     path: str
@@ -35,9 +39,10 @@ class Operation(Generic[R]):
     description: str
     request: type[R]
     result: type[Answer] | None
-    compute: Callable[[R, str], Outcome]
+    compute: Callable[[R, Any], Outcome]
     price: Callable[[R], Price]
     encoders: tuple[Encoder, ...] = (ENVELOPE,)
+    is_about_limits: bool = False
 
     @property
     def tag(self) -> str:
@@ -52,6 +57,25 @@ class Operation(Generic[R]):
     def encoder(self, media_type: str) -> Encoder:
         """Encoder of one of the media types."""
         return next(encoder for encoder in self.encoders if encoder.media_type == media_type)
+
+
+async def nobody_leaves() -> None:
+    """A client that waits for ever."""
+    await asyncio.Event().wait()
+
+
+class Job(NamedTuple):
+    """One request to be answered.
+
+    patience : seconds that its client is willing to wait, None if as long as the limits allow
+    has_left : returns once the client has gone, and its answer is of no use
+    """
+
+    operation: Operation[Any]
+    body: bytes
+    media_type: str
+    patience: float | None = None
+    has_left: Callable[[], Awaitable[None]] = nobody_leaves
 
 
 class Deferred(NamedTuple):
@@ -71,7 +95,7 @@ def perform(
         if allowance is not None and (price.lengthy or price.work > allowance):
             return Deferred()
         parsed = perf_counter()
-        outcome = operation.compute(request, media_type)
+        outcome = operation.compute(request, limits if operation.is_about_limits else media_type)
         computed = perf_counter()
         reply = _encode(operation, request, outcome, media_type)
     except ValidationError as error:
@@ -89,6 +113,10 @@ def _encode(operation: Operation[Any], request: ComputeRequest, outcome: Outcome
     document = {}
     if operation.result is not None:
         document = envelope.document(
-            operation.result, outcome.result, request=request, site=outcome.site, notices=outcome.warnings
+            operation.result,
+            outcome.result,
+            request=request,
+            site=outcome.site,
+            notices=outcome.warnings,
         )
     return operation.encoder(media_type).encode(Answered(request, outcome, document))

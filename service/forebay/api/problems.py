@@ -67,7 +67,7 @@ HTTP_PROBLEMS = {
     "memory-exceeded": ProblemKind(
         422,
         "The computation needs too much memory",
-        "The worker met the limit `worker_memory` of GET /v1/limits and was replaced. Ask for less at a time.",
+        "The worker met the limit `worker_memory` of GET /v1/limits and was replaced. Ask for less.",
     ),
     "too-many-requests": ProblemKind(
         429,
@@ -85,7 +85,7 @@ HTTP_PROBLEMS = {
     "not-ready": ProblemKind(
         503,
         "The service is not ready",
-        "Kernels are being prepared, no worker process answers, or the service is stopping. Retry after Retry-After.",
+        "Kernels are being prepared, no worker answers, or the service stops. Retry after Retry-After.",
     ),
     "worker-lost": ProblemKind(
         503,
@@ -95,7 +95,7 @@ HTTP_PROBLEMS = {
     "deadline-exceeded": ProblemKind(
         504,
         "The computation took too long",
-        "The work was stopped at the deadline of GET /v1/limits, or at that of `Prefer: wait`, counted from the "
+        "The work was stopped at the deadline of GET /v1/limits or of `Prefer: wait`, counted from the "
         "request. Ask for less, or POST /v1/estimate first.",
     ),
 }

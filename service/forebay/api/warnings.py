@@ -13,6 +13,10 @@ from forebay.flow.errors import Path
 class Notice(Protocol):
     """What a warning of the catalogue says about one layout or answer."""
 
+    def __hash__(self) -> int:
+        """Equal ones are written once."""
+        ...
+
     @property
     def code(self) -> str:
         """Permanent kebab-case name."""

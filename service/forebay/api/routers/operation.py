@@ -32,8 +32,9 @@ async def livez() -> Health:
     responses=problem_responses((503,)),
 )
 async def readyz(request: Request) -> Health:
-    if not request.app.state.readiness.is_ready:
-        raise Problem("not-ready", request.app.state.readiness.detail, headers={"Retry-After": "1"})
+    detail: str | None = request.app.state.readiness.detail
+    if detail is not None:
+        raise Problem("not-ready", detail, headers={"Retry-After": "1"})
     return Health()
 
 
@@ -46,6 +47,5 @@ async def readyz(request: Request) -> Health:
 )
 async def read_metrics(request: Request) -> Response:
     metrics: Metrics = request.app.state.metrics
-    metrics.lengthy.set(request.app.state.workshop.waiting)
     encoder, content_type = choose_encoder(request.headers.get("accept", ""))
     return Response(encoder(metrics.registry), media_type=content_type)

@@ -11,6 +11,7 @@ from forebay.api.routers import (
     chart,
     contour,
     documents,
+    estimate,
     field,
     operation,
     review,
@@ -35,6 +36,7 @@ OPERATIONS: dict[str, Operation[Any]] = {
         screen.CHECK,
         submergence.CHECK,
         review.REVIEW,
+        estimate.ESTIMATE,
         chart.FLOW_NET,
     )
 }
@@ -51,6 +53,7 @@ ROUTERS: tuple[APIRouter, ...] = (
     screen.router,
     submergence.router,
     review.router,
+    estimate.router,
     chart.router,
     catalogues.router,
     operation.router,

@@ -8,9 +8,11 @@ from fastapi.routing import APIRoute
 from starlette.responses import Response
 from typing_extensions import override
 
+from forebay.api.entity_tag import REVALIDATED, entity_tag, is_known
 from forebay.api.examples import request_example
 from forebay.api.media import JSON, negotiate, require_json
-from forebay.api.operation import Operation
+from forebay.api.operation import Job, Operation
+from forebay.api.prefer import patience_in
 from forebay.api.problems import MEDIA_TYPE, Problem
 from forebay.api.schemas.common import Answer, ComputeRequest
 
@@ -45,11 +47,10 @@ def serve(router: APIRouter, operation: Operation[Any]) -> None:
     async def handler(request: Request) -> Response:
         media_type = negotiate(request.headers.get("accept"), operation.media_types)
         require_json(request.headers.get("content-type"), request.headers.get("content-encoding"))
-        workshop: Workshop = request.app.state.workshop
-        reply = await workshop.run(operation, await request.body(), media_type)
-        if isinstance(reply, Problem):
-            raise reply
-        return Response(reply.body, media_type=reply.media_type, headers=reply.headers)
+        tag = entity_tag(operation.path, media_type, await request.body())
+        if is_known(tag, request.headers.get("if-none-match")):
+            return Response(status_code=304, headers={"ETag": tag, **REVALIDATED})
+        return await answered(request, operation, media_type, tag)
 
     router.add_api_route(
         operation.path,
@@ -64,6 +65,24 @@ def serve(router: APIRouter, operation: Operation[Any]) -> None:
         openapi_extra={"requestBody": body_of(operation)},
         route_class_override=ComputeRoute,
     )
+
+
+async def answered(request: Request, operation: Operation[Any], media_type: str, tag: str) -> Response:
+    """Answer of a request, which stops being computed when its client leaves."""
+
+    async def has_left() -> None:
+        while (await request.receive())["type"] != "http.disconnect":
+            continue
+
+    workshop: Workshop = request.app.state.workshop
+    patience = patience_in(request.headers.get("prefer"))
+    job = Job(operation, await request.body(), media_type, patience, has_left)
+    reply = await workshop.run(job)
+    applied = {} if patience is None else {"Preference-Applied": f"wait={int(workshop.deadline(patience))}"}
+    if isinstance(reply, Problem):
+        raise reply
+    headers = {"ETag": tag, **REVALIDATED, **applied, **reply.headers}
+    return Response(reply.body, media_type=reply.media_type, headers=headers)
 
 
 def body_of(operation: Operation[Any]) -> dict[str, Any]:

@@ -50,6 +50,8 @@ class LimitsResult(Answer):
     deadline: Annotated[TimeValue, Field(description="Longest computation, waiting for a worker included")]
     workers: Annotated[CountValue, Field(description="Processes for large computations")]
     queue: Annotated[CountValue, Field(description="Large computations that may wait")]
+    worker_memory: Annotated[BytesValue, Field(description="Memory of one computation in a worker process")]
+    token_concurrency: Annotated[CountValue, Field(description="Computations of one token at a time")]
 
 
 class CriterionValue(Answer):
