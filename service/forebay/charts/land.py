@@ -17,6 +17,7 @@ from forebay.flow.layout import (
 )
 from forebay.flow.shores import Wall
 from forebay.flow.stagnation.result import Window
+from forebay.trade.survey.rings import signed_area
 
 FAN = 49
 """Points on the arc that stands for the far rim of a corner's land."""
@@ -60,9 +61,15 @@ def surveyed_land(shore: Surveyed, window: Window) -> list[ComplexArray]:
     outer = np.array(shore.outer)
     middle = complex(outer.mean())
     far = reach_of(window, middle) + 2 * float(np.max(np.abs(outer - middle)))
-    square = middle + far * np.array([-1 - 1j, 1 - 1j, 1 + 1j, -1 + 1j])
+    square: ComplexArray = middle + far * np.array([-1 - 1j, 1 - 1j, 1 + 1j, -1 + 1j], dtype=np.complex128)
     # each ring runs against the one that holds it, so that water is a hole and an island is none
-    return [square, outer[::-1], *(np.array(island.points)[::-1] for island in shore.islands)]
+    islands = [turned(np.array(island.points), anticlockwise=True) for island in shore.islands]
+    return [square, turned(outer, anticlockwise=False), *islands]
+
+
+def turned(ring: ComplexArray, *, anticlockwise: bool) -> ComplexArray:
+    """The ring in one sense."""
+    return ring if (signed_area(ring) > 0.0) == anticlockwise else ring[::-1]
 
 
 def half_plane(point: complex, along: complex, reach: float) -> ComplexArray:

@@ -26,6 +26,9 @@ GOLDEN = 0.618034
 LEAST_SPACING = 2.6
 """Distance below which neighbouring lines are left out [px at scale 1]."""
 
+ROOM = 8.0
+"""Distance of streamlines wanted where rings leave little width to them, in brisk water [px at scale 1]."""
+
 MOST_NODES = 150_000
 """Nodes of the grid, above which its cells grow."""
 
@@ -63,7 +66,8 @@ def compute_net(scene: Scene, options: FlowNetOptions, pixels: float) -> FlowNet
     columns = int(min(pixels / CELL, np.sqrt(nodes / aspect)))
     lattice = lay_lattice(model, window, columns)
     speeds = speeds_on(model, lattice, options.units)
-    tube = tube_of(model, lattice, options.units)
+    room = ROOM * (window.x[1] - window.x[0]) / pixels if ring_lines(model.layout) else 0.0
+    tube = tube_of(model, lattice, options.units, brisk(lattice, speeds) * room)
     wanted = options.layers if tube is not None else frozenset()
     streamlines = equipotentials = None
     if tube is not None:
@@ -108,8 +112,17 @@ def in_water(lattice: Lattice, speeds: FloatArray) -> FloatArray:
     return speeds[lattice.wet & np.isfinite(speeds)]
 
 
-def tube_of(model: FlowModel, lattice: Lattice, units: DisplayUnits) -> Tube | None:
-    """Discharge of a stream tube, from the busiest row or column of the grid; None where nothing flows."""
+def brisk(lattice: Lattice, speeds: FloatArray) -> float:
+    """Speed that nine tenths of the water do not exceed, in the units of the speeds; 0 without water."""
+    known = in_water(lattice, speeds)
+    return float(np.percentile(known, 90.0)) if known.size else 0.0
+
+
+def tube_of(model: FlowModel, lattice: Lattice, units: DisplayUnits, least: float) -> Tube | None:
+    """Discharge of a stream tube, from the busiest row or column of the grid; None where nothing flows.
+
+    least : flow per depth below which the lines would stand too close, speed in the picture's units x [m]
+    """
     steps = np.where(lattice.usable_edges(), np.abs(lattice.steps.imag), 0.0)
     rows, columns = lattice.shape
     across = steps[: lattice.horizontal_count].reshape(rows, columns - 1).sum(axis=1)
@@ -122,7 +135,8 @@ def tube_of(model: FlowModel, lattice: Lattice, units: DisplayUnits) -> Tube | N
         return None
     discharges = [abs(outflow(element)) for element in model.layout.elements if outflow(element) != 0.0]
     shown = [units.lengthwise(discharge, 3) for discharge in discharges]
-    return choose_tube(shown, units.lengthwise(busiest * model.layout.depth, 3))
+    across = units.lengthwise(busiest * model.layout.depth, 3)
+    return choose_tube(shown, across, units.lengthwise(least * model.layout.depth, 2))
 
 
 def reference(scene: Scene) -> complex | None:

@@ -44,7 +44,7 @@ def round_down(value: float) -> float:
     return max(factor * power for factor in (1.0, 2.0, 5.0) if factor * power <= value * (1 + 1e-9))
 
 
-def choose_tube(discharges: list[float], flow_across: float) -> Tube:
+def choose_tube(discharges: list[float], flow_across: float, least: float = 0.0) -> Tube:
     """Discharge per stream tube near flow_across / LINES_ACROSS.
 
     First choice: a divisor of all discharges, so that every line runs from a source or the rim to a sink or
@@ -54,13 +54,14 @@ def choose_tube(discharges: list[float], flow_across: float) -> Tube:
     ----------
     discharges : of all sources and sinks, positive, in the picture's units
     flow_across : discharge over the busiest line of the grid, positive, same units
+    least : discharge below which the lines would stand too close, same units
 
     Returns
     -------
     Tube.
     """
     largest = max(discharges, default=0.0)
-    wanted = max(flow_across / LINES_ACROSS, largest / LINES_INTO_ONE)
+    wanted = max(flow_across / LINES_ACROSS, largest / LINES_INTO_ONE, least)
     for divisor, whole in ((common_divisor(discharges), True), (largest, len(discharges) == 1)):
         tube = roundest_part(divisor, wanted)
         if tube is not None:
