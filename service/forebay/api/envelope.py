@@ -12,6 +12,7 @@ import orjson
 
 from forebay import __version__
 from forebay.api.numbers import round_array, round_number
+from forebay.api.schemas.boundary import BoundaryValue
 from forebay.api.schemas.common import Answer, ComputeRequest
 from forebay.api.units import UnitSystem
 from forebay.api.warnings import Notice, written_warnings
@@ -142,12 +143,16 @@ def document(
     request: Written | ComputeRequest,
     site: Site | None = None,
     notices: Notices = (),
+    boundary: Json | None = None,
 ) -> Json:
     """The whole envelope of a result in SI, in the units and digits that the request asks for."""
-    presenter = Presenter(units_of(model), request.unit_system, request.digits)
+    units = {**units_of(BoundaryValue), **units_of(model)}
+    presenter = Presenter(units, request.unit_system, request.digits)
     presented = presenter.present(result)
+    walls = {} if boundary is None else {"boundary": presenter.present(boundary)}
     return {
         "result": presented,
+        **walls,
         "units": dict(sorted(presenter.units.items())),
         "warnings": written_warnings(notices, request.unit_system, request.digits),
         "provenance": provenance(site),

@@ -11,6 +11,7 @@ from forebay import __version__
 from forebay.api.openapi_dialect import translated
 from forebay.api.problems import MEDIA_TYPE, Problem, ProblemKind, catalogue
 from forebay.api.routers.serving import ENVELOPES, REQUESTS, problem_responses
+from forebay.api.schemas.boundary import BoundaryValue
 from forebay.api.schemas.catalogues import ProblemDocument, ProblemExplanation, Provenance, WarningValue
 
 REFERENCE = "#/components/schemas/{model}"
@@ -103,7 +104,7 @@ def build_document(app: FastAPI) -> dict[str, Any]:
 
 def _model_schemas() -> dict[str, Any]:
     models: list[type[BaseModel]] = [*REQUESTS.values(), *ENVELOPES.values()]
-    models += [ProblemDocument, ProblemExplanation, Provenance, WarningValue]
+    models += [BoundaryValue, ProblemDocument, ProblemExplanation, Provenance, WarningValue]
     _, schema = models_json_schema([(model, "validation") for model in models], ref_template=REFERENCE)
     definitions: dict[str, Any] = schema["$defs"]
     return definitions
@@ -111,17 +112,19 @@ def _model_schemas() -> dict[str, Any]:
 
 def _envelope(result: str) -> dict[str, Any]:
     references = {
-        name: {"$ref": REFERENCE.format(model=name)} for name in (result, "WarningValue", "Provenance")
+        name: {"$ref": REFERENCE.format(model=name)}
+        for name in (result, "BoundaryValue", "WarningValue", "Provenance")
     }
     return {
         "type": "object",
         "required": ["result", "units", "warnings", "provenance"],
         "properties": {
             "result": references[result],
+            "boundary": references["BoundaryValue"],
             "units": {
                 "type": "object",
                 "additionalProperties": {"type": "string"},
-                "description": "UCUM code of every numeric field of the result, by name",
+                "description": "UCUM code of every numeric field of result and boundary, by name",
                 "examples": [{"u": "m/s"}],
             },
             "warnings": {"type": "array", "items": references["WarningValue"]},

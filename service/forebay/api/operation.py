@@ -118,5 +118,6 @@ def _encode(operation: Operation[Any], request: ComputeRequest, outcome: Outcome
             request=request,
             site=outcome.site,
             notices=outcome.warnings,
+            boundary=outcome.boundary,
         )
     return operation.encoder(media_type).encode(Answered(request, outcome, document))

@@ -17,6 +17,7 @@ class Outcome:
     result : fields of the answer in SI; complex values are positions
     layout : the layout it was computed for;  data : what else is known of the site
     warnings : where the numbers should not be trusted
+    boundary : what the envelope says of walls that were solved for, in SI; None without any
     picture : encoded picture instead of a result;  pictures : those that go with a result, by caption
     """
 
@@ -24,6 +25,7 @@ class Outcome:
     layout: Layout | None = None
     data: SiteData | None = None
     warnings: tuple[Notice, ...] = ()
+    boundary: dict[str, Any] | None = None
     picture: bytes | None = None
     pictures: Mapping[str, bytes] = field(default_factory=dict)
 

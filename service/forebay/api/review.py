@@ -1,13 +1,16 @@
 """An outcome with the warnings that its layout and its numbers raise."""
 
+from dataclasses import replace
 from typing import Any
 
 import numpy as np
 
+from forebay.api.boundary import written_boundary
 from forebay.api.outcome import Outcome
 from forebay.api.schemas.layout import LayoutRequest
 from forebay.flow.layout import Layout
 from forebay.trade.applicability.site import Readings
+from forebay.workflows.boundary import bound_boundary
 from forebay.workflows.review import review_layout
 
 COMPUTED = Readings()
@@ -18,8 +21,13 @@ def reviewed(
     request: LayoutRequest, layout: Layout, result: dict[str, Any], readings: Readings | None = COMPUTED
 ) -> Outcome:
     """Outcome of a request about a layout; `readings` None if nothing has been computed of it."""
-    data = request.site_data()
-    return Outcome(result, layout, data, review_layout(layout, readings, data=data))
+    data, bound = request.site_data(), None
+    if readings is not None:
+        bound = bound_boundary(layout)
+        readings = replace(readings, boundary_bound=None if bound is None else bound.relative)
+    notices = review_layout(layout, readings, data=data)
+    walls = written_boundary(request.layout, request.unit_system, layout, bound)
+    return Outcome(result, layout, data, notices, boundary=walls)
 
 
 def readings_of(columns: dict[str, Any], assumed_temperature: float | None = None) -> Readings:

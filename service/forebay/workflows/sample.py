@@ -38,6 +38,7 @@ class Quantity(StrEnum):
     STRAIN_RATE_YY = "strain_rate_yy"
     ACCELERATION_X = "acceleration_x"
     ACCELERATION_Y = "acceleration_y"
+    VELOCITY_BOUND = "velocity_bound"
 
 
 IRROTATIONAL_ONLY = frozenset({Quantity.POTENTIAL, Quantity.PRESSURE_COEFFICIENT, Quantity.HEAD_CHANGE})
@@ -88,7 +89,8 @@ def sample_field(layout: Layout, points: ComplexArray, quantities: Collection[st
     FieldSamples. `potential` and `stream_function` are on the branch of `FlowModel.potential`: differences
     between two points have a meaning only if no branch cut lies between them (contours have none).
     Undefined values are nan: direction and what refers to it where the water stands still; potential, head
-    and pressure coefficient where the flow is rotational; pressure coefficient without ambient current.
+    and pressure coefficient where the flow is rotational; pressure coefficient without ambient current; the
+    bound of the velocity on walls, and where no wall had to be solved.
 
     Raises
     ------
@@ -160,6 +162,8 @@ def _derived(
     if asked & {Quantity.POTENTIAL, Quantity.STREAM_FUNCTION}:
         potential = model.potential(z)
         values |= {Quantity.POTENTIAL: potential.real, Quantity.STREAM_FUNCTION: potential.imag}
+    if Quantity.VELOCITY_BOUND in asked:
+        values[Quantity.VELOCITY_BOUND] = _velocity_bound(model, z)
     if asked & _CHEAP:
         values |= _kinematic(jet)
     speed = abs(model.layout.ambient.velocity)
@@ -175,6 +179,14 @@ def _derived(
     return values
 
 
+def _velocity_bound(model: FlowModel, z: ComplexArray) -> FloatArray:
+    """Largest error of the velocity that solved walls leave [m/s]; nan on them, and where none was solved."""
+    if model.bound is None:
+        return np.full(z.shape, np.nan)
+    bound = model.bound.velocity(model.distance_to_wall(z))
+    return np.where(np.isfinite(bound), bound, np.nan)
+
+
 _CHEAP = frozenset(Quantity) - {
     Quantity.POTENTIAL,
     Quantity.STREAM_FUNCTION,
@@ -182,6 +194,7 @@ _CHEAP = frozenset(Quantity) - {
     Quantity.HEAD_CHANGE,
     Quantity.PRESSURE_GRADIENT_ALONG,
     Quantity.PRESSURE_GRADIENT_ACROSS,
+    Quantity.VELOCITY_BOUND,
 }
 """What `_kinematic` gives."""
 

@@ -170,6 +170,15 @@ class FieldResult(Answer):
     strain_rate_yy: list[RateValue] = []
     acceleration_x: list[AccelerationValue] = []
     acceleration_y: list[AccelerationValue] = []
+    velocity_bound: Annotated[
+        list[SpeedValue],
+        Field(
+            description=(
+                "The velocity is no further off on account of solved walls; null on a wall, and where every "
+                "wall is straight or round"
+            )
+        ),
+    ] = []
     shape: Annotated[list[CountValue], Field(description="[ny, nx] of a grid, row by row; [n] otherwise")]
     flagged: Annotated[
         list[Flagged], Field(description="Points without a value, and points on a line element")

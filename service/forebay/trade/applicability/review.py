@@ -14,6 +14,7 @@ from forebay.trade.applicability import (
     missing,
     near_field,
     outfalls,
+    solved_walls,
     stratification,
     surface,
     unsteadiness,
@@ -25,6 +26,9 @@ from forebay.trade.applicability.warning import ApplicabilityWarning, Severity, 
 Rule = Callable[[Site], Iterator[ApplicabilityWarning]]
 
 RULES: tuple[tuple[WarningKind, Rule], ...] = (
+    (solved_walls.BOUNDARY_BOUND_WIDE, solved_walls.boundary_bound_wide),
+    (solved_walls.BOUNDARY_BOUND, solved_walls.boundary_bound),
+    (solved_walls.OPEN_EDGE_BLUNT, solved_walls.open_edge_blunt),
     (surface.RIGID_LID_FAILED, surface.rigid_lid_failed),
     (surface.RIGID_LID, surface.rigid_lid),
     (surface.SPEED_UP, surface.speed_up),

@@ -72,6 +72,7 @@ class Readings:
     has_dissipation : whether strain, dissipation or G are in it
     resolves_openings : whether the near field of openings of known elevation is in the numbers
     assumed_temperature : of the water [degC], where the answer depends on it and nobody gave it
+    boundary_bound : of the stream function's error along solved walls, over the flow through [-]
     """
 
     points: ComplexArray | None = None
@@ -79,6 +80,7 @@ class Readings:
     has_dissipation: bool = False
     resolves_openings: bool = False
     assumed_temperature: float | None = None
+    boundary_bound: float | None = None
 
 
 Thing = Element | Pier
