@@ -8,6 +8,7 @@ import numpy as np
 from forebay.flow.arrays import FloatArray
 from forebay.flow.gradient_fit import GradientFit, StandardErrors
 from forebay.flow.principal import principal_axes
+from forebay.flow.rheology import GeneralisedFluid, shear_rate
 from forebay.flow.stress import (
     Circles,
     Fluid,
@@ -29,6 +30,7 @@ class StressStatus(StrEnum):
     COMPUTED = "computed"
     OUT_OF_RANGE = "out-of-range"
     ON_SINGULARITY = "on-singularity"
+    INSIDE_OPENING = "inside-opening"
     ON_LAND = "on-land"
 
 
@@ -57,6 +59,7 @@ class StressState:
     mohr_circles : of the planes of (s1, s3), (s1, s2), (s2, s3)
     dissipation : Phi [W/m3]
     mean_velocity_gradient : G = sqrt(Phi / mu) [1/s]
+    apparent_viscosity : mu at this strain rate [Pa.s]; inf at rest in a shear-thinning fluid
     tractions : on the planes asked for, in order
     fit, standard_errors : of measured samples, else None
     """
@@ -80,6 +83,7 @@ class StressState:
     tractions: Tractions
     fit: GradientFit | None = None
     standard_errors: StandardErrors | None = None
+    apparent_viscosity: float = np.nan
 
     @property
     def plane_vorticity(self) -> float:
@@ -127,16 +131,19 @@ class _Columns:
     dilatation: list[float]
     dissipation: list[float]
     gradient: list[float]
+    viscosity: list[float]
     sound: list[bool]
 
 
-def stress_states(fluid: Fluid, places: tuple[StrainedPlace, ...]) -> tuple[StressState, ...]:
+def stress_states(
+    fluid: Fluid | GeneralisedFluid, places: tuple[StrainedPlace, ...]
+) -> tuple[StressState, ...]:
     """Stress, principal values, circles, dissipation, G and tractions of n places.
 
     Parameters
     ----------
-    fluid : Fluid
-        Viscosities.
+    fluid : Fluid or GeneralisedFluid
+        Viscosities; a generalised fluid has no bulk viscosity.
     places : tuple of StrainedPlace, length n
         Strain rates and pressures.
 
@@ -159,9 +166,8 @@ def stress_states(fluid: Fluid, places: tuple[StrainedPlace, ...]) -> tuple[Stre
     return tuple(_state(place, columns, index) for index, place in enumerate(places))
 
 
-def _columns(fluid: Fluid, rates: FloatArray, pressures: FloatArray) -> _Columns:
-    viscous = viscous_stress(rates, fluid)
-    dissipated = dissipation(rates, fluid)
+def _columns(fluid: Fluid | GeneralisedFluid, rates: FloatArray, pressures: FloatArray) -> _Columns:
+    viscosity, viscous, dissipated, gradient = _responses(fluid, rates)
     sound = np.isfinite(dissipated) & np.isfinite(viscous).all(axis=(1, 2))
     viscous[~sound], dissipated[~sound] = np.nan, np.nan
     axes = principal_axes(np.where(sound[:, None, None], viscous, 0.0))
@@ -178,9 +184,27 @@ def _columns(fluid: Fluid, rates: FloatArray, pressures: FloatArray) -> _Columns
         shear=max_shear(own).tolist(),
         dilatation=np.where(sound, dilatation(rates), np.nan).tolist(),
         dissipation=dissipated.tolist(),
-        gradient=mean_velocity_gradient(dissipated, fluid).tolist(),
+        gradient=np.where(sound, gradient, np.nan).tolist(),
+        viscosity=np.where(sound, viscosity, np.nan).tolist(),
         sound=sound.tolist(),
     )
+
+
+def _responses(
+    fluid: Fluid | GeneralisedFluid, rates: FloatArray
+) -> tuple[FloatArray, FloatArray, FloatArray, FloatArray]:
+    """Apparent viscosity, viscous stress, dissipation and G of n strain rates."""
+    if isinstance(fluid, Fluid):
+        dissipated = dissipation(rates, fluid)
+        viscosity = np.full(dissipated.shape, fluid.dynamic_viscosity)
+        gradient = mean_velocity_gradient(dissipated, fluid)
+        return viscosity, viscous_stress(rates, fluid), dissipated, gradient
+    unit = Fluid(1.0, fluid.density)
+    rate = shear_rate(rates)
+    viscosity = fluid.apparent_viscosity(rate)
+    acting = np.where(rate == 0.0, 0.0, viscosity)  # at rest there is no viscous stress, whatever mu is
+    viscous = acting[:, None, None] * viscous_stress(rates, unit)
+    return viscosity, viscous, acting * rate**2, rate
 
 
 def _circles(circles: Circles, pressures: FloatArray, k: int | None = None) -> list[Circle]:
@@ -215,4 +239,5 @@ def _state(place: StrainedPlace, columns: _Columns, n: int) -> StressState:
         tractions=NO_PLANES if normals is None else tractions(columns.viscous[n], place.pressure, normals),
         fit=place.fit if sound else None,
         standard_errors=place.standard_errors if sound else None,
+        apparent_viscosity=columns.viscosity[n],
     )

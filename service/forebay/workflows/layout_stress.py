@@ -1,17 +1,28 @@
 """Stress in the flow of a layout, from its exact velocity gradient."""
 
+from collections.abc import Mapping
+from types import MappingProxyType
 from typing import Protocol
 
 import numpy as np
 
 from forebay.flow.arrays import BoolArray, ComplexArray, IntArray
-from forebay.flow.errors import FlowError
-from forebay.flow.layout import Layout, Water
+from forebay.flow.layout import Layout, Sink, Source
 from forebay.flow.model import compile_layout
-from forebay.flow.stress import Fluid, gradient_from_jet, strain_rate, vorticity
+from forebay.flow.stress import gradient_from_jet, strain_rate, vorticity
 from forebay.flow.stress_state import StrainedPlace, StressState, StressStatus, stress_states
 from forebay.flow.terms import Jet
-from forebay.trade.fluids import newtonian_fluid
+from forebay.trade.fluids import AnyFluid, known_fluid
+
+UNKNOWN: Mapping[str, float] = MappingProxyType({})
+"""No opening has a known radius."""
+
+_STATUSES = (
+    StressStatus.COMPUTED,
+    StressStatus.ON_LAND,
+    StressStatus.ON_SINGULARITY,
+    StressStatus.INSIDE_OPENING,
+)
 
 
 class Field(Protocol):
@@ -31,7 +42,7 @@ class Field(Protocol):
 
 
 def compute_layout_stress(
-    fluid: Water | Fluid, layout: Layout, points: ComplexArray
+    fluid: AnyFluid, layout: Layout, points: ComplexArray, opening_radii: Mapping[str, float] = UNKNOWN
 ) -> tuple[StressState, ...]:
     """Strain rate, stress, principal values, dissipation and G of the flow at points of a layout.
 
@@ -39,17 +50,20 @@ def compute_layout_stress(
 
     Parameters
     ----------
-    fluid : Water or Fluid
+    fluid : Water, Fluid or GeneralisedFluid
         Often `layout.water`.
     layout : Layout
         The site.
     points : complex array, shape (n,)
         Places x + iy [m].
+    opening_radii : mapping
+        Radius in plan of point sources and sinks by name [m]; inside there is a structure and no water.
 
     Returns
     -------
     tuple of StressState, length n
-        Named "0", "1", ... by index; where there is no flow, nan and the status on-singularity or on-land.
+        Named "0", "1", ... by index; where there is no flow, nan and the status on-singularity,
+        inside-opening or on-land.
 
     Raises
     ------
@@ -62,33 +76,28 @@ def compute_layout_stress(
     -----
     G of the mean flow alone: turbulence, which dissipates far more in rivers, is not in it.
     """
-    try:
-        newtonian = newtonian_fluid(fluid)
-    except FlowError as error:
-        error.path = ("fluid", *error.path)
-        raise
-    return stress_states(newtonian, _strained_places(compile_layout(layout), points))
+    known, field = known_fluid(fluid), compile_layout(layout)
+    radii = [
+        (e.at, opening_radii[e.name])
+        for e in layout.elements
+        if isinstance(e, Source | Sink) and e.name in opening_radii
+    ]
+    return stress_states(known, _strained_places(field, points, radii))
 
 
-def _strained_places(field: Field, points: ComplexArray) -> tuple[StrainedPlace, ...]:
+def _strained_places(
+    field: Field, points: ComplexArray, openings: list[tuple[complex, float]]
+) -> tuple[StrainedPlace, ...]:
     jet = field.jet(points)
     gradient = gradient_from_jet(jet.slope, jet.skew)
-    on_singularity, on_land = field.singular(points) >= 0, ~field.wet(points)
-    gradient[on_singularity | on_land] = np.nan
+    inside = np.zeros(points.shape, dtype=np.bool_)
+    for at, radius in openings:
+        inside |= np.abs(points - at) < radius
+    reasons = (~field.wet(points), field.singular(points) >= 0, inside)
+    status = np.select(reasons, (1, 2, 3), 0)
+    gradient[status > 0] = np.nan
     rates, spins = strain_rate(gradient), vorticity(gradient)
     return tuple(
-        StrainedPlace(
-            name=str(n),
-            strain_rate=rates[n],
-            vorticity=spins[n],
-            at=complex(point),
-            status=_status(on_singularity=bool(on_singularity[n]), on_land=bool(on_land[n])),
-        )
+        StrainedPlace(str(n), rates[n], spins[n], at=complex(point), status=_STATUSES[status[n]])
         for n, point in enumerate(points)
     )
-
-
-def _status(*, on_singularity: bool, on_land: bool) -> StressStatus:
-    if on_land:
-        return StressStatus.ON_LAND
-    return StressStatus.ON_SINGULARITY if on_singularity else StressStatus.COMPUTED

@@ -1,16 +1,16 @@
 """Stress from velocity gradients, strain rates or measured velocities."""
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 
 from forebay.flow.arrays import FloatArray
 from forebay.flow.errors import FlowError
 from forebay.flow.gradient_fit import VelocitySamples, fit_gradient, propagate_errors
-from forebay.flow.layout import Water
+from forebay.flow.rheology import GeneralisedFluid
 from forebay.flow.stress import Fluid, padded, strain_rate, vorticity
 from forebay.flow.stress_state import StrainedPlace, StressState, stress_states
-from forebay.trade.fluids import newtonian_fluid
+from forebay.trade.fluids import AnyFluid, known_fluid
 
 SYMMETRY = 1e-9
 """Largest difference of mirrored entries of a strain rate, as a share of its largest entry [-]."""
@@ -74,20 +74,21 @@ class SampledState:
 State = GradientState | StrainRateState | SampledState
 
 
-def compute_stress(fluid: Water | Fluid, states: tuple[State, ...]) -> tuple[StressState, ...]:
+def compute_stress(fluid: AnyFluid, states: tuple[State, ...]) -> tuple[StressState, ...]:
     """Strain rate, stress, principal values, dissipation, G and tractions of given states.
 
     Parameters
     ----------
-    fluid : Water or Fluid
-        Water by temperature [degC] and salinity [g/kg], or viscosities [Pa.s] and density [kg/m3].
+    fluid : Water, Fluid or GeneralisedFluid
+        Water by temperature [degC] and salinity [g/kg], viscosities [Pa.s] and density [kg/m3], or a sludge.
     states : tuple of GradientState, StrainRateState or SampledState
         Each with its pressure [Pa] and the planes whose traction is asked for.
 
     Returns
     -------
     tuple of StressState
-        In order; measured states carry their fit and standard errors, nan for exactly three samples.
+        In order; measured states carry their fit and standard errors, nan for exactly three samples. Those
+        of stress and dissipation are nan in a generalised fluid, whose viscosity has an error of its own.
 
     Raises
     ------
@@ -97,20 +98,12 @@ def compute_stress(fluid: Water | Fluid, states: tuple[State, ...]) -> tuple[Str
     CollinearSamplesError
         Path ("states", i, ...).
     """
-    newtonian = _newtonian(fluid)
-    places = tuple(_place(newtonian, state, index) for index, state in enumerate(states))
-    return stress_states(newtonian, places)
+    known = known_fluid(fluid)
+    places = tuple(_place(known, state, index) for index, state in enumerate(states))
+    return stress_states(known, places)
 
 
-def _newtonian(fluid: Water | Fluid) -> Fluid:
-    try:
-        return newtonian_fluid(fluid)
-    except FlowError as error:
-        error.path = ("fluid", *error.path)
-        raise
-
-
-def _place(fluid: Fluid, state: State, index: int) -> StrainedPlace:
+def _place(fluid: Fluid | GeneralisedFluid, state: State, index: int) -> StrainedPlace:
     try:
         normals = _unit_normals(state.normals)
         match state:
@@ -144,11 +137,17 @@ def _strained_place(state: StrainRateState, normals: FloatArray) -> StrainedPlac
     )
 
 
-def _sampled_place(fluid: Fluid, state: SampledState, normals: FloatArray) -> StrainedPlace:
+def _sampled_place(
+    fluid: Fluid | GeneralisedFluid, state: SampledState, normals: FloatArray
+) -> StrainedPlace:
     fit = fit_gradient(state.samples)
     gradient = padded(fit.velocity_gradient)
     rate, spin = strain_rate(gradient), vorticity(gradient)
-    errors = propagate_errors(fit, fluid)
+    if isinstance(fluid, Fluid):
+        errors = propagate_errors(fit, fluid)
+    else:
+        errors = propagate_errors(fit, Fluid(1.0, fluid.density))
+        errors = replace(errors, viscous_stress=np.full((3, 3), np.nan), dissipation=float("nan"))
     return StrainedPlace(
         state.name, rate, spin, state.pressure, normals=normals, fit=fit, standard_errors=errors
     )

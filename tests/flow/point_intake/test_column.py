@@ -74,7 +74,7 @@ def test_methods_meet():
 def test_flux_through_a_cylinder_is_the_discharge(r):
     nodes, weights = np.polynomial.legendre.leggauss(60)
     halves = [(0.0, 0.9), (0.9, DEPTH)]  # split at the elevation, where the profile is steep
-    total = 0.0
+    total = np.float64(0.0)
     for low, high in halves:
         z = low + (high - low) * (nodes + 1) / 2
         excess, _ = column_excess(np.full(60, r * DEPTH), z, 0.9, DEPTH)

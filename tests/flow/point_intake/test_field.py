@@ -147,7 +147,8 @@ def test_without_an_elevation_there_is_no_near_field():
 @pytest.mark.parametrize(("parts", "count"), [(1, 2), (2, 4), (3, 6), (6, 12)])
 def test_corner_has_twice_as_many_images_as_parts(parts, count):
     shore = Corner(0j, 1 + 0j, math.pi / parts)
-    layout = Layout(DEPTH, shore=shore, elements=(Sink("a", 5 * np.exp(0.3j * math.pi / parts), 1.0),))
-    images = plan_images(shore, compile_layout(layout).walls, layout.elements[0].at, 100.0)
+    at = complex(5 * np.exp(0.3j * math.pi / parts))
+    walls = compile_layout(Layout(DEPTH, shore=shore, elements=(Sink("a", at, 1.0),))).walls
+    images = plan_images(shore, walls, at, 100.0)
     assert images.size == count
     assert np.abs(images) == pytest.approx(np.full(count, 5.0), rel=1e-12)

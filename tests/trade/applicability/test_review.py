@@ -55,7 +55,7 @@ outfall-passive pier-lee port-area-unknown rigid-lid rigid-lid-failed rotational
 salient-corner shallow-wake transverse-mixing turbulence-left-out uneven-depth water-temperature-assumed
 wind-drift wind-unknown
 near-field-error surface-speed-up tidal-reversal earth-rotation earth-rotation-strong layer-withdrawal
-buoyant-spreading interface-unknown tidal-period-unknown latitude-unknown
+buoyant-spreading threshold-from-memory interface-unknown tidal-period-unknown latitude-unknown
 """
 
 

@@ -31,6 +31,7 @@ from forebay.trade.applicability.ideal import END_SHARE
 from forebay.trade.applicability.review import CATALOGUE, RULES, evaluate
 from forebay.trade.applicability.site import PortShape, Readings, Site, SiteData
 from forebay.trade.applicability.stratification import critical_distance
+from forebay.trade.exposure import chosen_thresholds
 from forebay.trade.water import water_properties
 
 RULE = {kind.code: rule for kind, rule in RULES}
@@ -276,6 +277,12 @@ ALWAYS = [
     ("density-difference-unknown", site(STILL, SiteData(density_difference=0.0)), site(STILL), 1),
     ("depth-range-unknown", uneven(4.0), site(STILL), 1),
     ("intake-elevation-unknown", lined(), pair(30.0), 1),
+    (
+        "threshold-from-memory",
+        site(STILL, readings=Readings(thresholds=chosen_thresholds(["silver-perch-egg"]))),
+        site(STILL, readings=Readings(thresholds=chosen_thresholds(["salmonid-juvenile"]))),
+        1,
+    ),
     ("interface-unknown", layered(2.0), apart(9.0, SiteData(density_difference=1.0)), 1),
     ("tidal-period-unknown", salty(SiteData(tidal_period=44714.0)), salty(), 1),
     ("tidal-period-unknown", pier_in(0.5), salty(), 1),

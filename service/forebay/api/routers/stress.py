@@ -12,15 +12,30 @@ from forebay.api.operation import Operation
 from forebay.api.outcome import Outcome
 from forebay.api.routers.serving import serve
 from forebay.api.schemas.stress import StressRequest, StressResult
-from forebay.flow.layout import Water
+from forebay.flow.passage import Passage
+from forebay.flow.rheology import GeneralisedFluid
 from forebay.flow.stress import Fluid
 from forebay.flow.stress_state import StressState
 from forebay.trade.applicability.missing import temperature_assumed
 from forebay.trade.applicability.site import Readings
-from forebay.trade.fluids import newtonian_fluid
+from forebay.trade.applicability.thresholds import from_memory
+from forebay.trade.bed_shear import SOURCES
+from forebay.trade.exposure import THRESHOLDS
+from forebay.trade.fluids import AnyFluid, known_fluid
 from forebay.workflows.layout_stress import compute_layout_stress
 from forebay.workflows.review import review_layout
 from forebay.workflows.stress import compute_stress
+from forebay.workflows.stress_readings import Asked, PlaceReading, StressReadings, read_stresses
+
+FLOC_RANGE = (
+    "flocculation 20 to 80 1/s for 20 to 40 min, G t 1e4 to 1e5 (to 1.5e5); fragile alum and iron floc near "
+    "40 1/s, lime floc to 80 1/s: open water-treatment textbooks; G: Camp and Stein 1943, J. Boston Soc. "
+    "Civ. Eng. 30, 203-221. Meant for the total G, of which the mean flow gives the smaller part"
+)
+"""What published practice says of G and of its product with time."""
+
+EFFORT_A_WAY = 20_000_000
+"""Work to follow one streamline, counted in pairs of element and point."""
 
 VALUES_A_STATE = 70
 """Numbers in the answer for one state."""
@@ -31,28 +46,86 @@ EFFORT_A_STATE = 10_000
 
 def compute(request: StressRequest, _media_type: str) -> Outcome:
     fluid, units, assumed = request.flow_fluid(), request.unit_system, request.assumed_temperature
+    asked = request.asked()
     notices = () if assumed is None else (temperature_assumed(assumed, ("fluid",), in_layout=False),)
     if request.layout is None or request.at is None:
         refuse_repeated(request.states or (), "states")
         states = tuple(state.to_flow(units) for state in request.states or ())
-        return Outcome(all_written(compute_stress(fluid, states), fluid), warnings=notices)
+        computed = compute_stress(fluid, states)
+        read = read_stresses(computed, asked)
+        notices = (*notices, *from_memory(read.thresholds))
+        return Outcome(with_readings(all_written(computed, fluid), read, asked), warnings=notices)
     layout, data = request.layout.to_flow(units), request.layout.site_data(units)
-    found = compute_layout_stress(fluid, layout, request.at.positions(units))
+    found = compute_layout_stress(fluid, layout, request.at.positions(units), data.opening_radii)
+    read = read_stresses(found, asked, layout)
     own = request.layout.water.assumed_temperature if request.fluid is None else None
-    readings = Readings(has_dissipation=True, assumed_temperature=own)
+    readings = Readings(has_dissipation=True, assumed_temperature=own, thresholds=read.thresholds)
     notices = (*review_layout(layout, readings, data=data), *notices)
-    return Outcome(all_written(found, fluid), layout, data, notices)
+    return Outcome(with_readings(all_written(found, fluid), read, asked), layout, data, notices)
 
 
-def all_written(states: Sequence[StressState], fluid: Water | Fluid) -> dict[str, Any]:
+def all_written(states: Sequence[StressState], fluid: AnyFluid) -> dict[str, Any]:
     """Fields of every state, and of the fluid that they are of."""
-    known = newtonian_fluid(fluid)
-    properties = {
-        "dynamic_viscosity": known.dynamic_viscosity,
-        "density": known.density,
-        "second_viscosity": known.second_viscosity,
+    return {"fluid": fluid_written(known_fluid(fluid)), "states": [written(state) for state in states]}
+
+
+def fluid_written(fluid: Fluid | GeneralisedFluid) -> dict[str, Any]:
+    """Properties of a fluid."""
+    if isinstance(fluid, Fluid):
+        return {"law": "newtonian", **asdict(fluid)}
+    unknown = {"dynamic_viscosity": None, "second_viscosity": None}
+    return {"law": "herschel-bulkley", **unknown, **asdict(fluid)}
+
+
+def with_readings(result: dict[str, Any], read: StressReadings, asked: Asked) -> dict[str, Any]:
+    """A result with what the trade reads from it."""
+    has_shear = asked.friction is not None
+    pairs = zip(result["states"], read.places, strict=True)
+    result["states"] = [fields | place_written(place, has_shear=has_shear) for fields, place in pairs]
+    thresholds = [{**asdict(known), "confidence": str(known.confidence)} for known in read.thresholds]
+    openings = [
+        {"element": o.element, "threshold": o.threshold.id, "reach": o.reach, "inside": o.inside}
+        for o in read.openings
+    ]
+    if asked.exposure is not None:
+        result |= {"thresholds": thresholds, "openings": openings}
+    if asked.friction is not None:
+        law = asked.friction.law
+        coefficient = read.friction_coefficient
+        result["friction"] = {"law": law, "friction_coefficient": coefficient, "source": SOURCES[law]}
+    if read.passage is not None:
+        result["floc"] = floc_written(read.passage)
+    return result
+
+
+def place_written(place: PlaceReading, *, has_shear: bool) -> dict[str, Any]:
+    """Readings of one state."""
+    exposure = [
+        {"threshold": e.threshold.id, "margin": e.margin, "exceeded": e.exceeded} for e in place.exposures
+    ]
+    fields: dict[str, Any] = {"shear_rate": place.shear_rate}
+    if exposure:
+        fields["exposure"] = exposure
+    if has_shear:
+        shear = ("bed_shear", "wall_shear", "friction_velocity", "turbulent_gradient")
+        fields |= {name: getattr(place, name) for name in shear}
+    return fields
+
+
+def floc_written(passage: Passage) -> dict[str, Any]:
+    """Flocculation along a way."""
+    return {
+        "status": passage.status,
+        "miss": passage.miss,
+        "residence_time": passage.time,
+        "mean_gradient": passage.mean_gradient,
+        "largest_gradient": passage.largest_gradient,
+        "camp_number": passage.dose,
+        "camp_number_error": passage.dose_error,
+        "path": [] if passage.path is None else passage.path,
+        "stop": None if passage.end is None else str(passage.end),
+        "range": FLOC_RANGE,
     }
-    return {"fluid": properties, "states": [written(state) for state in states]}
 
 
 def written(state: StressState) -> dict[str, Any]:
@@ -86,6 +159,8 @@ def price(request: StressRequest) -> Price:
         return Price(count, values=VALUES_A_STATE * count, effort=EFFORT_A_STATE * count, path=("states",))
     count = request.at.count
     values, effort = VALUES_A_STATE * count, EFFORT_A_STATE * count + request.layout.effort
+    effort += 0 if request.floc is None else EFFORT_A_WAY
+    values += 3 * count * (0 if request.exposure is None else len(request.exposure) or len(THRESHOLDS))
     return Price(count, request.layout.size, values=values, effort=effort, path=("at",))
 
 
@@ -97,7 +172,10 @@ TENSOR = Operation(
         "From velocity gradients or strain rates (2x2 or 3x3), from velocities measured at three or "
         "more places (least squares, with standard errors), or from a layout at places. Tension is "
         "positive, sigma = -p I + tau. Without `second_viscosity` Stokes' hypothesis holds. "
-        "`mean_velocity_gradient` is G = sqrt(dissipation / viscosity) of the mean flow alone."
+        "`mean_velocity_gradient` is G = sqrt(dissipation / viscosity) of the mean flow alone. On request: "
+        "exposure of fish, larvae and eggs to the rate of shear, shear on bed and walls by a stated law of "
+        "friction, G and its product with the time along a streamline; sludges by power law, Bingham's or "
+        "Herschel and Bulkley's law with Papanastasiou's regularisation."
     ),
     request=StressRequest,
     result=StressResult,

@@ -7,7 +7,7 @@ from pydantic import Field, model_validator
 from pydantic_core import PydanticCustomError
 
 from forebay.api.schemas.common import Strict
-from forebay.api.schemas.elements import Doublet, Element, LineSink, LineSource, Sink, Source, Vortex
+from forebay.api.schemas.elements import Element, LineSink, LineSource, Sink, Source
 from forebay.api.schemas.quantities import (
     BedFriction,
     Degrees,
@@ -118,11 +118,9 @@ def _each(elements: list[Element], name: str, unit: str, units: UnitSystem) -> d
 def _elevations(elements: list[Element], depth: float, units: UnitSystem) -> dict[str, float]:
     found = {}
     for index, element in enumerate(elements):
-        match element:
-            case Source() | Sink() | LineSink():
-                elevation = _read(units, element.elevation, "m")
-            case LineSource() | Vortex() | Doublet():
-                elevation = None
+        if not isinstance(element, Source | Sink | LineSink):
+            continue
+        elevation = _read(units, element.elevation, "m")
         if elevation is not None and elevation > depth:
             raise ElevationOutsideWaterError(
                 f"{elevation:g} m above a bed {depth:g} m below the surface", ("elements", index, "elevation")

@@ -3,40 +3,54 @@
 from typing import Annotated, Any, Self
 
 import numpy as np
-from pydantic import Discriminator, Field, Tag, model_validator
+from pydantic import Field, model_validator
 from pydantic_core import PydanticCustomError
 
 from forebay.api.schemas.common import Answer, ComputeRequest, Name, Strict
+from forebay.api.schemas.fluids import Fluid, FluidValue
 from forebay.api.schemas.layout import Layout, Water
 from forebay.api.schemas.places import At, Column
 from forebay.api.schemas.quantities import (
     CountValue,
     CovarianceValue,
-    Density,
-    DensityValue,
-    DynamicViscosity,
     MetresPerSecond,
     Pascals,
     PerSecond,
     PositionValue,
+    PositiveMetres,
     PowerValue,
     PressureValue,
     PureNumber,
     RateValue,
     RatioValue,
-    SecondViscosity,
     SpeedValue,
     ViscosityValue,
+)
+from forebay.api.schemas.stress_readings import (
+    ExposureValue,
+    FlocValue,
+    FlocWay,
+    Friction,
+    FrictionValue,
+    OpeningReachValue,
+    ThresholdValue,
 )
 from forebay.api.schemas.ways import describe_ways
 from forebay.api.units import UnitSystem
 from forebay.flow.gradient_fit import VelocitySamples
-from forebay.flow.layout import Water as FlowWater
-from forebay.flow.stress import Fluid as FlowFluid
+from forebay.trade.fluids import AnyFluid
 from forebay.workflows.stress import GradientState, SampledState, StrainRateState
+from forebay.workflows.stress_readings import Asked
 
 MAX_STATES = 10_000
 """States that one request may hold."""
+
+MAX_THRESHOLDS = 50
+"""Thresholds that one request may name."""
+
+ThresholdId = Annotated[
+    str, Field(min_length=1, max_length=60, pattern=r"^[a-z-]+$", examples=["salmonid-juvenile"])
+]
 
 Row = Annotated[list[PerSecond], Field(min_length=2, max_length=3, fail_fast=True)]
 Tensor = Annotated[
@@ -44,37 +58,6 @@ Tensor = Annotated[
     Field(min_length=2, max_length=3, fail_fast=True, examples=[[[0.0, 0.2], [0.0, 0.0]]]),
 ]
 Speeds = Annotated[list[MetresPerSecond], Field(min_length=1, fail_fast=True, examples=[[0.3, 0.32, 0.29]])]
-
-
-class OwnFluid(Strict):
-    """A Newtonian fluid by its own properties."""
-
-    dynamic_viscosity: Annotated[DynamicViscosity, Field(description="Dynamic viscosity")]
-    density: Annotated[Density, Field(description="Density")]
-    second_viscosity: Annotated[
-        SecondViscosity | None,
-        Field(description="Factor of div u in the stress; -2/3 of the dynamic if absent"),
-    ] = None
-
-    def to_flow(self, units: UnitSystem) -> FlowFluid:
-        """Fluid in SI."""
-        second = None if self.second_viscosity is None else units.read(self.second_viscosity, "Pa.s")
-        return FlowFluid(
-            units.read(self.dynamic_viscosity, "Pa.s"), units.read(self.density, "kg/m3"), second
-        )
-
-
-def _kind_of_fluid(value: Any) -> str:  # noqa: ANN401
-    own = {"dynamic_viscosity", "density", "second_viscosity"}
-    names = value.keys() if isinstance(value, dict) else type(value).model_fields.keys()
-    return "own" if own & set(names) else "water"
-
-
-Fluid = Annotated[
-    Annotated[Water, Tag("water")] | Annotated[OwnFluid, Tag("own")],
-    Discriminator(_kind_of_fluid),
-    Field(description="Water by temperature and salinity, or a fluid by its own viscosity and density"),
-]
 
 
 class Samples(Strict):
@@ -147,7 +130,12 @@ class StressRequest(ComputeRequest):
     """Stress of given states, or in the flow of a layout."""
 
     model_config = {
-        "json_schema_extra": describe_ways(("states", "fluid"), ("layout", "at"), shared=frozenset({"fluid"}))
+        "json_schema_extra": describe_ways(
+            ("states", "fluid"),
+            ("layout", "at"),
+            shared=frozenset({"fluid"}),
+            only={"friction": "layout", "height": "layout", "floc": "layout"},
+        )
     }
 
     fluid: Annotated[Fluid | None, Field(description="The fluid; a layout's own water if absent")] = None
@@ -156,6 +144,19 @@ class StressRequest(ComputeRequest):
     ] = None
     layout: Annotated[Layout | None, Field(description="A site, instead of states")] = None
     at: Annotated[At | None, Field(description="Where in the site")] = None
+    exposure: Annotated[
+        list[ThresholdId] | None,
+        Field(
+            max_length=MAX_THRESHOLDS,
+            description="Thresholds of fish, larvae and eggs by id; an empty list stands for all of them",
+        ),
+    ] = None
+    friction: Annotated[Friction | None, Field(description="For the shear on bed and walls")] = None
+    height: Annotated[
+        PositiveMetres | None,
+        Field(description="Height above the bed of `turbulent_gradient`; half the depth if absent"),
+    ] = None
+    floc: Annotated[FlocWay | None, Field(description="Way along which G is integrated")] = None
 
     @model_validator(mode="after")
     def _one_way(self) -> Self:
@@ -163,9 +164,24 @@ class StressRequest(ComputeRequest):
             raise PydanticCustomError("one_way", "Either `states`, or `layout` with `at`")
         if self.layout is None and self.fluid is None:
             raise PydanticCustomError("one_way", "`states` need a `fluid`")
+        if self.layout is None and (self.friction, self.height, self.floc) != (None, None, None):
+            raise PydanticCustomError("one_way", "`friction`, `height` and `floc` belong to a `layout`")
+        if self.friction is not None and self.friction.ways != 1:
+            raise PydanticCustomError("one_way", "Exactly one law of friction")
         return self
 
-    def flow_fluid(self) -> FlowWater | FlowFluid:
+    def asked(self) -> Asked:
+        """What is to be read, in SI."""
+        units = self.unit_system
+        return Asked(
+            exposure=None if self.exposure is None else tuple(self.exposure),
+            friction=None if self.friction is None else self.friction.to_trade(units),
+            height=None if self.height is None else units.read(self.height, "m"),
+            way=None if self.floc is None else self.floc.to_flow(units),
+            opening_radii={} if self.layout is None else self.layout.converted(units)[1].opening_radii,
+        )
+
+    def flow_fluid(self) -> AnyFluid:
         """Fluid in SI: the given one, or the layout's water."""
         if self.fluid is not None:
             return self.fluid.to_flow(self.unit_system)
@@ -242,19 +258,25 @@ class StateValue(Answer):
     tractions: list[TractionValue]
     fit: FitValue | None = None
     standard_errors: StandardErrorsValue | None = None
-
-
-class FluidValue(Answer):
-    """The fluid whose stress it is."""
-
-    dynamic_viscosity: ViscosityValue
-    density: DensityValue
-    second_viscosity: Annotated[
-        ViscosityValue,
-        Field(
-            description="Factor of div u in the stress; null where Stokes' hypothesis sets -2/3 of dynamic"
-        ),
+    apparent_viscosity: Annotated[
+        ViscosityValue, Field(description="At this strain rate; null at rest where it has no limit")
     ]
+    shear_rate: Annotated[
+        RateValue, Field(description="sqrt(2 D' : D') of the strain rate's deviator; stress/tensor only")
+    ] = None
+    exposure: Annotated[list[ExposureValue], Field(description="Against each threshold asked for")] = []
+    bed_shear: Annotated[PressureValue, Field(description="rho c_f U^2 under the speed here")] = None
+    wall_shear: Annotated[PressureValue, Field(description="The same on a wall, null off the walls")] = None
+    friction_velocity: Annotated[SpeedValue, Field(description="u* = U sqrt(c_f)")] = None
+    turbulent_gradient: Annotated[
+        RateValue,
+        Field(
+            description=(
+                "Estimate of the turbulent G at `height`, sqrt(u*^3 / (kappa z nu)): an order of magnitude "
+                "that the mean flow's G leaves out"
+            )
+        ),
+    ] = None
 
 
 class StressResult(Answer):
@@ -262,3 +284,9 @@ class StressResult(Answer):
 
     fluid: Annotated[FluidValue, Field(description="The fluid used")]
     states: list[StateValue]
+    thresholds: Annotated[list[ThresholdValue], Field(description="Those asked for, with sources")] = []
+    openings: Annotated[
+        list[OpeningReachValue], Field(description="Of point sources and sinks, for each threshold")
+    ] = []
+    friction: Annotated[FrictionValue | None, Field(description="Law of the shear given")] = None
+    floc: Annotated[FlocValue | None, Field(description="Along the way asked for")] = None

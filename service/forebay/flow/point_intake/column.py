@@ -31,7 +31,7 @@ def _tail_term(y: float, p: float) -> float:
     fifth = 31.0 * (p + 3.0) * (p + 4.0) / 967680.0
     seventh = 127.0 * (p + 3.0) * (p + 4.0) * (p + 5.0) * (p + 6.0) / 154828800.0
     rest = (p + 1.0) * (p + 2.0) * q * (7.0 / 5760.0 - q * (fifth - q * seventh))
-    return p * y ** (-p - 1.0) * (rest - 1.0 / 24.0)
+    return float(p * y ** (-p - 1.0) * (rest - 1.0 / 24.0))
 
 
 @njit(cache=True, error_model="numpy")

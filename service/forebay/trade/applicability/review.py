@@ -17,6 +17,7 @@ from forebay.trade.applicability import (
     solved_walls,
     stratification,
     surface,
+    thresholds,
     unsteadiness,
     wakes,
 )
@@ -54,6 +55,7 @@ RULES: tuple[tuple[WarningKind, Rule], ...] = (
     (friction.TRANSVERSE_MIXING, friction.transverse_mixing),
     (friction.MIXING_LEFT_OUT, friction.mixing_left_out),
     (friction.TURBULENCE_LEFT_OUT, friction.turbulence_left_out),
+    (thresholds.THRESHOLD_FROM_MEMORY, thresholds.threshold_from_memory),
     (surface.WIND_DRIFT, surface.wind_drift),
     (surface.UNEVEN_DEPTH, surface.uneven_depth),
     (ideal.ROTATIONAL_FIELD, ideal.rotational_field),
@@ -116,7 +118,8 @@ class _Known(NamedTuple):
 
     def site(self) -> Site:
         """The site, whose readings cannot be read."""
-        data = {name: dict(value) if isinstance(value, frozenset) else value for name, value in self.data}
+        data: dict[str, Any] = dict(self.data)
+        data |= {name: dict(value) for name, value in self.data if isinstance(value, frozenset)}
         return Site(self.layout, SiteData(**data), cast("Readings", _NoAnswer()))
 
 

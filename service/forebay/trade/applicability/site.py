@@ -25,6 +25,7 @@ from forebay.flow.layout import (
     outflow,
 )
 from forebay.trade.applicability.geometry import distance_to, ends_of
+from forebay.trade.exposure import Threshold
 
 
 class PortShape(StrEnum):
@@ -71,6 +72,7 @@ class Readings:
     points : where values were asked for [m];  max_speed : largest speed among them [m/s]
     has_dissipation : whether strain, dissipation or G are in it
     resolves_openings : whether the near field of openings of known elevation is in the numbers
+    thresholds : of exposure that the answer compares with
     assumed_temperature : of the water [degC], where the answer depends on it and nobody gave it
     boundary_bound : of the stream function's error along solved walls, over the flow through [-]
     """
@@ -79,6 +81,7 @@ class Readings:
     max_speed: float | None = None
     has_dissipation: bool = False
     resolves_openings: bool = False
+    thresholds: tuple[Threshold, ...] = ()
     assumed_temperature: float | None = None
     boundary_bound: float | None = None
 

@@ -65,7 +65,7 @@ def critical_distance(element: Sink | LineSink, reduced_gravity: float) -> float
     reduced_gravity : g' [m/s2];  a line sink counts with its discharge per length of the line
     """
     if isinstance(element, Sink):
-        return POINT_FACTOR * (element.discharge**2 / reduced_gravity) ** 0.2
+        return float(POINT_FACTOR * (element.discharge**2 / reduced_gravity) ** 0.2)
     flux = element.discharge / abs(element.end - element.start)
     return float((flux**2 / (LINE_FACTOR * reduced_gravity)) ** (1.0 / 3.0))
 
