@@ -2,12 +2,12 @@
 
 import asyncio
 import json
-from collections.abc import Mapping, MutableMapping
+from collections.abc import Mapping, MutableMapping, Sequence
 from pathlib import Path
 from typing import Any
 
 from forebay.api.media import HTML, JSON, PDF
-from forebay.app import create_app
+from forebay.app import Application, create_app
 from forebay.report import engineers_table
 from forebay.settings import Settings
 
@@ -35,11 +35,14 @@ def assess_file(path: Path, sheet: Path | None = None) -> str:
     FileError : one of the files cannot be used, or the request in it is wrong
     """
     request = as_request(read_json(path))
-    media_type = None if sheet is None else sheet_type(sheet)
-    answer = json.loads(answer_to(path, request, JSON))
-    if sheet is not None and media_type is not None:
-        write_sheet(sheet, answer_to(path, request, media_type))
-    return engineers_table(request, answer)
+    media_types = [JSON] if sheet is None else [JSON, sheet_type(sheet)]
+    answers = asyncio.run(post(ROUTE, request, media_types))
+    for status, content in answers:
+        if status != 200:
+            raise FileError(problem_text(path, json.loads(content)))
+    if sheet is not None:
+        write_sheet(sheet, answers[1][1])
+    return engineers_table(request, json.loads(answers[0][1]))
 
 
 def sheet_type(sheet: Path) -> str:
@@ -55,14 +58,6 @@ def write_sheet(sheet: Path, content: bytes) -> None:
         sheet.write_bytes(content)
     except OSError as error:
         raise FileError(f"{sheet}: {error.strerror}") from error
-
-
-def answer_to(path: Path, request: Mapping[str, Any], media_type: str) -> bytes:
-    """The application's answer in a media type to the request in a file."""
-    status, answer = asyncio.run(post(ROUTE, request, media_type))
-    if status != 200:
-        raise FileError(problem_text(path, json.loads(answer)))
-    return answer
 
 
 def read_json(path: Path) -> dict[str, Any]:
@@ -91,10 +86,21 @@ def problem_text(path: Path, problem: Mapping[str, Any]) -> str:
     return "\n".join(lines)
 
 
-async def post(route: str, body: Mapping[str, Any], accept: str) -> tuple[int, bytes]:
-    """Status and answer of the application to a POST, handed over without a socket."""
+async def post(route: str, body: Mapping[str, Any], media_types: Sequence[str]) -> list[tuple[int, bytes]]:
+    """Status and answer of the application to a POST in each media type, handed over without a socket.
+
+    The application is not started: nobody asks whether it is ready, so that nothing is rehearsed.
+    """
     app = create_app(Settings.from_environment().model_copy(update={"deadline": DEADLINE}))
     payload = json.dumps(body).encode()
+    try:
+        return [await answer_of(app, route, payload, media_type) for media_type in media_types]
+    finally:
+        app.state.workshop.close()
+
+
+async def answer_of(app: Application, route: str, payload: bytes, accept: str) -> tuple[int, bytes]:
+    """Status and answer of an application to one POST."""
     sent: list[MutableMapping[str, Any]] = []
     waiting: list[MutableMapping[str, Any]] = [{"type": "http.request", "body": payload, "more_body": False}]
 
@@ -107,8 +113,7 @@ async def post(route: str, body: Mapping[str, Any], accept: str) -> tuple[int, b
     async def send(message: MutableMapping[str, Any]) -> None:
         sent.append(message)
 
-    async with app.router.lifespan_context(app):
-        await app(scope(route, len(payload), accept), receive, send)
+    await app(scope(route, len(payload), accept), receive, send)
     content = b"".join(message.get("body", b"") for message in sent)
     return int(sent[0]["status"]), content
 

@@ -2,9 +2,11 @@
 
 import dataclasses
 import hashlib
+import re
 from collections.abc import Mapping
 from enum import StrEnum
 from functools import cache, lru_cache
+from types import MappingProxyType
 from typing import Any
 
 import numpy as np
@@ -26,6 +28,9 @@ Site = tuple[Layout, SiteData | None]
 
 Notices = tuple[Notice, ...]
 
+REFERENCE = re.compile(r"'#/\$defs/([^']+)'")
+"""Reference to a definition in a schema written out as text."""
+
 
 @dataclasses.dataclass(frozen=True)
 class Written:
@@ -37,18 +42,31 @@ class Written:
 
 @cache
 def units_of(model: type[Answer]) -> Mapping[str, str]:
-    """SI unit of every numeric field that an answer can hold, by name.
+    """SI unit of every numeric field that an answer can hold, by name; those of its scopes left out.
 
     Raises ValueError if one name has two units, since an answer could not say which is meant.
     """
     schema = model.model_json_schema(by_alias=True)
     units: dict[str, str] = {}
-    for part in (schema, *schema.get("$defs", {}).values()):
-        for name, field in part.get("properties", {}).items():
+    own = {name: field for name, field in schema.get("properties", {}).items() if name not in model.SCOPES}
+    for fields in (own, *_referred(own, schema.get("$defs", {})).values()):
+        for name, field in fields.items():
             unit = unit_in(field)
             if unit is not None and units.setdefault(name, unit) != unit:
                 raise ValueError(f"{model.__name__}: {name} is in {units[name]} and in {unit}")
     return units
+
+
+def _referred(part: Json, definitions: Json) -> dict[str, Json]:
+    """Fields of every definition that a part of a schema refers to, directly or not, by name."""
+    found: dict[str, Json] = {}
+    ahead = [part]
+    while ahead:
+        for name in REFERENCE.findall(str(ahead.pop())):
+            if name not in found:
+                found[name] = definitions[name].get("properties", {})
+                ahead.append(definitions[name])
+    return found
 
 
 def unit_in(field: Json) -> str | None:
@@ -62,12 +80,23 @@ def unit_in(field: Json) -> str | None:
 
 
 class Presenter:
-    """Turns SI results into the client's units and digits, and keeps the units it used."""
+    """Turns SI results into the client's units and digits, and keeps the units it used.
 
-    def __init__(self, si_units: Mapping[str, str], system: UnitSystem, digits: int) -> None:
+    scopes : answers of other routes inside the result, by the member that holds each; a name that has another
+        unit there than outside is kept as `member.name`
+    """
+
+    def __init__(
+        self,
+        si_units: Mapping[str, str],
+        system: UnitSystem,
+        digits: int,
+        scopes: Mapping[str, type[Answer]] = MappingProxyType({}),
+    ) -> None:
         self._si_units = si_units
         self._system = system
         self._digits = digits
+        self._scopes = scopes
         self.units: dict[str, str] = {}
 
     def present(self, value: Any, name: str = "") -> Any:  # noqa: ANN401
@@ -78,7 +107,7 @@ class Presenter:
             case bool() | str() | None:
                 return str(value) if isinstance(value, StrEnum) else value
             case Mapping():
-                return {key: self.present(inner, key) for key, inner in value.items()}
+                return {key: self._member(inner, key) for key, inner in value.items()}
             case list() | tuple():
                 return [self.present(inner, name) for inner in value]
             case np.ndarray():
@@ -87,6 +116,17 @@ class Presenter:
                 return [self._number(value.real, name), self._number(value.imag, name)]
             case _:
                 return int(value) if isinstance(value, int | np.integer) else self._number(float(value), name)
+
+    def _member(self, value: Any, name: str) -> Any:  # noqa: ANN401
+        if name not in self._scopes:
+            return self.present(value, name)
+        inner = Presenter(units_of(self._scopes[name]), self._system, self._digits)
+        presented = inner.present(value)
+        for field, unit in inner.units.items():
+            outside = self._system.code(self._si_units[field]) if field in self._si_units else unit
+            is_same = outside == unit == self.units.get(field, unit)
+            self.units[field if is_same else f"{name}.{field}"] = unit
+        return presented
 
     def _number(self, value: float, name: str) -> float | None:
         return round_number(self._system.write(value, self._si_units[name]), self._digits)
@@ -147,7 +187,7 @@ def document(
 ) -> Json:
     """The whole envelope of a result in SI, in the units and digits that the request asks for."""
     units = {**units_of(BoundaryValue), **units_of(model)}
-    presenter = Presenter(units, request.unit_system, request.digits)
+    presenter = Presenter(units, request.unit_system, request.digits, model.SCOPES)
     presented = presenter.present(result)
     walls = {} if boundary is None else {"boundary": presenter.present(boundary)}
     return {

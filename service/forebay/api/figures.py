@@ -71,6 +71,15 @@ def error_bound(value: float | None) -> str:
     return figure(value, 1)
 
 
+def duration(seconds: float | None) -> str:
+    """Time in seconds, minutes, hours or days, whichever reads best; a dash if there is no value."""
+    if seconds is None or not math.isfinite(seconds):
+        return "–"
+    units = ((86400.0, "d", 3.0), (3600.0, "h", 3.0), (60.0, "min", 5.0))
+    size, name = next(((size, name) for size, name, least in units if seconds >= least * size), (1.0, "s"))
+    return f"{figure(seconds / size, 3)} {name}"
+
+
 def counted(number: int, noun: str, plural: str | None = None) -> str:
     """Number with its noun: `1 sink`, `2 sinks`."""
     return f"{number} {noun if number == 1 else plural or noun + 's'}"

@@ -1,9 +1,10 @@
 """The summary of an assessment: what an engineer wants to know, in ten lines at most."""
 
-from collections.abc import Sequence
+import math
+from collections.abc import Mapping, Sequence
 from typing import Any, NamedTuple
 
-from forebay.api.figures import counted, percent, quantity, share_with_error
+from forebay.api.figures import counted, duration, percent, quantity, share_with_error
 from forebay.api.units import UnitSystem
 from forebay.api.warnings import Notice
 from forebay.flow.layout import Layout, LineSink, LineSource, Sink, Source
@@ -12,13 +13,12 @@ from forebay.trade.applicability.warning import Severity
 from forebay.workflows.assessment import Assessment
 from forebay.workflows.parts import PartStatus
 
+Json = Mapping[str, Any]
+
 MOST_LINES = 10
 
-MOST_INTAKES = 3
-"""Intakes that have a line of their own."""
-
-MOST_ORIGINS = 3
-"""Origins of an intake's water that its line names."""
+MOST_NAMED = 3
+"""Things of one kind that a line names; the rest are counted."""
 
 NAMES = {
     Severity.UNSAFE_TO_USE: ("UNSAFE TO USE", "UNSAFE TO USE"),
@@ -34,35 +34,37 @@ CAUTION = (
 
 
 class Told(NamedTuple):
-    """What a summary is made of."""
+    """What a summary is made of; `result` holds the answers of the parts in SI."""
 
     layout: Layout
     assessment: Assessment
-    parts: Sequence[dict[str, Any]]
-    verdicts: Sequence[dict[str, Any]]
+    result: Json
     notices: Sequence[Notice]
     units: UnitSystem
 
-    def write(self, value: float, unit: str) -> str:
+    def write(self, value: float | None, unit: str) -> str:
         """Quantity in the client's units."""
-        return quantity(self.units.write(value, unit), self.units.code(unit))
+        known = value is not None and math.isfinite(value)
+        return quantity(self.units.write(value, unit) if known else None, self.units.code(unit))  # type: ignore[arg-type]
 
 
-def summary_of(told: Told) -> list[str]:
-    """At most ten lines, the caution last."""
-    lines = [
-        site_line(told),
-        *intake_lines(told),
-        *stagnation_lines(told),
-        *failure_lines(told),
-        verdict_line(told.verdicts),
+def summary_of(told: Told, parts: Sequence[Json], verdicts: Sequence[Json]) -> list[str]:
+    """At most ten lines, the caution last; intakes share the lines that the rest leaves."""
+    after = [
+        *spill_lines(told),
+        *screen_lines(told, verdicts),
+        *submergence_lines(told, verdicts),
+        *failure_lines(parts),
+        verdict_line(verdicts),
         warning_line(told.notices),
+        CAUTION,
     ]
-    return [*lines[: MOST_LINES - 1], CAUTION]
+    room = MOST_LINES - 1 - len(after)
+    return [site_line(told), *intake_lines(told, room), *after]
 
 
 def site_line(told: Told) -> str:
-    """Depth, current, and what is drawn and given."""
+    """Depth, current, what is drawn and given, and where the water stands still."""
     layout = told.layout
     drawn = [element.discharge for element in layout.elements if isinstance(element, Sink | LineSink)]
     given = [element.discharge for element in layout.elements if isinstance(element, Source | LineSource)]
@@ -71,29 +73,37 @@ def site_line(told: Told) -> str:
     parts = [f"Mean depth {depth}, current far upstream {current}"]
     parts += [f"{counted(len(drawn), 'intake')} drawing {told.write(sum(drawn), 'm3/s')}"] if drawn else []
     parts += [f"{counted(len(given), 'outfall')} giving {told.write(sum(given), 'm3/s')}"] if given else []
-    return "; ".join(parts) + "."
+    return "; ".join([*parts, *stagnation_words(told)]) + "."
 
 
-def intake_lines(told: Told) -> list[str]:
-    """One line for each of a few intakes, those that recirculate most first; one for the rest."""
+def intake_lines(told: Told, room: int) -> list[str]:
+    """One line for each of as many intakes as there is room for, those that recirculate most first."""
     intakes = told.assessment.withdrawal.answer or ()
-    ranked = sorted(intakes, key=lambda intake: -intake.recirculation_share)
-    lines = [intake_line(intake, told) for intake in ranked[:MOST_INTAKES]]
-    rest = ranked[MOST_INTAKES:]
-    if rest:
-        largest = percent(rest[0].recirculation_share)
-        lines.append(
-            f"{counted(len(rest), 'further intake')}: each takes back at most {largest} % from outfalls."
-        )
-    return lines
+    ranked = sorted(intakes, key=lambda intake: -known_or(intake.recirculation_share, math.inf))
+    if len(ranked) <= room:
+        return [intake_line(intake, told) for intake in ranked]
+    own = max(room - 1, 0)
+    lines = [intake_line(intake, told) for intake in ranked[:own]]
+    rest = ranked[own:]
+    largest = percent(rest[0].recirculation_share)
+    named = "further intake" if own else "intake"
+    return [
+        *lines,
+        f"{counted(len(rest), named)}: at most {largest} % taken back from outfalls ({rest[0].name}).",
+    ]
+
+
+def known_or(value: float, otherwise: float) -> float:
+    """The value, or something else where it is nan."""
+    return otherwise if math.isnan(value) else value
 
 
 def intake_line(intake: IntakeWithdrawal, told: Told) -> str:
     """Width of its strip, and the origins of its water."""
     width = intake.width_far_upstream
-    strip = f"takes a strip {told.write(width, 'm')} wide far upstream; " if width == width else ""  # noqa: PLR0124
-    named = [f"{percent(share.share)} % from {share.origin}" for share in intake.shares[:MOST_ORIGINS]]
-    rest = sum(share.share for share in intake.shares[MOST_ORIGINS:])
+    strip = "" if math.isnan(width) else f"takes a strip {told.write(width, 'm')} wide far upstream; "
+    named = [f"{percent(share.share)} % from {share.origin}" for share in intake.shares[:MOST_NAMED]]
+    rest = sum(share.share for share in intake.shares[MOST_NAMED:])
     named += [f"{percent(rest)} % from elsewhere"] if rest else []
     back = share_with_error(intake.recirculation_share, intake.share_error)
     draws = told.write(intake.discharge, "m3/s")
@@ -101,31 +111,95 @@ def intake_line(intake: IntakeWithdrawal, told: Told) -> str:
     return f"{intake.name} ({draws}): {strip}{origins}; recirculation {back} %; {intake.status}."
 
 
-def stagnation_lines(told: Told) -> list[str]:
+def stagnation_words(told: Told) -> list[str]:
     """How many stagnation points there are, and whether that is all."""
     search = told.assessment.stagnation.answer
     if search is None:
         return []
-    closed = "an independent count shows that these are all" if search.complete else "there MAY BE MORE"
-    return [f"{counted(search.found_count, 'stagnation point')} found; {closed}."]
+    closed = "shown to be all" if search.complete else "there MAY BE MORE"
+    return [f"{counted(search.found_count, 'stagnation point')}, {closed}"]
 
 
-def failure_lines(told: Told) -> list[str]:
+def spill_lines(told: Told) -> list[str]:
+    """What reaches intakes of each of the first releases, and when."""
+    releases = (told.result["spill"] or {}).get("releases", ())
+    if not releases:
+        return []
+    rest = len(releases) - MOST_NAMED
+    more = f"; {counted(rest, 'further release')}" if rest > 0 else ""
+    return [f"Spills: {'; '.join(release_text(release) for release in releases[:MOST_NAMED])}{more}."]
+
+
+def release_text(release: Json) -> str:
+    """Shares of one release with their first arrivals."""
+    reached = [
+        f"{percent(arrival['share'])} % to {arrival['intake']} from {duration(arrival['first_time'])} on"
+        for arrival in release["arrivals"]
+    ]
+    return f"{release['name']}: {', '.join(reached) or 'reaches no intake'}"
+
+
+def screen_lines(told: Told, verdicts: Sequence[Json]) -> list[str]:
+    """Largest approach velocity of each of the first screens, and the limits it meets."""
+    screens = (told.result["screen"] or {}).get("screens", ())
+    if not screens:
+        return []
+    texts = [
+        f"{screen['element']} approach at most {told.write(screen['max_approach'], 'm/s')}, "
+        f"{met_text(screen['element'], 'screen', verdicts)}"
+        for screen in screens[:MOST_NAMED]
+    ]
+    rest = len(screens) - MOST_NAMED
+    more = f"; {counted(rest, 'further screen')}" if rest > 0 else ""
+    return [f"Screens: {'; '.join(texts)}{more}."]
+
+
+def submergence_lines(told: Told, verdicts: Sequence[Json]) -> list[str]:
+    """Submergence of each of the first inlets, and the rules that it meets."""
+    inlets = (told.result["submergence"] or {}).get("inlets", ())
+    if not inlets:
+        return []
+    texts = [
+        f"{inlet['name']} {told.write(inlet['submergence'], 'm')} deep, "
+        f"{met_text(inlet['name'], 'submergence', verdicts)}"
+        for inlet in inlets[:MOST_NAMED]
+    ]
+    rest = len(inlets) - MOST_NAMED
+    more = f"; {counted(rest, 'further inlet')}" if rest > 0 else ""
+    return [f"Submergence: {'; '.join(texts)}{more}."]
+
+
+def met_text(subject: str, part: str, verdicts: Sequence[Json]) -> str:
+    """How many limits something meets."""
+    own = [verdict for verdict in verdicts if (verdict["part"], verdict["subject"]) == (part, subject)]
+    if not own:
+        return "no rule applied"
+    met = sum(verdict["pass"] is True for verdict in own)
+    return f"{met} of {counted(len(own), 'rule')} met"
+
+
+def failure_lines(parts: Sequence[Json]) -> list[str]:
     """Parts that failed, with the first reason."""
-    failed = [part for part in told.parts if part["status"] == PartStatus.FAILED]
+    failed = [part for part in parts if part["status"] == PartStatus.FAILED]
     if not failed:
         return []
     names = ", ".join(str(part["part"]) for part in failed)
     return [f"NOT COMPUTED: {names} ({failed[0]['reason']})."]
 
 
-def verdict_line(verdicts: Sequence[dict[str, Any]]) -> str:
+def verdict_line(verdicts: Sequence[Json]) -> str:
     """How many rules are met, and which are not."""
     missed = [verdict for verdict in verdicts if verdict["pass"] is False]
-    text = f"{counted(len(verdicts), 'rule')} applied, {len(missed)} not met"
+    open_ones = sum(verdict["pass"] is None for verdict in verdicts)
+    unjudged = f", {open_ones} not judged" if open_ones else ""
+    text = f"{counted(len(verdicts), 'rule')} applied, {len(missed)} not met{unjudged}"
     if not missed:
         return f"{text}."
-    return f"{text}: " + "; ".join(f"{verdict['subject']}, {verdict['rule']}" for verdict in missed[:3]) + "."
+    named = [
+        f"{verdict['subject']}, {verdict['rule']} ({verdict['criterion']})" for verdict in missed[:MOST_NAMED]
+    ]
+    more = f" and {len(missed) - MOST_NAMED} more" if len(missed) > MOST_NAMED else ""
+    return f"{text}: {'; '.join(named)}{more}."
 
 
 def warning_line(notices: Sequence[Notice]) -> str:

@@ -1,7 +1,9 @@
 """Verdicts of an assessment: every rule that was applied to it, with its outcome."""
 
+from collections.abc import Mapping
 from typing import Any
 
+from forebay.api.units import UnitSystem
 from forebay.flow.stagnation.result import StagnationSearch
 from forebay.flow.withdrawal.result import IntakeWithdrawal, WithdrawalStatus
 from forebay.workflows.assessment import Assessment
@@ -32,6 +34,49 @@ def verdicts_of(assessment: Assessment) -> list[Verdict]:
     return [*verdicts, *(share_verdict(intake) for intake in withdrawal or ())]
 
 
+def rule_verdicts(result: Mapping[str, Any], units: UnitSystem) -> list[Verdict]:
+    """Verdicts of the rules of screens and submergence, from the answers of these parts."""
+    screens = (result["screen"] or {}).get("screens", ())
+    inlets = (result["submergence"] or {}).get("inlets", ())
+    return [
+        *(screen_verdict(screen["element"], verdict) for screen in screens for verdict in screen["verdicts"]),
+        *(submergence_verdict(inlet["name"], rule, units) for inlet in inlets for rule in inlet["rules"]),
+    ]
+
+
+def submergence_verdict(inlet: str, rule: Mapping[str, Any], units: UnitSystem) -> Verdict:
+    """What one rule says of one inlet: its value is the submergence there is, its limit the one required."""
+    names = {"value": "available", "limit": "required", "margin": "margin"}
+    numbers = {name: rule[member] for name, member in names.items()}
+    return {
+        "part": "submergence",
+        "subject": inlet,
+        "criterion": str(rule["rule"]),
+        "rule": f"least submergence down to the {rule['datum']}",
+        **{name: None if value is None else units.write(value, "m") for name, value in numbers.items()},
+        "unit": units.code("m"),
+        "pass": rule["pass"],
+        "note": "; ".join(part for part in (rule["reason"], rule["note"]) if part),
+        "source": rule["source"],
+    }
+
+
+def screen_verdict(screen: str, verdict: Mapping[str, Any]) -> Verdict:
+    """What one limit says of one screen."""
+    from_memory = "limit from memory" if verdict["confidence"] == "from-memory" else ""
+    kept = {
+        name: verdict[name] for name in ("criterion", "value", "limit", "margin", "unit", "pass", "source")
+    }
+    note = "; ".join(part for part in (verdict["reason"], from_memory) if part)
+    return {
+        "part": "screen",
+        "subject": screen,
+        "rule": str(verdict["rule"]).replace("_", " ").replace("-", " "),
+        **kept,
+        "note": note,
+    }
+
+
 def wall_verdict(residual: float) -> Verdict:
     """Whether no water passes the walls of structures."""
     return {
@@ -40,6 +85,7 @@ def wall_verdict(residual: float) -> Verdict:
         "criterion": OWN,
         "rule": "velocity through them, over the reference speed",
         **most(residual, TIGHT_WALL, "1"),
+        "note": "",
         "source": OWN_SOURCE,
     }
 
@@ -56,6 +102,7 @@ def completeness_verdict(search: StagnationSearch) -> Verdict:
         "margin": None,
         "unit": "1",
         "pass": search.complete,
+        "note": "",
         "source": OWN_SOURCE,
     }
 
@@ -68,6 +115,7 @@ def share_verdict(intake: IntakeWithdrawal) -> Verdict:
         "criterion": OWN,
         "rule": "error of the shares of its water",
         **most(intake.share_error, CERTAIN_SHARE, "1"),
+        "note": "",
         "source": OWN_SOURCE,
     }
     doubtful = intake.status in {WithdrawalStatus.INCOMPLETE, WithdrawalStatus.UNRESOLVED}

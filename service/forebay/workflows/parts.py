@@ -6,7 +6,7 @@ from dataclasses import dataclass
 from enum import StrEnum
 from typing import Generic, TypeVar
 
-from forebay.flow.errors import FlowError
+from forebay.flow.errors import FlowError, Path
 
 T = TypeVar("T")
 
@@ -33,12 +33,14 @@ class Part(Generic[T]):
 
     status : what became of it;  answer : its answer, None unless the status is ok
     problem : permanent code of what went wrong, None unless it failed;  reason : why there is no answer
+    path : steps to the value at fault, from the layout if the first is "layout", else from the part's request
     """
 
     status: PartStatus
     answer: T | None = None
     problem: str | None = None
     reason: str | None = None
+    path: Path = ()
 
     @classmethod
     def of(cls, answer: T) -> "Part[T]":
@@ -62,7 +64,8 @@ def attempt(compute: Callable[[], T]) -> Part[T]:
     try:
         return Part.of(compute())
     except FlowError as error:
-        return Part(PartStatus.FAILED, None, error.code, error.detail)
+        path = ("layout", *error.path) if error.in_layout else error.path
+        return Part(PartStatus.FAILED, None, error.code, error.detail, path)
     except Exception:
         LOG.exception("a part of an assessment failed")
         return Part(

@@ -32,7 +32,7 @@ def verdicts_section(verdicts: Sequence[Json]) -> Html:
             f"{verdict['rule']} ({verdict['criterion']})",
             *(quantity(verdict[member], verdict["unit"]) for member in ("value", "limit", "margin")),
             OUTCOMES[verdict["pass"]],
-            verdict["source"],
+            noted(verdict),
         )
         for verdict in verdicts
     ]
@@ -43,9 +43,14 @@ def verdicts_section(verdicts: Sequence[Json]) -> Html:
         number("Limit"),
         number("Margin"),
         word("Outcome"),
-        word("Source"),
+        word("Source, note"),
     )
     return section("Verdicts", table("", columns, rows))
+
+
+def noted(verdict: Json) -> str:
+    """Source of a rule, with what must be known of the verdict."""
+    return f"{verdict['source']}; {verdict['note']}" if verdict["note"] else str(verdict["source"])
 
 
 def warnings_section(warnings: Sequence[Json], request: AssessmentRequest) -> Html:

@@ -55,7 +55,7 @@ def values_of(model: BaseModel, reading: Reading, *, but: frozenset[str] = NONE)
         is_default = reading.is_default or field not in model.model_fields_set
         if value is None or (is_many(value) and not reading.in_row):
             continue
-        if is_many(value):
+        if has_models(value):
             yield Given(name, "; ".join(in_line(item, reading.units) for item in value), "", is_default)
         elif isinstance(value, UnitDischarge):
             yield Given(name, number_text(value.value), unit_name(value.unit), is_default)
@@ -73,8 +73,10 @@ def members_of(model: BaseModel, prefix: str, but: frozenset[str] = NONE) -> Ite
             yield field, f"{prefix} {words(info.alias or field)}".strip(), getattr(model, field)
 
 
-def in_line(model: BaseModel, units: UnitSystem) -> str:
-    """All values of a model in one line."""
+def in_line(model: Any, units: UnitSystem) -> str:  # noqa: ANN401
+    """All values of a model in one line; something else as it is."""
+    if not isinstance(model, BaseModel):
+        return value_text(model)
     values = values_of(model, Reading(units, in_row=True))
     return ", ".join(f"{given.name} {given.value} {given.unit}".strip() for given in values)
 
@@ -108,6 +110,11 @@ def lists_in(
 
 def is_many(value: Any) -> bool:  # noqa: ANN401
     """Whether a value is a list of models, which becomes a table of its own."""
+    return has_models(value) and all(isinstance(item, BaseModel) for item in value)
+
+
+def has_models(value: Any) -> bool:  # noqa: ANN401
+    """Whether a value is a list that holds models."""
     return isinstance(value, list) and any(isinstance(item, BaseModel) for item in value)
 
 

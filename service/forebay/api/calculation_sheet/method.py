@@ -154,6 +154,39 @@ STEPS: tuple[Step, ...] = (
         "Batchelor 1967, section 3.3; Camp and Stein, J. Boston Soc. Civ. Eng. 30, 1943, 203-221",
         has_answer("stress"),
     ),
+    Step(
+        "Spills",
+        "Released water is followed along the streamlines of the mean flow. Shares change only across "
+        "dividing streamlines; times are integrals along streamlines, splines between them, with the error "
+        "stated.",
+        Html("<i>t</i> = ∫ d<i>s</i> / |<i>W</i>| along a streamline, &emsp;ψ constant"),
+        "Dormand and Prince, J. Comp. Appl. Math. 6, 1980, 19-26 (integration); Bear 1979, chapter 8 (times)",
+        has_answer("spill"),
+    ),
+    Step(
+        "Screens",
+        "Approach velocity is normal to the face, through the effective area; sweeping velocity is along "
+        "it. Parts of the face that meet a limit end at roots of the profile, not at samples.",
+        Html(
+            "<i>V</i><sub>a</sub> = |Im(<i>W</i> e<sup>iβ</sup>)| · gross / effective area, &emsp;"
+            "<i>V</i><sub>s</sub> = Re(<i>W</i> e<sup>iβ</sup>), &emsp;"
+            "exposure = ∫ d<i>s</i> / <i>V</i><sub>s</sub>, &emsp;"
+            "through slots = <i>Q</i> / open area"
+        ),
+        "definitions of the criteria named in the verdicts",
+        has_answer("screen"),
+    ),
+    Step(
+        "Submergence",
+        "Each rule is evaluated as it is published, down to its own datum, and held against what is there. "
+        "The circulation is that of the approach flow round the inlet.",
+        Html(
+            "<i>Fr</i> = <i>V</i> / √(<i>gD</i>), &emsp;<i>Re</i> = <i>VD</i>/ν, &emsp;"
+            "<i>We</i> = ρ<i>V</i>²<i>D</i>/σ, &emsp;<i>N</i><sub>Γ</sub> = Γ<i>S</i>/<i>Q</i>"
+        ),
+        "the rules named in the verdicts; Burgers, Adv. Appl. Mech. 1, 1948, 171-199 (vortex)",
+        has_answer("submergence"),
+    ),
 )
 """Every step that an assessment can have, in the order in which they are told."""
 

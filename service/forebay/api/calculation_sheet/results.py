@@ -5,6 +5,9 @@ from itertools import islice
 from typing import Any
 
 from forebay.api.calculation_sheet.markup import Html, element, joined, section
+from forebay.api.calculation_sheet.screen_results import screen_part
+from forebay.api.calculation_sheet.spill_results import spill_part
+from forebay.api.calculation_sheet.submergence_results import submergence_part
 from forebay.api.calculation_sheet.tables import number, table, word
 from forebay.api.figures import error_bound, figure, percent, share_with_error, unit_name
 
@@ -18,19 +21,21 @@ MOST_COLUMNS = 6
 """Columns of a field beside its places that fit on a page; more go into further tables."""
 
 
-class Units:
-    """Printed units of an answer's fields."""
+class Units(dict[str, str]):
+    """Printed units of an answer's fields; nothing for a field that the answer does not hold."""
 
-    def __init__(self, codes: Json) -> None:
-        self._codes = codes
+    def __missing__(self, _name: str) -> str:
+        return ""
 
-    def __getitem__(self, name: str) -> str:
-        return unit_name(self._codes.get(name, "1"))
+    def inside(self, part: str) -> "Units":
+        """Units of a part's fields, where a name may have another unit than elsewhere."""
+        own = {name.split(".")[1]: unit for name, unit in self.items() if name.startswith(f"{part}.")}
+        return Units({**self, **own})
 
 
 def results_section(result: Json, codes: Json) -> Html:
     """Every part that was computed, and what became of the others."""
-    units = Units(codes)
+    units = Units({name: unit_name(code) for name, code in codes.items()})
     return section(
         "Results",
         intakes_part(result["withdrawal"], units),
@@ -39,7 +44,10 @@ def results_section(result: Json, codes: Json) -> Html:
         ends_part(result["ends"], result["boundary_residual"], units),
         transects_part(result["transects"], units),
         field_part(result["field"], units),
-        stress_part(result["stress"], units),
+        stress_part(result["stress"], units.inside("stress")),
+        spill_part(result["spill"]),
+        screen_part(result["screen"], units.inside("screen")),
+        submergence_part(result["submergence"], units.inside("submergence")),
         parts_table(result["parts"]),
     )
 

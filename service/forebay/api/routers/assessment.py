@@ -12,14 +12,16 @@ from forebay.api.limits import Price
 from forebay.api.media import JSON
 from forebay.api.operation import Operation
 from forebay.api.outcome import Outcome
+from forebay.api.problems import pointer
 from forebay.api.review import COMPUTED, readings_of, reviewed
 from forebay.api.routers import field, stagnation, stress, withdrawal
+from forebay.api.routers.asked_parts import ROUTES, Asked, ask_routes, each_once, prices, within
 from forebay.api.routers.serving import serve
 from forebay.api.schemas.assessment import CAUTIONS, AssessmentRequest, AssessmentResult, PartName
 from forebay.api.schemas.contour import flow_contours
 from forebay.api.summary import Told, summary_of
 from forebay.api.units import UnitSystem
-from forebay.api.verdicts import verdicts_of
+from forebay.api.verdicts import rule_verdicts, verdicts_of
 from forebay.charts.options import FlowNetOptions
 from forebay.charts.units import SI, US
 from forebay.workflows.assessment import NOWHERE, Assessment, Questions, assess_layout
@@ -43,8 +45,10 @@ def compute(request: AssessmentRequest, media_type: str) -> Outcome:
     assumed = request.layout.water.assumed_temperature
     readings = COMPUTED if samples is None else readings_of(samples.columns, assumed)
     readings = replace(readings, has_dissipation=assessment.stress.answer is not None)
-    outcome = reviewed(request, layout, written(assessment, request), readings)
-    outcome = replace(outcome, result=told(assessment, outcome, request) | outcome.result)
+    asked = ask_routes(request)
+    outcome = reviewed(request, layout, written(assessment, request) | asked_written(asked), readings)
+    outcome = replace(outcome, warnings=each_once((*outcome.warnings, *asked.notices())))
+    outcome = replace(outcome, result=told(assessment, asked, outcome, request) | outcome.result)
     return outcome if media_type == JSON else replace(outcome, pictures=pictures_of(assessment, request))
 
 
@@ -70,18 +74,29 @@ def questions_of(request: AssessmentRequest) -> Questions:
     )
 
 
-def told(assessment: Assessment, outcome: Outcome, request: AssessmentRequest) -> dict[str, Any]:
+def told(
+    assessment: Assessment, asked: Asked, outcome: Outcome, request: AssessmentRequest
+) -> dict[str, Any]:
     """Summary, verdicts, and what became of each part."""
-    parts = [part_written(name, getattr(assessment, name)) for name in PartName]
-    verdicts = verdicts_of(assessment)
-    layout = request.flow_layout()
-    about = Told(layout, assessment, parts, verdicts, outcome.warnings, request.unit_system)
-    return {"summary": summary_of(about), "verdicts": verdicts, "parts": parts}
+    parts = [
+        part_written(name, asked.parts[name] if name in ROUTES else getattr(assessment, name))
+        for name in PartName
+    ]
+    verdicts = [*verdicts_of(assessment), *rule_verdicts(outcome.result, request.unit_system)]
+    about = Told(request.flow_layout(), assessment, outcome.result, outcome.warnings, request.unit_system)
+    return {"summary": summary_of(about, parts, verdicts), "verdicts": verdicts, "parts": parts}
 
 
 def part_written(name: PartName, part: Part[Any]) -> dict[str, Any]:
     """Fields of what became of a part."""
-    return {"part": name, "status": part.status, "problem": part.problem, "reason": part.reason}
+    place = pointer(within(name, part.path)) if part.path else None
+    fields = {"part": name, "status": part.status, "problem": part.problem, "reason": part.reason}
+    return {**fields, "pointer": place}
+
+
+def asked_written(asked: Asked) -> dict[str, Any]:
+    """Answers of the parts that have routes of their own; None for a part without one."""
+    return {str(name): asked.result(name) for name in ROUTES}
 
 
 def written(assessment: Assessment, request: AssessmentRequest) -> dict[str, Any]:
@@ -110,7 +125,15 @@ def written(assessment: Assessment, request: AssessmentRequest) -> dict[str, Any
 def price(request: AssessmentRequest) -> Price:
     count = 0 if request.at is None else request.at.count
     values = (5 + len(request.quantities) + stress.VALUES_A_STATE) * count
-    return Price(count, request.layout.size, values=values, lengthy=True, path=("at",))
+    asked = prices(request)
+    return Price(
+        count,
+        request.layout.size,
+        values=values + sum(price.values for price in asked),
+        effort=request.layout.effort + sum(price.effort for price in asked),
+        lengthy=True,
+        path=("at",),
+    )
 
 
 ASSESS = Operation(

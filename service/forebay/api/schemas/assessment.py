@@ -1,7 +1,9 @@
 """Request and answer of assessment."""
 
+from collections.abc import Mapping
 from enum import StrEnum
-from typing import Annotated
+from types import MappingProxyType
+from typing import Annotated, ClassVar
 
 from pydantic import Field
 
@@ -11,9 +13,12 @@ from forebay.api.schemas.field import FieldResult
 from forebay.api.schemas.layout import LayoutRequest
 from forebay.api.schemas.places import At
 from forebay.api.schemas.quantities import DischargeValue, FluxValue, OwnUnitValue, RatioValue, SpeedValue
+from forebay.api.schemas.screen import ScreenQuestions, ScreenResult
 from forebay.api.schemas.sheet import SheetRequest
+from forebay.api.schemas.spill import SpillQuestions, SpillResult
 from forebay.api.schemas.stagnation import StagnationResult
 from forebay.api.schemas.stress import StressResult
+from forebay.api.schemas.submergence import SubmergenceQuestions, SubmergenceResult
 from forebay.api.schemas.withdrawal import WithdrawalResult
 from forebay.workflows.parts import PartStatus
 from forebay.workflows.sample import Quantity
@@ -36,6 +41,9 @@ class PartName(StrEnum):
     TRANSECTS = "transects"
     FIELD = "field"
     STRESS = "stress"
+    SPILL = "spill"
+    SCREEN = "screen"
+    SUBMERGENCE = "submergence"
 
 
 class AssessmentRequest(LayoutRequest):
@@ -49,6 +57,15 @@ class AssessmentRequest(LayoutRequest):
         list[Quantity],
         Field(max_length=len(Quantity), fail_fast=True, description="Further columns of the field"),
     ] = []
+    spill: Annotated[
+        SpillQuestions | None, Field(description="As in /v1/spill/arrivals, without the layout")
+    ] = None
+    screen: Annotated[
+        ScreenQuestions | None, Field(description="As in /v1/screen/check, without the layout")
+    ] = None
+    submergence: Annotated[
+        SubmergenceQuestions | None, Field(description="As in /v1/submergence/check, without the layout")
+    ] = None
     sheet: Annotated[
         SheetRequest, Field(description="Title block of the calculation sheet (`Accept: text/html` or PDF)")
     ] = SheetRequest()
@@ -86,9 +103,13 @@ class PartValue(Answer):
         Field(description="Code of what went wrong, explained at /problems/{code}; null unless failed"),
     ]
     reason: Annotated[str | None, Field(description="Why there is no answer; null if there is one")]
+    pointer: Annotated[
+        str | None,
+        Field(description="Place at fault in the request; null if none", examples=["#/layout/water"]),
+    ]
 
 
-class VerdictValue(Answer):
+class AssessmentVerdict(Answer):
     """Whether something is as a rule wants it."""
 
     part: Annotated[PartName, Field(description="Where it belongs", examples=["stagnation"])]
@@ -100,17 +121,30 @@ class VerdictValue(Answer):
     margin: Annotated[OwnUnitValue, Field(description="Room left, negative where the rule is not met")]
     unit: Annotated[str, Field(description="UCUM code of value, limit and margin", examples=["1"])]
     passed: Annotated[bool | None, Field(alias="pass", description="Null if it could not be judged")]
+    note: Annotated[str, Field(description="Why it was not judged, or how well the rule is known")]
     source: Annotated[str, Field(description="Where the rule stands")]
 
 
 class AssessmentResult(Answer):
-    """Everything about one site. A part without an answer is null; `parts` says why."""
+    """Everything about one site. A part without an answer is null; `parts` says why.
+
+    `units` names a field of a part as `part.field` where its unit is another there than elsewhere.
+    """
+
+    SCOPES: ClassVar[Mapping[str, type[Answer]]] = MappingProxyType(
+        {
+            "stress": StressResult,
+            "spill": SpillResult,
+            "screen": ScreenResult,
+            "submergence": SubmergenceResult,
+        }
+    )
 
     summary: Annotated[
         list[str], Field(max_length=10, description="The whole in ten lines, in the units of the answer")
     ]
     verdicts: Annotated[
-        list[VerdictValue], Field(description="Every rule that was applied, with its outcome")
+        list[AssessmentVerdict], Field(description="Every rule that was applied, with its outcome")
     ]
     parts: Annotated[list[PartValue], Field(description="What became of each part")]
     withdrawal: WithdrawalResult | None
@@ -129,4 +163,7 @@ class AssessmentResult(Answer):
     transects: list[ContourValue] | None
     field: FieldResult | None
     stress: StressResult | None
+    spill: SpillResult | None
+    screen: ScreenResult | None
+    submergence: SubmergenceResult | None
     cautions: Annotated[list[str], Field(description="What no number can take away")]

@@ -1,6 +1,8 @@
 """What every request, answer and schema shares."""
 
-from typing import Annotated
+from collections.abc import Mapping
+from types import MappingProxyType
+from typing import Annotated, ClassVar
 
 from pydantic import BaseModel, ConfigDict, Field
 
@@ -18,6 +20,9 @@ class Answer(BaseModel):
     """Part of an answer: documents names and units; values never pass through it at run time."""
 
     model_config = ConfigDict(extra="forbid", protected_namespaces=())
+
+    SCOPES: ClassVar[Mapping[str, type["Answer"]]] = MappingProxyType({})
+    """Members that hold the answer of another route, whose names may have other units than elsewhere."""
 
 
 class ComputeRequest(Strict):

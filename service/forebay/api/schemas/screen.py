@@ -198,8 +198,8 @@ Criterion = Annotated[
 ]
 
 
-class ScreenRequest(LayoutRequest):
-    """Velocities along screen faces against criteria."""
+class ScreenQuestions(Strict):
+    """Screens, and what they are held against."""
 
     screens: Annotated[
         list[Screen],
@@ -220,6 +220,10 @@ class ScreenRequest(LayoutRequest):
     passing_discharge: Annotated[
         Discharge | None, Field(description="Flow that passes the intake, for limits on the share drawn")
     ] = None
+
+
+class ScreenRequest(LayoutRequest, ScreenQuestions):
+    """Velocities along screen faces against criteria."""
 
     @property
     def count(self) -> int:

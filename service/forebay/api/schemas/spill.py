@@ -19,6 +19,7 @@ from forebay.api.schemas.quantities import (
     ShareTolerance,
     TimeValue,
 )
+from forebay.api.schemas.ways import describe_ways
 from forebay.api.units import UnitSystem
 from forebay.flow.arrivals import release as flow
 from forebay.flow.arrivals.result import LAST_SHARE, Outcome, ReleaseStatus, Tail
@@ -54,9 +55,7 @@ WAYS = ("at", "polyline", "patch", "outfall")
 class ReleasePatch(Strict):
     """Either `centre` and `radius`, or `polygon`."""
 
-    model_config = {
-        "json_schema_extra": {"oneOf": [{"required": ["centre", "radius"]}, {"required": ["polygon"]}]}
-    }
+    model_config = {"json_schema_extra": describe_ways(("centre", "radius"), ("polygon",))}
 
     centre: Annotated[Position | None, Field(description="Centre of a disc")] = None
     radius: Annotated[PositiveMetres | None, Field(description="Radius of the disc")] = None
@@ -80,7 +79,7 @@ class ReleasePatch(Strict):
 class SpillRelease(Strict):
     """A release that starts at t = 0; exactly one of `at`, `polyline`, `patch`, `outfall` says where."""
 
-    model_config = {"json_schema_extra": {"oneOf": [{"required": [way]} for way in WAYS]}}
+    model_config = {"json_schema_extra": describe_ways(*((way,) for way in WAYS))}
 
     name: Name
     at: Annotated[Position | None, Field(description="At one point")] = None
@@ -125,7 +124,7 @@ class SpillTransect(Strict):
     polyline: Annotated[Polyline, Field(description="Vertices", examples=[[[60.0, 0.0], [60.0, 110.0]]])]
 
 
-class SpillRequest(LayoutRequest):
+class SpillQuestions(Strict):
     """Releases, and what is asked of them."""
 
     releases: Annotated[list[SpillRelease], Field(min_length=1, max_length=MAX_RELEASES)]
@@ -145,6 +144,10 @@ class SpillRequest(LayoutRequest):
     curve_points: Annotated[
         CurvePoints, Field(description="Points of each curve, at even steps of the share")
     ] = 101
+
+
+class SpillRequest(LayoutRequest, SpillQuestions):
+    """Releases, and what is asked of them."""
 
     def wanted(self) -> tuple[str, ...] | None:
         """Names of intakes asked for, each once, or None for all."""

@@ -129,10 +129,9 @@ def _read(units: UnitSystem, value: float | None, si_unit: str) -> float | None:
     return None if value is None else units.read(value, si_unit)
 
 
-class SubmergenceRequest(ComputeRequest):
-    """Inlets under a free surface."""
+class SubmergenceQuestions(Strict):
+    """Inlets, and what they are held against."""
 
-    layout: Annotated[Layout | None, Field(description="The site, for swirl and discharges")] = None
     water: Annotated[Water | None, Field(description="Of the inlets; the layout's if absent")] = None
     inlets: Annotated[list[Inlet], Field(min_length=1, max_length=MAX_INLETS, description="Inlets")]
     rules: Annotated[
@@ -153,6 +152,12 @@ class SubmergenceRequest(ComputeRequest):
         ),
     ] = None
     gravity: Annotated[Gravity | None, Field(description="The standard one if absent")] = None
+
+
+class SubmergenceRequest(ComputeRequest, SubmergenceQuestions):
+    """Inlets under a free surface."""
+
+    layout: Annotated[Layout | None, Field(description="The site, for swirl and discharges")] = None
 
     @property
     def known_water(self) -> Water:
