@@ -5,8 +5,11 @@ from dataclasses import replace
 import numpy as np
 import pytest
 
+from forebay.flow.contour import integrate_contour
 from forebay.flow.errors import UnknownNameError
-from forebay.flow.layout import Ambient, Basin, Layout, LineSink, Pier, Sink, Source, StraightBank
+from forebay.flow.layout import Ambient, Basin, Layout, LineSink, Outline, Pier, Sink, Source, StraightBank
+from forebay.flow.model import compile_layout
+from forebay.flow.paths import Contour
 from forebay.trade.criteria import Quantity
 from forebay.trade.criteria_catalogue import BY_ID
 from forebay.trade.screens.criteria_choice import (
@@ -17,6 +20,7 @@ from forebay.trade.screens.criteria_choice import (
 from forebay.trade.screens.notices import screen_notices
 from forebay.trade.screens.rules import VerdictStatus, limit_of, own_limits
 from forebay.trade.screens.screen import Cleaning, FaceMisplacedError, Pump, Screen, ScreenGeometryError
+from forebay.trade.screens.screen_flow import Basis
 from forebay.workflows.screen import check_screens
 
 BANK = StraightBank(0j, 1 + 0j)
@@ -215,3 +219,62 @@ def test_reading_inside_a_pier_is_refused():
     with pytest.raises(ScreenGeometryError) as caught:
         check_screens(layout, (replace(BAY, sample_offset=0.5),), ())
     assert caught.value.path == ("screens", 0, "sample_offset")
+
+
+QUAY = Outline("quay", (10 + 0j, 30 + 0j, 30 + 4j, 20 + 4j, 10 + 4j))
+"""A quay on the bank; its long side has a vertex in the middle, so that it is two edges."""
+
+AT_QUAY = Layout(
+    2.0, ambient=Ambient(0.5 + 0j), shore=BANK, elements=(Sink("well", 60 + 20j, 0.1),), structures=(QUAY,)
+)
+
+
+def face(start, end, **changes):
+    return Screen(name="face", face=(start, end), discharge=1.2, height=1.5, open_fraction=0.5, **changes)
+
+
+def test_face_on_the_wall_of_an_outline_draws():
+    flow, _ = flow_of(AT_QUAY, face(12 + 4j, 18 + 4j))
+    assert flow.basis is Basis.MODELLED
+    assert flow.on == "quay"
+    (side,) = flow.sides
+    assert side.name == "left"
+    # what crosses the wall is what the line draws, to rounding
+    assert flow.max_approach == pytest.approx(1.2 / (6.0 * 1.5), rel=1e-12)
+    assert flow.min_approach == pytest.approx(1.2 / (6.0 * 1.5), rel=1e-12)
+    # in front of it, the flow itself: continuity across a strip half a metre deep, by contour integration
+    drawing = replace(AT_QUAY, elements=(*AT_QUAY.elements, LineSink("face", 12 + 4j, 18 + 4j, 1.2)))
+    (read,) = check_screens(AT_QUAY, (face(12 + 4j, 18 + 4j, sample_offset=0.5),), ())
+    gate = Contour.polyline("gate", np.array([12 + 4.5j, 18 + 4.5j]))
+    through = integrate_contour(compile_layout(drawing), gate).discharge
+    assert through is not None
+    assert read.flow.sides[0].on.mean_approach * 6.0 * 1.5 == pytest.approx(abs(through), rel=1e-9)
+    # and the draw speeds the water up before the middle and slows it after
+    parts = np.array([0.2, 0.8])
+    gained = side.on.along(parts) - side.off.along(parts)
+    assert gained[0] > 0.01
+    assert gained[1] < -0.01
+
+
+def test_face_over_two_edges_takes_its_approach_from_its_area():
+    flow, _ = flow_of(AT_QUAY, face(16 + 4j, 24 + 4j))
+    assert flow.basis is Basis.CALCULATED
+    assert flow.on == "quay"
+    assert flow.max_approach == pytest.approx(1.2 / (8.0 * 1.5), rel=1e-12)
+    (side,) = flow.sides
+    assert side.on is side.off
+    codes = {notice.code for notice in screen_notices((flow,), (), 2.0)}
+    assert codes == {"regulator-decides", "screen-draw-left-out"}
+
+
+def test_two_faces_draw_together():
+    first, second = (
+        replace(face(2 + 0j, 8 + 0j), name="first"),
+        replace(face(32 + 0j, 38 + 0j), name="second"),
+    )
+    bare = replace(LAYOUT, elements=LAYOUT.elements[2:])
+    both = check_screens(bare, (first, second), ())
+    alone = check_screens(bare, (first,), ())
+    here, there = (checks[0].flow.sides[0].on.along(np.array([0.5])) for checks in (both, alone))
+    # the second, 30 m off, draws 0.3 m2/s from one side: q / (pi r) more, to the square of 3 / 30
+    assert here - there == pytest.approx([0.3 / (np.pi * 30.0)], rel=0.01)

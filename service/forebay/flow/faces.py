@@ -15,6 +15,10 @@ LEFT, RIGHT = 1.0, -1.0
 BESIDE = 2e-9
 """Distance from a line in the water, over its length, at which its sides are read: velocity jumps on it."""
 
+BEFORE_SOLVED = 1e-3
+"""Distance from a wall that was solved for, over the length of a face, at which velocities are read; also the
+part of its length that is not read at either end, where the wall may turn [-]."""
+
 _MARGIN_ON_WALL = 1e-12
 _MARGIN_IN_WATER = 1e-5
 """Parts of the length at the ends that are not read; at 2e-9 beside a line it is 2e-4 from its end's jump."""
@@ -58,16 +62,29 @@ class Face:
 def faces_of(line: Line, model: FlowModel, *, offset: float = 0.0) -> tuple[Face, ...]:
     """Faces of a line element: one if it lies in a wall, else left and right.
 
-    offset : distance in front at which velocities are read; on the face if 0, which for a line in the water
-    means 2e-9 of its length beside it (relative error of the velocity: the same over the distance to an end)
+    offset : distance in front at which velocities are read [m]. On the face if 0, which means 2e-9 of its
+    length beside a line in the water (relative error of the velocity: the same over the distance to an end),
+    and 1e-3 of it in front of a wall that was solved for, on which the velocity is not to be had.
     """
+    length = abs(line.end - line.start)
     for wall in model.walls:
         if wall.name == line.on:
             facing = (wall.direction * np.conj(line.end - line.start)).real
             side = LEFT if facing > 0.0 else RIGHT
             return (Face(line.start, line.end, side, offset, line.on, _MARGIN_ON_WALL),)
-    beside = max(offset, BESIDE * abs(line.end - line.start))
+    if line.on != WATER:
+        return (solved_face((line.start, line.end), model, on=line.on, offset=offset),)
+    beside = max(offset, BESIDE * length)
     return tuple(Face(line.start, line.end, side, beside, WATER, _MARGIN_IN_WATER) for side in (LEFT, RIGHT))
+
+
+def solved_face(ends: tuple[complex, complex], model: FlowModel, *, on: str, offset: float) -> Face:
+    """Face on a wall that was solved for; the water is where a thousandth of the length beside it is wet."""
+    start, end = ends
+    beside = np.asarray(0.5 * (start + end) + 1j * BEFORE_SOLVED * (end - start), dtype=np.complex128)
+    side = LEFT if bool(model.wet(beside)) else RIGHT
+    reading = max(offset, BEFORE_SOLVED * abs(end - start))
+    return Face(start, end, side, reading, on, BEFORE_SOLVED)
 
 
 def face_velocity(model: FlowModel, face: Face, parts: FloatArray) -> ComplexArray:

@@ -5,12 +5,13 @@ from dataclasses import dataclass, replace
 
 import numpy as np
 
-from forebay.flow.arrays import FloatArray
+from forebay.flow.arrays import ComplexArray, FloatArray
 from forebay.flow.errors import FlowError, LayoutError, UnknownNameError
-from forebay.flow.faces import LEFT, RIGHT, Face, face_velocity, faces_of, places_along
-from forebay.flow.features import Line
+from forebay.flow.faces import Face, face_velocity, faces_of, places_along, solved_face
+from forebay.flow.features import WATER, Line
 from forebay.flow.layout import Layout, LineSink
 from forebay.flow.model import FlowModel, compile_layout
+from forebay.flow.sheets.standing import footing_of
 from forebay.trade.screens.face_flow import FaceFlow
 from forebay.trade.screens.rules import Limit, Verdict, judge
 from forebay.trade.screens.screen import (
@@ -24,12 +25,6 @@ from forebay.trade.screens.screen_flow import Basis, ScreenFlow, SideFlow
 
 _ON_WALL = 1e-6
 """Distance from a wall, over the length of a face, that is on it [-]."""
-
-_INTO_WATER = 1e-3
-"""Distance beside a face, over its length, at which is looked for water [-]."""
-
-_MARGIN = 1e-3
-"""Part of a face on a structure's wall that is not read at either end, where the wall may turn [-]."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -48,8 +43,8 @@ def check_screens(
     Parameters
     ----------
     layout : the site
-    screens : over line sinks of the layout by name, or over faces on walls; a face on a bank draws as a line
-        sink that is added to the layout, one on the wall of a structure or of a surveyed shore does not draw
+    screens : over line sinks of the layout by name, or over faces on walls; a face draws as a line sink that
+        is added to the layout, unless it spans several edges of a wall that was solved for
     limits : what every screen is judged by;  passing : flow of the river or tide that passes [m3/s]
 
     Returns
@@ -77,12 +72,17 @@ def check_screens(
 
 
 def _with_faces(layout: Layout, screens: Iterable[Screen]) -> Layout:
-    """The layout with a line sink for every face that lies along a straight bank."""
-    model = compile_layout(layout)
+    """The layout with a line sink for every face that can draw: along a bank, or one edge of another wall."""
     for index, screen in enumerate(screens):
-        if screen.face is None or not _on_bank(model, screen.face):
+        if screen.face is None:
             continue
+        model = compile_layout(layout)
         sink = LineSink(screen.name, *screen.face, screen.discharge or 0.0)
+        if not _along_wall(model, sink):
+            detail = "the face must lie along a bank or along the wall of a structure"
+            raise FaceMisplacedError(detail, ("screens", index, "face"))
+        if not _can_draw(model, sink):
+            continue
         layout = replace(layout, elements=(*layout.elements, sink))
         try:
             compile_layout(layout)
@@ -91,10 +91,24 @@ def _with_faces(layout: Layout, screens: Iterable[Screen]) -> Layout:
     return layout
 
 
-def _on_bank(model: FlowModel, face: tuple[complex, complex]) -> bool:
-    ends = np.array([*face, 0.5 * (face[0] + face[1])])
-    reach = _ON_WALL * abs(face[1] - face[0])
-    return any(bool(np.all(wall.distance(ends) <= reach)) for wall in model.walls)
+def _along_wall(model: FlowModel, line: LineSink) -> bool:
+    """Whether a stretch lies on walls all along."""
+    places, reach = _along(line)
+    return reach > 0.0 and bool((np.abs(model.distance_to_wall(places)) <= reach).all())
+
+
+def _can_draw(model: FlowModel, line: LineSink) -> bool:
+    """Whether a stretch on walls lies along one straight bank, or along one edge of another wall."""
+    places, reach = _along(line)
+    on_bank = any(bool((wall.distance(places) <= reach).all()) for wall in model.walls)
+    return on_bank or footing_of(line, model.rings_set, reach) is not None
+
+
+def _along(line: LineSink) -> tuple[ComplexArray, float]:
+    """Places along a stretch, x + iy [m], and how far from a wall still is on it [m]."""
+    run = line.end - line.start
+    places = np.asarray(line.start + np.linspace(0.0, 1.0, 33) * run, dtype=np.complex128)
+    return places, _ON_WALL * abs(run)
 
 
 def _flow_of(layout: Layout, screen: Screen) -> ScreenFlow:
@@ -105,21 +119,24 @@ def _flow_of(layout: Layout, screen: Screen) -> ScreenFlow:
         return _drawing(layout, model, screen, line)
     if screen.face is None:
         raise UnknownNameError("No line sink has this name.", ("element",))
-    return _calculated(model, screen, screen.face)
+    face = solved_face(screen.face, model, on=_wall_name(model, screen.face), offset=screen.sample_offset)
+    mean = (screen.discharge or 0.0) / face.length / layout.depth
+    flow = _face_flow((model, model), screen, face, layout.depth, mean)
+    return ScreenFlow(screen, screen.discharge or 0.0, Basis.CALCULATED, (SideFlow(flow, flow),))
 
 
 def _drawing(layout: Layout, model: FlowModel, screen: Screen, line: Line) -> ScreenFlow:
     """Screen over a line sink, with the flow that its pump makes and with that without it."""
     still, reason = _without(layout, screen.name)
-    sides = tuple(
-        SideFlow(
-            _face_flow(model, screen, face, layout.depth),
-            None if still is None else _face_flow(model, screen, face, layout.depth, still),
-        )
-        for face in faces_of(line, model, offset=screen.sample_offset)
-    )
+    sides = []
+    for face in faces_of(line, model, offset=screen.sample_offset):
+        # on a wall that was solved for, what crosses it is what the line draws: better known than read
+        even = -line.flux if line.on != WATER and face.offset > screen.sample_offset else None
+        on = _face_flow((model, model), screen, face, layout.depth, even)
+        off = None if still is None else _face_flow((model, still), screen, face, layout.depth, even)
+        sides.append(SideFlow(on, off))
     discharge = -line.flux * layout.depth * abs(line.end - line.start)
-    return ScreenFlow(screen, discharge, Basis.MODELLED, sides, reason)
+    return ScreenFlow(screen, discharge, Basis.MODELLED, tuple(sides), reason)
 
 
 def _without(layout: Layout, name: str) -> tuple[FlowModel | None, str]:
@@ -132,73 +149,38 @@ def _without(layout: Layout, name: str) -> tuple[FlowModel | None, str]:
 
 
 def _face_flow(
-    model: FlowModel, screen: Screen, face: Face, depth: float, still: FlowModel | None = None
+    models: tuple[FlowModel, FlowModel], screen: Screen, face: Face, depth: float, even: float | None
 ) -> FaceFlow:
-    """One side of a screen; `still` is the flow whose sweeping velocity counts, if it is another one."""
-    _require_wet(model, face)
+    """One side of a screen.
+
+    models : of the approach and of the sweeping velocity;  even : velocity into the face over the whole
+    depth where it is the same all along [m/s], None to read it
+    """
+    drawing, swept = models
     factor = depth / screen.effective_height
-    swept = still or model
+    _require_wet(drawing, face)
 
     def approach(parts: FloatArray) -> FloatArray:
-        return factor * face_velocity(model, face, parts).imag
+        if even is not None:
+            return np.full(parts.shape, factor * even)
+        return factor * face_velocity(drawing, face, parts).imag
 
     def along(parts: FloatArray) -> FloatArray:
         return face_velocity(swept, face, parts).real
 
     reach = end_reach_of(screen, face.length) / face.length
     bypass = bypass_of(screen, face.length)
-    return FaceFlow(face, approach, along, places_along(model, face), max(reach, face.margin), bypass)
+    return FaceFlow(face, approach, along, places_along(drawing, face), max(reach, face.margin), bypass)
 
 
 def _require_wet(model: FlowModel, face: Face) -> None:
     """Raise ScreenGeometryError if velocities would be read on land."""
     parts = np.linspace(0.0, 1.0, 101)[1:-1]
     if not bool(model.wet(face.positions(parts)).all()):
-        raise ScreenGeometryError(
-            "velocities would be read on land or inside a structure", ("sample_offset",)
-        )
+        raise ScreenGeometryError("velocities would be read on land or in a structure", ("sample_offset",))
 
 
-def _calculated(model: FlowModel, screen: Screen, ends: tuple[complex, complex]) -> ScreenFlow:
-    """Screen on a wall that cannot draw: approach is discharge over area, sweeping is that of the flow."""
-    face = _face_on_wall(model, screen, ends)
-    _require_wet(model, face)
-    discharge = screen.discharge or 0.0
-    mean = discharge / (face.length * screen.effective_height)
-
-    def approach(parts: FloatArray) -> FloatArray:
-        return np.full(parts.shape, mean)
-
-    def along(parts: FloatArray) -> FloatArray:
-        return face_velocity(model, face, parts).real
-
-    reach = end_reach_of(screen, face.length) / face.length
-    bypass = bypass_of(screen, face.length)
-    flow = FaceFlow(face, approach, along, places_along(model, face), max(reach, face.margin), bypass)
-    return ScreenFlow(screen, discharge, Basis.CALCULATED, (SideFlow(flow, flow),))
-
-
-def _face_on_wall(model: FlowModel, screen: Screen, ends: tuple[complex, complex]) -> Face:
-    """Face on the wall of a structure or of a surveyed shore.
-
-    Raises FaceMisplacedError if the stretch does not lie on a wall all along, or has no water on one side.
-    """
-    start, end = ends
-    length = abs(end - start)
-    along = np.asarray(start + np.linspace(0.0, 1.0, 33) * (end - start), dtype=np.complex128)
-    if length == 0.0 or not bool((np.abs(model.distance_to_wall(along)) <= _ON_WALL * length).all()):
-        raise FaceMisplacedError("the face must lie along a bank or along the wall of a structure", ("face",))
-    beside = 0.5 * (start + end) + 1j * _INTO_WATER * (end - start) * np.array([LEFT, RIGHT])
-    wet = model.wet(beside)
-    if bool(wet[0]) == bool(wet[1]):
-        raise FaceMisplacedError("the face has water on both sides or on none", ("face",))
-    side = LEFT if wet[0] else RIGHT
-    offset = max(screen.sample_offset, _INTO_WATER * length)
-    return Face(start, end, side, offset, _wall_name(model, 0.5 * (start + end)), _MARGIN)
-
-
-def _wall_name(model: FlowModel, at: complex) -> str:
-    """Name of the wall nearest to a place."""
-    index = int(model.nearest_wall(np.asarray(at)))
-    names = [*(wall.name for wall in model.walls), *(pier.name for pier in model.piers)]
-    return names[index] if 0 <= index < len(names) else "wall"
+def _wall_name(model: FlowModel, ends: tuple[complex, complex]) -> str:
+    """Name of the wall on which a stretch lies."""
+    index = int(model.nearest_wall(np.asarray(0.5 * (ends[0] + ends[1]), dtype=np.complex128)))
+    return model.wall_names[index]

@@ -62,10 +62,10 @@ DRAW_LEFT_OUT = WarningKind(
     code="screen-draw-left-out",
     severity=Severity.NOTE,
     meaning=(
-        "the face is on a wall that cannot draw in the model: its approach velocity is discharge over area, "
-        "and its own draw is not in the sweeping velocity"
+        "the face spans several edges of its wall and cannot draw in the model: its approach velocity is "
+        "discharge over area, and its own draw is not in the sweeping velocity"
     ),
-    threshold="a face on the wall of a structure or of a surveyed shore",
+    threshold="a face over more than one edge of an outline or of a surveyed shore",
     formula="approach = discharge / effective area",
     source="definition of the calculated approach velocity in pump-intake criteria",
 )
