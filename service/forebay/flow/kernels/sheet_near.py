@@ -215,3 +215,40 @@ def image_sum(
             slope += weights[e, j] * (0.25 - x * x)
         total += weights[e, j] * x
     return total, slope
+
+
+@njit(cache=True, error_model="numpy")
+def off_nodes(
+    z: ComplexArray, ends: tuple[ComplexArray, ComplexArray], steps: ComplexArray, tree: Tree, reach: float
+) -> ComplexArray:
+    """Points that lie on an end of an element to rounding, moved into the water; all others as they are.
+
+    There each element would be seen from a side of its own. ends : first and second, shape (m,) [m]
+    steps : shape (m, 2), moves at both;  reach : distance that is rounding [m]
+    """
+    centres, squares = tree
+    leaves = (centres.shape[0] + 1) // 2
+    moved = z.copy()
+    stack = np.empty(_STACK, np.int64)
+    for i in range(z.shape[0]):
+        stack[0] = 0
+        depth = 1
+        while depth > 0:
+            depth -= 1
+            k = stack[depth]
+            dx = z[i].real - centres[k].real
+            dy = z[i].imag - centres[k].imag
+            if not dx * dx + dy * dy <= squares[k]:
+                continue
+            if k < leaves - 1:
+                stack[depth] = 2 * k + 1
+                stack[depth + 1] = 2 * k + 2
+                depth += 2
+                continue
+            first = (k - leaves + 1) * LEAF
+            for e in range(first, min(first + LEAF, steps.shape[0])):
+                if abs(z[i] - ends[0][e]) <= reach:
+                    moved[i] = z[i] + steps[e, 0]
+                elif abs(z[i] - ends[1][e]) <= reach:
+                    moved[i] = z[i] + steps[e, 1]
+    return moved

@@ -20,6 +20,7 @@ from forebay.flow.kernels.sheet_near import (
     Elements,
     Tree,
     near_sums,
+    off_nodes,
 )
 from forebay.flow.maps import AffineMap, LogarithmMap
 from forebay.flow.poles import PERIODIC
@@ -29,6 +30,10 @@ from forebay.flow.shores import Frame
 
 ABSCISSAE, _WEIGHTS = np.polynomial.legendre.leggauss(NODES)
 _VANDER = np.asarray(np.polynomial.legendre.legvander(ABSCISSAE, DEGREE), dtype=np.float64)
+_STEP = 2.0
+"""How far a point on an end of an element is moved off it over the distance that counts as on it [-]."""
+_ROUNDING = 1e-3
+"""Distance from an end within which it is, over the distance that counts as on an element [-]."""
 Values = FloatArray | np.ndarray[tuple[int, ...], np.dtype[np.floating]]
 _SLOPES = np.asarray(
     np.polynomial.legendre.legval(ABSCISSAE, np.polynomial.legendre.legder(np.eye(DEGREE + 1))).T
@@ -43,6 +48,7 @@ class Panels:
 
     frame : of the shore;  middle, half : shape (m,) [m];  mirrors : straight images
     lip : distance within which a point counts as on an element [m]
+    inward : shape (m, 2), unit vectors into the water at both ends
     """
 
     frame: Frame
@@ -50,16 +56,18 @@ class Panels:
     half: ComplexArray
     mirrors: Mirrors
     lip: float
+    inward: ComplexArray
 
     @classmethod
     def of(cls, mesh: Mesh, frame: Frame, lip: float) -> "Panels":
         """All elements of a mesh."""
-        return cls(frame, mesh.middle, mesh.half, Mirrors.of(frame, mesh.middle), lip)
+        return cls(frame, mesh.middle, mesh.half, Mirrors.of(frame, mesh.middle), lip, mesh.inward)
 
     def part(self, chosen: BoolArray) -> "Panels":
         """Some of the elements."""
         middle = self.middle[chosen]
-        return Panels(self.frame, middle, self.half[chosen], Mirrors.of(self.frame, middle), self.lip)
+        mirrors = Mirrors.of(self.frame, middle)
+        return Panels(self.frame, middle, self.half[chosen], mirrors, self.lip, self.inward[chosen])
 
     @cached_property
     def rate(self) -> ComplexArray:
@@ -128,6 +136,14 @@ class Panels:
             case _:
                 msg = f"no sheets with {type(self.frame.map).__name__}"
                 raise TypeError(msg)
+
+    def off_nodes(self, z: ComplexArray, own: IntArray | None) -> ComplexArray:
+        """Points on an end of an element moved into the water; as they are where it is known on which they lie."""
+        if own is not None:
+            return z
+        ends = self.middle - self.half, self.middle + self.half
+        steps = _STEP * self.lip * self.inward
+        return np.asarray(off_nodes(np.ascontiguousarray(z), ends, steps, self.tree, _ROUNDING * self.lip))
 
     @cached_property
     def tree(self) -> Tree:
@@ -224,7 +240,8 @@ class SheetField:
 
     def potential(self, z: ComplexArray, own: IntArray | None = None) -> ComplexArray:
         """F at z, shape (n,) [m2/s]: one branch in all of the water. own : element that each z lies on."""
-        parts, panels, tau = self._potential_parts, self.panels, self.panels.frame.map.forward(z)
+        parts, panels, z = self._potential_parts, self.panels, self.panels.off_nodes(z, own)
+        tau = panels.frame.map.forward(z)
         poles, moments = panels.poles.ravel(), parts.coefficients.ravel()
         if panels.frame.kappa == PERIODIC:
             total = periodic.velocity_sums(tau, poles, moments, 0.0)
@@ -237,7 +254,8 @@ class SheetField:
 
     def velocity(self, z: ComplexArray, own: IntArray | None = None) -> ComplexArray:
         """W at z, shape (n,) [m/s]."""
-        parts, panels, tau = self._velocity_parts, self.panels, self.panels.frame.map.forward(z)
+        parts, panels, z = self._velocity_parts, self.panels, self.panels.off_nodes(z, own)
+        tau = panels.frame.map.forward(z)
         poles, strengths = panels.poles.ravel(), parts.coefficients.ravel()
         if panels.frame.kappa == PERIODIC:
             far = periodic.velocity_sums(tau, poles, strengths, self.offset)
@@ -248,7 +266,8 @@ class SheetField:
 
     def jet(self, z: ComplexArray, own: IntArray | None = None) -> tuple[ComplexArray, ComplexArray]:
         """W [m/s] and dW/dz [1/s] at z, shape (n,)."""
-        parts, panels, tau = self._velocity_parts, self.panels, self.panels.frame.map.forward(z)
+        parts, panels, z = self._velocity_parts, self.panels, self.panels.off_nodes(z, own)
+        tau = panels.frame.map.forward(z)
         poles, strengths, slope = panels.poles.ravel(), parts.coefficients.ravel(), panels.frame.map.slope(z)
         if panels.frame.kappa == PERIODIC:
             far, bend = periodic.pole_sums(tau, poles, strengths, self.offset)

@@ -127,6 +127,20 @@ class Mesh:
         """Number of nodes."""
         return self.count + sum(not ring.closed for ring in self.rings)
 
+    @cached_property
+    def inward(self) -> ComplexArray:
+        """Unit vectors into the water at both ends of every element, shape (m, 2)."""
+        across = 1j * np.column_stack((self.direction, self.direction))
+        for k, ring in enumerate(self.rings):
+            run = slice(int(self.bounds[k]), int(self.bounds[k + 1]))
+            after = self.direction[run]
+            before = np.roll(after, 1)
+            halves = after * np.exp(0.5j * (np.pi - np.angle(after / before)))
+            first = 0 if ring.closed else 1
+            across[run, 0][first:] = halves[first:]
+            across[run, 1][: after.size - first] = np.roll(halves, -1)[: after.size - first]
+        return across
+
     def points(self, abscissae: FloatArray) -> tuple[ComplexArray, IntArray]:
         """Points at the same places of every element, x + iy [m], and the element of each; shape (m p,)."""
         z = self.middle[:, None] + self.half[:, None] * abscissae
