@@ -147,6 +147,7 @@ def _obstacles(model: FlowModel) -> ComplexArray:
     poles = model.frame.map.inverse(np.concatenate([field.poles, field.centres]))
     places = [end for line in model.lines for end in (line.start, line.end)]
     places += [vortex.at for vortex in model.cores]
+    places += [complex(vertex) for ring in model.rings for vertex in ring.vertices]
     if not model.frame.map.affine:
         places.append(model.walls[0].point)
     return np.concatenate([poles, np.array(places, dtype=np.complex128)])
@@ -170,11 +171,26 @@ def _leaves_water(model: FlowModel, strand: Strand) -> bool:
     """Whether a part between two meetings with walls or piers is dry."""
     meets = [strand.line_crossings(wall.point, wall.direction) for wall in model.walls]
     meets += [strand.circle_crossings(pier.at, pier.radius) for pier in model.piers]
+    meets += _ring_crossings(model, strand)
     count = strand.start.size
     shares = np.concatenate([*meets, np.zeros((count, 1)), np.ones((count, 1))], axis=1)
     shares = np.sort(np.where(np.isnan(shares), 1.0, shares), axis=1)
     places = strand.at(0.5 * (shares[:, :-1] + shares[:, 1:]))
     return not bool(model.wet(places).all() and model.wet(strand.start).all() and model.wet(strand.end).all())
+
+
+def _ring_crossings(model: FlowModel, strand: Strand) -> list[FloatArray]:
+    """Shares at which the pieces meet edges of rings, an array (k, 2) for every edge that is met."""
+    meets = []
+    for ring in model.rings:
+        for start, end in zip(ring.starts, ring.ends, strict=True):
+            shares = strand.line_crossings(complex(start), complex(end - start))
+            along = ((strand.at(shares) - start) / (end - start)).real
+            with np.errstate(invalid="ignore"):
+                shares = np.where((along >= -_ENDS) & (along <= 1.0 + _ENDS), shares, np.nan)
+            if not np.isnan(shares).all():
+                meets.append(shares)
+    return meets
 
 
 def _exact(model: FlowModel, strand: Strand) -> ComplexArray:
@@ -238,6 +254,9 @@ def _enclosed(model: FlowModel, strand: Strand) -> tuple[Enclosed, ...]:
             turns[line.owner] = _winding(strand, 0.5 * (line.start + line.end))
     for pier in model.piers:
         turns[pier.name] = _winding(strand, pier.at)
+    for ring in model.rings:
+        if ring.is_solid and ring.closed and ring.name in model.owners:
+            turns[ring.name] = _winding(strand, complex(ring.vertices[0]))
     return tuple(Enclosed(owner, turns[owner]) for owner in model.owners if turns.get(owner, 0) != 0)
 
 

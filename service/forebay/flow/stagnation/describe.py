@@ -152,6 +152,10 @@ def _points_into_land(model: FlowModel, zero: Zero, direction: complex) -> bool 
         if pier.name == zero.on:
             inward = ((zero.at - pier.at) / pier.radius * direction.conjugate()).real
             return None if abs(inward) < 0.5 else bool(inward < 0.0)
+    if model.rings and zero.on in {name for ring in model.rings for name in ring.edges}:
+        step = 1e-6 * model.scale * direction
+        ahead, behind = model.rings_distance(np.array([zero.at + step, zero.at - step]))
+        return None if min(abs(ahead), abs(behind)) < 0.5 * abs(step) else bool(ahead < 0.0)
     names = zero.on.split("/")
     heads = [(direction / wall.direction).imag for wall in model.walls if wall.name in names]
     leaving = [head for head in heads if abs(head) > 0.5]

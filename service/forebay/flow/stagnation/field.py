@@ -10,6 +10,7 @@ from forebay.flow.features import CoredVortex
 from forebay.flow.lines import LineTerm
 from forebay.flow.model import FlowModel
 from forebay.flow.poles import PoleField
+from forebay.flow.sheets.term import SheetTerm
 from forebay.flow.stagnation.bounds import (
     core_bound,
     core_tail_bound,
@@ -22,6 +23,7 @@ from forebay.flow.stagnation.bounds import (
     wedge_rest_bound,
 )
 from forebay.flow.stagnation.kernels import variation
+from forebay.flow.stagnation.sheet_bounds import mapped_bound, near_bound
 from forebay.flow.terms import Jet
 
 EPS = float(np.finfo(np.float64).eps)
@@ -71,6 +73,7 @@ class BoundedField:
         self.model = model
         self.frame = model.frame
         self.lines = tuple(term for term in model.terms if isinstance(term, LineTerm))
+        self.sheets = tuple(term.field for term in model.terms if isinstance(term, SheetTerm))
         self._cored = [self.frame.map.forward(np.array([core.at]))[0] for core in model.cores]
         self._smooth_poles = self._without_cores()
         self._exponent = exponent_of(self.frame)
@@ -119,6 +122,9 @@ class BoundedField:
         rest = self._mapped_rest(tau, reach) * rate
         for term in self.lines:
             rest = rest + line_bound(term, self.frame, z, radius)
+        for sheet in self.sheets:
+            own = np.abs(sheet.panels.frame.map.slope(z))
+            rest = rest + mapped_bound(sheet, z, radius * own) * own + near_bound(sheet, z, radius)
         for core, place in zip(self.model.cores, self._cored, strict=True):
             own = core_bound(core, z, radius)
             if self.frame.kappa > 0.0:
@@ -152,6 +158,8 @@ class BoundedField:
         log_reach = log_radius(radius, size)
         capped = np.where(np.isfinite(log_reach), log_reach, 50.0)
         mapped, site = self._mapped_rest(tau, n * capped), np.zeros(z.shape)
+        for sheet in self.sheets:
+            mapped, site = mapped + mapped_bound(sheet, z, n * capped), site + near_bound(sheet, z, radius)
         velocity, slope = jet.velocity.copy(), jet.slope.copy()
         for term in self.lines:
             far, near = wedge_line_bounds(term, self.frame, z, radius)

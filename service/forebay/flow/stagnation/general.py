@@ -5,6 +5,9 @@ region and round the slits it turns by a proven amount T in all. With Z the zero
 P the pole orders and N the piers in the region, and M the right-angled corners of dead ends and basins,
 
     2 Z_water + Z_wall = T / pi + 2 P_water + P_wall + 2 N - M / 2
+
+Outlines that stand free and islands count like piers; in surveyed water with E open edges, which is its own
+region, E - 2 is added, since an open edge is crossed square to it.
 """
 
 from dataclasses import dataclass
@@ -12,7 +15,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from forebay.flow.arrays import BoolArray, ComplexArray, FloatArray
-from forebay.flow.layout import Doublet
+from forebay.flow.layout import Doublet, Surveyed
 from forebay.flow.model import FlowModel
 from forebay.flow.stagnation.bounds import exponent_of
 from forebay.flow.stagnation.candidates import depths, on_walls
@@ -23,6 +26,8 @@ from forebay.flow.stagnation.pier_walls import wall_zero
 from forebay.flow.stagnation.quadtree import FoundZero, Quadtree
 from forebay.flow.stagnation.regions import Region, site_radius
 from forebay.flow.stagnation.result import WATER, Window
+from forebay.flow.stagnation.ringed import with_rings
+from forebay.flow.stagnation.ringside import ring_distance
 from forebay.flow.stagnation.slits import TIP, Slit, SlitTurning, slits_of
 from forebay.flow.stagnation.turning import UnprovenTurningError, turning, winding
 
@@ -68,6 +73,8 @@ class GeneralSearch:
         zeros = [zero for found in tree.zeros if (zero := self._settled(found, tree)) is not None]
         zeros = _distinct(zeros)
         zeros += self._clustered(tree.leftover, zeros)
+        if self.model.rings:
+            zeros = with_rings(self.model, tree, zeros, self.degree)
         return zeros + hidden + self._vertex_zero()
 
     def _count(self, turn: float, poles: list[_Pole]) -> int:
@@ -75,8 +82,12 @@ class GeneralSearch:
         if self.model.frame.closed:
             corners = 4 if np.isfinite(self.model.frame.length) else 2
         weight = sum(pole.order * pole.sides for pole in poles)
-        piers = sum(self._holds(self.model.frame.map.forward(np.array([p.at]))[0]) for p in self.model.piers)
-        return round(turn / np.pi + weight + 2 * piers - 0.5 * corners)
+        holes = [pier.at for pier in self.model.piers]
+        holes += [complex(ring.vertices[0]) for ring in self.model.rings if ring.is_solid and ring.closed]
+        inside = sum(self._holds(self._tau(hole)) for hole in holes)
+        shore = self.model.layout.shore
+        outer = len(shore.edges) - 2 if isinstance(shore, Surveyed) else 0
+        return round(turn / np.pi + weight + 2 * inside - 0.5 * corners) + outer
 
     def _boundary(self) -> tuple[float | None, list[Zero]]:
         """Turning of W_tau along all that bounds the region in the water, and zeros at ends of lines."""
@@ -156,6 +167,7 @@ class GeneralSearch:
         limits = [float(np.min(others[others > 0.0], initial=2.0 * self.model.scale))]
         limits += [abs(pier.at - pole.at) - pier.radius for pier in self.model.piers]
         limits += [float(slit.distance(np.array([pole.at]))[0]) for slit in self.slits]
+        limits += [float(ring_distance(self.model, np.array([pole.at]))[0])] if self.model.rings else []
         if pole.sides == 2:
             limits.append(
                 2.0
@@ -185,7 +197,7 @@ class GeneralSearch:
             if snapped is not None and abs(z - found.at) <= snapped.unique:
                 weight = 1 if near.sum() == 1 else 0
                 return Zero(z, wall_name(self.model, z), snapped.radius + 4 * EPS * abs(z), 1, weight)
-        if np.any(depth < 0.0):
+        if np.any(depth < 0.0) or not bool(self.model.wet(np.array([found.at]))[0]):
             return None
         return self._beside_piers(found)
 

@@ -12,6 +12,7 @@ import numpy as np
 from forebay.flow.arrays import BoolArray, ComplexArray, FloatArray, IntArray
 from forebay.flow.stagnation.field import BoundedField, Discs
 from forebay.flow.stagnation.regions import Region, site_radius
+from forebay.flow.stagnation.ringside import FINENESS, beside_rings
 from forebay.flow.stagnation.slits import TIP, Slit
 
 START = 12
@@ -74,7 +75,7 @@ class FoundZero:
 
 @dataclass
 class Quadtree:
-    """One search; `zeros` and `leftover` after `run`.
+    """One search; `zeros`, `leftover` and `strip` (discs beside polygonal walls) after `run`.
 
     flow, slits : the flow;  region : where to look
     holes, hole_radii : discs known to be free of zeros, or left to others [m]
@@ -87,6 +88,7 @@ class Quadtree:
     hole_radii: FloatArray
     zeros: list[FoundZero] = field(default_factory=list)
     leftover: list[tuple[complex, float]] = field(default_factory=list)
+    strip: list[tuple[complex, float]] = field(default_factory=list)
     visited: int = 0
 
     def run(self) -> None:
@@ -120,6 +122,8 @@ class Quadtree:
         z = self.flow.frame.map.inverse(boxes.at)
         radius = site_radius(self.flow.model, z, abs(boxes.half)) * (1.0 + 1e-9)
         wet = ~self._dry(z, radius) & ~self._known(boxes, z, radius)
+        if self.flow.model.rings:
+            wet &= self._off_rings(boxes, z, radius, wet)
         boxes, unsettled = self._locked(boxes.where(wet), z[wet], radius[wet])
         z = self.flow.frame.map.inverse(boxes.at)
         radius = site_radius(self.flow.model, z, abs(boxes.half)) * (1.0 + 1e-9)
@@ -136,6 +140,13 @@ class Quadtree:
         for hole, reach in zip(self.holes, self.hole_radii, strict=True):
             dry |= np.abs(z - hole) + radius <= reach
         return dry
+
+    def _off_rings(self, boxes: Boxes, z: ComplexArray, radius: FloatArray, open_: BoolArray) -> BoolArray:
+        """Neither on land behind a polygonal wall nor in the strip along it, which is noted."""
+        touches, dry = beside_rings(self.flow.model, z, radius)
+        aside = touches & (abs(boxes.half) < FINENESS * self.region.size)
+        self.strip += list(zip(z[aside & open_].tolist(), radius[aside & open_].tolist(), strict=True))
+        return ~(aside | dry)
 
     def _known(self, boxes: Boxes, z: ComplexArray, radius: FloatArray) -> BoolArray:
         """Within the disc in which a proven zero is the only one."""

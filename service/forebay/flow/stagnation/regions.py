@@ -6,6 +6,7 @@ from dataclasses import dataclass, replace
 import numpy as np
 
 from forebay.flow.arrays import ComplexArray, FloatArray
+from forebay.flow.layout import Surveyed
 from forebay.flow.model import FlowModel
 from forebay.flow.stagnation.bounds import exponent_of
 from forebay.flow.stagnation.result import Window
@@ -75,6 +76,7 @@ def features(model: FlowModel) -> list[ComplexArray]:
     outlines += [line.start + (line.end - line.start) * np.linspace(0.0, 1.0, 65) for line in model.lines]
     outlines += [pier.at + 1.02 * pier.radius * ring for pier in model.piers]
     outlines += [core.at + core.core.radius * ring for core in model.cores]
+    outlines += [solid.vertices for solid in model.rings if solid.is_solid]
     still = _ambient_null(model)
     if still is not None:
         outlines.append(np.array([still]))
@@ -103,8 +105,10 @@ def default_region(model: FlowModel) -> Region:
     Channel, dead end and corner: four widths (in a corner: four in the logarithm) beyond the outermost
     feature.
     Unbounded water: three sizes of the layout, and four times the distance at which the total strength
-    matches the current, at most a hundred sizes. Basin: all of it.
+    matches the current, at most a hundred sizes. Basin, surveyed water: all of it.
     """
+    if isinstance(model.layout.shore, Surveyed):
+        return _whole(model, model.layout.shore)
     places = np.concatenate([*features(model), *_home(model)])
     low = complex(places.real.min(), places.imag.min())
     high = complex(places.real.max(), places.imag.max())
@@ -116,6 +120,19 @@ def default_region(model: FlowModel) -> Region:
     if speed > 0.0:
         margin = min(max(margin, 4.0 * _total_strength(model) / speed), _FARTHEST * model.scale)
     return _fitted(model, low - margin * (1 + 1j), high + margin * (1 + 1j))
+
+
+def _whole(model: FlowModel, shore: Surveyed) -> Region:
+    """A rectangle round surveyed water; none of its sides is an edge, the water ends before."""
+    tau = model.frame.map.forward(np.array(shore.outer, dtype=np.complex128))
+    pad = _PAD * max(float(np.ptp(tau.real)), float(np.ptp(tau.imag)))
+    return Region(
+        float(tau.real.min()) - pad,
+        float(tau.real.max()) + pad,
+        float(tau.imag.min()) - pad,
+        float(tau.imag.max()) + pad,
+        (),
+    )
 
 
 def _home(model: FlowModel) -> list[ComplexArray]:
@@ -133,7 +150,9 @@ def _total_strength(model: FlowModel) -> float:
 
 
 def region_of(model: FlowModel, window: Window) -> Region:
-    """The region that covers a window of the site, grown until no feature is cut."""
+    """The region that covers a window of the site, grown until no feature is cut; surveyed water whole."""
+    if isinstance(model.layout.shore, Surveyed):
+        return _whole(model, model.layout.shore)
     x, y = np.linspace(*window.x, 65), np.linspace(*window.y, 65)
     inside = (x[:, None] + 1j * y[None, :]).ravel()
     wet = inside[model.wet(inside)]
