@@ -1,5 +1,6 @@
 """Who stands in whose way on surveyed water and beside outlines, each with the path of the one at fault."""
 
+import numpy as np
 import pytest
 
 from forebay.flow.errors import (
@@ -22,7 +23,9 @@ from forebay.flow.layout import (
     Surveyed,
     Vortex,
 )
+from forebay.trade.survey.attachments import with_attached
 from forebay.trade.survey.conflicts import check_conflicts
+from forebay.trade.survey.rings import signed_area
 
 WATER = Surveyed(
     (0j, 900 + 0j, 900 + 80j, 90j),
@@ -102,3 +105,39 @@ def test_conflict_with_an_outline_is_refused(things, error, path):
 @pytest.mark.parametrize("at", [5 + 5j, 5 + 5.1j])
 def test_intake_may_stand_on_or_beside_the_wall_of_an_outline(at):
     check_conflicts(layout(QUAY, Sink("s", at, 1.0), shore=OpenWater()))
+
+
+def test_quay_on_a_bank_becomes_land():
+    plain = layout(moved(QUAY, 200 - 2j), Pier("p", 100 + 40j, 2.0))
+    found = with_attached(plain)
+    assert [s.name for s in found.structures] == ["p"]
+    # 10 m by the 3 m that stand out of the bank, widened by 1e-6 of the size all round
+    lost = signed_area(np.array(WATER.outer)) - signed_area(np.array(found.shore.outer))
+    assert lost == pytest.approx(30.0, abs=0.03)
+    for edge, before in zip(found.shore.edges, WATER.edges, strict=True):
+        assert found.shore.outer[edge.first] == WATER.outer[before.first]
+
+
+def test_mole_on_an_island_keeps_its_name():
+    found = with_attached(layout(moved(QUAY, 395 + 35j)))
+    (island,) = found.shore.islands
+    assert island.name == "eyot"
+    assert -signed_area(np.array(island.points)) == pytest.approx(2000 + 5 * 5, abs=0.03)
+
+
+@pytest.mark.parametrize(
+    ("wall", "reason"),
+    [
+        (Outline("dam", (500 - 5j, 502 - 5j, 502 + 95j, 500 + 95j)), "parts the water"),
+        (Outline("causeway", (350 - 5j, 352 - 5j, 352 + 40j, 350 + 40j)), "joins an island"),
+    ],
+)
+def test_outline_that_changes_how_water_hangs_together_is_refused(wall, reason):
+    with pytest.raises(OverlappingStructuresError, match=reason) as error:
+        with_attached(layout(wall))
+    assert error.value.path == ("structures", 0)
+
+
+def test_free_outline_stays_a_structure():
+    plain = layout(moved(QUAY, 200 + 20j))
+    assert with_attached(plain) == plain

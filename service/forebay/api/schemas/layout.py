@@ -25,6 +25,7 @@ from forebay.api.units import UnitSystem
 from forebay.flow import layout as flow
 from forebay.flow.placement import places
 from forebay.trade.applicability.site import SiteData
+from forebay.trade.survey.attachments import attached, with_attached
 from forebay.trade.survey.conflicts import check_conflicts
 from forebay.trade.survey.errors import UnsuitableGridError
 from forebay.trade.survey.grids import MapGrid, projected_grid, scale_error
@@ -171,7 +172,7 @@ class Layout(Conditions):
             tolerance=self.tolerance,
         )
         check_conflicts(layout)
-        return layout
+        return with_attached(layout)
 
     def _plain_shore(self, units: UnitSystem) -> flow.Shore:
         if isinstance(self.shore, SurveyedShore):
@@ -217,6 +218,8 @@ class Layout(Conditions):
         for index, structure in enumerate(self.structures):
             if isinstance(structure, Outline):
                 changes += structure.traced(units, ("structures", index))[1]
+        if water is not None:
+            changes += attached(water.shore, tuple(self._flow_structures(units))).changes
         return tuple(changes)
 
     def site_data(self, units: UnitSystem) -> SiteData:

@@ -29,6 +29,7 @@ class ChangeKind(StrEnum):
     ISLAND_DROPPED = "island-dropped"
     SIMPLIFIED = "simplified"
     EDGE_END_MOVED = "edge-end-moved"
+    MERGED_WITH_LAND = "merged-with-land"
 
 
 @dataclass(frozen=True, slots=True)
