@@ -5,6 +5,7 @@ import re
 
 import pytest
 from openapi_spec_validator import validate
+from starlette.testclient import TestClient
 
 from forebay.api.examples import request_example
 from forebay.api.problems import MEDIA_TYPE, PROXY_PROBLEMS, catalogue, flow_errors
@@ -19,6 +20,7 @@ SCHEMAS = DOCUMENT["components"]["schemas"]
 
 PROMISED = {
     "sampleField",
+    "findInfluenceZone",
     "searchStagnation",
     "integrateContour",
     "computeStress",
@@ -105,10 +107,22 @@ def test_parameters_have_examples_or_lists_of_values(triple):
         assert choices.get("examples") or choices.get("enum"), parameter["name"]
 
 
-def test_only_those_who_watch_need_no_token():
+@pytest.mark.parametrize("triple", operations(), ids=named)
+def test_declared_access_is_the_one_that_is_asked_for(guarded_client, triple):
+    path, method, operation = triple
+    answer = guarded_client.request(
+        method, path.replace("{code}", "busy"), json={} if method == "post" else None
+    )
+    assert (answer.status_code == 401) is (operation.get("security") != [])
+
+
+@pytest.fixture(scope="module")
+def guarded_client():
+    return TestClient(create_app(Settings(workers=1, tokens=("a-token-that-is-long-enough",))))
+
+
+def test_a_token_is_asked_for_only_where_there_are_tokens():
     assert DOCUMENT["security"] == [{}, {"bearerToken": []}]
-    open_ones = {named(triple) for triple in operations() if triple[2].get("security") == []}
-    assert open_ones == {"isAlive", "isReady"}
 
 
 def test_addresses_are_relative_so_that_they_lead_below_a_prefix():

@@ -47,7 +47,7 @@ CHANNEL: dict[str, Any] = {
 """A small site between banks."""
 
 
-OF_NAMED_ELEMENTS = frozenset({"checkScreen", "checkSubmergence", "computeArrivals"})
+OF_NAMED_ELEMENTS = frozenset({"findInfluenceZone", "checkScreen", "checkSubmergence", "computeArrivals"})
 """Operations whose example names elements of its own site, so that no other can stand in for it."""
 
 

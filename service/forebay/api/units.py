@@ -29,6 +29,7 @@ POUND_FORCE = POUND * 9.80665
 US_UNITS = {
     "m": UsUnit("[ft_i]", FOOT),
     "m2": UsUnit("[ft_i]2", FOOT**2),
+    "m3": UsUnit("[ft_i]3", FOOT**3),
     "m/s": UsUnit("[ft_i]/s", FOOT),
     "m/s2": UsUnit("[ft_i]/s2", FOOT),
     "m2/s": UsUnit("[ft_i]2/s", FOOT**2),

@@ -13,6 +13,7 @@ from forebay.api.routers import (
     documents,
     estimate,
     field,
+    influence,
     operation,
     review,
     screen,
@@ -28,6 +29,7 @@ OPERATIONS: dict[str, Operation[Any]] = {
     for known in (
         assessment.ASSESS,
         field.SAMPLE,
+        influence.ZONE,
         stagnation.SEARCH,
         contour.INTEGRATE,
         stress.TENSOR,
@@ -45,6 +47,7 @@ OPERATIONS: dict[str, Operation[Any]] = {
 ROUTERS: tuple[APIRouter, ...] = (
     assessment.router,
     field.router,
+    influence.router,
     stagnation.router,
     contour.router,
     stress.router,
