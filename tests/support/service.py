@@ -81,6 +81,12 @@ class Service:
         intakes = self.post("withdrawal/trace", {"layout": layout, **extra})["result"]["intakes"]
         return {intake["name"]: intake for intake in intakes}
 
+    def arrivals(self, layout: Json, releases: list[Json], **extra: Any) -> list[Json]:
+        """What becomes of releases, in the order asked for."""
+        body = {"layout": layout, "releases": releases, **extra}
+        answers: list[Json] = self.post("spill/arrivals", body)["result"]["releases"]
+        return answers
+
     def stress(self, fluid: Json, states: list[Json], **extra: Any) -> list[Json]:
         """Stress states in the order asked for."""
         body = {"fluid": fluid, "states": states, **extra}

@@ -40,7 +40,7 @@ def arrive(
     divides (1e-9); those of patches, and all curves, are refined until doubling the streamlines changes them
     by less than `rules.tolerance`, which the errors state.
     """
-    scene = scene_of(model, search)
+    scene = scene_of(model, search, rules.transects)
     tolerance = min(_COARSEST, max(_FINEST, _PART * rules.tolerance))
     many = Follower(scene, rules.transects, tolerance)
     single = Follower(scene, rules.transects, _POINT_TOLERANCE)

@@ -24,6 +24,9 @@ from forebay.flow.arrivals.transits import Transect
 _DUST = 1e-12
 """Share that is rounding [-]."""
 
+_ENDS = np.array([1e-4, 3e-4, 1e-3, 3e-3, 0.997, 0.999, 0.9997, 0.9999])
+"""Parts of what arrives at which a curve has points too: it begins like a power, ends like a logarithm."""
+
 End = tuple[Outcome, str]
 
 
@@ -146,7 +149,7 @@ def _outcomes(
 
 
 def _curve(courses: dict[str, Course], rules: ArrivalRules) -> ArrivalCurve:
-    """Arrivals at even steps of the share, up to the horizon."""
+    """Arrivals at even steps of the share and at a few more near both ends, up to the horizon."""
     if not courses:
         return ArrivalCurve(np.empty(0), np.empty(0), {})
     times = np.unique(np.concatenate([course.time for course in courses.values()]))
@@ -154,7 +157,7 @@ def _curve(courses: dict[str, Course], rules: ArrivalRules) -> ArrivalCurve:
     whole = np.sum([course.at(times) for course in courses.values()], axis=0)
     before = np.sum([_just_before(course, times[:1]) for course in courses.values()], axis=0)
     total = Course(np.concatenate([times[:1], times]), np.concatenate([before, whole]))
-    levels = np.linspace(0.0, total.total, rules.curve_points)
+    levels = total.total * np.unique(np.concatenate([np.linspace(0.0, 1.0, rules.curve_points), _ENDS]))
     inner = total.when(levels[1:-1])
     first = float(times[max(int(np.argmax(whole > 0.0)) - 1, 0)]) if whole[0] == 0.0 else float(times[0])
     chosen = np.unique(np.concatenate([[first], inner, times[-1:]]))

@@ -12,12 +12,17 @@ from forebay.flow.arrivals.release import Patch
 from forebay.flow.arrivals.result import Outcome, ReleaseStatus
 from forebay.flow.arrivals.sampling import Accuracy, Sample, passage, sampled, status_of, time_error
 from forebay.flow.arrivals.slices import ends_over, wet_area
-from forebay.flow.arrivals.spread import Course, course_of
+from forebay.flow.arrivals.spread import Course, Ramps, course_of
 from forebay.flow.layout import Doublet, LineSink, Sink, Vortex
 from forebay.flow.model import FlowModel
 
 _PANELS = 16
 """Most panels of slices, of six each, by which water that is not captured is parted."""
+
+_TRACED_PART = 0.3
+"""Part of the error asked for that may come from tracing [-]."""
+_FINER, _STEP = 2, 30.0
+"""Finer tolerances tried, and the step from one to the next [-]."""
 
 
 def find_patch(follower: Follower, patch: Patch, rules: ArrivalRules) -> Findings:
@@ -35,7 +40,7 @@ def find_patch(follower: Follower, patch: Patch, rules: ArrivalRules) -> Finding
     sinks = [e.name for e in scene.model.layout.elements if isinstance(e, Sink | LineSink)]
     wanted = rules.wanted | {(INTAKE, name) for name in sinks}
     accuracy = Accuracy(rules.tolerance, area.value)
-    sample = sampled(follower, boundary_of(scene, patch), frozenset(wanted), accuracy, by_area=True)
+    sample = _sampled(follower, patch, frozenset(wanted), accuracy)
     first: dict[Target, float] = {(INTAKE, name): 0.0 for name in intakes_within(scene, patch)}
     passages, error = _passages(sample, frozenset(wanted), area.value, first)
     passages, excess = _within_whole(passages)
@@ -52,6 +57,27 @@ def find_patch(follower: Follower, patch: Patch, rules: ArrivalRules) -> Finding
     )
 
 
+def _sampled(follower: Follower, patch: Patch, wanted: frozenset[Target], accuracy: Accuracy) -> Sample:
+    """The boundary's water, traced the more finely the longer it travels for the time that it spends inside.
+
+    Areas are differences of travel times, so that the error of tracing grows by that ratio.
+    """
+    rakes = boundary_of(follower.scene, patch)
+    sample = sampled(follower, rakes, wanted, accuracy, by_area=True)
+    for _ in range(_FINER):
+        lost = sum(sample.time_part * _flux_times(sample.ramps(target)) for target in wanted)
+        if lost <= _TRACED_PART * accuracy.tolerance * accuracy.amount:
+            break
+        follower = replace(follower, tolerance=follower.tolerance / _STEP)
+        sample = sampled(follower, rakes, wanted, accuracy, by_area=True)
+    return sample
+
+
+def _flux_times(ramps: Ramps) -> float:
+    """Sum of flux, in or out, times travel time [m2]."""
+    return float(np.sum(np.abs(ramps.weight) * 0.5 * (ramps.low + ramps.high)))
+
+
 def _passages(
     sample: Sample, wanted: frozenset[Target], area: float, first: dict[Target, float]
 ) -> tuple[dict[Target, Passage], float]:
@@ -64,8 +90,7 @@ def _passages(
         course, moved = course_of(ramps, by_area=True, first=first.get(target))
         found = passage(course, ramps, area, endless=sample.endless(target))
         passages[target] = found
-        lengths = float(np.sum(np.abs(ramps.weight) * 0.5 * (ramps.low + ramps.high)))
-        error += (moved + sample.time_part * lengths) / area
+        error += (moved + sample.time_part * _flux_times(ramps)) / area
     return passages, error
 
 

@@ -12,6 +12,8 @@ from forebay.flow.layout import outflow
 _ON_DIVIDE = 1e-11
 """Flux between a point and a dividing streamline, over the reference, below which it lies on it [-]."""
 _COARSER = 10.0
+_LAST_PIECE = 1e-8
+"""Relative error of a time by the closed form of its last piece, into a sink [-]."""
 _UNRESOLVED = (Outcome.UNRESOLVED, "")
 
 
@@ -100,4 +102,4 @@ def _time_error(fate: Fate, coarse: Fate) -> float:
     """Change of any time under a coarser tolerance, more than the error itself [s]."""
     if fate.signature != coarse.signature or not fate.times.size:
         return float("nan") if fate.times.size else 0.0
-    return float(np.max(np.abs(fate.times - coarse.times)))
+    return float(np.max(np.abs(fate.times - coarse.times) + _LAST_PIECE * fate.times))

@@ -24,8 +24,10 @@ class Scene:
     """What all releases of one layout have in common.
 
     complete : whether every stagnation point is known
-    paths : dividing streamlines upstream of their stagnation points, from there outward [m]
+    paths : dividing streamlines upstream of their stagnation points, from there outward [m], then those
+        upstream of the ends of transects, which part what crosses a transect from what goes by
     traces : of the same, for their ends
+    divides : how many of them, the first, run into a stagnation point
     """
 
     model: FlowModel
@@ -33,6 +35,7 @@ class Scene:
     complete: bool
     paths: tuple[ComplexArray, ...]
     traces: Traces
+    divides: int
 
     @property
     def reference(self) -> float:
@@ -45,7 +48,7 @@ class Scene:
 
 def divide_distance(scene: Scene, z: complex) -> tuple[float, float]:
     """Distance from z to the nearest dividing streamline [m] and the flux between [m2/s]; inf without one."""
-    nearest = [_nearest(path, z) for path in scene.paths if path.size > 1]
+    nearest = [_nearest(path, z) for path in scene.paths[: scene.divides] if path.size > 1]
     if not nearest:
         return inf, inf
     distance, foot = min(nearest, key=lambda pair: pair[0])

@@ -19,7 +19,7 @@ _DOUBLINGS = 5
 _LOOKS = 48
 """Times at which two versions of a sector's arrivals are compared."""
 TIME_SHIFT = 1e-5
-"""Change of times, over the middle one of a sector, that does not count as a change of amounts [-]."""
+"""Relative change of a time that does not count as a change of amounts [-]."""
 _INWARD = 3.0
 """Distance in x over which the slope of the travel time is compared with that at the end [-]."""
 _STEADY = 0.3
@@ -102,7 +102,7 @@ def _change(now: Sector, before: Sector, *, by_area: bool) -> float:
         t = bounds[np.linspace(0, bounds.size - 1, _LOOKS).astype(np.int64)]
         first = float(min(fine.low.min(), coarse.low.min()))
         one = fine.amounts(t, by_area=by_area, first=first)
-        shift = TIME_SHIFT * float(np.median(t))
+        shift = TIME_SHIFT * t
         early, late = (
             coarse.amounts(np.maximum(t + d, 0.0), by_area=by_area, first=first) for d in (-shift, shift)
         )
