@@ -88,12 +88,28 @@ def page():
         browser.close()
 
 
+class Witness:
+    """What a page asks for, what of it fails, and what the browser complains of."""
+
+    def __init__(self, page):
+        self.asked, self.failed, self.complaints = [], [], []
+        page.on("request", lambda request: self.asked.append(request.url))
+        page.on("requestfailed", lambda request: self.failed.append(request.url))
+        page.on("response", lambda answer: self.failed.append(answer.url) if answer.status >= 400 else None)
+        page.on(
+            "console",
+            lambda message: self.complaints.append(message.text) if message.type == "error" else None,
+        )
+
+    def assert_content_with(self, address):
+        """Check that all went well and that nothing came from elsewhere."""
+        assert self.failed == []
+        assert self.complaints == []
+        assert [url for url in self.asked if not url.startswith((address, "data:", "blob:"))] == []
+
+
 def test_page_renders_every_operation_from_this_server_alone(page, address):
-    asked, failed, complaints = [], [], []
-    page.on("request", lambda request: asked.append(request.url))
-    page.on("requestfailed", lambda request: failed.append(request.url))
-    page.on("response", lambda response: failed.append(response.url) if response.status >= 400 else None)
-    page.on("console", lambda message: complaints.append(message.text) if message.type == "error" else None)
+    witness = Witness(page)
     page.goto(f"{address}/docs")
     page.wait_for_selector(".opblock")
     paths = {
@@ -101,9 +117,7 @@ def test_page_renders_every_operation_from_this_server_alone(page, address):
         for element in page.query_selector_all(".opblock-summary-path")
     }
     assert {operation.path for operation in OPERATIONS.values()} <= paths
-    assert failed == []
-    assert complaints == []
-    assert [url for url in asked if not url.startswith((address, "data:", "blob:"))] == []
+    witness.assert_content_with(address)
 
 
 def test_try_it_out_reaches_the_service(page, address):
@@ -116,3 +130,39 @@ def test_try_it_out_reaches_the_service(page, address):
         block.get_by_role("button", name="Execute").click()
     assert answer.value.url == f"{address}/v1/field/sample"
     assert answer.value.status == 200
+
+
+def test_how_to_call_it_names_this_address(page, address):
+    witness = Witness(page)
+    page.goto(f"{address}/docs")
+    page.get_by_role("link", name="How to call it").click()
+    page.wait_for_selector("#spreadsheet")
+    assert page.url == f"{address}/docs/how-to-call"
+    blocks = page.locator("pre code").all_inner_texts()
+    assert len(blocks) == 5
+    assert all(f"{address}/v1/field/sample" in block for block in blocks)
+    assert "divers" in page.inner_text(".caution")
+    witness.assert_content_with(address)
+
+
+def test_example_of_the_page_runs_in_it(page, address):
+    page.goto(f"{address}/docs/how-to-call")
+    said = []
+    page.on("console", lambda message: said.append(message.text))
+    code = page.inner_text("code.javascript")
+    page.evaluate(f"async () => {{ {code} }}")
+    assert [text.endswith("m/s") for text in said] == [True]
+
+
+def test_links_of_the_page_lead_somewhere(page, address):
+    page.goto(f"{address}/docs/how-to-call")
+    links = page.eval_on_selector_all("main a", "links => links.map(link => link.href)")
+    for link in {link.split("#")[0] for link in links}:
+        assert link.startswith(address)
+        assert page.request.get(link).status == 200
+
+
+def test_reader_on_a_narrow_screen_scrolls_code_only(page, address):
+    page.set_viewport_size({"width": 390, "height": 800})
+    page.goto(f"{address}/docs/how-to-call")
+    assert page.evaluate("document.documentElement.scrollWidth") <= 390

@@ -53,8 +53,8 @@ def test_generator_understands_everything_but_pictures(client):
 
 def call(client, service, operation, body):
     module = generated(client, "api", operation.tag, snake(operation.operation_id))
-    connection = generated(client).Client(base_url=service.address, timeout=120.0)
-    return module.sync_detailed(client=connection, body=body)
+    with generated(client).Client(base_url=service.address, timeout=120.0) as connection:
+        return module.sync_detailed(client=connection, body=body)
 
 
 @pytest.mark.parametrize("operation", ANSWERED.values(), ids=ANSWERED)

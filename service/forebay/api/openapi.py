@@ -40,8 +40,10 @@ TAGS = {
     "contour": "Circulation and flux",
     "stress": "Strain and stress",
     "withdrawal": "Where intakes' water comes from",
+    "spill": "Whether and when a spill arrives",
     "screen": "Fish-protection screens",
     "submergence": "Inlets under a free surface",
+    "influence": "How far an intake is felt",
     "layout": "Judging a layout before computing",
     "estimate": "What a request would cost",
     "chart": "Pictures",
@@ -56,8 +58,8 @@ EVERYWHERE = (413, 500)
 ACCESS = (401, 403, 429)
 """Statuses of the problems that every route but the open ones can answer with, if the service has tokens."""
 
-OPEN_ROUTES = frozenset({"isAlive", "isReady"})
-"""Operations that need no token anywhere: whoever watches the service has none."""
+OPEN_ROUTES = frozenset({"isAlive", "isReady", "readIndex", "explainProblem"})
+"""Operations that need no token: for who watches the service, who arrives, and who is told of a problem."""
 
 TOKEN = {
     "type": "http",

@@ -26,6 +26,8 @@ ASSETS = {
     "swagger-ui-bundle.js": "text/javascript",
     "swagger-ui.css": "text/css",
     "start.js": "text/javascript",
+    "start.css": "text/css",
+    "how-to-call.js": "text/javascript",
     "page.css": "text/css",
     "favicon-32x32.png": "image/png",
 }
@@ -33,6 +35,7 @@ ASSETS = {
 
 LINKS = {
     "documentation": "docs",
+    "how_to_call": "docs/how-to-call",
     "description": "openapi.json",
     "limits": "v1/limits",
     "warnings": "v1/warnings",
@@ -73,13 +76,18 @@ async def index(request: Request) -> Response:
     media_type = negotiate(request.headers.get("accept"), (JSON, HTML) if has_page else (JSON,))
     if media_type == HTML:
         return Response(status_code=307, headers={"Location": LINKS["documentation"]})
-    links = {name: link for name, link in LINKS.items() if has_page or name != "documentation"}
+    links = {name: link for name, link in LINKS.items() if has_page or not link.startswith("docs")}
     return Response(orjson.dumps(Index(version=__version__, links=links).model_dump()), media_type=JSON)
 
 
 @page_router.get("/docs", include_in_schema=False)
 async def docs() -> Response:
     return page((PAGES / "docs.html").read_text(encoding="utf-8"))
+
+
+@page_router.get("/docs/how-to-call", include_in_schema=False)
+async def how_to_call() -> Response:
+    return page((PAGES / "how-to-call.html").read_text(encoding="utf-8"))
 
 
 @router.get("/docs-assets/{name}", include_in_schema=False)
