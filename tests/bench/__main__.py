@@ -7,7 +7,7 @@ from importlib import import_module
 
 from .timing import Measure
 
-BENCHES = ("kernel", "json_path", "small_requests", "stagnation", "tracing")
+BENCHES = ("kernel", "json_path", "small_requests", "stagnation", "tracing", "sheets")
 """Modules of this folder; each has `measure() -> Iterator[Measure]`."""
 
 

@@ -45,10 +45,10 @@ def test_bend_loses_what_the_hodograph_says(tolerance):
 
 
 def step(count, ratio=2.0):
-    """Points and velocities in a channel that widens at once from 1/ratio to 1: Schwarz and Christoffel's map.
+    """Points and velocities in a channel that widens at once from 1/ratio to 1, by Schwarz and Christoffel.
 
     z = (1/pi) [log((as - 1)/(as + 1)) / a - log((s - 1)/(s + 1))], W = 1/s for unit flux and
-    s = sqrt((t - 1)/(t - a^2)), t in the upper half-plane; the inner corner is at 0, the salient at (1 - 1/a) i.
+    s = sqrt((t - 1)/(t - a^2)), t in the upper half-plane; the inner corner is 0, the salient (1 - 1/a) i.
     """
     generator = np.random.default_rng(3)
     t = np.exp(generator.uniform(-4, 4, count) + 1j * np.pi * generator.uniform(0.002, 0.998, count))

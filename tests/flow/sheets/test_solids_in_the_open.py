@@ -1,5 +1,7 @@
 """Outlines in open water against conformal maps, mirrored twins and circular piers."""
 
+from typing import Any
+
 import numpy as np
 import pytest
 
@@ -22,7 +24,7 @@ from reference.piers import Schwarz
 
 
 def polygon(centre, radius, count=192, axes=1.0):
-    """Polygon with the area of the circle, or of the ellipse whose other half-axis is `axes` times as long."""
+    """Polygon with the area of the circle, or of the ellipse with a second half-axis `axes` times as long."""
     fit = radius / np.sqrt(np.sinc(2 / count))
     ring = np.exp(2j * np.pi * (np.arange(count) + 0.5) / count)
     return tuple((centre + fit * (ring.real + 1j * axes * ring.imag)).tolist())
@@ -103,7 +105,11 @@ def test_polygon_is_a_pier_on_every_shore(name):
     shore, at = SHORES[name]
     discharge = 3.0 if name == "basin" else 2.0
     elements = (Sink("s", at + 4, 3.0), Source("t", at + 6 + 1j, discharge), Vortex("v", at - 1 + 1.7j, 1.5))
-    site = {"shore": shore, "elements": elements, "ambient": Ambient(1 + 0j if name == "channel" else 0j)}
+    site: dict[str, Any] = {
+        "shore": shore,
+        "elements": elements,
+        "ambient": Ambient(1 + 0j if name == "channel" else 0j),
+    }
     pier = compile_layout(Layout(1.0, structures=(Pier("p", at, 1.2, 0.7),), **site))
     model = compile_layout(Layout(1.0, structures=(Outline("p", polygon(at, 1.2), 0.7),), **site))
     z = about(at, 1.45)
@@ -122,7 +128,7 @@ def test_polygon_is_a_pier_on_every_shore(name):
 def test_pier_beside_a_polygon_is_two_piers(gap):
     """Schwarz's alternating method in 80-bit floats for two circles, and one of them as a polygon."""
     one, other = Pier("p", 0j, 1.0, 0.3), Pier("q", 2.0 + gap + 0j, 1.0, -0.5)
-    site = {"ambient": Ambient(1 + 0.3j), "elements": (Source("t", -2 + 2j, 2.0),)}
+    site: dict[str, Any] = {"ambient": Ambient(1 + 0.3j), "elements": (Source("t", -2 + 2j, 2.0),)}
     oracle = Schwarz(Layout(1.0, structures=(one, other), **site))
     mixed = compile_layout(
         Layout(1.0, structures=(one, Outline("q", polygon(other.at, 1.0), other.circulation)), **site)

@@ -108,10 +108,10 @@ def charted(z: complex, step: complex, chart: Chart) -> tuple[complex, complex, 
 def element_integral(
     z: complex, zeta: complex, e: int, elements: Elements, density: Density, chart: Chart
 ) -> tuple[complex, complex, complex, complex]:
-    """Integral of a density less 1/(z - t) at the nodes, (i / pi) left out, and its derivative.
+    """Integral of a density less 1/(z - t) at the nodes, without (i / pi), and its derivative.
 
-    Then the sum over the nodes of the shore's kernel and its derivative. In a plain chart nothing is taken out
-    of the integral, and that sum is zero.
+    Then the sum over the nodes of the shore's kernel and its derivative. In a plain chart nothing is taken
+    out of the integral, and that sum is zero.
     """
     _, rate, nodes = elements
     coefficients, nodal, weights = density

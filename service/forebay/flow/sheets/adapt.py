@@ -120,6 +120,11 @@ def _remembered(digest: bytes) -> list[Mesh]:  # noqa: ARG001
     return []
 
 
+def forget_meshes() -> None:
+    """Make every mesh anew from now on."""
+    _remembered.cache_clear()
+
+
 def mesh_for(walls: Walls, typical: Sequence[Known]) -> Mesh:
     """Mesh that serves the typical flows past some walls; the same whatever was asked before."""
     place = _remembered(walls.digest())

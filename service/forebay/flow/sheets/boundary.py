@@ -13,6 +13,8 @@ from forebay.flow.poles import PoleField
 from forebay.flow.sheets.adapt import PASSES, Walls, content, factorise, finer_mesh, mesh_for, worst_of
 from forebay.flow.sheets.bound import BoundaryBound, bound_of
 from forebay.flow.sheets.known import Known, KnownFlow, StillWater
+from forebay.flow.sheets.mesh import Mesh
+from forebay.flow.sheets.origin import shifted_rings
 from forebay.flow.sheets.piers import PierSet, solve_with_piers
 from forebay.flow.sheets.pole_flow import PoleFlow
 from forebay.flow.sheets.ring import Ring
@@ -20,7 +22,6 @@ from forebay.flow.sheets.solution import Solution, solve
 from forebay.flow.sheets.system import System
 from forebay.flow.sheets.term import SheetTerm
 from forebay.flow.sheets.typical import typical_flows
-from forebay.flow.shores import Frame
 
 WORST = 1e-2
 """Bound over the flow through above which there is no answer [-]."""
@@ -52,14 +53,14 @@ class Boundary:
 class Task:
     """What there is to solve.
 
-    layout, frame : the site and its shore;  walls : rings in a frame of their own
+    layout : the site;  walls : rings in a frame of their own, in coordinates that count from `origin`
     known : the flow without rings and without multipoles of piers;  piers : None without any
     with_moments : see `WithMoments`;  vortices : see `Vortices`;  offset : of the kernel
     """
 
     layout: Layout
-    frame: Frame
     walls: Walls
+    origin: complex
     known: Known
     piers: PierSet | None
     with_moments: WithMoments
@@ -112,6 +113,7 @@ def _solved(task: Task, system: System) -> tuple[Solution, PierSolution | None]:
 def _terms(task: Task, solution: Solution) -> tuple[SheetTerm, ...]:
     """A term for every owner: outlines for themselves, a surveyed shore and its islands for the ambient."""
     mesh, field = solution.system.mesh, solution.field
+    whole = Mesh(shifted_rings(mesh.rings, -task.origin), mesh.cuts)
     owners = np.array([ring.owner for ring in mesh.rings])[mesh.ring]
     terms = []
     for owner in sorted({ring.owner for ring in mesh.rings}):
@@ -122,8 +124,8 @@ def _terms(task: Task, solution: Solution) -> tuple[SheetTerm, ...]:
         ]
         poles = [task.vortices(ring, g) for ring, g in rings]
         merged = _merged(poles)
-        vortices = None if merged is None else PoleFlow(merged, task.frame)
-        terms.append(SheetTerm(part, owner, vortices, mesh))
+        vortices = None if merged is None else PoleFlow(merged, task.walls.frame)
+        terms.append(SheetTerm(part, owner, vortices, whole, task.origin))
     return tuple(terms)
 
 
@@ -142,7 +144,8 @@ def _bound(task: Task, solution: Solution) -> BoundaryBound:
     if duals is None:
         duals = tuple(_dual(task, solution.system, k) for k in free)
         _DUALS[solution.system] = duals
-    return bound_of(solution, duals, tuple(mesh.rings[k].name for k in free))
+    bound = bound_of(solution, duals, tuple(mesh.rings[k].name for k in free))
+    return replace(bound, vertex=bound.vertex + task.origin)
 
 
 def _dual(task: Task, system: System, chosen: int) -> Solution:
@@ -153,7 +156,9 @@ def _dual(task: Task, system: System, chosen: int) -> Solution:
     if not rings[0].is_solid:
         logs[0] = -unit
     poles = tuple(
-        PoleFlow(task.vortices(ring, log), task.frame) for ring, log in zip(rings, logs, strict=True) if log
+        PoleFlow(task.vortices(ring, log), task.walls.frame)
+        for ring, log in zip(rings, logs, strict=True)
+        if log
     )
     return solve(system, Known(StillWater(), poles, _still(rings), tuple(logs), (), 1.0))
 

@@ -138,7 +138,7 @@ class Panels:
                 raise TypeError(msg)
 
     def off_nodes(self, z: ComplexArray, own: IntArray | None) -> ComplexArray:
-        """Points on an end of an element moved into the water; as they are where it is known on which they lie."""
+        """Points on an end of an element moved into the water, unless it is known on which they lie."""
         if own is not None:
             return z
         ends = self.middle - self.half, self.middle + self.half

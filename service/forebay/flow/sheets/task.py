@@ -1,16 +1,19 @@
 """From a layout to what is to be solved on its rings."""
 
+from dataclasses import replace
+
 import numpy as np
 
 from forebay.flow.assembly import PoleBuilder, offset_of
 from forebay.flow.ends import inflows
 from forebay.flow.layout import Doublet, Layout, Surveyed, Vortex, outflow
-from forebay.flow.placement import TOUCHING
+from forebay.flow.placement import TOUCHING, places
 from forebay.flow.poles import PoleField
 from forebay.flow.settling import Ground
 from forebay.flow.sheets.adapt import Walls
 from forebay.flow.sheets.boundary import Task, WithMoments
 from forebay.flow.sheets.known import Known, KnownFlow
+from forebay.flow.sheets.origin import Shifted, middle_of, shifted_frame, shifted_rings
 from forebay.flow.sheets.piers import PierSet
 from forebay.flow.sheets.pole_flow import PoleFlow
 from forebay.flow.sheets.ring import Ring
@@ -27,33 +30,46 @@ def task_of(
     """
     layout, frame, rings = ground.layout, ground.frame, ground.rings.rings
 
+    origin = middle_of(rings)
+    walls = _walls(ground, origin)
+
     def vortices(ring: Ring, strength: complex) -> PoleField:
-        builder = PoleBuilder(frame, ground.scale)
+        builder = PoleBuilder(walls.frame, ground.scale)
         builder.add_pole(complex(ring.starts[0]), strength, 0)
         return builder.build(0j, offset_of(layout, frame))
 
     logs = _logs(layout, rings)
-    poles = [vortices(ring, log) for ring, log in zip(rings, logs, strict=True) if log]
+    poles = [vortices(ring, log) for ring, log in zip(walls.rings, logs, strict=True) if log]
     known = Known(
-        flow=flow,
-        vortices=tuple(PoleFlow(pole, frame) for pole in poles),
+        flow=Shifted(flow, origin),
+        vortices=tuple(PoleFlow(pole, walls.frame) for pole in poles),
         outflows=_outflows(layout),
         logs=logs,
-        pinned=tuple(e.at for k, e in enumerate(layout.elements) if k in standing and hasattr(e, "at")),
+        pinned=tuple(
+            at - origin for k in standing for name, at in places(layout.elements[k]) if name == "at"
+        ),
         flux=flux_of(layout, rings),
     )
-    piers = PierSet(layout.piers, frame, field) if layout.piers else None
-    return Task(layout, frame, _walls(ground), known, piers, with_moments, vortices, offset_of(layout, frame))
+    piers = tuple(replace(pier, at=pier.at - origin) for pier in layout.piers)
+    return Task(
+        layout=layout,
+        walls=walls,
+        origin=origin,
+        known=known,
+        piers=PierSet(piers, walls.frame, field) if piers else None,
+        with_moments=lambda solution: Shifted(with_moments(solution), origin),
+        vortices=vortices,
+        offset=offset_of(layout, frame),
+    )
 
 
-def _walls(ground: Ground) -> Walls:
-    """Rings in a frame whose origin depends on them alone, so that a factorisation serves other elements."""
+def _walls(ground: Ground, origin: complex) -> Walls:
+    """Rings in a frame that depends on them alone, so that a factorisation serves other elements."""
     rings = ground.rings.rings
     vertices = np.concatenate([ring.vertices for ring in rings])
-    low = complex(vertices.real.min(), vertices.imag.min())
-    high = complex(vertices.real.max(), vertices.imag.max())
-    frame = frame_of(ground.layout.shore, 0.5 * (low + high), abs(high - low))
-    return Walls(rings, frame, TOUCHING * abs(high - low), ground.layout.tolerance)
+    size = float(np.max(np.abs(vertices - origin)))
+    frame = shifted_frame(frame_of(ground.layout.shore, origin, size), origin)
+    return Walls(shifted_rings(rings, origin), frame, TOUCHING * size, ground.layout.tolerance)
 
 
 def _outflows(layout: Layout) -> dict[str, float]:
