@@ -88,6 +88,7 @@ def test_second_question_costs_no_factorisation(model):
     elements = (Sink("works", -300 + 200j, 5.0), Source("outfall", -420 - 100j, 4.0))
     other = compile_layout(Layout(DEPTH, shore=reach(1200.0), elements=elements))
     assert MEMO.misses == misses
+    assert other.bound is not None
     assert (
         other.bound.relative <= 6e-4
     )  # residuals of sinks 100 m from the walls are those of the flow through
