@@ -5,7 +5,7 @@ Gordon's lateral constant 0.72 as a secondary text gives it; symmetrical from me
 project. The dips of Rankine's and Burgers' vortex were recomputed by quadrature.
 """
 
-from math import atan, degrees, pi, sqrt
+from math import atan, degrees, exp, log, pi, sqrt
 
 import pytest
 from scipy.integrate import quad
@@ -228,8 +228,6 @@ def test_dips_of_the_two_vortices(service):
 
 def test_dip_is_the_integral_of_the_centripetal_slope(service):
     # g dz/dr = v^2 / r with v of Burgers' vortex, by quadrature
-    from math import exp
-
     (inlet,) = check(service, pipe(circulation=-0.3, core_radius=0.04))
     dip, error = quad(
         lambda r: (0.3 / (2 * pi * r) * (1 - exp(-((r / 0.04) ** 2)))) ** 2 / (9.81 * r), 0.0, 50.0, limit=200
@@ -243,9 +241,21 @@ def test_core_of_molecular_viscosity(service):
     (inlet,) = check(service, pipe(circulation=0.1))
     alpha = inlet["velocity"] / 2.0
     assert inlet["vortex"]["core_radius"] == pytest.approx(sqrt(4 * 1.0034e-6 / alpha), rel=1e-4)
+    # the least possible core is no forecast: nothing is judged by it
     assert inlet["vortex"]["core_given"] is False
-    assert inlet["vortex"]["air_could_be_drawn"] is True
-    assert any("air could be drawn" in finding["reason"] for finding in inlet["physical_model"])
+    assert inlet["vortex"]["air_could_be_drawn"] is None
+    assert inlet["physical_model"] == []
+
+
+@pytest.mark.parametrize(("factor", "drawn"), [(0.999, True), (1.001, False)])
+def test_critical_core_is_the_one_whose_dip_reaches_the_inlet(service, factor, drawn):
+    # ln 2 Gamma^2 / (4 pi^2 g a^2) = S
+    (inlet,) = check(service, pipe(circulation=0.3, core_radius=1.0))
+    critical = inlet["vortex"]["critical_core_radius"]
+    assert log(2) * 0.09 / (4 * pi**2 * 9.81 * critical**2) == pytest.approx(2.0, rel=EXACT)
+    (narrow,) = check(service, pipe(circulation=0.3, core_radius=factor * critical))
+    assert narrow["vortex"]["air_could_be_drawn"] is drawn
+    assert any("air could be drawn" in finding["reason"] for finding in narrow["physical_model"]) is drawn
 
 
 def test_swirl_angle_in_the_pipe(service):

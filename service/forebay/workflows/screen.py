@@ -130,8 +130,9 @@ def _drawing(layout: Layout, model: FlowModel, screen: Screen, line: Line) -> Sc
     still, reason = _without(layout, screen.name)
     sides = []
     for face in faces_of(line, model, offset=screen.sample_offset):
-        # on a wall that was solved for, what crosses it is what the line draws: better known than read
-        even = -line.flux if line.on != WATER and face.offset > screen.sample_offset else None
+        # nothing crosses a wall but what the line draws: known exactly, not read
+        on_face = screen.sample_offset == 0.0 or face.offset > screen.sample_offset
+        even = -line.flux if line.on != WATER and on_face else None
         on = _face_flow((model, model), screen, face, layout.depth, even)
         off = None if still is None else _face_flow((model, still), screen, face, layout.depth, even)
         sides.append(SideFlow(on, off))

@@ -83,7 +83,7 @@ def written(check: InletCheck, units: UnitSystem) -> dict[str, Any]:
         "scale_effects": [effect(found) for found in check.effects],
         "rings": [asdict(ring) for ring in check.rings],
         "circulation": check.circulation,
-        "vortex": None if check.vortex is None else whirl(check.vortex, inlet.submergence),
+        "vortex": None if check.vortex is None else whirl(check.vortex),
         "velocity_band": None if band is None else asdict(band) | {"inside": band.contains(inlet.velocity)},
         "physical_model": [finding(found, units) for found in check.findings],
     }
@@ -122,14 +122,21 @@ def effect(found: ScaleEffect) -> dict[str, Any]:
     }
 
 
-def whirl(vortex: Vortex, submergence: float) -> dict[str, Any]:
+def whirl(vortex: Vortex) -> dict[str, Any]:
     """Fields of a vortex."""
-    copied = ("core_radius", "rankine_dip", "burgers_dip", "rankine_speed", "burgers_speed")
+    copied = (
+        "core_radius",
+        "critical_core_radius",
+        "rankine_dip",
+        "burgers_dip",
+        "rankine_speed",
+        "burgers_speed",
+    )
     return {name: getattr(vortex, name) for name in copied} | {
         "core_given": vortex.is_core_given,
         "circulation_number": vortex.number,
         "swirl_angle_deg": vortex.swirl_angle,
-        "air_could_be_drawn": vortex.reaches(submergence),
+        "air_could_be_drawn": vortex.draws_air,
     }
 
 

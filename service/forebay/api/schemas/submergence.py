@@ -215,7 +215,15 @@ class VortexValue(Answer):
     """The vortex that the circulation could feed."""
 
     core_radius: LengthValue
-    core_given: Annotated[bool, Field(description="If not: that of Burgers' vortex, 2 sqrt(nu S / V)")]
+    core_given: Annotated[
+        bool,
+        Field(
+            description="If not: the least possible, 2 sqrt(nu S / V); dips and speeds are then upper bounds"
+        ),
+    ]
+    critical_core_radius: Annotated[
+        LengthValue, Field(description="Core below which the dip is deeper than the water over the inlet")
+    ]
     rankine_dip: Annotated[LengthValue, Field(description="Of the surface at the axis")]
     burgers_dip: Annotated[LengthValue, Field(description="Of the surface at the axis")]
     rankine_speed: Annotated[SpeedValue, Field(description="Largest, round the axis")]
@@ -224,7 +232,9 @@ class VortexValue(Answer):
     swirl_angle_deg: Annotated[
         AngleValue, Field(description="In the pipe, if all of it entered in rigid rotation")
     ]
-    air_could_be_drawn: Annotated[bool, Field(description="Whether the smaller dip reaches the inlet")]
+    air_could_be_drawn: Annotated[
+        bool | None, Field(description="Whether Burgers' dip reaches the inlet; null where no core is given")
+    ]
 
 
 class BandValue(Answer):

@@ -122,9 +122,16 @@ class FaceFlow:
 
     def share_swept(self, ratio: float) -> float:
         """Part of the whole face on which sweeping is at least `ratio` times approach velocity [-]."""
-        return share_not_negative(
-            lambda p: self.sweeping(p) - ratio * (1.0 - TIE) * self.approach(p), self.places
-        )
+        if ratio not in self._shares_swept:
+            self._shares_swept[ratio] = share_not_negative(
+                lambda p: self.sweeping(p) - ratio * (1.0 - TIE) * self.approach(p), self.places
+            )
+        return self._shares_swept[ratio]
+
+    @cached_property
+    def _shares_swept(self) -> dict[float, float]:
+        """What `share_swept` has found, by ratio: summary and verdicts ask for the same ones."""
+        return {}
 
     def share_sweeping_above(self, limit: float) -> float:
         """Part of the whole face on which the sweeping velocity is at least `limit` [-]."""

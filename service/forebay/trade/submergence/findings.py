@@ -68,7 +68,7 @@ def model_study(
     """
     for rule, (available, required) in shortfalls.items():
         yield Finding(f"submergence falls short of {rule}", available, required, "m", "the rule itself")
-    if vortex is not None and vortex.reaches(inlet.submergence):
+    if vortex is not None and vortex.draws_air:
         yield Finding(
             "the dip of the vortex reaches the inlet, so that air could be drawn",
             vortex.burgers_dip,

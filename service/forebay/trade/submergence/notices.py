@@ -44,8 +44,8 @@ VELOCITY_OUT_OF_BAND = WarningKind(
 AIR_COULD_BE_DRAWN = WarningKind(
     code="air-could-be-drawn",
     severity=Severity.CAUTION,
-    meaning="the dip of the vortex that the approach flow could feed is as deep as the water over the inlet",
-    threshold="dip >= submergence",
+    meaning="the dip of the vortex with the core given is as deep as the water over the inlet",
+    threshold="dip >= submergence, where a core radius is given",
     formula="ln 2 Gamma^2 / (4 pi^2 g r0^2)",
     source="Burgers' vortex; own check by quadrature",
     unit="m",
@@ -86,7 +86,7 @@ def _of_inlet(check: InletCheck, index: int) -> Iterator[ApplicabilityWarning]:
             yield _of(SUBMERGENCE_SHORT, message, path, found.available, found.required)
     if check.rings and inlet.circulation is None:
         yield _of(SWIRL_UNDERESTIMATED, f"{inlet.name!r}: {SWIRL_UNDERESTIMATED.meaning}.", path)
-    if vortex is not None and vortex.reaches(inlet.submergence):
+    if vortex is not None and vortex.draws_air:
         message = (
             f"A vortex of {abs(vortex.circulation):.3g} m2/s with a core of {vortex.core_radius:.2g} m would "
             f"lower the surface over {inlet.name!r} by {vortex.burgers_dip:.3g} m, down to the inlet."

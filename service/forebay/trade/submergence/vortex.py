@@ -17,7 +17,9 @@ BURGERS_SPEED = 0.6381726863389
 class Vortex:
     """What a circulation could become at an inlet.
 
-    core_radius : given, or that of Burgers' vortex r0 = sqrt(4 nu / alpha) [m];  is_core_given : which
+    core_radius : given, or the least possible, that of Burgers' vortex r0 = sqrt(4 nu / alpha) with the
+    viscosity of water at rest [m];  is_core_given : which. Dips and speeds of the latter are upper bounds.
+    critical_core_radius : core below which Burgers' dip is deeper than the water over the inlet [m]
     rankine_dip, burgers_dip : of the surface at the axis [m], as if nothing stood in its way
     rankine_speed, burgers_speed : largest speed round the axis [m/s]
     number : Gamma S / Q [-];  swirl_angle : in the pipe if all of it entered in rigid rotation [deg]
@@ -26,6 +28,7 @@ class Vortex:
     circulation: float
     core_radius: float
     is_core_given: bool
+    critical_core_radius: float
     rankine_dip: float
     burgers_dip: float
     rankine_speed: float
@@ -33,9 +36,10 @@ class Vortex:
     number: float
     swirl_angle: float
 
-    def reaches(self, submergence: float) -> bool:
-        """Whether the smaller dip is as deep as the water over the inlet: air could be drawn."""
-        return self.burgers_dip >= submergence
+    @property
+    def draws_air(self) -> bool | None:
+        """Whether Burgers' dip is as deep as the water over the inlet; None where no core is given."""
+        return self.core_radius <= self.critical_core_radius if self.is_core_given else None
 
 
 def vortex_of(inlet: Inlet, circulation: float, water: WaterProperties, gravity: float) -> Vortex:
@@ -44,7 +48,7 @@ def vortex_of(inlet: Inlet, circulation: float, water: WaterProperties, gravity:
     Rankine: v = Gamma r / (2 pi a^2) inside a, dip Gamma^2 / (4 pi^2 g a^2) at the axis. Burgers: v = Gamma
     / (2 pi r) (1 - exp(-r^2/a^2)), dip ln 2 Gamma^2 / (4 pi^2 g a^2). Without a core radius a^2 = 4 nu /
     alpha with the axial strain alpha = V / S of water that speeds up from rest at the surface: molecular
-    viscosity, so that a real, turbulent core is wider and its dip shallower.
+    viscosity, so that a real, turbulent core is wider by far and its dip shallower.
 
     References
     ----------
@@ -60,6 +64,7 @@ def vortex_of(inlet: Inlet, circulation: float, water: WaterProperties, gravity:
         circulation=circulation,
         core_radius=core,
         is_core_given=inlet.core_radius is not None,
+        critical_core_radius=abs(circulation) / (2.0 * pi) * sqrt(log(2.0) / (gravity * inlet.submergence)),
         rankine_dip=speed**2 / gravity,
         burgers_dip=log(2.0) * speed**2 / gravity,
         rankine_speed=speed,
