@@ -7,7 +7,7 @@ import sys
 
 import pytest
 
-from support.readme import ADDRESS, blocks, curl_commands
+from support.readme import ADDRESS, blocks, blocks_under, curl_commands
 from support.tree import ROOT
 
 ROUTES = (
@@ -31,6 +31,12 @@ ROUTES = (
 )
 
 
+MAGIC = {"flow-net.png": b"\x89PNG", "calculation-sheet.pdf": b"%PDF-"}
+"""First bytes of the files that examples write."""
+
+FILED = "From an empty file to a filed sheet"
+
+
 @pytest.fixture
 def folder(tmp_path):
     """Folder that looks like the repository's root to a command, and may be written to."""
@@ -48,9 +54,9 @@ def test_curl_example_works(command, service, folder):
     pasted = command.replace(ADDRESS, service.address).replace("curl ", "curl --fail-with-body ", 1)
     outcome = subprocess.run(["bash", "-c", pasted], cwd=folder, capture_output=True, text=True, check=False)
     assert outcome.returncode == 0, outcome.stdout + outcome.stderr
-    picture = folder / "flow-net.png"
-    if picture.exists():
-        assert picture.read_bytes().startswith(b"\x89PNG")
+    written = [path for path in folder.iterdir() if path.name in MAGIC]
+    if written:
+        assert all(path.read_bytes().startswith(MAGIC[path.name]) for path in written)
     elif route(command) != "/metrics":
         assert json.loads(outcome.stdout)
     else:
@@ -74,6 +80,22 @@ def test_python_example_works(service, folder):
     outcome = subprocess.run(command, cwd=folder, capture_output=True, text=True, check=False)
     assert outcome.returncode == 0, outcome.stderr
     assert len(outcome.stdout.splitlines()) == 6
+
+
+def test_an_empty_file_becomes_a_filed_sheet(folder):
+    outcomes = []
+    for block in blocks_under(FILED, "sh"):
+        pasted = block.replace(".venv/bin/forebay", f"{sys.executable} -m forebay")
+        outcomes.append(
+            subprocess.run(["bash", "-c", pasted], cwd=folder, capture_output=True, text=True, check=False)
+        )
+    for outcome in outcomes:
+        assert outcome.returncode == 0, outcome.stderr
+        assert "new screens" in outcome.stdout
+    assert "bed-friction-unknown" in outcomes[0].stdout
+    assert "-unknown" not in outcomes[-1].stdout  # the second file gives what the first one's notes ask for
+    assert "road tanker" in outcomes[-1].stdout
+    assert (folder / "calculation-sheet.pdf").read_bytes().startswith(MAGIC["calculation-sheet.pdf"])
 
 
 def test_assess_takes_the_layout_of_the_readme(folder):

@@ -18,6 +18,16 @@ def blocks(language: str) -> list[str]:
     ]
 
 
+def blocks_under(heading: str, language: str) -> list[str]:
+    """Contents of the fenced blocks in one language under a heading of the second level."""
+    return [content for name, content in FENCE.findall(under(heading)) if name == language]
+
+
+def under(heading: str) -> str:
+    """Text under a heading of the second level."""
+    return README.read_text(encoding="utf-8").split(f"\n## {heading}\n", 1)[1].split("\n## ", 1)[0]
+
+
 def curl_commands() -> list[str]:
     """Each curl command with its continuation lines, as it would be pasted."""
     commands: list[str] = []
@@ -37,6 +47,5 @@ def is_open(command: str) -> bool:
 
 def rows(heading: str) -> list[list[str]]:
     """Cells of the table under a heading of the second level, its heading row left out."""
-    text = README.read_text(encoding="utf-8").split(f"\n## {heading}\n", 1)[1].split("\n## ", 1)[0]
-    lines = [line for line in text.splitlines() if line.startswith("|")]
+    lines = [line for line in under(heading).splitlines() if line.startswith("|")]
     return [[cell.strip(" `") for cell in line.strip("|").split("|")] for line in lines[2:]]
