@@ -17,6 +17,7 @@ from forebay.flow.arrivals.release import (
     ReleaseError,
 )
 from forebay.flow.arrivals.result import Outcome, ReleaseStatus, Tail
+from forebay.flow.arrivals.transits import Transect
 from forebay.flow.layout import (
     Ambient,
     Channel,
@@ -172,6 +173,22 @@ def test_curve_rises_to_the_captured_share(place):
     assert answer.curve.share[-1] == pytest.approx(sum(a.share for a in answer.arrivals), abs=1e-12)
     assert answer.curve.share[-1] + answer.lost_share == pytest.approx(1.0, abs=1e-12)
     assert sum(row.share for row in answer.outcomes) == pytest.approx(1.0, abs=1e-12)
+
+
+def test_releases_far_beyond_the_layout_still_know_its_divides():
+    # the strip of this intake is 0.45 / 0.35 m wide; 120 m upstream, 0.2 m off its axis
+    layout = layout_of(Sink("intake", 120 + 6j, 0.45), shore=BANK, velocity=0.35 + 0j)
+    point, disc = released(layout, AtPoint(6.2j), OverDisc(40 + 8j, 4.0))
+    # the bank's image turns the strip by a few percent of its distance from the axis
+    assert point.divide_distance == pytest.approx(0.5 * 0.45 / 0.35 - 0.2, abs=0.15)
+    assert disc.status is ReleaseStatus.OK  # no divide had to be searched for
+
+
+def test_a_transect_far_beyond_the_layout_is_crossed():
+    gate = Transect("gate", (3000 - 5j, 3000 + 5j))
+    answer = released(layout_of(SINK), AtPoint(-3 + 3j), transects=(gate,))[0]
+    # the wake of the intake slows the water by q / (2 pi U) ln(...) / U, a few seconds of 6000
+    assert answer.transits[0].first_time == pytest.approx(3003.0 / 0.5, rel=2e-3)
 
 
 def test_no_intake_at_all():

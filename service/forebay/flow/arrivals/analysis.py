@@ -1,5 +1,8 @@
 """Whether and when released water reaches intakes: one analysis for every kind of release."""
 
+import numpy as np
+
+from forebay.flow.arrays import ComplexArray
 from forebay.flow.arrivals.dividing import scene_of
 from forebay.flow.arrivals.fates import Follower
 from forebay.flow.arrivals.findings import ArrivalRules, Findings, reported
@@ -40,11 +43,27 @@ def arrive(
     divides (1e-9); those of patches, and all curves, are refined until doubling the streamlines changes them
     by less than `rules.tolerance`, which the errors state.
     """
-    scene = scene_of(model, search, rules.transects)
+    scene = scene_of(model, search, _places(releases), rules.transects)
     tolerance = min(_COARSEST, max(_FINEST, _PART * rules.tolerance))
     many = Follower(scene, rules.transects, tolerance)
     single = Follower(scene, rules.transects, _POINT_TOLERANCE)
     return tuple(reported(release, _found(release, many, single, rules), rules) for release in releases)
+
+
+def _places(releases: tuple[Release, ...]) -> ComplexArray:
+    """Places that hold all releases between them [m]."""
+    places: list[complex] = []
+    for release in releases:
+        match release.place:
+            case AtPoint(at=at):
+                places.append(at)
+            case AlongLine(points=points) | OverPolygon(points=points):
+                places += points
+            case OverDisc(centre=centre, radius=radius):
+                places += [centre + radius * 1j**k for k in range(4)]
+            case FromOutfall():
+                continue
+    return np.array(places, dtype=np.complex128)
 
 
 def _found(release: Release, many: Follower, single: Follower, rules: ArrivalRules) -> Findings:

@@ -2,7 +2,7 @@
 
 import numpy as np
 
-from forebay.flow.arrays import ComplexArray, FloatArray
+from forebay.flow.arrays import ComplexArray, FloatArray, IntArray
 from forebay.flow.arrivals.curves import Arc, Rake, Straight
 from forebay.flow.arrivals.rakes import Edge, Face, PointMouth
 from forebay.flow.arrivals.scene import Scene
@@ -42,15 +42,28 @@ def _intersections(
     curve: Straight | Arc, path: ComplexArray
 ) -> tuple[FloatArray, ComplexArray, ComplexArray]:
     """Parts of the curve at which a polyline meets it, and the ends of the pieces that do."""
-    if isinstance(curve, Straight):
-        side = ((path - curve.start) / (curve.end - curve.start)).imag
-    else:
-        side = np.abs(path - curve.centre) - curve.radius
-    k = np.nonzero((side[:-1] < 0.0) != (side[1:] < 0.0))[0]
-    part = side[k] / (side[k] - side[k + 1])
-    s = _part_of(curve, path[k] + part * (path[k + 1] - path[k]))
+    k, along = _crossed_line(curve, path) if isinstance(curve, Straight) else _crossed_circle(curve, path)
+    s = _part_of(curve, path[k] + along * (path[k + 1] - path[k]))
     inside = (s > 0.0) & (s < 1.0)
     return s[inside], path[k][inside], path[k + 1][inside]
+
+
+def _crossed_line(line: Straight, path: ComplexArray) -> tuple[IntArray, FloatArray]:
+    """Pieces of a polyline that cross an unbounded line, and the part of each before that."""
+    side = ((path - line.start) / (line.end - line.start)).imag
+    k = np.nonzero((side[:-1] < 0.0) != (side[1:] < 0.0))[0]
+    return k, np.asarray(side[k] / (side[k] - side[k + 1]))
+
+
+def _crossed_circle(arc: Arc, path: ComplexArray) -> tuple[IntArray, FloatArray]:
+    """Pieces of a polyline that cross a circle, once or twice, and the part of each before that."""
+    span, away = path[1:] - path[:-1], path[:-1] - arc.centre
+    with np.errstate(divide="ignore", invalid="ignore"):
+        middle = -(np.conj(span) * away).real / np.abs(span) ** 2
+        half = np.sqrt((arc.radius**2 - np.abs(away + middle * span) ** 2) / np.abs(span) ** 2)
+    parts = np.stack([middle - half, middle + half])
+    met, k = np.nonzero((parts >= 0.0) & (parts < 1.0))
+    return k, parts[met, k]
 
 
 def _part_of(curve: Straight | Arc, z: ComplexArray) -> FloatArray:
