@@ -9,7 +9,7 @@ from pydantic import BaseModel, TypeAdapter
 from forebay.api.envelope import unit_in
 from forebay.api.figures import unit_name
 from forebay.api.schemas.discharges import UnitDischarge
-from forebay.api.schemas.layout import Water
+from forebay.api.schemas.water import Water
 from forebay.api.units import UnitSystem
 
 MOST_POSITIONS = 40

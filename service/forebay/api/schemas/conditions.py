@@ -1,13 +1,12 @@
 """What is known of a site beside its flow: it decides which warnings can be raised, and the near field."""
 
 from collections.abc import Iterable
-from typing import Annotated, Self
+from typing import Annotated, Any, Protocol, Self
 
 from pydantic import Field, model_validator
 from pydantic_core import PydanticCustomError
 
 from forebay.api.schemas.common import Strict
-from forebay.api.schemas.elements import Element, LineSink, LineSource, Sink, Source
 from forebay.api.schemas.quantities import (
     BedFriction,
     Degrees,
@@ -28,6 +27,15 @@ class ElevationOutsideWaterError(LayoutError):
 
     code = "elevation-outside-water"
     title = "An elevation lies above the surface"
+
+
+class Named(Protocol):
+    """An element of a layout: what it holds beside its name depends on its kind."""
+
+    @property
+    def name(self) -> str:
+        """Its name."""
+        ...
 
 
 class Wind(Strict):
@@ -75,7 +83,7 @@ class Conditions(Strict):
             raise PydanticCustomError("one_way", "Either `wind` or `wind_speed`")
         return self
 
-    def data_of(self, elements: Iterable[Element], units: UnitSystem) -> SiteData:
+    def data_of(self, elements: Iterable[Named], units: UnitSystem) -> SiteData:
         """What is known of the site and its openings, in SI.
 
         Raises ElevationOutsideWaterError for an elevation above the surface.
@@ -101,32 +109,29 @@ class Conditions(Strict):
             elevations=_elevations(known, depth, units),
             opening_radii=_each(known, "opening_radius", "m", units),
             excess_densities=_each(known, "excess_density", "kg/m3", units),
-            port_shapes={
-                element.name: element.port_shape
-                for element in known
-                if isinstance(element, LineSource) and element.port_shape is not None
-            },
+            port_shapes=_held(known, "port_shape"),
         )
 
 
-def _each(elements: list[Element], name: str, unit: str, units: UnitSystem) -> dict[str, float]:
-    """A datum in SI of every element that has it, by its name."""
+def _held(elements: list[Named], name: str) -> dict[str, Any]:
+    """A datum of every element that has it, by the element's name."""
     found = {element.name: getattr(element, name, None) for element in elements}
-    return {owner: units.read(value, unit) for owner, value in found.items() if value is not None}
+    return {owner: value for owner, value in found.items() if value is not None}
 
 
-def _elevations(elements: list[Element], depth: float, units: UnitSystem) -> dict[str, float]:
-    found = {}
+def _each(elements: list[Named], name: str, unit: str, units: UnitSystem) -> dict[str, float]:
+    """The same in SI."""
+    return {owner: units.read(value, unit) for owner, value in _held(elements, name).items()}
+
+
+def _elevations(elements: list[Named], depth: float, units: UnitSystem) -> dict[str, float]:
+    found = _each(elements, "elevation", "m", units)
     for index, element in enumerate(elements):
-        if not isinstance(element, Source | Sink | LineSink):
-            continue
-        elevation = _read(units, element.elevation, "m")
-        if elevation is not None and elevation > depth:
+        elevation = found.get(element.name, 0.0)
+        if elevation > depth:
             raise ElevationOutsideWaterError(
                 f"{elevation:g} m above a bed {depth:g} m below the surface", ("elements", index, "elevation")
             )
-        if elevation is not None:
-            found[element.name] = elevation
     return found
 
 

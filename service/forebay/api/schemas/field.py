@@ -6,6 +6,7 @@ from typing import Annotated, Self
 import numpy as np
 from pydantic import Field, model_validator
 from pydantic_core import PydanticCustomError
+from typing_extensions import override
 
 from forebay.api.schemas.common import Answer
 from forebay.api.schemas.layout import LayoutRequest
@@ -75,6 +76,11 @@ class HeightedAt(At):
         if isinstance(self.z, list) and len(self.z) != self.count:
             raise PydanticCustomError("unequal_columns", "`z` differs in length from the points")
         return self
+
+    @override
+    def is_at(self, place: tuple[float, float]) -> bool:
+        """The same; a column of heights must be held against the points themselves."""
+        return not isinstance(self.z, list) and super().is_at(place)
 
     def heights(self, units: UnitSystem) -> FloatArray | None:
         """Heights above the bed in SI, shape (n,); None if there are none."""

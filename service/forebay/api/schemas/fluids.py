@@ -5,7 +5,6 @@ from typing import Annotated, Any, Literal
 from pydantic import Discriminator, Field, Tag
 
 from forebay.api.schemas.common import Answer, Strict
-from forebay.api.schemas.layout import Water
 from forebay.api.schemas.quantities import (
     Consistency,
     Density,
@@ -20,6 +19,7 @@ from forebay.api.schemas.quantities import (
     ViscosityValue,
     YieldStress,
 )
+from forebay.api.schemas.water import Water
 from forebay.api.units import UnitSystem
 from forebay.flow.rheology import GeneralisedFluid
 from forebay.flow.stress import Fluid as FlowFluid

@@ -21,7 +21,9 @@ class ZoneRequest(LayoutRequest):
     """Zone of influence of one intake or outfall."""
 
     element: Annotated[Name, Field(description="Name of a source or sink, at a point or along a line")]
-    limit_speed: Annotated[LimitSpeed, Field(description="Speed that is exceeded inside the zone")]
+    limit_speed: Annotated[
+        LimitSpeed, Field(description="Speed that is exceeded inside the zone", examples=[0.1524])
+    ]
     speed: Annotated[
         ZoneSpeed,
         Field(

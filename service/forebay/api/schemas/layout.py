@@ -14,13 +14,12 @@ from forebay.api.schemas.outlines import Outline
 from forebay.api.schemas.quantities import (
     PerSecond,
     Position,
-    Salinity,
     Tolerance,
     Velocity,
-    WaterTemperature,
 )
 from forebay.api.schemas.shores import Banks, OpenWater
 from forebay.api.schemas.surveyed import GridCode, SurveyedShore
+from forebay.api.schemas.water import Water
 from forebay.api.units import UnitSystem
 from forebay.flow import layout as flow
 from forebay.flow.placement import places
@@ -53,24 +52,6 @@ EFFORT_A_VERTEX = 60_000
 
 EFFORT_A_VERTEX_PAIR = 3_000
 """The same, for each pair of vertices: a dozen unknowns a vertex, all of which feel each other."""
-
-
-class Water(Strict):
-    """Temperature and salinity of the water."""
-
-    temperature: Annotated[WaterTemperature, Field(description="Temperature of the water")] = 10.0
-    salinity: Annotated[Salinity, Field(description="Absolute salinity")] = 0.0
-
-    def to_flow(self, units: UnitSystem) -> flow.Water:
-        """Water properties in SI; the defaults are SI values in either unit system."""
-        assumed = self.assumed_temperature
-        temperature = units.read(self.temperature, "Cel") if assumed is None else assumed
-        return flow.Water(temperature, self.salinity)
-
-    @property
-    def assumed_temperature(self) -> float | None:
-        """The default temperature [degC], where none is given."""
-        return None if "temperature" in self.model_fields_set else self.temperature
 
 
 GradientRow = Annotated[list[PerSecond], Field(min_length=2, max_length=2, fail_fast=True)]

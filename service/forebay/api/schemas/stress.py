@@ -8,7 +8,7 @@ from pydantic_core import PydanticCustomError
 
 from forebay.api.schemas.common import Answer, ComputeRequest, Name, Strict
 from forebay.api.schemas.fluids import Fluid, FluidValue
-from forebay.api.schemas.layout import Layout, Water
+from forebay.api.schemas.layout import Layout
 from forebay.api.schemas.places import At, Column
 from forebay.api.schemas.quantities import (
     CountValue,
@@ -35,6 +35,7 @@ from forebay.api.schemas.stress_readings import (
     OpeningReachValue,
     ThresholdValue,
 )
+from forebay.api.schemas.water import Water
 from forebay.api.schemas.ways import describe_ways
 from forebay.api.units import UnitSystem
 from forebay.flow.gradient_fit import VelocitySamples

@@ -7,7 +7,7 @@ from pydantic_core import PydanticCustomError
 
 from forebay.api.schemas.common import Answer, ComputeRequest, Name, Strict
 from forebay.api.schemas.discharges import Discharge, read_discharge
-from forebay.api.schemas.layout import Layout, Water
+from forebay.api.schemas.layout import Layout
 from forebay.api.schemas.quantities import (
     AngleValue,
     AreaValue,
@@ -23,6 +23,7 @@ from forebay.api.schemas.quantities import (
     SpeedValue,
     SquareMetresPerSecond,
 )
+from forebay.api.schemas.water import Water
 from forebay.api.units import UnitSystem
 from forebay.flow import layout as flow
 from forebay.flow.contour import ContourStatus
