@@ -57,7 +57,7 @@ class Settings(BaseModel):
     ] = ("*",)
     docs: Annotated[bool, Field(description="Whether /docs is served")] = True
     worker_memory: Annotated[
-        int, Field(ge=2**28, le=2**40, description="Memory that a worker process may take [bytes]")
+        int, Field(ge=2**29, le=2**40, description="Memory that a worker process may take [bytes]")
     ] = 2 * 2**30
     drain: Annotated[
         float,

@@ -8,6 +8,7 @@ import pytest
 from starlette.testclient import TestClient
 
 from forebay.api.body_limit import DRAIN_LIMITS, BodyLimit
+from forebay.api.problems import Problem
 from forebay.api.routers.registry import OPERATIONS
 from forebay.app import create_app
 from forebay.settings import Settings
@@ -187,6 +188,42 @@ def test_silent_client_is_not_waited_for_for_ever(monkeypatch):
     scope = {"type": "http", "headers": [(b"content-length", b"2000")]}
     asyncio.run(BodyLimit(never_asked, LIMIT)(scope, silent, send))
     assert sent[-1] == {"type": "http.response.body", "body": b""}
+
+
+def test_body_that_stops_coming_is_not_waited_for_for_ever(monkeypatch):
+    monkeypatch.setattr("forebay.api.body_limit.STALL_SECONDS", 0.01)
+    scope = {"type": "http", "headers": []}
+
+    async def silent():
+        await asyncio.Event().wait()
+
+    async def reads(scope, receive, send):
+        await receive()
+
+    with pytest.raises(Problem) as raised:
+        asyncio.run(BodyLimit(reads, LIMIT)(scope, silent, never_sent))
+    assert (raised.value.status, raised.value.code) == (408, "body-timeout")
+
+
+async def never_sent(message):
+    raise AssertionError("nothing is sent by the limit itself")
+
+
+def test_client_that_waits_for_its_answer_is_not_taken_for_a_stalled_body(monkeypatch):
+    monkeypatch.setattr("forebay.api.body_limit.STALL_SECONDS", 0.01)
+    messages = [{"type": "http.request", "body": b"{}", "more_body": False}]
+
+    async def receive():
+        if messages:
+            return messages.pop()
+        await asyncio.sleep(0.1)
+        return {"type": "http.disconnect"}
+
+    async def reads_and_waits(scope, receive, send):
+        await receive()
+        assert (await receive())["type"] == "http.disconnect"
+
+    asyncio.run(BodyLimit(reads_and_waits, LIMIT)({"type": "http", "headers": []}, receive, never_sent))
 
 
 def test_index_links_below_any_prefix(client):

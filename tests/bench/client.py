@@ -1,6 +1,7 @@
 """The application called in this process: no sockets, no client library in the measured time."""
 
 import asyncio
+from collections.abc import Sequence
 from typing import Any
 
 from fastapi import FastAPI
@@ -24,11 +25,11 @@ class InProcess:
         """Status and body of one answer."""
         return self.loop.run_until_complete(self._post(path, body))
 
-    def many(self, path: str, body: bytes, count: int) -> None:
-        """The same request `count` times, one after another."""
+    def many(self, path: str, bodies: Sequence[bytes]) -> None:
+        """Requests one after another."""
 
         async def repeat() -> None:
-            for _ in range(count):
+            for body in bodies:
                 status, answer = await self._post(path, body)
                 assert status == 200, answer
 

@@ -1,6 +1,8 @@
 """Small validated requests against an empty one of the same application, requests per second."""
 
+import copy
 from collections.abc import Iterator
+from typing import Any
 
 import orjson
 from starlette.requests import Request
@@ -29,7 +31,7 @@ def _element(number: int) -> dict[str, object]:
     return {"kind": kind, **at, **strengths[kind]}
 
 
-BODY = {
+BODY: dict[str, Any] = {
     "layout": {
         "depth": 4.0,
         "ambient": {"velocity": [0.3, 0.0]},
@@ -39,9 +41,9 @@ BODY = {
 }
 """Ten elements of four kinds and a hundred points, some two kilobytes."""
 
-STATE = {"name": "shear", "velocity_gradient": [[0.0, 10.0], [0.0, 0.0]]}
+STATE: dict[str, Any] = {"name": "shear", "velocity_gradient": [[0.0, 10.0], [0.0, 0.0]]}
 
-REQUESTS = {
+REQUESTS: dict[str, dict[str, Any]] = {
     "/v1/stress/tensor": {"fluid": {"temperature": 12.0}, "states": [STATE]},
     "/v1/field/sample": BODY,
 }
@@ -53,24 +55,37 @@ async def _empty(request: Request) -> Response:
     return Response(b"", media_type="application/json")
 
 
+def _varied(body: dict[str, Any]) -> list[bytes]:
+    """Requests that differ from one another in their numbers, as those of a tool that moves a point do."""
+    varied = []
+    for number in range(COUNT):
+        changed = copy.deepcopy(body)
+        if "at" in changed:
+            changed["at"]["points"][0][0] = 0.125 * number
+        else:
+            changed["states"][0]["velocity_gradient"][0][1] = 0.125 * number + 1.0
+        varied.append(orjson.dumps(changed))
+    return varied
+
+
 def measure() -> Iterator[Measure]:
-    """Rate of a field sample of 2 kB and of an empty answer to the same body, without sockets."""
+    """Rates of small requests and of empty answers to the same bodies, without sockets."""
     app = create_app(Settings())
     app.add_route("/bench/empty", _empty, methods=["POST"])
     client = InProcess(app)
     try:
         for path, body in REQUESTS.items():
-            yield _ratio(client, path, orjson.dumps(body))
+            yield _ratio(client, path, _varied(body))
     finally:
         client.close()
 
 
-def _ratio(client: InProcess, path: str, body: bytes) -> Measure:
-    status, answer = client.post(path, body)
+def _ratio(client: InProcess, path: str, bodies: list[bytes]) -> Measure:
+    status, answer = client.post(path, bodies[0])
     assert status == 200, answer
     small, empty = interleaved(
-        lambda: client.many(path, body, COUNT), lambda: client.many("/bench/empty", body, COUNT), repeats=7
+        lambda: client.many(path, bodies), lambda: client.many("/bench/empty", bodies), repeats=7
     )
-    remark = f"{COUNT / small:.0f} against {COUNT / empty:.0f} requests/s, no sockets, {len(body)} bytes"
+    remark = f"{COUNT / small:.0f} against {COUNT / empty:.0f} requests/s, no sockets, {len(bodies[0])} bytes"
     what = f"{path} over an empty POST, requests/s"
     return Measure(what, empty / small, "-", 0.6, more_is_better=True, remark=remark)

@@ -15,6 +15,10 @@ DRAIN_LIMITS = 4
 """Most that is thrown away, in limits: beyond it the connection is cut."""
 
 
+STALL_SECONDS = 20.0
+"""Longest time without a byte of a body that is not whole yet [s]."""
+
+
 class BodyTooLarge(Exception):  # noqa: N818  (never leaves this module)
     """The body exceeds the limit."""
 
@@ -36,8 +40,17 @@ class Body:
         return message
 
     async def next_within_limit(self) -> Message:
-        """Next message of the request; raises BodyTooLarge."""
-        message = await self.next()
+        """Next message of the request.
+
+        Raises BodyTooLarge, or Problem body-timeout if a body that is not whole stops coming.
+        """
+        try:
+            async with asyncio.timeout(None if self.is_over else STALL_SECONDS):
+                message = await self.next()
+        except TimeoutError:
+            facts = {"limit": STALL_SECONDS}
+            detail = f"Nothing of the body came for {STALL_SECONDS:g} s"
+            raise Problem("body-timeout", detail, headers={"Connection": "close"}, facts=facts) from None
         if self.size > self._limit:
             raise BodyTooLarge
         return message

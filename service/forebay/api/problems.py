@@ -53,6 +53,9 @@ HTTP_PROBLEMS = {
         "No acceptable media type",
         "Accept asks for nothing that this route can answer; `offered` lists it.",
     ),
+    "body-timeout": ProblemKind(
+        408, "The body stopped coming", "The rest of the body did not come in time. Send the request again."
+    ),
     "body-too-large": ProblemKind(
         413, "The body is too large", "The body exceeds the limit in bytes that GET /v1/limits publishes."
     ),

@@ -4,6 +4,8 @@ from collections.abc import Iterable
 from functools import lru_cache
 from typing import Any, Protocol
 
+from typing_extensions import override
+
 from forebay.api.numbers import round_number
 from forebay.api.problems import API_NAMES, pointer
 from forebay.api.units import UnitSystem
@@ -13,6 +15,7 @@ from forebay.flow.errors import Path
 class Notice(Protocol):
     """What a warning of the catalogue says about one layout or answer."""
 
+    @override
     def __hash__(self) -> int:
         """Equal ones are written once."""
         ...

@@ -19,10 +19,10 @@ from forebay.api.schemas.common import Answer, ComputeRequest
 if TYPE_CHECKING:
     from forebay.api.work import Workshop
 
-COMPUTE_STATUSES = (400, 406, 413, 415, 422, 500, 503, 504)
+COMPUTE_STATUSES = (400, 401, 406, 408, 413, 415, 422, 429, 500, 503, 504)
 """Statuses of the problems that a compute route can answer with."""
 
-READ_STATUSES = (406, 422, 500)
+READ_STATUSES = (401, 406, 422, 500)
 """Statuses of the problems that a catalogue can answer with."""
 
 REQUESTS: dict[str, type[ComputeRequest]] = {}
