@@ -47,6 +47,28 @@ CHANNEL: dict[str, Any] = {
 """A small site between banks."""
 
 
+RINGED: dict[str, Any] = {
+    "depth": 3.0,
+    "tolerance": 1e-3,
+    "shore": {
+        "kind": "surveyed",
+        "water": {"type": "Polygon", "coordinates": [[[0, 0], [120, 0], [120, 60], [0, 60]]]},
+        "open_edges": [
+            {"name": "upstream", "from": [0, 0], "to": [0, 60], "discharge": 60.0},
+            {"name": "downstream", "from": [120, 0], "to": [120, 60]},
+        ],
+    },
+    "elements": [
+        {"kind": "sink", "name": "intake", "at": [40, 15], "discharge": 1.0},
+        {"kind": "source", "name": "outfall", "at": [70, 40], "discharge": 0.6},
+    ],
+    "structures": [{"kind": "outline", "name": "jetty", "points": [[90, 20], [100, 20], [95, 30]]}],
+}
+"""A small site within rings."""
+
+ON_RINGS = frozenset({"sampleField", "integrateContour"})
+"""Operations rehearsed within rings: they take the kernels of solved walls; searches there take long."""
+
 OF_NAMED_ELEMENTS = frozenset({"findInfluenceZone", "checkScreen", "checkSubmergence", "computeArrivals"})
 """Operations whose example names elements of its own site, so that no other can stand in for it."""
 
@@ -56,7 +78,8 @@ def rehearsals(operation_id: str) -> list[dict[str, Any]]:
     example = request_example(operation_id)
     if "layout" not in example or operation_id in OF_NAMED_ELEMENTS:
         return [example]
-    return [example | {"layout": layout} for layout in (OPEN_WATER, CHANNEL)]
+    layouts = (OPEN_WATER, CHANNEL, RINGED) if operation_id in ON_RINGS else (OPEN_WATER, CHANNEL)
+    return [example | {"layout": layout} for layout in layouts]
 
 
 def file_name(path: str) -> str:

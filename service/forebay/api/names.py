@@ -27,6 +27,10 @@ RESERVED = frozenset(
 """Words by which answers say where water comes from or where something stands."""
 
 
+FAR_ENDS = frozenset({"upstream", "downstream", "open-end"})
+"""Words for the far ends of other shores, by which open edges may be called."""
+
+
 class ReservedNameError(LayoutError):
     """An element or structure has a name that answers use for a bank, an end or the water itself."""
 
@@ -50,14 +54,17 @@ class Named(Protocol):
         ...
 
 
-def refuse_reserved(parts: Mapping[str, Sequence[Named]], above: Path = ()) -> None:
+def refuse_reserved(
+    parts: Mapping[str, Sequence[Named]], above: Path = (), *, allowed: frozenset[str] = frozenset()
+) -> None:
     """Raise ReservedNameError if something in the parts of a layout has such a name.
 
     above : path of what holds the parts; that of the error is (*above, part, index, "name")
+    allowed : words that mean these very things, such as far ends of the water
     """
     for part, things in parts.items():
         for index, thing in enumerate(things):
-            if thing.name in RESERVED:
+            if thing.name in RESERVED - allowed:
                 raise ReservedNameError("answers use this word for themselves", (*above, part, index, "name"))
 
 

@@ -172,6 +172,8 @@ def net_notes(net: FlowNet, scene: Scene, options: FlowNetOptions) -> list[str]:
         notes.append("No equipotentials: the flow has vorticity, so no potential exists.")
     if net.streamlines is not None or net.equipotentials is not None:
         notes.append("Lines are left out where they would crowd, beside point elements.")
+    if scene.model.bound is not None:
+        notes.append(f"Rings are met within {scene.model.bound.relative:.1g} of the flow through.")
     broken = [lines for lines in (net.streamlines, net.equipotentials) if lines is not None and lines.breaks]
     if broken:
         notes.append("Some lines end inside the water for want of resolution.")

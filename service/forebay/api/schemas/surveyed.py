@@ -5,7 +5,7 @@ from typing import Annotated, Literal, Self
 from pydantic import Discriminator, Field, Tag, model_validator
 from pydantic_core import PydanticCustomError
 
-from forebay.api.names import refuse_reserved
+from forebay.api.names import FAR_ENDS, refuse_reserved
 from forebay.api.schemas.common import Name, Strict
 from forebay.api.schemas.discharges import FACTORS, LARGEST, DischargeUnit
 from forebay.api.schemas.quantities import SquareMetresPerSecond, given
@@ -167,7 +167,8 @@ class SurveyedShore(Strict):
 
         Raises LayoutError, whose path leads to what is wrong.
         """
-        refuse_reserved({"open_edges": self.open_edges, "islands": self.islands}, ("shore",))
+        refuse_reserved({"islands": self.islands}, ("shore",))
+        refuse_reserved({"open_edges": self.open_edges}, ("shore",), allowed=FAR_ENDS)
         return surveyed_water(self._written(units, grid))
 
     def _written(self, units: UnitSystem, grid: str | None) -> Survey:
