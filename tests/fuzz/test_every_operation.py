@@ -12,7 +12,8 @@ import time
 import orjson
 import pytest
 import schemathesis
-from hypothesis import HealthCheck, settings
+from hypothesis import HealthCheck, Phase, given, settings
+from schemathesis import GenerationMode
 from schemathesis.core.failures import ServerError
 from schemathesis.openapi.checks import RejectedPositiveData
 
@@ -53,8 +54,16 @@ def application():
     return app
 
 
-APP = application()
-QUICK, LONG = (schemathesis.openapi.from_asgi("/openapi.json", APP) for _ in range(2))
+SCHEMA = schemathesis.openapi.from_asgi("/openapi.json", application())
+
+OPERATIONS = [
+    (path, method.upper(), mode)
+    for path, item in SCHEMA.raw_schema["paths"].items()
+    for method, operation in item.items()
+    for mode in GenerationMode
+    if mode.is_positive or "requestBody" in operation or operation.get("parameters")
+]
+"""Every operation, once under requests that fit its schema and once under requests that do not."""
 
 
 def code_of(response):
@@ -76,33 +85,41 @@ def filter_failure(context, failure, case, response):
     return not (refused and is_impossible(response))
 
 
-for schema in (QUICK, LONG):
-    schema.hook(filter_failure)
+SCHEMA.hook(filter_failure)
 
 
 @pytest.fixture(scope="module", autouse=True)
 def readiness():
     deadline = time.monotonic() + COMPILATION
-    while QUICK["/readyz"]["GET"].Case().call(timeout=PATIENCE).status_code != 200:
+    while SCHEMA["/readyz"]["GET"].Case().call(timeout=PATIENCE).status_code != 200:
         assert time.monotonic() < deadline
         time.sleep(0.5)
 
 
-def checked(examples):
-    """Settings of a run that is the same every time."""
-    return settings(
-        max_examples=examples, deadline=None, derandomize=True, suppress_health_check=list(HealthCheck)
+def check(path, method, mode, *, examples):
+    """Send so many requests of a kind, the same every time, and check each answer."""
+
+    @given(case=SCHEMA[path][method].as_strategy(generation_mode=mode))
+    @settings(
+        max_examples=examples,
+        deadline=None,
+        derandomize=True,
+        database=None,
+        phases=[Phase.generate],
+        suppress_health_check=list(HealthCheck),
     )
+    def send(case):
+        case.call_and_validate(timeout=PATIENCE)
+
+    send()
 
 
-@QUICK.parametrize()
-@checked(10)
-def test_answers_are_the_declared_ones(case):
-    case.call_and_validate(timeout=PATIENCE)
+@pytest.mark.parametrize(("path", "method", "mode"), OPERATIONS)
+def test_answers_are_the_declared_ones(path, method, mode):
+    check(path, method, mode, examples=8)
 
 
 @pytest.mark.slow
-@LONG.parametrize()
-@checked(300)
-def test_answers_are_the_declared_ones_at_length(case):
-    case.call_and_validate(timeout=PATIENCE)
+@pytest.mark.parametrize(("path", "method", "mode"), OPERATIONS)
+def test_answers_are_the_declared_ones_at_length(path, method, mode):
+    check(path, method, mode, examples=300)
