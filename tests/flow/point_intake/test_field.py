@@ -12,6 +12,7 @@ from forebay.flow.layout import (
     Corner,
     DeadEnd,
     Layout,
+    Outline,
     Pier,
     Sink,
     Source,
@@ -70,6 +71,23 @@ def test_pier_in_the_near_field_is_reported():
     far = field_of(StraightBank(0j, 1 + 0j), 2 + 3j, structures=(Pier("P", 32 + 3j, 0.5),))
     assert near.leak > 1e-4
     assert far.leak < 1e-12  # exp(-pi 29 / 3) = 6e-14 of a speed about 0.1 m/s
+
+
+GROYNE = Outline("groyne", (4 + 0j, 6 + 0j, 6 + 9j, 4 + 9j))
+
+
+def test_outline_in_the_near_field_is_reported():
+    near = field_of(StraightBank(0j, 1 + 0j), 2 + 3j, structures=(GROYNE,))
+    far = field_of(StraightBank(0j, 1 + 0j), -40 + 3j, structures=(GROYNE,))
+    assert near.leak > 1e-4
+    assert far.leak == 0.0  # beyond the reach of twelve depths
+
+
+def test_opening_on_an_outline_draws_from_one_side():
+    # half of the sphere: Q / (2 pi R^2) near it, to R / h and what is solved along the outline
+    field = field_of(StraightBank(0j, 1 + 0j), 4 + 4j, structures=(GROYNE,))
+    speed = field.speed(np.array([3.97 + 4j]), np.array([0.9]))[0]
+    assert speed == pytest.approx(1.5 / (2 * np.pi * 0.03**2), rel=5e-3)
 
 
 def test_mean_over_the_depth_is_the_plane_flow():

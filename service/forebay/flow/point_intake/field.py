@@ -13,10 +13,12 @@ import numpy as np
 
 from forebay.flow.arrays import BoolArray, ComplexArray, FloatArray
 from forebay.flow.errors import LayoutError
+from forebay.flow.features import WATER
 from forebay.flow.layout import Sink, Source, outflow
 from forebay.flow.model import FlowModel
 from forebay.flow.point_intake.column import REACH, column_excess
 from forebay.flow.point_intake.plan_images import plan_images, wall_samples
+from forebay.flow.sheets.ring import Ring
 
 AXIS = 1e-6
 """Distance over the depth within which a place is on an opening's vertical: means of both sides there [-]."""
@@ -130,7 +132,7 @@ class NearField:
 
     @cached_property
     def leak(self) -> float:
-        """Largest velocity through a bank or pier that the images leave [m/s]: an estimate of the error.
+        """Largest velocity through a bank, pier or outline that images leave [m/s]: an estimate of the error.
 
         Zero to rounding on straight banks, rectangles and corners of 180/n degrees without piers.
         """
@@ -138,7 +140,10 @@ class NearField:
 
     def _leak_of(self, opening: Opening) -> float:
         spacing = self.depth * np.linspace(-3.0, 3.0, 61)
-        places, directions = wall_samples(self.model.walls, opening.at, spacing)
+        places, directions = wall_samples(self.model.frame.walls, opening.at, spacing)
+        for ring in self.model.rings:
+            samples, along = self._ring_samples(ring, opening.at)
+            places, directions = np.append(places, samples), np.append(directions, along)
         for pier in self.model.piers:
             if abs(pier.at - opening.at) - pier.radius < REACH * self.depth:
                 ring = np.exp(2j * np.pi * np.arange(64) / 64)
@@ -152,6 +157,15 @@ class NearField:
             through = (change * directions).imag
             worst = max(worst, float(np.max(np.abs(through), initial=0.0)))
         return worst
+
+    def _ring_samples(self, ring: Ring, at: complex) -> tuple[ComplexArray, ComplexArray]:
+        """Places on a ring's land edges within the reach of an opening, and the edges' directions there."""
+        chosen = ring.is_land
+        starts, spans = ring.starts[chosen], (ring.ends - ring.starts)[chosen]
+        places = (starts[:, None] + spans[:, None] * np.linspace(0.05, 0.95, 19)).ravel()
+        directions = np.repeat(spans / np.abs(spans), 19)
+        near = np.abs(places - at) < REACH * self.depth
+        return places[near], directions[near]
 
 
 def near_field(model: FlowModel, elevations: Mapping[str, float]) -> NearField:
@@ -178,5 +192,9 @@ def near_field(model: FlowModel, elevations: Mapping[str, float]) -> NearField:
 
 
 def _opening(model: FlowModel, element: Source | Sink, elevation: float) -> Opening:
-    images = plan_images(model.layout.shore, model.walls, element.at, REACH * model.layout.depth)
-    return Opening(element.name, element.at, elevation, outflow(element), images)
+    reach, straight = REACH * model.layout.depth, model.frame.walls
+    place = next(s for s in model.singularities if s.owner == element.name)
+    images = plan_images(model.layout.shore, straight, place.at, reach)
+    if place.on not in {WATER, *(wall.name for wall in straight)}:
+        images = np.concatenate((images, images))  # on an edge of a ring it coincides with its image
+    return Opening(element.name, place.at, elevation, outflow(element), images)
