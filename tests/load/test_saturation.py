@@ -1,4 +1,4 @@
-"""Mixed requests at saturation for `FOREBAY_LOAD_SECONDS`, by default ten minutes; prints its measures."""
+"""Mixed requests at saturation for `LOAD_SECONDS`, by default ten minutes; prints its measures."""
 
 import os
 from statistics import median
@@ -10,7 +10,7 @@ from load.saturation import saturate, small_and_empty
 
 pytestmark = pytest.mark.slow
 
-SECONDS = float(os.environ.get("FOREBAY_LOAD_SECONDS", "600"))
+SECONDS = float(os.environ.get("LOAD_SECONDS", "600"))
 
 CLIENTS = 24
 """More than a small machine can serve at a time."""
