@@ -14,7 +14,6 @@ from support.http import SAMPLE, a_sample
 from support.running import eventually
 from support.tree import PACKAGE
 
-
 DRAIN = 5.0
 """Time between SIGTERM and the end of listening [s]."""
 
