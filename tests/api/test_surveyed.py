@@ -62,8 +62,8 @@ def test_survey_is_described_before_anything_is_computed(ready_client):
 def test_units_of_the_boundary_are_named(ready_client):
     answer = sample(ready_client, unit_system="us")
     units, survey = answer["units"], answer["boundary"]["survey"]
-    assert units["stream_function_bound"] == "[sft_i]/s"
-    assert units["area"] == "[sft_i]"
+    assert units["stream_function_bound"] == "[ft_i]2/s"
+    assert units["area"] == "[ft_i]2"
     assert survey["area"] == pytest.approx(200 * 50)  # the same numbers in feet
     assert survey["open_edges"][0]["discharge"] == pytest.approx(40.0)
 
