@@ -73,7 +73,7 @@ class BoundedField:
         self.model = model
         self.frame = model.frame
         self.lines = tuple(term for term in model.terms if isinstance(term, LineTerm))
-        self.sheets = tuple(term.field for term in model.terms if isinstance(term, SheetTerm))
+        self.sheets = tuple(term for term in model.terms if isinstance(term, SheetTerm))
         self._cored = [self.frame.map.forward(np.array([core.at]))[0] for core in model.cores]
         self._smooth_poles = self._without_cores()
         self._exponent = exponent_of(self.frame)
@@ -123,7 +123,7 @@ class BoundedField:
         for term in self.lines:
             rest = rest + line_bound(term, self.frame, z, radius)
         for sheet in self.sheets:
-            own = np.abs(sheet.panels.frame.map.slope(z))
+            own = np.abs(sheet.field.panels.frame.map.slope(sheet.local(z)))
             rest = rest + mapped_bound(sheet, z, radius * own) * own + near_bound(sheet, z, radius)
         for core, place in zip(self.model.cores, self._cored, strict=True):
             own = core_bound(core, z, radius)

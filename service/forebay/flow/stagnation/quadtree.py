@@ -12,7 +12,7 @@ import numpy as np
 from forebay.flow.arrays import BoolArray, ComplexArray, FloatArray, IntArray
 from forebay.flow.stagnation.field import BoundedField, Discs
 from forebay.flow.stagnation.regions import Region, site_radius
-from forebay.flow.stagnation.ringside import FINENESS, beside_rings
+from forebay.flow.stagnation.ringside import FINENESS, beside_rings, is_still
 from forebay.flow.stagnation.slits import TIP, Slit
 
 START = 12
@@ -129,6 +129,9 @@ class Quadtree:
         radius = site_radius(self.flow.model, z, abs(boxes.half)) * (1.0 + 1e-9)
         discs = self._discs(boxes, z, radius)
         maybe = ~(np.abs(discs.velocity) > discs.spread(radius)) | unsettled
+        if self.flow.model.rings:
+            most = np.abs(discs.velocity) + discs.spread(radius)
+            maybe &= ~is_still(self.flow.model, z, most)
         discs = replace(discs, rest=np.where(unsettled, np.inf, discs.rest)).where(maybe)
         return boxes.where(maybe), discs, z[maybe], radius[maybe]
 

@@ -28,7 +28,12 @@ _BISECTIONS = 50
 
 @dataclass(frozen=True, slots=True)
 class Flip:
-    """A change of sign: place x + iy [m], name of its edge, size of the element there [m], standing [m/s]."""
+    """A change of sign.
+
+    at : place, x + iy [m];  on : name of its edge
+    size : over which the speed changes there: of the element, or to the change it would vanish with [m]
+    standing : least speed to be taken for zero so that it vanishes with another change [m/s]
+    """
 
     at: complex
     on: str
@@ -90,12 +95,15 @@ def _flips(model: FlowModel, mesh: Mesh, run: _Run, poles: ComplexArray) -> list
         return []
     places = np.array([_refined(model, mesh, run, int(k), int(following[k])) for k in here])
     is_pole = _holds_pole(run, here, following, poles)
-    standing = _standing(run, here[~is_pole])
+    standing, partner = _standing(run, here[~is_pole])
     names = [mesh.rings[mesh.ring[e]].edges[mesh.edge[e]] for e in run.element[here[~is_pole]]]
     sizes = 2.0 * np.abs(mesh.half[run.element[here[~is_pole]]])
+    own = places[~is_pole]
+    apart = np.where(partner >= 0, np.abs(own - own[partner]), np.inf)
+    sizes = np.minimum(sizes, np.where(apart > 0.0, apart, np.inf))
     return [
         Flip(complex(at), name, float(size), float(least))
-        for at, name, size, least in zip(places[~is_pole], names, sizes, standing, strict=True)
+        for at, name, size, least in zip(own, names, sizes, standing, strict=True)
     ]
 
 
@@ -123,10 +131,10 @@ def _holds_pole(run: _Run, here: IntArray, following: IntArray, poles: ComplexAr
     return np.asarray(between.any(axis=1), dtype=np.bool_)
 
 
-def _standing(run: _Run, here: IntArray) -> FloatArray:
-    """Least speed to be taken for zero so that each change vanishes with a neighbour, shape of here [m/s]."""
+def _standing(run: _Run, here: IntArray) -> tuple[FloatArray, IntArray]:
+    """Standing of every change [m/s] and the index of the one it vanishes with, -1 for none; shape of here."""
     left = list(range(here.size))
-    standing = np.full(here.size, inf)
+    standing, partner = np.full(here.size, inf), np.full(here.size, -1, dtype=np.int64)
     tops = [_top(run, int(here[k]), int(here[(k + 1) % here.size])) for k in left]
     if not run.closed and tops:
         tops[-1] = inf
@@ -136,11 +144,12 @@ def _standing(run: _Run, here: IntArray) -> FloatArray:
             break
         j = (k + 1) % len(left)
         standing[left[k]] = standing[left[j]] = tops[k]
+        partner[left[k]], partner[left[j]] = left[j], left[k]
         before = (k - 1) % len(left)
         tops[before] = max(tops[before], tops[k], tops[j])
         for index in sorted((k, j), reverse=True):
             del left[index], tops[index]
-    return standing
+    return standing, partner
 
 
 def _top(run: _Run, a: int, b: int) -> float:

@@ -2,8 +2,8 @@
 
 The count of zeros follows from what stands in the water and not from the solution. Water that hardly moves,
 in a creek say, is known up to the velocity error of the boundary only, and zeros of the computed flow there
-come in pairs that the true flow need not have. If more zeros are found than counted, the faintest pairs are left
-out, as long as the speeds between them stay below that error.
+come in pairs that the true flow need not have. If more zeros are found than counted, the faintest pairs are
+left out, as long as the speeds between them stay below that error.
 """
 
 from dataclasses import dataclass

@@ -20,13 +20,24 @@ _WANDER = 8.0
 
 def beside_rings(model: FlowModel, z: ComplexArray, radius: FloatArray) -> tuple[BoolArray, BoolArray]:
     """Which discs touch a ring, and which lie on land behind one, shape (n,)."""
-    touches = ring_distance(model, z) <= 1.5 * radius
-    return touches, ~touches & ~model.wet(z)
+    distance = model.rings_distance(z)
+    touches = np.abs(distance) <= 1.5 * radius
+    return touches, ~touches & (distance < 0.0)
 
 
 def ring_distance(model: FlowModel, z: ComplexArray) -> FloatArray:
     """Distance to the nearest edge of any ring, shape (n,) [m]."""
     return np.abs(model.rings_distance(z))
+
+
+def is_still(model: FlowModel, z: ComplexArray, most: FloatArray) -> BoolArray:
+    """Where speeds up to `most` [m/s] are below the error that the boundary leaves in them, shape (n,).
+
+    Nothing can be told there about zeros; if the count closes there are none.
+    """
+    if model.bound is None:
+        return np.zeros(z.shape, dtype=np.bool_)
+    return np.asarray(most < model.bound.velocity(ring_distance(model, z)), dtype=np.bool_)
 
 
 def strip_zeros(model: FlowModel, z: ComplexArray, radius: FloatArray) -> ComplexArray:

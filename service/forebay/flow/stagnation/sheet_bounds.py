@@ -9,7 +9,7 @@ import numpy as np
 from numba import njit
 
 from forebay.flow.arrays import ComplexArray, FloatArray
-from forebay.flow.sheets.field import SheetField
+from forebay.flow.sheets.term import SheetTerm
 from forebay.flow.stagnation.kernels import variation
 
 _NEAR = 8.0
@@ -18,25 +18,25 @@ _NEAR = 8.0
 _NOTHING = np.empty(0, dtype=np.complex128), np.empty((0, 0), dtype=np.complex128)
 
 
-def mapped_bound(field: SheetField, z: ComplexArray, reach: FloatArray) -> FloatArray:
+def mapped_bound(term: SheetTerm, z: ComplexArray, reach: FloatArray) -> FloatArray:
     """Remainder of W_tau of the nodes, shape (n,) [m2/s]; inf at a node.
 
     z : centres [m];  reach : radii of the discs about them in the mapped plane [-]
     """
-    panels = field.panels
-    tau = panels.frame.map.forward(z)
-    parts = (panels.frame.kappa, panels.poles.ravel(), field.strengths, *_NOTHING)
+    panels = term.field.panels
+    tau = panels.frame.map.forward(term.local(z))
+    parts = (panels.frame.kappa, panels.poles.ravel(), term.field.strengths, *_NOTHING)
     return np.asarray(variation(tau, reach, *parts)[0], dtype=np.float64)
 
 
-def near_bound(field: SheetField, z: ComplexArray, radius: FloatArray) -> FloatArray:
+def near_bound(term: SheetTerm, z: ComplexArray, radius: FloatArray) -> FloatArray:
     """Remainder of W of the elements next to discs and of their mirror images, shape (n,) [m/s]."""
-    panels = field.panels
-    weight = np.abs(field.slope).sum(axis=1) / np.pi
+    panels, local = term.field.panels, term.local(z)
+    weight = np.abs(term.field.slope).sum(axis=1) / np.pi
     total = np.zeros(z.shape)
     for rule in panels.mirrors.rules:
         seen = np.where(rule.allowed, weight, 0.0)
-        total += _element_bounds(rule.image(z), radius, panels.middle, panels.half, seen)
+        total += _element_bounds(rule.image(local), radius, panels.middle, panels.half, seen)
     return total
 
 
