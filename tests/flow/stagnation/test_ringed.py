@@ -5,6 +5,7 @@ from dataclasses import replace
 import numpy as np
 import pytest
 
+from forebay.flow.arrays import ComplexArray
 from forebay.flow.layout import (
     Ambient,
     Channel,
@@ -121,9 +122,10 @@ def test_count_closes_on_random_islands(seed):
     assert found.complete, (found.degree, found.weight)
 
 
-def _random_solid(generator: np.random.Generator, centre: complex) -> np.ndarray:
+def _random_solid(generator: np.random.Generator, centre: complex) -> ComplexArray:
     angles = np.sort(generator.uniform(0.0, 2.0 * np.pi, 9))
-    return centre + generator.uniform(8.0, 20.0, 9) * np.exp(1j * angles)
+    solid: ComplexArray = centre + generator.uniform(8.0, 20.0, 9) * np.exp(1j * angles)
+    return solid
 
 
 def test_still_creek_invents_no_points():

@@ -132,7 +132,7 @@ def _holds_pole(run: _Run, here: IntArray, following: IntArray, poles: ComplexAr
 
 
 def _standing(run: _Run, here: IntArray) -> tuple[FloatArray, IntArray]:
-    """Standing of every change [m/s] and the index of the one it vanishes with, -1 for none; shape of here."""
+    """Standing of every change [m/s], and which other it vanishes with, -1 for none; shape of here."""
     left = list(range(here.size))
     standing, partner = np.full(here.size, inf), np.full(here.size, -1, dtype=np.int64)
     tops = [_top(run, int(here[k]), int(here[(k + 1) % here.size])) for k in left]
