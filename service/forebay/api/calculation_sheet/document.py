@@ -29,7 +29,7 @@ class Filed(NamedTuple):
 
 
 def sheet_document(filed: Filed, page_rules: str = "") -> str:
-    """The whole sheet; `page_rules` are further rules of style for the paper.
+    """The whole sheet; `page_rules` are further rules of style if it is to be set on paper.
 
     The same request gives the same document but for its date.
     """
@@ -41,7 +41,7 @@ def sheet_document(filed: Filed, page_rules: str = "") -> str:
         title_block(heading),
         section("Summary", items(result["summary"], ordered=True)),
         verdicts_section(result["verdicts"]),
-        pictures_section(filed.pictures),
+        pictures_section(filed.pictures, inline=not page_rules),
         results_section(result, envelope["units"]),
         warnings_section(envelope["warnings"], request),
         cautions_section(result["cautions"]),

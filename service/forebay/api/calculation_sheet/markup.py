@@ -5,7 +5,7 @@ from collections.abc import Iterable
 from html import escape
 from typing import Final
 
-VOID: Final = frozenset({"br", "col", "meta"})
+VOID: Final = frozenset({"br", "col", "img", "meta"})
 """Elements without content and without an end tag."""
 
 SAFE: Final = frozenset(" ,-_0123456789ABCDEFGHIJKLMNOPQRSTUVWXYZabcdefghijklmnopqrstuvwxyz")

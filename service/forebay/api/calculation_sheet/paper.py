@@ -79,16 +79,16 @@ def setter() -> Any:  # noqa: ANN401  (a module)
 
 
 def fetcher(weasyprint: Any) -> Any:  # noqa: ANN401  (modules and types of a library imported late)
-    """Reader of the faces, and of nothing else, whatever a document asks for."""
+    """Reader of the faces and of what the document itself holds, and of nothing else."""
     known = {face_address(file) for _, file, _, _ in FACES}
 
     class Faces(weasyprint.urls.URLFetcher):  # type: ignore[misc]
-        """Refuses every address but those of the faces."""
+        """Refuses every address but those of the faces and of what the document holds."""
 
         def fetch(self, url: str, headers: Any = None) -> Any:  # noqa: ANN401
-            """File of a face."""
-            if url not in known:
+            """File of a face, or a part of the document."""
+            if url not in known and not url.startswith("data:"):
                 raise UnknownAddressError("a sheet loads nothing but its faces")
             return super().fetch(url, headers)
 
-    return Faces(allowed_protocols=("file",), fail_on_errors=True)
+    return Faces(allowed_protocols=("file", "data"), fail_on_errors=True)

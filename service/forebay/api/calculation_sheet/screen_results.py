@@ -56,7 +56,7 @@ def velocities_table(screens: list[Json], units: Mapping[str, str]) -> Html:
     rows = [
         (
             screen["element"],
-            f"pump {screen['sweeping']}",
+            str(screen["sweeping"]),
             figure(screen["min_sweeping"]),
             figure(screen["min_sweeping_ratio"]),
             percent(screen["share_meeting_sweeping"]),

@@ -4,12 +4,12 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 
 from forebay.api.calculation_sheet.markup import Html, element
-from forebay.api.calculation_sheet.widths import column_widths
+from forebay.api.calculation_sheet.widths import column_widths, plain
 
 Row = Sequence[str]
 
-TOGETHER = 12
-"""Rows up to which a table stays on one page."""
+TOGETHER_ROWS, TOGETHER_CHARACTERS = 12, 900
+"""Size up to which a table stays on one page."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -51,7 +51,13 @@ def table(caption: str, columns: Sequence[Column], rows: Sequence[Row], note: st
     titled = element("h3", caption) if caption else Html()
     made = element("table", column_group(columns, rows), element("thead", head), element("tbody", *body))
     noted = element("p", note, class_="note") if note else Html()
-    return element("div", titled, made, noted, class_="together" if len(rows) <= TOGETHER else "")
+    return element("div", titled, made, noted, class_="together" if is_small(rows) else "")
+
+
+def is_small(rows: Sequence[Row]) -> bool:
+    """Whether a table is so small that it stays on one page."""
+    characters = sum(len(plain(cell)) for row in rows for cell in row)
+    return len(rows) <= TOGETHER_ROWS and characters <= TOGETHER_CHARACTERS
 
 
 def column_group(columns: Sequence[Column], rows: Sequence[Row]) -> Html:

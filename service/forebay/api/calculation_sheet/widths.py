@@ -9,8 +9,17 @@ ROOM = 108.0
 PADDING = 2.5
 """Space between columns, in characters."""
 
-WIDEST = 140.0
-"""Characters of words beyond which a column is broken into lines in any case."""
+ONE_LINE = 30
+"""Characters of a text that count in full; those beyond count a third, since it is broken into lines."""
+
+WIDEST = 48.0
+"""Characters of a column beyond which it gets no wider."""
+
+WIDEST_NUMBER = 24
+"""Characters of a number that is kept whole; a longer one is a list, which may be broken."""
+
+SPARE = 1.15
+"""Room for a number over its characters, for faces wider than the sheet's own."""
 
 LONGEST_WHOLE = 15.0
 """Characters up to which a word stays whole at the cost of other columns."""
@@ -36,16 +45,22 @@ def column_widths(
         PADDING + max(HEADING * longest_word(heading), *(longest_word(text) for text in column), 1.0)
         for heading, column in zip(headings, texts, strict=True)
     ]
-    wanted = [PADDING + min(WIDEST, max(len(text) for text in column)) for column in texts]
+    wanted = [PADDING + max(room_for(text) for text in column) for column in texts]
     narrow = [min(width, LONGEST_WHOLE) for width in least]
     fixed = [
-        max(full, low) if is_whole else low for full, low, is_whole in zip(wanted, narrow, whole, strict=True)
+        max(PADDING + SPARE * min(full - PADDING, WIDEST_NUMBER), low) if is_whole else low
+        for full, low, is_whole in zip(wanted, narrow, whole, strict=True)
     ]
     spare = max(ROOM - sum(fixed), 0.0)
     more = [max(full - width, 0.0) for full, width in zip(wanted, fixed, strict=True)]
     share = min(spare / sum(more), 1.0) if sum(more) else 0.0
     widths = [width + share * extra for width, extra in zip(fixed, more, strict=True)]
     return [round(100.0 * width / sum(widths), 2) for width in widths]
+
+
+def room_for(text: str) -> float:
+    """Characters that a text would like to have side by side."""
+    return min(min(len(text), ONE_LINE) + max(len(text) - ONE_LINE, 0) / 3, WIDEST)
 
 
 def plain(cell: str) -> str:

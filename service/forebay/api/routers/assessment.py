@@ -1,5 +1,6 @@
 """assessment: the whole job for one layout in one answer, or as a calculation sheet."""
 
+from collections.abc import Callable
 from dataclasses import asdict, replace
 from functools import partial
 from typing import Any
@@ -22,20 +23,23 @@ from forebay.api.schemas.contour import flow_contours
 from forebay.api.summary import Told, summary_of
 from forebay.api.units import UnitSystem
 from forebay.api.verdicts import rule_verdicts, verdicts_of
-from forebay.charts.options import FlowNetOptions
+from forebay.charts.options import FlowNetOptions, Picture
 from forebay.charts.units import SI, US
 from forebay.workflows.assessment import NOWHERE, Assessment, Questions, assess_layout
 from forebay.workflows.assessment_picture import draw_assessment
 from forebay.workflows.parts import Part, attempt
 from forebay.workflows.withdrawal import Withdrawal
+from forebay.workflows.zones_picture import draw_intake_zones
 
 NET_CAPTION = (
     "Flow net: streamlines of equal flux, equipotentials, speed, stagnation points, dividing streamlines. "
     "Plan, depth-mean potential flow."
 )
 
+ZONES_CAPTION = "Zones of the intakes: the water that each takes. Plan, depth-mean potential flow."
+
 PICTURE_SIZE = (640, 520)
-"""Width and height of a sheet's flow net [px], at which its letters are as large as those of a table."""
+"""Width and height of a sheet's pictures [px], at which its letters are as large as those of a table."""
 
 
 def compute(request: AssessmentRequest, media_type: str) -> Outcome:
@@ -55,13 +59,21 @@ def compute(request: AssessmentRequest, media_type: str) -> Outcome:
 def pictures_of(assessment: Assessment, request: AssessmentRequest) -> dict[str, bytes]:
     """Pictures of a sheet by their captions; a picture that failed is a caption that says so."""
     units = US if request.unit_system is UnitSystem.US else SI
-    title = request.sheet.site or "Flow net"
-    options = FlowNetOptions(title=title, size=PICTURE_SIZE, units=units)
-    layout = request.flow_layout()
-    net = attempt(partial(draw_assessment, layout, assessment, options))
-    if net.answer is None:
-        return {f"The flow net could not be drawn: {net.reason} ({net.problem}).": b""}
-    return {NET_CAPTION: net.answer.data}
+    layout, title, intakes = request.flow_layout(), request.sheet.site, assessment.withdrawal.answer
+    net = FlowNetOptions(title=title or "Flow net", size=PICTURE_SIZE, units=units)
+    zones = replace(net, title=title or "Zones of the intakes")
+    drawings = {NET_CAPTION: partial(draw_assessment, layout, assessment, net)}
+    if intakes:
+        drawings[ZONES_CAPTION] = partial(draw_intake_zones, layout, intakes, zones)
+    return dict(picture_of(caption, draw) for caption, draw in drawings.items())
+
+
+def picture_of(caption: str, draw: Callable[[], Picture]) -> tuple[str, bytes]:
+    """Caption and bytes of a picture; no bytes, and the reason in the caption, if it could not be drawn."""
+    drawn = attempt(draw)
+    if drawn.answer is None:
+        return f"{caption} This picture could not be drawn: {drawn.reason} ({drawn.problem}).", b""
+    return caption, drawn.answer.data
 
 
 def questions_of(request: AssessmentRequest) -> Questions:
