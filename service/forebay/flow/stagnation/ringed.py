@@ -13,6 +13,7 @@ import numpy as np
 
 from forebay.flow.arrays import ComplexArray, FloatArray
 from forebay.flow.model import FlowModel
+from forebay.flow.sheets.mesh import DEGREE
 from forebay.flow.sheets.term import SheetTerm
 from forebay.flow.stagnation.describe import Zero
 from forebay.flow.stagnation.field import EPS
@@ -64,7 +65,7 @@ def _on_walls(model: FlowModel) -> list[_Candidate]:
     z = np.array([flip.at for flip in flips], dtype=np.complex128)
     gaps = _gaps(model, z, np.array([flip.size for flip in flips]))
     return [
-        _Candidate(Zero(flip.at, flip.on, float(gap), 1, 1), flip.standing, _doubt(model, flip.size))
+        _Candidate(Zero(flip.at, flip.on, float(gap), 1, 1), flip.standing, _wall_doubt(model, flip.size))
         for flip, gap in zip(flips, gaps, strict=True)
     ]
 
@@ -80,6 +81,14 @@ def _gaps(model: FlowModel, z: ComplexArray, most: FloatArray) -> FloatArray:
 def _doubt(model: FlowModel, distance: float) -> float:
     """Error of the velocity at a distance from the rings, 4 E / (pi distance) [m/s]."""
     return 4.0 / pi * model.bound.absolute / distance if model.bound and distance > 0.0 else inf
+
+
+def _wall_doubt(model: FlowModel, size: float) -> float:
+    """Error of the speed along a wall where psi is off by E, 2 n^2 E / size for a density of degree n [m/s].
+
+    Markov's inequality: A. A. Markov, Zap. Imp. Akad. Nauk 62 (1889) 1-24.
+    """
+    return 2.0 * DEGREE**2 * model.bound.absolute / size if model.bound else inf
 
 
 def _in_water(model: FlowModel, zero: Zero) -> _Candidate:
