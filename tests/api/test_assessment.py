@@ -52,6 +52,24 @@ def test_a_spill_that_cannot_be_fails_alone_and_points_at_itself(ready_client):
     assert any(line.startswith("NOT COMPUTED: spill") for line in envelope["result"]["summary"])
 
 
+def test_water_without_known_viscosity_fails_the_stress_alone(ready_client):
+    envelope = assessed(
+        ready_client,
+        layout=a_layout(elements=PAIR, water={"temperature": 80}),
+        at={"points": [[10, 5]]},
+    )
+    assert parts(envelope)["stress"]["problem"] == "water-out-of-range"
+    assert parts(envelope)["field"]["status"] == "ok"
+
+
+def test_stress_brings_the_readings_asked_for(ready_client):
+    asked = {"exposure": [], "friction": {"manning_n": 0.03}}
+    envelope = assessed(ready_client, at={"points": [[10, 5]]}, stress=asked)
+    assert envelope["result"]["stress"]["thresholds"]
+    assert envelope["result"]["stress"]["states"][0]["bed_shear"] > 0
+    assert parts(envelope)["stress"]["status"] == "ok"
+
+
 def test_a_part_answers_what_its_route_answers(ready_client):
     layout = a_layout(ambient={"velocity": [0.1, 0]}, elements=PAIR)
     asked = {"releases": [{"name": "drum", "at": [-20, 0.5]}]}

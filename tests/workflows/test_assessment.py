@@ -34,7 +34,6 @@ def test_parts_that_nobody_asked_for_say_why():
         "recirculation": PartStatus.NOT_ASKED,
         "transects": PartStatus.NOT_ASKED,
         "field": PartStatus.NOT_ASKED,
-        "stress": PartStatus.NOT_ASKED,
     }
     assert assessment.withdrawal.reason == module.NO_INTAKE
     assert assessment.field.reason == module.NO_POINTS
@@ -78,13 +77,6 @@ def test_parts_that_stand_on_a_failed_search_share_its_fate(monkeypatch):
     for name in ("stagnation", "withdrawal", "recirculation"):
         assert getattr(assessment, name).problem == INTERNAL_ERROR
     assert assessment.flow.status is PartStatus.OK
-
-
-def test_water_without_known_viscosity_fails_the_stress_alone():
-    site = a_site(INTAKE, water=Water(80.0, 0.0))
-    assessment = assess_layout(site, Questions(points=np.array([10 + 5j])))
-    assert assessment.stress.problem == "water-out-of-range"
-    assert assessment.field.status is PartStatus.OK
 
 
 def test_a_layout_that_cannot_be_is_no_part():

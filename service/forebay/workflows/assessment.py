@@ -13,10 +13,8 @@ from forebay.flow.model import FlowModel, compile_layout
 from forebay.flow.paths import Contour
 from forebay.flow.stagnation.result import StagnationSearch
 from forebay.flow.stagnation.search import search_model
-from forebay.flow.stress_state import StressState
 from forebay.flow.withdrawal.analysis import withdraw
 from forebay.flow.withdrawal.result import IntakeWithdrawal, OriginKind
-from forebay.workflows.layout_stress import compute_layout_stress
 from forebay.workflows.parts import Part, attempt
 from forebay.workflows.sample import FieldSamples, sample_field
 
@@ -33,7 +31,7 @@ class Questions:
     """What an assessment looks at beside intakes and stagnation points.
 
     transects : contours over which circulation and flux are wanted
-    points : where the field and its stress are wanted, x + iy [m];  quantities : as in `sample_field`
+    points : where the field is wanted, x + iy [m];  quantities : as in `sample_field`
     """
 
     transects: tuple[Contour, ...] = ()
@@ -73,7 +71,7 @@ class Assessment:
 
     flow : the far field;  stagnation : where the water stands still
     withdrawal : where each intake's water comes from;  recirculation : what of it outfalls gave
-    transects, field, stress : answers to the questions asked
+    transects, field : answers to the questions asked
     """
 
     flow: Part[FarField]
@@ -82,11 +80,10 @@ class Assessment:
     recirculation: Part[tuple[Recirculation, ...]]
     transects: Part[tuple[ContourIntegral, ...]]
     field: Part[FieldSamples]
-    stress: Part[tuple[StressState, ...]]
 
 
 def assess_layout(layout: Layout, questions: Questions | None = None) -> Assessment:
-    """Withdrawal, stagnation points, far field, and fluxes, field and stress where asked for.
+    """Withdrawal, stagnation points, far field, and fluxes and field where asked for.
 
     Parameters
     ----------
@@ -113,7 +110,6 @@ def assess_layout(layout: Layout, questions: Questions | None = None) -> Assessm
         recirculation=_recirculation(withdrawal),
         transects=_transects(model, questions),
         field=_field(layout, questions),
-        stress=_stress(layout, questions),
     )
 
 
@@ -152,9 +148,3 @@ def _field(layout: Layout, questions: Questions) -> Part[FieldSamples]:
     if questions.points.size == 0:
         return Part.not_asked(NO_POINTS)
     return attempt(partial(sample_field, layout, questions.points, questions.quantities))
-
-
-def _stress(layout: Layout, questions: Questions) -> Part[tuple[StressState, ...]]:
-    if questions.points.size == 0:
-        return Part.not_asked(NO_POINTS)
-    return attempt(partial(compute_layout_stress, layout.water, layout, questions.points))

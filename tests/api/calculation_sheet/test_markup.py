@@ -5,6 +5,7 @@ from html.parser import HTMLParser
 import pytest
 from hypothesis import given
 from hypothesis import strategies as st
+from typing_extensions import override
 
 from forebay.api.calculation_sheet.markup import Html, element, items, joined, section, style_string
 
@@ -18,9 +19,11 @@ class Reader(HTMLParser):
         self.feed(document)
         self.close()
 
+    @override
     def handle_starttag(self, tag, attrs):
         self.names.append(tag)
 
+    @override
     def handle_data(self, data):
         self.text += data
 

@@ -4,13 +4,16 @@ import io
 import json
 import re
 from html.parser import HTMLParser
+from typing import Any
 
 import pytest
 from pypdf import PdfReader
+from typing_extensions import override
 
 from forebay.api.figures import figure
 from forebay.api.limits import Limits
 from forebay.api.operation import perform
+from forebay.api.outcome import Reply
 from forebay.api.routers import assessment
 from forebay.settings import Settings
 from support.http import a_layout, assert_problem, example
@@ -44,6 +47,7 @@ class Page(HTMLParser):
         self.words, self.names, self.addresses, self.ids = [], [], [], []
         self.feed(document)
 
+    @override
     def handle_starttag(self, tag, attrs):
         self.names.append(tag)
         for name, value in attrs:
@@ -52,6 +56,7 @@ class Page(HTMLParser):
             if name == "id":
                 self.ids.append(value)
 
+    @override
     def handle_data(self, data):
         self.words.append(data)
 
@@ -169,8 +174,8 @@ def test_the_paper_brings_its_own_faces(paper):
 
 def page_fonts(paper):
     """Names of the faces of the first page, and whether each is in the file."""
-    fonts = PdfReader(io.BytesIO(paper)).pages[0]["/Resources"]["/Font"]
-    for font in fonts.values():
+    resources: Any = PdfReader(io.BytesIO(paper)).pages[0]["/Resources"]
+    for font in resources["/Font"].values():
         (descendant,) = font.get_object()["/DescendantFonts"]
         descriptor = descendant.get_object()["/FontDescriptor"].get_object()
         assert {"/FontFile2", "/FontFile3"} & set(descriptor)
@@ -211,6 +216,8 @@ def test_a_picture_that_failed_says_so(ready_client, monkeypatch):
     monkeypatch.setattr(assessment, "draw_assessment", fail)
     body = json.dumps(small()).encode()
     reply = perform(assessment.ASSESS, body, HTML, limits=Limits.of(Settings()))
+    assert isinstance(reply, Reply)
+    assert isinstance(reply.body, bytes)
     assert "could not be drawn" in Page(reply.body.decode()).text
 
 

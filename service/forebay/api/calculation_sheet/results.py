@@ -7,6 +7,7 @@ from typing import Any
 from forebay.api.calculation_sheet.markup import Html, element, joined, section
 from forebay.api.calculation_sheet.screen_results import screen_part
 from forebay.api.calculation_sheet.spill_results import spill_part
+from forebay.api.calculation_sheet.stress_results import stress_part
 from forebay.api.calculation_sheet.submergence_results import submergence_part
 from forebay.api.calculation_sheet.tables import number, table, word
 from forebay.api.figures import error_bound, figure, percent, share_with_error, unit_name
@@ -213,52 +214,6 @@ def field_table(field: Json, names: Sequence[str], units: Units, note: str) -> H
     values = islice(zip(*(field[name] for name in shown), strict=True), MOST_ROWS)
     rows = [(*(figure(value) for value in row), reasons.get(index, "ok")) for index, row in enumerate(values)]
     return table("Field at the points asked for", columns, rows, note)
-
-
-def stress_part(stress: Json | None, units: Units) -> Html:
-    """Stress and dissipation of the mean flow at the points asked for."""
-    if stress is None:
-        return Html()
-    states = stress["states"]
-    rows = [
-        (
-            *(figure(coordinate) for coordinate in state["at"] or (None, None)),
-            *principal_extremes(state["principal_stresses"]),
-            figure(state["max_shear"]),
-            figure(state["dissipation"]),
-            figure(state["mean_velocity_gradient"]),
-            state["status"],
-        )
-        for state in states[:MOST_ROWS]
-    ]
-    columns = (
-        number("x", units["at"]),
-        number("y", units["at"]),
-        number("Largest stress", units["principal_stresses"]),
-        number("Least stress", units["principal_stresses"]),
-        number("Largest shear", units["max_shear"]),
-        number("Dissipation", units["dissipation"]),
-        number("G", units["mean_velocity_gradient"]),
-        word("Status"),
-    )
-    fluid = stress["fluid"]
-    more = (
-        f" {len(states) - MOST_ROWS} further points are in the answer as JSON."
-        if len(states) > MOST_ROWS
-        else ""
-    )
-    note = (
-        f"Of the mean flow alone, relative to the pressure; tension positive. Viscosity "
-        f"{figure(fluid['dynamic_viscosity'])} {units['dynamic_viscosity']}, density "
-        f"{figure(fluid['density'])} "
-        f"{units['density']}. Turbulence, which dissipates far more in rivers, is not in it.{more}"
-    )
-    return table("Stress, dissipation and G at the points asked for", columns, rows, note)
-
-
-def principal_extremes(stresses: Sequence[float | None] | None) -> tuple[str, str]:
-    """Largest and least principal stress."""
-    return (figure(stresses[0]), figure(stresses[-1])) if stresses else ("–", "–")
 
 
 def parts_table(parts: Sequence[Json]) -> Html:

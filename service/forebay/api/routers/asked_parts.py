@@ -8,15 +8,17 @@ from typing import Any, NamedTuple
 from forebay.api.limits import Price
 from forebay.api.media import JSON
 from forebay.api.outcome import Outcome
-from forebay.api.routers import screen, spill, submergence
+from forebay.api.routers import screen, spill, stress, submergence
 from forebay.api.schemas.assessment import AssessmentRequest, PartName
 from forebay.api.schemas.common import ComputeRequest
 from forebay.api.schemas.screen import ScreenRequest
 from forebay.api.schemas.spill import SpillRequest
+from forebay.api.schemas.stress import StressQuestions, StressRequest
 from forebay.api.schemas.submergence import SubmergenceRequest
 from forebay.api.warnings import Notice
 from forebay.flow.errors import Path
 from forebay.trade.applicability.warning import ApplicabilityWarning, Severity
+from forebay.workflows.assessment import NO_POINTS
 from forebay.workflows.parts import Part, attempt
 
 
@@ -29,6 +31,7 @@ class Route(NamedTuple):
 
 
 ROUTES: Mapping[PartName, Route] = {
+    PartName.STRESS: Route(StressRequest, stress.compute, stress.price),
     PartName.SPILL: Route(SpillRequest, spill.compute, spill.price),
     PartName.SCREEN: Route(ScreenRequest, screen.compute, screen.price),
     PartName.SUBMERGENCE: Route(SubmergenceRequest, submergence.compute, submergence.price),
@@ -66,16 +69,21 @@ def ask(request: AssessmentRequest, name: PartName, route: Route) -> Part[Outcom
     """Answer of one route."""
     asked = as_asked(request, name, route)
     if asked is None:
-        return Part.not_asked(f"The request has no `{name}`")
+        return Part.not_asked(NO_POINTS if name is PartName.STRESS else f"The request has no `{name}`")
     return attempt(partial(route.compute, asked, JSON))
 
 
 def as_asked(request: AssessmentRequest, name: PartName, route: Route) -> ComputeRequest | None:
-    """Request of a route: what is asked of it, with the assessment's layout and units."""
-    questions = getattr(request, name)
-    if questions is None:
+    """Request of a route: what is asked of it, with the assessment's layout and units.
+
+    Stress is asked for wherever the field is, and needs no questions of its own.
+    """
+    questions, places = getattr(request, name), {}
+    if name is PartName.STRESS and request.at is not None:
+        questions, places = questions or StressQuestions(), {"at": request.at, "states": None}
+    if questions is None or (name is PartName.STRESS and request.at is None):
         return None
-    fields: dict[str, Any] = dict(questions)
+    fields: dict[str, Any] = dict(questions) | places
     fields |= {"layout": request.layout, "unit_system": request.unit_system, "digits": request.digits}
     return route.request.model_construct(**fields)
 

@@ -15,7 +15,7 @@ from forebay.api.operation import Operation
 from forebay.api.outcome import Outcome
 from forebay.api.problems import pointer
 from forebay.api.review import COMPUTED, readings_of, reviewed
-from forebay.api.routers import field, stagnation, stress, withdrawal
+from forebay.api.routers import field, stagnation, withdrawal
 from forebay.api.routers.asked_parts import ROUTES, Asked, ask_routes, each_once, prices, within
 from forebay.api.routers.serving import serve
 from forebay.api.schemas.assessment import CAUTIONS, AssessmentRequest, AssessmentResult, PartName
@@ -48,7 +48,6 @@ def compute(request: AssessmentRequest, media_type: str) -> Outcome:
     samples = assessment.field.answer
     assumed = request.layout.water.assumed_temperature
     readings = COMPUTED if samples is None else readings_of(samples.columns, assumed)
-    readings = replace(readings, has_dissipation=assessment.stress.answer is not None)
     asked = ask_routes(request)
     outcome = reviewed(request, layout, written(assessment, request) | asked_written(asked), readings)
     outcome = replace(outcome, warnings=each_once((*outcome.warnings, *asked.notices())))
@@ -114,11 +113,7 @@ def asked_written(asked: Asked) -> dict[str, Any]:
 def written(assessment: Assessment, request: AssessmentRequest) -> dict[str, Any]:
     """Answers of the parts; None for a part without one."""
     flow, search, intakes = assessment.flow.answer, assessment.stagnation.answer, assessment.withdrawal.answer
-    transects, samples, states = (
-        assessment.transects.answer,
-        assessment.field.answer,
-        assessment.stress.answer,
-    )
+    transects, samples = assessment.transects.answer, assessment.field.answer
     recirculation = assessment.recirculation.answer
     ends = flow and [{"name": end.name, "inflow": end.inflow, "end_speed": end.speed} for end in flow.ends]
     return {
@@ -129,14 +124,13 @@ def written(assessment: Assessment, request: AssessmentRequest) -> dict[str, Any
         "boundary_residual": flow and flow.boundary_residual,
         "transects": transects and [asdict(integral) for integral in transects],
         "field": samples and request.at and field.written(samples, request.at),
-        "stress": states and stress.all_written(states, request.flow_layout().water),
         "cautions": CAUTIONS,
     }
 
 
 def price(request: AssessmentRequest) -> Price:
     count = 0 if request.at is None else request.at.count
-    values = (5 + len(request.quantities) + stress.VALUES_A_STATE) * count
+    values = (5 + len(request.quantities)) * count
     asked = prices(request)
     return Price(
         count,

@@ -17,7 +17,7 @@ from forebay.api.schemas.screen import ScreenQuestions, ScreenResult
 from forebay.api.schemas.sheet import SheetRequest
 from forebay.api.schemas.spill import SpillQuestions, SpillResult
 from forebay.api.schemas.stagnation import StagnationResult
-from forebay.api.schemas.stress import StressResult
+from forebay.api.schemas.stress import StressQuestions, StressResult
 from forebay.api.schemas.submergence import SubmergenceQuestions, SubmergenceResult
 from forebay.api.schemas.withdrawal import WithdrawalResult
 from forebay.workflows.parts import PartStatus
@@ -57,6 +57,10 @@ class AssessmentRequest(LayoutRequest):
         list[Quantity],
         Field(max_length=len(Quantity), fail_fast=True, description="Further columns of the field"),
     ] = []
+    stress: Annotated[
+        StressQuestions | None,
+        Field(description="As in /v1/stress/tensor, without layout, states and `at`, which is the one above"),
+    ] = None
     spill: Annotated[
         SpillQuestions | None, Field(description="As in /v1/spill/arrivals, without the layout")
     ] = None

@@ -127,24 +127,10 @@ def _tensor(rows: list[list[float]]) -> Any:  # noqa: ANN401
     return np.array(rows, dtype=np.float64)
 
 
-class StressRequest(ComputeRequest):
-    """Stress of given states, or in the flow of a layout."""
-
-    model_config = {
-        "json_schema_extra": describe_ways(
-            ("states", "fluid"),
-            ("layout", "at"),
-            shared=frozenset({"fluid"}),
-            only={"friction": "layout", "height": "layout", "floc": "layout"},
-        )
-    }
+class StressQuestions(Strict):
+    """The fluid, and what is to be read from its stress."""
 
     fluid: Annotated[Fluid | None, Field(description="The fluid; a layout's own water if absent")] = None
-    states: Annotated[
-        list[State] | None, Field(min_length=1, max_length=MAX_STATES, description="States at places")
-    ] = None
-    layout: Annotated[Layout | None, Field(description="A site, instead of states")] = None
-    at: Annotated[At | None, Field(description="Where in the site")] = None
     exposure: Annotated[
         list[ThresholdId] | None,
         Field(
@@ -160,6 +146,31 @@ class StressRequest(ComputeRequest):
     floc: Annotated[FlocWay | None, Field(description="Way along which G is integrated")] = None
 
     @model_validator(mode="after")
+    def _one_law(self) -> Self:
+        if self.friction is not None and self.friction.ways != 1:
+            raise PydanticCustomError("one_way", "Exactly one law of friction")
+        return self
+
+
+class StressRequest(ComputeRequest, StressQuestions):
+    """Stress of given states, or in the flow of a layout."""
+
+    model_config = {
+        "json_schema_extra": describe_ways(
+            ("states", "fluid"),
+            ("layout", "at"),
+            shared=frozenset({"fluid"}),
+            only={"friction": "layout", "height": "layout", "floc": "layout"},
+        )
+    }
+
+    states: Annotated[
+        list[State] | None, Field(min_length=1, max_length=MAX_STATES, description="States at places")
+    ] = None
+    layout: Annotated[Layout | None, Field(description="A site, instead of states")] = None
+    at: Annotated[At | None, Field(description="Where in the site")] = None
+
+    @model_validator(mode="after")
     def _one_way(self) -> Self:
         if (self.layout is None) != (self.at is None) or (self.states is None) == (self.layout is None):
             raise PydanticCustomError("one_way", "Either `states`, or `layout` with `at`")
@@ -167,8 +178,6 @@ class StressRequest(ComputeRequest):
             raise PydanticCustomError("one_way", "`states` need a `fluid`")
         if self.layout is None and (self.friction, self.height, self.floc) != (None, None, None):
             raise PydanticCustomError("one_way", "`friction`, `height` and `floc` belong to a `layout`")
-        if self.friction is not None and self.friction.ways != 1:
-            raise PydanticCustomError("one_way", "Exactly one law of friction")
         return self
 
     def asked(self) -> Asked:
