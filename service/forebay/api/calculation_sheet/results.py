@@ -217,9 +217,14 @@ def field_table(field: Json, names: Sequence[str], units: Units, note: str) -> H
 
 
 def parts_table(parts: Sequence[Json]) -> Html:
-    """What became of each part."""
-    rows = [(str(part["part"]), str(part["status"]), reason_of(part)) for part in parts]
-    return table("Parts of the assessment", (word("Part"), word("Status"), word("Reason")), rows)
+    """Parts without an answer, and why."""
+    rows = [
+        (str(part["part"]), str(part["status"]), reason_of(part)) for part in parts if part["status"] != "ok"
+    ]
+    computed = ", ".join(str(part["part"]) for part in parts if part["status"] == "ok")
+    columns = (word("Part without an answer"), word("Status"), word("Reason"))
+    note = element("p", f"Parts that were computed: {computed}.", class_="note")
+    return joined([table("", columns, rows), note])
 
 
 def reason_of(part: Json) -> str:
