@@ -1,8 +1,8 @@
 """estimate: the price of a request against the limits, without running it."""
 
+import json
 from typing import Any
 
-import orjson
 from fastapi import APIRouter
 from pydantic import ValidationError
 
@@ -25,7 +25,7 @@ class NoSuchRouteError(FlowError):
 
 def compute(request: EstimateRequest, limits: Limits) -> Outcome:
     operation = _operation(request.route)
-    body = orjson.dumps(request.request)
+    body = json.dumps(request.request).encode()  # as it came: whole numbers of any size, NaN to be refused
     price: Price = operation.price(_validated(operation, body))
     reason = _refusal(price, limits)
     is_small = len(body) <= Tier.THREAD.body and price.work <= Tier.THREAD.work and not price.lengthy
