@@ -23,7 +23,7 @@ from forebay.api.openapi import build_document
 from forebay.api.problems import from_status
 from forebay.api.readiness import Readiness
 from forebay.api.routers.documents import page_router
-from forebay.api.routers.registry import ROUTERS
+from forebay.api.routers.registry import OPERATIONS, ROUTERS
 from forebay.api.validation import problem_of_query
 from forebay.api.work import Workshop
 from forebay.settings import Settings
@@ -66,7 +66,7 @@ def create_app(settings: Settings | None = None) -> Application:
         app.include_router(page_router)
     app.state.limits, app.state.metrics, app.state.settings = limits, metrics, settings
     app.state.workshop = workshop
-    app.state.readiness = Readiness(workshop)
+    app.state.readiness = Readiness(workshop, OPERATIONS)
     app.state.openapi_bytes = orjson.dumps(app.openapi())
     # the last one added is the outermost
     app.add_middleware(BodyLimit, limit=settings.max_body)

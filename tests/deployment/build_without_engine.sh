@@ -12,12 +12,12 @@ base=$(sed -n 's/^FROM \(\S*\).*/\1/p' "$context/service/Dockerfile" | sort -u)
 store=(buildah --root "$scratch/images" --runroot "$scratch/running" --storage-driver vfs)
 
 mirror=$(apt-get indextargets --format '$(SITE)' 'Created-By: Packages' | grep -m1 '/debian/*$')
-if [[ ! -d $scratch/root ]]; then
-    debootstrap --variant=minbase --include=python3,python3-venv,ca-certificates bookworm "$scratch/root" "$mirror" \
+if [[ ! -d $scratch/debian ]]; then
+    debootstrap --variant=minbase --include=python3,python3-venv,ca-certificates bookworm "$scratch/debian" "$mirror" \
         > "$scratch/debootstrap.log" 2>&1
-    ln -sf python3 "$scratch/root/usr/bin/python"
+    ln -sf python3 "$scratch/debian/usr/bin/python"
     mkdir -p "$scratch/base"
-    tar -C "$scratch/root" -cf "$scratch/base/base.tar" .
+    tar -C "$scratch/debian" -cf "$scratch/base/base.tar" .
     printf 'FROM scratch\nADD base.tar /\n' > "$scratch/base/Dockerfile"
     "${store[@]}" build --isolation chroot --tag "docker.io/library/$base" "$scratch/base" > "$scratch/base.log" 2>&1
 fi

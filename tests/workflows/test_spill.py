@@ -7,7 +7,7 @@ from forebay.flow.arrivals.release import AtPoint, FromOutfall, Release
 from forebay.flow.arrivals.result import ReleaseStatus
 from forebay.flow.errors import UnknownNameError
 from forebay.flow.layout import Ambient, Layout, LineSink, Sink, Source
-from forebay.workflows.spill import all_intakes, compute_arrivals
+from forebay.workflows.spill import compute_arrivals
 
 LAYOUT = Layout(
     depth=2.0,
@@ -18,7 +18,7 @@ RELEASES = (Release("one", AtPoint(-5 + 1j)), Release("two", AtPoint(19 + 5j)))
 
 
 def test_all_intakes_are_sinks_of_either_kind():
-    assert all_intakes(LAYOUT) == ("east", "screen")
+    assert LAYOUT.intakes == ("east", "screen")
 
 
 def test_answers_in_the_order_of_the_releases():

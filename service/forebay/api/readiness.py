@@ -2,6 +2,7 @@
 
 import asyncio
 import logging
+from collections.abc import Mapping
 from functools import partial
 from typing import Any
 
@@ -11,7 +12,6 @@ from forebay.api.examples import rehearsals
 from forebay.api.media import JSON
 from forebay.api.operation import Job, Operation, perform
 from forebay.api.outcome import Reply
-from forebay.api.routers.registry import OPERATIONS
 from forebay.api.work import Workshop
 
 LONGEST_COMPILATION = 600.0
@@ -29,11 +29,13 @@ LOG = logging.getLogger("forebay")
 class Readiness:
     """Runs examples of every operation once, in a thread and in a worker process, then watches.
 
+    operations : the compute operations by their ids
     detail : why the service is not ready, None if it is;  is_draining : whether it is about to stop
     """
 
-    def __init__(self, workshop: Workshop) -> None:
+    def __init__(self, workshop: Workshop, operations: Mapping[str, Operation[Any]]) -> None:
         self._workshop = workshop
+        self._operations = operations
         self._task: asyncio.Task[None] | None = None
         self.detail: str | None = "Kernels are being prepared"
         self.is_draining = False
@@ -57,7 +59,7 @@ class Readiness:
 
     async def _prepare_and_watch(self) -> None:
         try:
-            for operation in OPERATIONS.values():
+            for operation in self._operations.values():
                 for request in rehearsals(operation.operation_id):
                     await self._rehearse(operation, orjson.dumps(request))
         except Exception:

@@ -261,6 +261,11 @@ class Layout:
         """The outlines among the structures, in order."""
         return tuple(s for s in self.structures if isinstance(s, Outline))
 
+    @property
+    def intakes(self) -> tuple[str, ...]:
+        """Names of every sink and line sink, in order."""
+        return tuple(element.name for element in self.elements if isinstance(element, Sink | LineSink))
+
 
 def outflow(element: Element) -> float:
     """Discharge of an element into the water [m3/s]: positive for sources, negative for sinks, else 0."""

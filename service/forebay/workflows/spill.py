@@ -5,7 +5,7 @@ from forebay.flow.arrivals.findings import ArrivalRules
 from forebay.flow.arrivals.release import FromOutfall, Release
 from forebay.flow.arrivals.result import ReleaseArrivals
 from forebay.flow.errors import UnknownNameError
-from forebay.flow.layout import Layout, LineSink, LineSource, Sink, Source
+from forebay.flow.layout import Layout, LineSource, Source
 from forebay.flow.model import compile_layout
 from forebay.workflows.stagnation import search_stagnation
 
@@ -30,9 +30,8 @@ def compute_arrivals(
     LayoutError : the layout describes something that cannot be
     UnknownNameError : an intake is not a sink of the layout, or an outfall no source; `path` says which
     """
-    sinks = {element.name for element in layout.elements if isinstance(element, Sink | LineSink)}
     for index, name in enumerate(rules.intakes):
-        if name not in sinks:
+        if name not in layout.intakes:
             raise UnknownNameError("No sink or line sink has this name.", ("intakes", index))
     sources = {element.name for element in layout.elements if isinstance(element, Source | LineSource)}
     for index, release in enumerate(releases):
@@ -40,8 +39,3 @@ def compute_arrivals(
             raise UnknownNameError("No source or line source has this name.", ("releases", index, "outfall"))
     model = compile_layout(layout)
     return arrive(model, search_stagnation(layout), releases, rules)
-
-
-def all_intakes(layout: Layout) -> tuple[str, ...]:
-    """Names of every sink and line sink of a layout, in order."""
-    return tuple(element.name for element in layout.elements if isinstance(element, Sink | LineSink))

@@ -18,7 +18,7 @@ from forebay.flow.arrivals import result as flow
 from forebay.flow.arrivals.findings import ArrivalRules
 from forebay.trade.applicability.cautions import CAUTIONS
 from forebay.trade.applicability.mixing import spill_notices
-from forebay.workflows.spill import all_intakes, compute_arrivals
+from forebay.workflows.spill import compute_arrivals
 
 POINT_EVALUATIONS = 3_000
 """Velocities read for a release at a point: two streamlines."""
@@ -40,7 +40,7 @@ def compute(request: SpillRequest, _media_type: str) -> Outcome:
     layout, releases = request.flow_layout(), request.flow_releases()
     wanted = request.wanted()
     rules = ArrivalRules(
-        intakes=all_intakes(layout) if wanted is None else wanted,
+        intakes=layout.intakes if wanted is None else wanted,
         transects=request.flow_transects(),
         horizon=inf if request.horizon is None else request.horizon,
         tolerance=request.tolerance,
