@@ -164,7 +164,10 @@ def _status(flow: _Flow, mouthful: _Mouthful, counted: Tally) -> WithdrawalStatu
 
 
 def _error(flow: _Flow, mouthful: _Mouthful, counted: Tally) -> float:
-    """Error of a share: change under tolerance, inclusion of the nodes, quadrature, piers, rounding."""
+    """Error of a share: change under tolerance, inclusion of the nodes, quadrature, walls, rounding.
+
+    Walls that are solved move every divide by twice the bound of psi at most.
+    """
     mouth, model = mouthful.mouth, flow.model
     again = arrivals_at(flow.check, mouthful.element.name, mouth)
     change = _difference(mouth, mouthful.arrivals.coordinates, again.coordinates)
@@ -173,6 +176,9 @@ def _error(flow: _Flow, mouthful: _Mouthful, counted: Tally) -> float:
     left_open = (2.0 * mouthful.arrivals.error + counted.error) / mouth.total
     left_open += _LINE_ROUNDING if mouth.passed_through else 0.0
     left_open += FINEST if counted.bisected else 0.0
+    if model.bound is not None:
+        divides = max(1, mouthful.arrivals.coordinates.size)
+        left_open += 2.0 * divides * model.bound.absolute / mouth.total
     return float(min(1.0, change + left_open + model.boundary_residual + _ROUNDING * strengths / mouth.total))
 
 
