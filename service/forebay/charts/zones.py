@@ -134,10 +134,10 @@ def draw_sample(sheet: Sheet, x: float, y: float, style: tuple[str, str]) -> Non
     from matplotlib.patches import Rectangle
 
     unit, (colour, hatch) = sheet.scale, style
-    box = {"xy": (x, y - 7 * unit), "width": 34 * unit, "height": 14 * unit}
-    sheet.paper.add_patch(Rectangle(**box, facecolor=colour, edgecolor="none", zorder=5.0))
+    corner, width, height = (x, y - 7 * unit), 34 * unit, 14 * unit
+    sheet.paper.add_patch(Rectangle(corner, width, height, facecolor=colour, edgecolor="none", zorder=5.0))
     marks: Style = {"facecolor": "none", "edgecolor": INK, "hatch": hatch, "linewidth": 0.0, "alpha": 0.55}
-    sheet.paper.add_patch(Rectangle(**box, zorder=5.1, **marks))
+    sheet.paper.add_patch(Rectangle(corner, width, height, zorder=5.1, **marks))
 
 
 def zone_notes(scene: Scene, count: int, left_out: int) -> list[str]:

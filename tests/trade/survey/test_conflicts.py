@@ -110,6 +110,7 @@ def test_intake_may_stand_on_or_beside_the_wall_of_an_outline(at):
 def test_quay_on_a_bank_becomes_land():
     plain = layout(moved(QUAY, 200 - 2j), Pier("p", 100 + 40j, 2.0))
     found = with_attached(plain)
+    assert isinstance(found.shore, Surveyed)
     assert [s.name for s in found.structures] == ["p"]
     # 10 m by the 3 m that stand out of the bank, widened by 1e-6 of the size all round
     lost = signed_area(np.array(WATER.outer)) - signed_area(np.array(found.shore.outer))
@@ -120,6 +121,7 @@ def test_quay_on_a_bank_becomes_land():
 
 def test_mole_on_an_island_keeps_its_name():
     found = with_attached(layout(moved(QUAY, 395 + 35j)))
+    assert isinstance(found.shore, Surveyed)
     (island,) = found.shore.islands
     assert island.name == "eyot"
     assert -signed_area(np.array(island.points)) == pytest.approx(2000 + 5 * 5, abs=0.03)

@@ -277,6 +277,7 @@ def test_simplification_gives_way_where_rings_would_touch():
 def test_degrees_become_metres_of_a_grid_about_the_middle():
     ring = (8.0 + 50.0j, 8.01 + 50.0j, 8.01 + 50.002j, 8.0 + 50.002j)
     found = surveyed_water(Survey(rings=(ring,), system="EPSG:4326"))
+    assert found.grid is not None
     assert found.grid.code is None
     assert "lon_0=8.005" in found.grid.definition
     assert (
@@ -288,12 +289,14 @@ def test_degrees_become_metres_of_a_grid_about_the_middle():
     area, _ = Geod(ellps="WGS84").polygon_area_perimeter([z.real for z in ring], [z.imag for z in ring])
     # scale 1 within (700 m / 6378 km)^2 / 2 = 6e-9; geodesic and straight edges part by millimetres
     assert found.area == pytest.approx(area, rel=1e-6)
+    assert found.scale_error is not None
     assert found.scale_error < 1e-6
 
 
 def test_plane_system_is_its_own_grid():
     ring = tuple(z + 480_000 + 5_540_000j for z in REACH)
     found = surveyed_water(Survey(rings=(ring,), system="EPSG:25832"))
+    assert found.grid is not None
     assert found.grid.code == "EPSG:25832"
     assert found.shore.outer == ring
     # 20 km from the central meridian: 0.9996 (1 + (20 / 6380)^2 / 2)
@@ -303,6 +306,7 @@ def test_plane_system_is_its_own_grid():
 def test_feet_of_a_survey_become_metres():
     feet = tuple(1_000_000 + 200_000j + z for z in REACH)
     found = surveyed_water(Survey(rings=(feet,), system="EPSG:2263"))
+    assert found.grid is not None
     assert found.grid.code is None
     # US survey foot, 1200/3937 m; the state grid's scale is within 1e-4 of 1 there
     assert found.area == pytest.approx(900 * 85 * (1200 / 3937) ** 2, rel=3e-4)
