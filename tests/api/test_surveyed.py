@@ -85,6 +85,28 @@ def test_free_outline_has_a_bound_of_its_own(ready_client):
     )
 
 
+@pytest.mark.parametrize(
+    ("route", "asked"),
+    [
+        ("stress/tensor", {"at": {"points": [[50, 25]]}}),
+        (
+            "submergence/check",
+            {
+                "inlets": [
+                    {"name": "bell", "kind": "bell", "diameter": 0.8, "discharge": 0.5, "submergence": 1.5}
+                ]
+            },
+        ),
+    ],
+)
+def test_routes_that_may_do_without_a_layout_tell_of_its_walls(ready_client, route, asked):
+    answer = ready_client.post(f"/v1/{route}", json={"layout": layout(), **asked})
+    assert answer.status_code == 200, answer.text
+    boundary = answer.json()["boundary"]
+    assert boundary["solved"]["through_flux"] == pytest.approx(20.0)  # 40 m3/s in 2 m of water
+    assert boundary["survey"]["vertices"] == 4
+
+
 def test_blunt_open_edge_is_noted(ready_client):
     slanted = RECTANGLE | {
         "water": {"type": "Polygon", "coordinates": [[[0, 0], [200, 0], [200, 50], [20, 50]]]},

@@ -5,6 +5,7 @@ from typing import NamedTuple, Self
 
 from forebay.flow.errors import Path, TooLargeError
 from forebay.settings import Settings
+from forebay.trade.survey.water import MOST_GIVEN, MOST_SOLVED
 
 PAIRS_A_SECOND = 1e8
 """Pairs of element and point worked through in a second; a slow processor does half, a fast one thrice."""
@@ -86,6 +87,8 @@ class Limits(NamedTuple):
     queue: int
     worker_memory: int
     token_concurrency: int
+    max_vertices: int
+    max_solved_vertices: int
 
     @classmethod
     def of(cls, settings: Settings) -> Self:
@@ -101,6 +104,8 @@ class Limits(NamedTuple):
             queue=settings.queue,
             worker_memory=settings.worker_memory,
             token_concurrency=settings.token_concurrency,
+            max_vertices=MOST_GIVEN,
+            max_solved_vertices=MOST_SOLVED,
         )
 
     def check(self, price: Price) -> None:

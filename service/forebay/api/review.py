@@ -7,8 +7,9 @@ import numpy as np
 
 from forebay.api.boundary import written_boundary
 from forebay.api.outcome import Outcome
-from forebay.api.schemas.layout import LayoutRequest
-from forebay.flow.layout import Layout
+from forebay.api.schemas.layout import Layout, LayoutRequest
+from forebay.api.units import UnitSystem
+from forebay.flow.layout import Layout as FlowLayout
 from forebay.trade.applicability.site import Readings
 from forebay.workflows.boundary import bound_boundary
 from forebay.workflows.review import review_layout
@@ -18,15 +19,26 @@ COMPUTED = Readings()
 
 
 def reviewed(
-    request: LayoutRequest, layout: Layout, result: dict[str, Any], readings: Readings | None = COMPUTED
+    request: LayoutRequest, layout: FlowLayout, result: dict[str, Any], readings: Readings | None = COMPUTED
 ) -> Outcome:
     """Outcome of a request about a layout; `readings` None if nothing has been computed of it."""
-    data, bound = request.site_data(), None
+    return reviewed_site(request.layout, request.unit_system, layout, result, readings)
+
+
+def reviewed_site(
+    site: Layout,
+    units: UnitSystem,
+    layout: FlowLayout,
+    result: dict[str, Any],
+    readings: Readings | None = COMPUTED,
+) -> Outcome:
+    """Outcome about a site as written, and the same as a layout in SI."""
+    data, bound = site.converted(units)[1], None
     if readings is not None:
         bound = bound_boundary(layout)
         readings = replace(readings, boundary_bound=None if bound is None else bound.relative)
     notices = review_layout(layout, readings, data=data)
-    walls = written_boundary(request.layout, request.unit_system, layout, bound)
+    walls = written_boundary(site, units, layout, bound)
     return Outcome(result, layout, data, notices, boundary=walls)
 
 

@@ -16,13 +16,16 @@ from forebay.flow.layout import (
     Corner,
     DeadEnd,
     Doublet,
+    EdgeProfile,
     Layout,
     LineSink,
     LineSource,
+    OpenEdge,
     Pier,
     Sink,
     Source,
     StraightBank,
+    Surveyed,
     Vortex,
     Water,
 )
@@ -189,6 +192,17 @@ def salty(data=None):
     return site(layout, data)
 
 
+def solved(bound, tolerance=1e-4):
+    return site(Layout(DEPTH, tolerance=tolerance), readings=Readings(boundary_bound=bound))
+
+
+def cut_at(degrees, profile=EdgeProfile.EQUIPOTENTIAL):
+    # water of 100 m by 50 m; its left side is an open edge that meets the lower bank at that angle
+    top = 50.0 * np.exp(1j * math.radians(degrees))
+    outer = (0j, 100 + 0j, 100 + 50j, complex(top))
+    return site(Layout(DEPTH, shore=Surveyed(outer, (), (OpenEdge("upper reach", 3, 1, 5.0, profile),))))
+
+
 SPED = math.sqrt(1.0 - 1.0 / 1.05**2)
 """Froude number with a first-order speed-up of a twentieth."""
 
@@ -217,6 +231,11 @@ THRESHOLDS = [
     ("earth-rotation-strong", on_the_earth(ABOVE), on_the_earth(BELOW), 1.0),
     ("layer-withdrawal", layered(ABOVE), layered(BELOW), 1.5 * 1.2167),
     ("buoyant-spreading", buoyant(0.1 * BELOW), buoyant(0.1 * ABOVE), 0.1),
+    ("boundary-bound", solved(1e-4 * BELOW), solved(1e-4 * ABOVE), 1e-4),
+    ("boundary-bound-wide", solved(1e-3 * BELOW), solved(1e-3 * ABOVE), 1e-3),
+    ("boundary-bound-wide", solved(5e-3 * BELOW, 5e-3), solved(5e-3 * ABOVE, 5e-3), 5e-3),
+    # 1e-3 deg of rounding are let pass; the other end meets its bank at less than 90 deg
+    ("open-edge-blunt", cut_at(90.0009), cut_at(90.0011), 90.0),
 ]
 
 
@@ -225,8 +244,15 @@ def test_threshold(code, silent, loud, limit):
     assert raised(code, silent) == []
     (warning,) = raised(code, loud)
     assert warning.code == code
-    # ABOVE and BELOW lie 1e-9 from the limits; the speed-up grows 20 times as fast; h_c is given to 1 mm
-    tolerance = {"surface-speed-up": 1e-7, "near-field-error": 1e-7, "layer-withdrawal": 5e-4}.get(code, 1e-8)
+    # ABOVE and BELOW lie 1e-9 from the limits; the speed-up grows 20 times as fast; h_c is given to 1 mm;
+    # the angle is 1.1e-3 deg from its limit
+    tolerances = {
+        "open-edge-blunt": 1.3e-5,
+        "surface-speed-up": 1e-7,
+        "near-field-error": 1e-7,
+        "layer-withdrawal": 5e-4,
+    }
+    tolerance = tolerances.get(code, 1e-8)
     assert warning.limit == pytest.approx(limit, rel=tolerance)
     assert warning.value == pytest.approx(limit, rel=tolerance, abs=2e-6)
 
@@ -240,6 +266,9 @@ AT_THE_LIMIT = [
     ("friction-length", long_layout(240.0)),
     ("salient-corner", corner(180.0)),
     ("tidal-reversal", tidal(50.0)),
+    ("boundary-bound", solved(1e-4)),
+    ("boundary-bound-wide", solved(1e-3)),
+    ("open-edge-blunt", cut_at(90.0)),
 ]
 
 
@@ -250,6 +279,16 @@ def test_limit_itself_is_still_believed(code, at):
 
 def test_intake_on_the_limit_still_draws_from_the_bank():
     assert len(raised("bank-shear", bank_intake(4.0))) == 1
+
+
+@pytest.mark.parametrize(("bound", "note", "caution"), [(1e-3, 1, 0), (1e-3 * ABOVE, 0, 1), (None, 0, 0)])
+def test_bound_is_told_once(bound, note, caution):
+    assert len(raised("boundary-bound", solved(bound))) == note
+    assert len(raised("boundary-bound-wide", solved(bound))) == caution
+
+
+def test_same_speed_all_along_an_open_edge_is_bounded_at_its_ends():
+    assert raised("open-edge-blunt", cut_at(120.0, EdgeProfile.UNIFORM)) == []
 
 
 def test_rigid_lid_gives_way_to_its_failure():

@@ -1,7 +1,7 @@
 """stress/tensor: stress from velocity gradients, measured velocities, or a layout."""
 
 from collections.abc import Sequence
-from dataclasses import asdict
+from dataclasses import asdict, replace
 from typing import Any
 
 from fastapi import APIRouter
@@ -10,6 +10,7 @@ from forebay.api.limits import Price
 from forebay.api.names import refuse_repeated
 from forebay.api.operation import Operation
 from forebay.api.outcome import Outcome
+from forebay.api.review import reviewed_site
 from forebay.api.routers.serving import serve
 from forebay.api.schemas.stress import StressRequest, StressResult
 from forebay.flow.passage import Passage
@@ -23,7 +24,6 @@ from forebay.trade.bed_shear import SOURCES
 from forebay.trade.exposure import THRESHOLDS
 from forebay.trade.fluids import AnyFluid, known_fluid
 from forebay.workflows.layout_stress import compute_layout_stress
-from forebay.workflows.review import review_layout
 from forebay.workflows.stress import compute_stress
 from forebay.workflows.stress_readings import Asked, PlaceReading, StressReadings, read_stresses
 
@@ -55,13 +55,14 @@ def compute(request: StressRequest, _media_type: str) -> Outcome:
         read = read_stresses(computed, asked)
         notices = (*notices, *from_memory(read.thresholds))
         return Outcome(with_readings(all_written(computed, fluid), read, asked), warnings=notices)
-    layout, data = request.layout.to_flow(units), request.layout.site_data(units)
+    layout, data = request.layout.converted(units)
     found = compute_layout_stress(fluid, layout, request.at.positions(units), data.opening_radii)
     read = read_stresses(found, asked, layout)
     own = request.layout.water.assumed_temperature if request.fluid is None else None
     readings = Readings(has_dissipation=True, assumed_temperature=own, thresholds=read.thresholds)
-    notices = (*review_layout(layout, readings, data=data), *notices)
-    return Outcome(with_readings(all_written(found, fluid), read, asked), layout, data, notices)
+    result = with_readings(all_written(found, fluid), read, asked)
+    outcome = reviewed_site(request.layout, units, layout, result, readings)
+    return replace(outcome, warnings=(*outcome.warnings, *notices))
 
 
 def all_written(states: Sequence[StressState], fluid: AnyFluid) -> dict[str, Any]:

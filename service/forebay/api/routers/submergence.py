@@ -1,6 +1,6 @@
 """submergence/check: what rules ask of an inlet under a free surface, its similarity and its swirl."""
 
-from dataclasses import asdict
+from dataclasses import asdict, replace
 from typing import Any
 
 from fastapi import APIRouter
@@ -9,7 +9,7 @@ from forebay.api.limits import Price
 from forebay.api.names import refuse_repeated
 from forebay.api.operation import Operation
 from forebay.api.outcome import Outcome
-from forebay.api.review import COMPUTED
+from forebay.api.review import reviewed_site
 from forebay.api.routers.serving import serve
 from forebay.api.schemas.submergence import SubmergenceRequest, SubmergenceResult
 from forebay.api.units import UnitSystem
@@ -21,7 +21,6 @@ from forebay.trade.submergence.findings import Finding
 from forebay.trade.submergence.notices import inlet_notices
 from forebay.trade.submergence.scale import ScaleEffect
 from forebay.trade.submergence.vortex import Vortex
-from forebay.workflows.review import review_layout
 from forebay.workflows.submergence import Choice, check_submergence
 
 EFFORT_A_RING = 20_000
@@ -34,15 +33,15 @@ VALUES_AN_INLET = 200
 def compute(request: SubmergenceRequest, _media_type: str) -> Outcome:
     refuse_repeated(request.inlets, "inlets")
     units = request.unit_system
-    layout = None if request.layout is None else request.layout.to_flow(units)
+    layout = None if request.layout is None else request.layout.converted(units)[0]
     inlets = tuple(inlet.to_trade(units, layout, index) for index, inlet in enumerate(request.inlets))
     checks = check_submergence(inlets, request.known_water.to_flow(units), choice(request), layout)
     fields = {"inlets": [written(check, units) for check in checks], "cautions": CAUTIONS}
     notices = (*inlet_notices(checks), *assumed(request))
     if layout is None or request.layout is None:
         return Outcome(fields, warnings=notices)
-    data = request.layout.site_data(units)
-    return Outcome(fields, layout, data, (*notices, *review_layout(layout, COMPUTED, data=data)))
+    outcome = reviewed_site(request.layout, units, layout, fields)
+    return replace(outcome, warnings=(*notices, *outcome.warnings))
 
 
 def choice(request: SubmergenceRequest) -> Choice:

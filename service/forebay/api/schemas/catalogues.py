@@ -19,7 +19,6 @@ from forebay.api.schemas.quantities import (
     TimeValue,
     ViscosityValue,
 )
-
 from forebay.trade.submergence.inlet import Datum, InletKind
 from forebay.trade.submergence.rules import Standing
 
@@ -52,6 +51,8 @@ class LimitsResult(Answer):
     queue: Annotated[CountValue, Field(description="Large computations that may wait")]
     worker_memory: Annotated[BytesValue, Field(description="Memory of one computation in a worker process")]
     token_concurrency: Annotated[CountValue, Field(description="Computations of one token at a time")]
+    max_vertices: Annotated[CountValue, Field(description="Vertices of a surveyed shore as given")]
+    max_solved_vertices: Annotated[CountValue, Field(description="After mending and simplification")]
 
 
 class CriterionValue(Answer):
