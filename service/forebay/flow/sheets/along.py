@@ -13,6 +13,10 @@ Chord = Callable[[ComplexArray, ComplexArray], ComplexArray]
 
 _ON = 1e-7
 """Distance from a piece of wall over its length within which an element stands on it [-]."""
+_MEETING = 1e-7
+"""Distance of an element on the wall from a place, over the way to the next, at which they are one [-]."""
+_BESIDE = 1e-4
+"""How far before and behind such an element psi is taken, over the way to the next place: 1e-8 off [-]."""
 _DETOUR = 0.1
 """Width of the way round an element on the wall over its distance from the nearer end of the piece [-]."""
 
@@ -37,10 +41,34 @@ def along_rings(
     for k, ring in enumerate(mesh.rings):
         chosen = slice(int(mesh.bounds[k]), int(mesh.bounds[k + 1]))
         path, wanted, origin = _path(mesh, ring, chosen, abscissae)
-        steps = _steps(path, chord, pinned)
-        sums = np.concatenate(([0j], np.cumsum(steps)))
+        sums = _sums(path, chord, pinned)
         values[chosen] = (sums - sums[origin])[wanted].reshape(-1, abscissae.size)
     return values
+
+
+def _sums(path: ComplexArray, chord: Chord, pinned: tuple[complex, ...]) -> ComplexArray:
+    """Potential along a path; at an element on the wall the mean of just before and just behind."""
+    parted, before, behind = path, np.arange(path.size), np.arange(path.size)
+    ways = np.abs(np.diff(path))
+    ways[ways == 0.0] = np.inf
+    near = np.minimum(np.append(ways, np.inf), np.insert(ways, 0, np.inf))
+    for at in pinned:
+        for k in np.flatnonzero(np.abs(path - at) <= _MEETING * near):
+            aside = _BESIDE * near[k] * _heading(path, int(k))
+            place = int(before[k])
+            parted = np.insert(parted, place, at - aside)
+            parted[place + 1] = at + aside
+            before[k + 1 :] += 1
+            behind[k:] += 1
+    sums = np.concatenate(([0j], np.cumsum(_steps(parted, chord, pinned))))
+    return np.asarray(0.5 * (sums[before] + sums[behind]), dtype=np.complex128)
+
+
+def _heading(path: ComplexArray, k: int) -> complex:
+    """Unit vector along a path at one of its points, which is no bend."""
+    steps = np.concatenate((path[k] - path[:k][::-1], path[k + 1 :] - path[k]))
+    step = complex(steps[np.flatnonzero(steps)[0]])
+    return step / abs(step)
 
 
 def _path(

@@ -76,6 +76,8 @@ def _check_element(element: Element, rings: RingSet, reach: float, path: Path) -
         touched = rings.edges_at(at, reach)
         if not is_line and touched:
             _check_on_ring(element, touched, (*path, name))
+    if rings.on_open_edge([at for _, at in ends], reach):
+        raise ElementMisplacedError("an element cannot stand on an open edge", (*path, ends[0][0]))
     if (
         is_line
         and footing_of(element, rings, reach) is None

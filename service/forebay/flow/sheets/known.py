@@ -1,6 +1,6 @@
 """What a solution on sheets starts from: the flow without the walls, discharges and circulations."""
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import Protocol
 
 import numpy as np
@@ -8,6 +8,7 @@ import numpy as np
 from forebay.flow.arrays import ComplexArray, FloatArray
 from forebay.flow.sheets.along import along_rings
 from forebay.flow.sheets.mesh import Mesh
+from forebay.flow.sheets.stand_ins import StandIns
 from forebay.flow.sheets.unknowns import Levels, levels_of
 
 
@@ -44,6 +45,7 @@ class Known:
     outflows : out of the water through every open edge, by name [m2/s]
     logs : coefficient of log(z - start) at the start of every ring, 0 for open ones [m2/s]
     pinned : elements on the rings, x + iy [m];  flux : what residuals are compared with [m2/s]
+    stand_ins : of elements on the land round surveyed water, None without any
     """
 
     flow: KnownFlow
@@ -52,6 +54,7 @@ class Known:
     logs: tuple[complex, ...]
     pinned: tuple[complex, ...]
     flux: float
+    stand_ins: StandIns | None = None
 
     def chord(self, a: ComplexArray, b: ComplexArray) -> ComplexArray:
         """Flow and poles at the starts of rings."""
@@ -63,4 +66,7 @@ class Known:
 
     def levels(self, mesh: Mesh) -> Levels:
         """Known psi and density on the elements."""
-        return levels_of(mesh, self.outflows, self.logs)
+        levels = levels_of(mesh, self.outflows, self.logs)
+        if self.stand_ins is None:
+            return levels
+        return replace(levels, density=levels.density + self.stand_ins.density(mesh))

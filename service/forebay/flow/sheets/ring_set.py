@@ -1,5 +1,6 @@
 """All rings of a layout as walls: what is water, how far the nearest wall is, and what stands on one."""
 
+from collections.abc import Iterable
 from dataclasses import dataclass
 from functools import cached_property
 
@@ -86,6 +87,14 @@ class RingSet:
             near = np.flatnonzero(np.abs(z - ring.starts - share * span) <= reach)
             found += [(ring, int(edge)) for edge in near]
         return tuple(found)
+
+    def on_open_edge(self, places: Iterable[complex], reach: float) -> bool:
+        """Whether all places lie within `reach` [m] of one and the same open edge."""
+        touched = [
+            {(id(ring), edge) for ring, edge in self.edges_at(at, reach) if not ring.is_land[edge]}
+            for at in places
+        ]
+        return bool(set.intersection(*touched))
 
     def crossed(self, a: complex, b: complex, reach: float) -> bool:
         """Whether a straight line in the water crosses a ring by more than `reach` [m]."""

@@ -102,17 +102,14 @@ def load_of(system: System, known: Known) -> FloatArray:
     return np.asarray(np.where(system.is_open_row, -total.real, target - total.imag))
 
 
-def _known_part(system: System, ends: ComplexArray) -> ComplexArray:
+def _known_part(system: System, density: ComplexArray) -> ComplexArray:
     """Potential of the known part of the density at the collocation points."""
     z, own = system.collocation
-    chosen = np.any(ends != 0.0, axis=1)
+    chosen = np.any(density != 0.0, axis=1)
     if not chosen.any():
         return np.zeros(z.size, dtype=np.complex128)
-    density = np.zeros((int(chosen.sum()), 4), dtype=np.complex128)
-    density[:, 0] = 0.5 * (ends[chosen, 0] + ends[chosen, 1])
-    density[:, 1] = 0.5 * (ends[chosen, 1] - ends[chosen, 0])
     number = np.where(chosen, np.cumsum(chosen) - 1, -2)
-    return SheetField(system.panels.part(chosen), density).potential(z, number[own])
+    return SheetField(system.panels.part(chosen), density[chosen]).potential(z, number[own])
 
 
 def solve(system: System, known: Known) -> Solution:

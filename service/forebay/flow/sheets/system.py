@@ -59,16 +59,15 @@ class System:
     def density(self, values: FloatArray, known: ComplexArray | None = None) -> ComplexArray:
         """Legendre coefficients of the density, shape (m, 4).
 
-        values : shape (N,);  known : shape (m, 2), known part at both ends of every element
+        values : shape (N,);  known : known part, of the same shape
         """
         mesh, columns = self.mesh, self.unknowns
         padded = np.append(values, 0.0)
         node = padded[columns.real] + 1j * padded[columns.imag]
         first, last = node[mesh.first_node], node[mesh.last_node]
-        if known is not None:
-            first, last = first + known[:, 0], last + known[:, 1]
         bubbles = values[columns.bubble[:, None] + np.arange(DEGREE - 1)]
-        return legendre(first, last, bubbles * np.where(mesh.is_equipotential, 1j, 1.0)[:, None])
+        unknown = legendre(first, last, bubbles * np.where(mesh.is_equipotential, 1j, 1.0)[:, None])
+        return unknown if known is None else unknown + known
 
     def field(self, density: ComplexArray, offset: float = 0.0) -> SheetField:
         """Field of a density."""

@@ -17,7 +17,8 @@ from forebay.flow.sheets.origin import Shifted, middle_of, shifted_frame, shifte
 from forebay.flow.sheets.piers import PierSet
 from forebay.flow.sheets.pole_flow import PoleFlow
 from forebay.flow.sheets.ring import Ring
-from forebay.flow.sheets.standing import Footings
+from forebay.flow.sheets.stand_ins import stand_ins_of
+from forebay.flow.sheets.standing import DOUBLED, Footings
 from forebay.flow.shores import frame_of
 
 
@@ -38,7 +39,7 @@ def task_of(
         builder.add_pole(complex(ring.starts[0]), strength, 0)
         return builder.build(0j, offset_of(layout, frame))
 
-    logs = _logs(layout, rings)
+    logs = _logs(layout, rings, standing)
     poles = [vortices(ring, log) for ring, log in zip(walls.rings, logs, strict=True) if log]
     known = Known(
         flow=Shifted(flow, origin),
@@ -49,6 +50,7 @@ def task_of(
             at - origin for k in standing for name, at in places(layout.elements[k]) if name == "at"
         ),
         flux=flux_of(layout, rings),
+        stand_ins=stand_ins_of(layout, standing, walls.rings[0], origin),
     )
     piers = tuple(replace(pier, at=pier.at - origin) for pier in layout.piers)
     return Task(
@@ -79,14 +81,19 @@ def _outflows(layout: Layout) -> dict[str, float]:
     return {edge.name: -flow for edge, flow in zip(layout.shore.edges, flows, strict=True)}
 
 
-def _logs(layout: Layout, rings: tuple[Ring, ...]) -> tuple[complex, ...]:
-    """Poles of F at the starts of rings: circulation of free solids; all that stands in surveyed water."""
+def _logs(layout: Layout, rings: tuple[Ring, ...], standing: Footings) -> tuple[complex, ...]:
+    """Poles of F at the starts of rings: circulation of free solids; all that stands in surveyed water.
+
+    Together with the elements they leave nothing at infinity; on the outer ring elements count twice.
+    """
     solids = [-1j * ring.circulation / (2.0 * np.pi) if ring.is_solid else 0j for ring in rings]
     if rings[0].is_solid:
         return tuple(solids)
     circulation = sum(e.circulation for e in layout.elements if isinstance(e, Vortex))
     circulation += sum(pier.circulation for pier in layout.piers)
-    flux = sum(outflow(element) for element in layout.elements) / layout.depth
+    doubled = {k for k, footing in standing.items() if not footing.ring.is_solid}
+    flows = [outflow(e) * (DOUBLED if k in doubled else 1.0) for k, e in enumerate(layout.elements)]
+    flux = sum(flows) / layout.depth
     total = complex(flux, -circulation) / (2.0 * np.pi) + sum(solids)
     return (-total, *solids[1:])
 

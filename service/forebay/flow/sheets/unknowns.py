@@ -121,7 +121,7 @@ class Levels:
     """What is known of psi along the rings for given discharges, up to what elements add.
 
     target : shape (m, 2), psi at both ends of every element that is no equipotential one [m2/s]
-    density : shape (m, 2), known part of the density at both ends of every element [m2/s]
+    density : shape (m, 4), Legendre coefficients of the known part of the density [m2/s]
     """
 
     target: FloatArray
@@ -132,19 +132,26 @@ def levels_of(mesh: Mesh, outflows: dict[str, float], logs: tuple[complex, ...])
     """Known psi and density.
 
     outflows : out of the water through every open edge [m2/s]
-    logs : coefficient of log(z - start) for every ring [m2/s]; the density jumps there by -2 pi i of it
+    logs : coefficient of log(z - start) for every ring [m2/s]; the density jumps there by -2 pi i of it, less
+        what stand-ins jump by
     """
     target = np.zeros((mesh.count, 2))
     density = np.zeros((mesh.count, 2), dtype=np.complex128)
     for k, (ring, log) in enumerate(zip(mesh.rings, logs, strict=True)):
         first, last = int(mesh.bounds[k]), int(mesh.bounds[k + 1]) - 1
-        jump = -2j * np.pi * log
         if not ring.is_solid:
             _outer_levels(mesh, ring, outflows, target, density)
             if mesh.is_equipotential[0]:
-                density[first, 0] -= 1j * jump.imag
-        density[last, 1] += jump.real
-    return Levels(target, density)
+                density[first, 0] -= 1j * target[last, 1]
+        density[last, 1] += 2.0 * np.pi * log.imag
+    return Levels(target, straight(density))
+
+
+def straight(ends: ComplexArray) -> ComplexArray:
+    """Legendre coefficients of densities linear between both ends of elements, shape (m, 2) -> (m, 4)."""
+    coefficients = np.zeros((ends.shape[0], DEGREE + 1), dtype=np.complex128)
+    coefficients[:, 0], coefficients[:, 1] = 0.5 * ends.sum(axis=1), 0.5 * (ends[:, 1] - ends[:, 0])
+    return coefficients
 
 
 def _outer_levels(
