@@ -11,19 +11,16 @@ Rigorous up to sampling (12 points an element) and to the error of the auxiliary
 """
 
 from dataclasses import dataclass
-from weakref import WeakKeyDictionary
 
 import numpy as np
 
-from forebay.flow.arrays import BoolArray, ComplexArray, FloatArray
+from forebay.flow.arrays import BoolArray, FloatArray
+from forebay.flow.kernels.sheet_layer import layer_peak
 from forebay.flow.sheets.mesh import Mesh
 from forebay.flow.sheets.solution import CELL_MIDDLES, CELL_WIDTHS, Solution
-from forebay.flow.sheets.system import System
 
 _COLLINEAR = 1e-9
 """Sine of the angle below which elements lie in one line and let nothing in for each other [-]."""
-_LAYERS: "WeakKeyDictionary[System, FloatArray]" = WeakKeyDictionary()
-"""Layers on the open edges of factorisations that are still kept."""
 _GAUSS, _WEIGHTS = np.polynomial.legendre.leggauss(8)
 
 
@@ -104,22 +101,12 @@ def _barrier(solution: Solution) -> float:
     if chosen.size == 0:
         return 0.0
     layer = solution.slip + _reinforcement(mesh, solution)[:, None]
-    half = np.abs(mesh.half[chosen])
-    z = mesh.middle[chosen, None] + mesh.half[chosen, None] * CELL_MIDDLES
+    half = mesh.half[chosen]
     size = float(np.max(np.abs(mesh.rings[0].vertices[:, None] - mesh.rings[0].vertices)))
-    spans = (mesh.half[chosen, None] * CELL_WIDTHS / 2.0).ravel()
-    weights = (layer * CELL_WIDTHS * half[:, None]).ravel()
-    if solution.system not in _LAYERS:
-        places = np.concatenate([mesh.middle[chosen], mesh.start[chosen], mesh.end[chosen]])
-        _LAYERS[solution.system] = _layer(places, z.ravel(), spans, size)
-    return float(np.max(_LAYERS[solution.system] @ weights))
-
-
-def _layer(places: ComplexArray, cells: ComplexArray, spans: ComplexArray, size: float) -> FloatArray:
-    """Mean of ln(size / distance) / pi over straight cells, shape (places, cells)."""
-    x = (places[:, None] - cells) / spans + 1e-9j
-    mean = 0.5 * ((x + 1.0) * np.log(x + 1.0) - (x - 1.0) * np.log(x - 1.0)).real - 1.0
-    return np.asarray((np.log(size) - mean - np.log(np.abs(spans))) / np.pi, dtype=np.float64)
+    places = np.unique(np.concatenate([mesh.middle[chosen], mesh.start[chosen], mesh.end[chosen]]))
+    weights = layer * CELL_WIDTHS * np.abs(half)[:, None]
+    elements = mesh.middle[chosen], half
+    return float(layer_peak(places, elements, (CELL_MIDDLES, CELL_WIDTHS), weights, size))
 
 
 def _reinforcement(mesh: Mesh, solution: Solution) -> FloatArray:
