@@ -30,7 +30,7 @@ done
 "${store[@]}" build --isolation chroot --pull-never --network host --format docker "${mounts[@]}" \
     --file "$context/service/Dockerfile" --tag "$image" "$context" > "$scratch/build.log" 2>&1
 
-"${store[@]}" inspect --type image --format '{{json .Docker.config}}' "$image" > "$scratch/config.json"
+"${store[@]}" inspect --type image "$image" > "$scratch/image.json"
 container=$("${store[@]}" from --pull-never "$image")
 trap '"${store[@]}" rm "$container" > /dev/null' EXIT
 "${store[@]}" run --isolation chroot --network host "$container" -- "$@"

@@ -55,7 +55,7 @@ def test_service_runs_as_an_ordinary_user_and_becomes_ready(built):
 
 
 def test_image_says_how_it_is_run(built):
-    config = json.loads((built[0] / "config.json").read_text(encoding="utf-8"))
+    config = json.loads((built[0] / "image.json").read_text(encoding="utf-8"))["Docker"]["config"]
     assert config["User"] == "10001"
     assert config["Entrypoint"] == ["start"]
     assert config["Cmd"][:2] == ["forebay", "serve"]
