@@ -1,21 +1,24 @@
-"""Outlines: first answer, another sink on the solved walls, evaluation, against vertices."""
+"""Outlines and a surveyed reach: first answer, another on the solved walls, evaluation; their growth."""
 
-from collections.abc import Iterator
+from collections.abc import Callable, Iterator
 from dataclasses import replace
 from functools import partial
 
 import numpy as np
 
-from forebay.flow.layout import Ambient, Layout, Outline, Sink, StraightBank
+from forebay.flow.arrays import ComplexArray
+from forebay.flow.layout import Ambient, Layout, Outline, Sink, StraightBank, Surveyed
 from forebay.flow.model import FlowModel, compile_layout
 from forebay.flow.sheets.adapt import forget_meshes
 from forebay.flow.sheets.memo import MEMO
-from forebay.flow.sheets.solution import solve
+from forebay.flow.sheets.solution import Solution, solve
 
+from .reach import reach
 from .timing import Measure, best_of
 
 VERTICES = (8, 32, 128)
-POINTS = 10_000
+SIDE = 200
+"""Points along each side of a lattice."""
 
 
 def _saw(vertices: int) -> Layout:
@@ -41,21 +44,57 @@ def _again(layout: Layout, count: list[int]) -> FlowModel:
     return compile_layout(replace(layout, elements=(Sink("s", -50 + 1j * (20 + count[0]), 1.0),)))
 
 
+def _more(layout: Layout, count: list[int]) -> FlowModel:
+    """Another discharge through the reach."""
+    count[0] += 1
+    shore = layout.shore
+    if not isinstance(shore, Surveyed):
+        raise TypeError(shore)
+    edges = tuple(
+        edge if edge.discharge is None else replace(edge, discharge=1000.0 + count[0]) for edge in shore.edges
+    )
+    return compile_layout(replace(layout, shore=replace(shore, edges=edges)))
+
+
 def measure() -> Iterator[Measure]:
-    """Quays of several numbers of vertices: how each time grows."""
+    """Quays of several numbers of vertices: how each time grows; then the reach of the tests' data."""
+    unknowns = []
     for vertices in VERTICES:
         layout = _saw(vertices)
-        boundary = _first(layout).boundary
-        if boundary is None:
-            raise ValueError(layout)
-        solution, model = boundary.solution, compile_layout(layout)
-        size = f"{vertices} vertices, {solution.system.size} unknowns"
-        z = np.linspace(-20 + 6j, 20 + 6j, POINTS, dtype=np.complex128)
-        first = best_of(partial(_first, layout), repeats=2)
-        yield Measure(f"first answer, {size}", first, "s", 10.0)
-        again = best_of(partial(_again, layout, [0]), repeats=3)
-        yield Measure(f"another sink with its bound, {size}", again, "s", 0.3)
-        side = best_of(partial(solve, solution.system, solution.known), repeats=3)
-        yield Measure(f"right-hand side, {size}", side, "s", 0.05)
-        each = best_of(partial(model.velocity, z), repeats=3) / POINTS
-        yield Measure(f"velocity, {size}", 1e6 * each, "us", 5.0)
+        size = _solved(layout).system.size
+        unknowns.append(size)
+        yield from _rows(layout, _again, f"{vertices} vertices, {size} unknowns")
+    growth = np.log(unknowns[-1] / unknowns[0]) / np.log(VERTICES[-1] / VERTICES[0])
+    yield Measure("unknowns against vertices, power", float(growth), "-", 1.0)
+    layout = Layout(10.0, shore=reach(1000.0))
+    yield from _rows(layout, _more, f"the reach, {_solved(layout).system.size} unknowns")
+
+
+def _solved(layout: Layout) -> Solution:
+    boundary = compile_layout(layout).boundary
+    if boundary is None:
+        raise ValueError(layout)
+    return boundary.solution
+
+
+def _rows(layout: Layout, other: Callable[[Layout, list[int]], FlowModel], size: str) -> Iterator[Measure]:
+    """A row for every time of one layout."""
+    first = best_of(partial(_first, layout), repeats=1)
+    yield Measure(f"first answer, {size}", first, "s", 10.0)
+    solution, model = _solved(layout), compile_layout(layout)
+    again = best_of(partial(other, layout, [0]), repeats=3)
+    yield Measure(f"another flow with its bound, {size}", again, "s", 0.3)
+    side = best_of(partial(solve, solution.system, solution.known), repeats=3)
+    yield Measure(f"right-hand side, {size}", side, "s", 0.05)
+    z = _places(model)
+    each = best_of(partial(model.velocity, z), repeats=3) / z.size
+    yield Measure(f"velocity, {size}", 1e6 * each, "us", 5.0)
+
+
+def _places(model: FlowModel) -> ComplexArray:
+    """Points of a lattice over the walls that lie in the water, row by row."""
+    vertices = np.concatenate([ring.vertices for ring in model.rings])
+    x = np.linspace(vertices.real.min(), vertices.real.max(), SIDE)
+    y = np.linspace(vertices.imag.min(), vertices.imag.max(), SIDE)
+    z = (x + 1j * y[:, None]).ravel()
+    return np.asarray(z[model.wet(z)], dtype=np.complex128)

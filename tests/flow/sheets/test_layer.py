@@ -22,9 +22,9 @@ def test_mean_of_the_logarithm(x, y):
 
 def test_peak_is_never_below_the_layer():
     """Seven elements in a line: the sum over exact cells, and how much too high far elements may be."""
-    middle, half = 1j * np.arange(7.0), np.full(7, 0.5j)
+    middle, half = np.arange(7, dtype=np.complex128), np.full(7, 0.5, dtype=np.complex128)
     weights = np.random.default_rng(2).uniform(size=(7, CELL_WIDTHS.size))
-    places, size = np.array([0j, 0.5j, 4j]), 20.0
+    places, size = np.array([0j, 0.5 + 0j, 4 + 0j]), 20.0
     peak = layer_peak(places, (middle, half), (CELL_MIDDLES, CELL_WIDTHS), weights, size)
     exact = max(
         sum(

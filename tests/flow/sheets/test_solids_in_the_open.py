@@ -124,6 +124,21 @@ def test_polygon_is_a_pier_on_every_shore(name):
     assert np.abs(chords[:-1]).max() < 1e-12
 
 
+def test_polygon_beside_a_bank_is_a_pier():
+    """Schwarz's alternating method in 80-bit floats for a circle and its image."""
+    pier = Pier("p", 2 + 1.4j, 1.0, 0.4)
+    site: dict[str, Any] = {
+        "shore": StraightBank(0j, 1 + 0j),
+        "ambient": Ambient(1 + 0j),
+        "elements": (Source("t", -2 + 2j, 2.0),),
+    }
+    model = compile_layout(Layout(1.0, structures=(Outline("p", polygon(pier.at, 1.0), 0.4),), **site))
+    z = about(pier.at, 1.2, 60)
+    exact = Schwarz(Layout(1.0, structures=(pier,), **site)).velocity(z)
+    # corners of the polygon as above; the gap of 0.4 is a third of the radius and doubles the speeds
+    assert np.abs(model.velocity(z) - exact).max() < 5e-5
+
+
 @pytest.mark.parametrize("gap", [0.4, 0.1])
 def test_pier_beside_a_polygon_is_two_piers(gap):
     """Schwarz's alternating method in 80-bit floats for two circles, and one of them as a polygon."""

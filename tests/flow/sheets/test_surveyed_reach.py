@@ -83,6 +83,26 @@ def test_split_round_the_long_island(model):
     assert sum(shares) == pytest.approx(1.0, abs=2 * error + 2e-4)
 
 
+def test_every_section_passes_the_same_water(model):
+    """Flux through straight sections from bank to bank, above, below and across the islands' ways."""
+    outer = model.rings[0]
+    land = np.flatnonzero(outer.is_land)
+    feet = (outer.starts + 0.3 * (outer.ends - outer.starts))[land]
+    cuts = np.flatnonzero(~outer.is_land)
+    way = outer.starts[cuts[0]] - outer.starts[cuts[1]]  # from one cut line to the other
+    fluxes = []
+    for foot in feet[:: max(1, feet.size // 40)]:
+        over = feet[np.argsort(np.abs(((feet - foot) / way).real))]
+        sections = [(foot, at) for at in over[:12] if abs(at - foot) > 100.0]
+        for a, b in sections:
+            path = a + (b - a) * np.linspace(1e-6, 1.0 - 1e-6, 400)
+            if model.wet(path).all() and abs(((b - a) / way).imag) > 0.05:
+                fluxes.append(abs(model.chord(np.array([a]), np.array([b]))[0].imag))
+    whole = [flux for flux in fluxes if flux > 90.0]
+    assert len(whole) >= 3
+    assert whole == pytest.approx([100.0] * len(whole), abs=2.0 * model.bound.absolute)
+
+
 def test_second_question_costs_no_factorisation(model):
     misses = MEMO.misses
     elements = (Sink("works", -300 + 200j, 5.0), Source("outfall", -420 - 100j, 4.0))
