@@ -2,11 +2,16 @@
 
 import asyncio
 import logging
+import subprocess
+import sys
+from collections import Counter
 
 import orjson
 import pytest
 from starlette.testclient import TestClient
 
+from forebay.api.examples import RINGED
+from forebay.api.expense import Expense, Ledger, MemoState
 from forebay.api.limits import Limits
 from forebay.api.media import JSON
 from forebay.api.operation import Job
@@ -109,6 +114,56 @@ def test_metrics_count_by_route(ready_client):
     assert 'forebay_requests_total{method="POST",route="/v1/field/sample",status="200"}' in text
     assert "/never" not in text
     assert "forebay_request_seconds_bucket" in text
+
+
+def counted(client):
+    """Values of /metrics by their names with labels."""
+    lines = (line.rsplit(" ", 1) for line in client.get("/metrics").text.splitlines() if line[0] != "#")
+    return Counter({name: float(value) for name, value in lines})
+
+
+def test_metrics_count_pairs_wherever_they_are_worked_through(ready_client):
+    before = counted(ready_client)
+    ready_client.post(SAMPLE, json=a_sample())  # two points and one element
+    ready_client.post(SAMPLE, json=LENGTHY)  # 900 000 and one, in a worker
+    grown = counted(ready_client)
+    grown.subtract(before)
+    # checking a layout counts as some pairs for each element too
+    assert 900_002 <= grown['forebay_kernel_pairs_total{operation="sampleField"}'] < 902_000
+
+
+def test_metrics_count_what_memos_of_a_worker_save(ready_client):
+    basin = RINGED | {"tolerance": 1.25e-3}  # no other test solves to it
+    many = {"layout": basin, "at": {"grid": {"x": [10, 80], "nx": 800, "y": [20, 40], "ny": 700}}}
+    growth = []
+    for _ in range(2):
+        before = counted(ready_client)
+        assert ready_client.post(SAMPLE, json=many).status_code == 200
+        grown = counted(ready_client)
+        grown.subtract(before)
+        growth.append(grown)
+    first, again = growth
+    assert first['forebay_memo_misses_total{memo="reviews"}'] == 1
+    assert again['forebay_memo_misses_total{memo="reviews"}'] == 0
+    assert again['forebay_memo_hits_total{memo="reviews"}'] >= 1
+    assert counted(ready_client)["forebay_memo_bytes"] > 0
+
+
+def test_counters_of_workers_never_fall_and_the_memory_of_ended_ones_is_free():
+    ledger = Ledger()
+    start = ledger.memos()["walls"]
+    child = subprocess.Popen([sys.executable, "-c", "input()"], stdin=subprocess.PIPE)
+    with child:
+        ledger.note(Expense("a", 5, child.pid, {"walls": MemoState(3, 2, 100)}))
+        ledger.note(Expense("a", 7, child.pid, {"walls": MemoState(4, 2, 100)}))
+        assert ledger.pairs == {"a": 12}
+        # counters that have fallen are those of another process with the same id
+        ledger.note(Expense("b", 1, child.pid, {"walls": MemoState(1, 1, 50)}))
+        grown = [now - then for now, then in zip(ledger.memos()["walls"], start, strict=True)]
+        assert grown == [5, 3, 50]
+        child.kill()
+    grown = [now - then for now, then in zip(ledger.memos()["walls"], start, strict=True)]
+    assert grown == [5, 3, 0]
 
 
 @pytest.mark.parametrize("accept", ["text/plain", "application/openmetrics-text; version=1.0.0"])

@@ -5,6 +5,8 @@ from forebay.api.problems import Problem
 JSON = "application/json"
 CSV = "text/csv"
 SVG = "image/svg+xml"
+COLUMNS = "application/octet-stream"
+"""A line of JSON and raw columns after it, in bodies."""
 PNG = "image/png"
 HTML = "text/html"
 PDF = "application/pdf"
@@ -52,8 +54,11 @@ def _quality(media_type: str, ranges: list[tuple[str, float]]) -> float:
     return 0.0
 
 
-def require_json(content_type: str | None, content_encoding: str | None) -> None:
-    """Refuse a body that is not plain JSON in UTF-8 (a missing type counts as JSON)."""
+def body_type(content_type: str | None, content_encoding: str | None, readable: tuple[str, ...]) -> str:
+    """Media type of a body, one of the readable ones (a missing type counts as JSON).
+
+    Raises Problem unsupported-media-type for any other, for text not in UTF-8 and for compressed bodies.
+    """
     if content_encoding and content_encoding.strip().lower() != "identity":
         raise Problem(
             "unsupported-media-type",
@@ -64,9 +69,10 @@ def require_json(content_type: str | None, content_encoding: str | None) -> None
     charsets = [
         text.removeprefix("charset=").strip('"') for text in parameters if text.startswith("charset=")
     ]
-    if name != JSON or any(charset not in {"utf-8", "utf8", "us-ascii"} for charset in charsets):
+    if name not in readable or any(charset not in {"utf-8", "utf8", "us-ascii"} for charset in charsets):
         raise Problem(
             "unsupported-media-type",
-            "The body must be application/json in UTF-8",
-            headers={"Accept-Post": JSON},
+            f"The body must be {' or '.join(readable)}, text in UTF-8",
+            headers={"Accept-Post": ", ".join(readable)},
         )
+    return name

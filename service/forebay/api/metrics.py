@@ -2,11 +2,12 @@
 
 import logging
 import re
+from collections.abc import Iterator
 from time import perf_counter
 from typing import Any
 
 from prometheus_client import CollectorRegistry, Counter, Gauge, Histogram
-from prometheus_client.core import CounterMetricFamily
+from prometheus_client.core import CounterMetricFamily, GaugeMetricFamily, Metric
 from prometheus_client.registry import Collector
 from starlette.datastructures import Headers
 from starlette.types import ASGIApp, Message, Receive, Scope, Send
@@ -44,6 +45,7 @@ class Metrics:
         self.running = Gauge("forebay_requests_running", "Requests being answered", registry=self.registry)
         self._show_work(workshop)
         self.registry.register(EndedWorkers(workshop))
+        self.registry.register(Expenses(workshop))
 
     def _show_work(self, workshop: Workshop) -> None:
         """Gauges that look at the workshop when they are read."""
@@ -81,6 +83,38 @@ class EndedWorkers(Collector):
         for reason in ("deadline", "client", "memory", "lost"):
             family.add_metric((reason,), self._workshop.pool.ended[reason])
         return [family]
+
+
+class Expenses(Collector):
+    """What answers have cost, in this process and in workers; memos as of each worker's last answer."""
+
+    def __init__(self, workshop: Workshop) -> None:
+        self._workshop = workshop
+
+    @override
+    def collect(self) -> Iterator[Metric]:
+        """Pairs by operation, and how often each memo helped."""
+        pairs = CounterMetricFamily(
+            "forebay_kernel_pairs",
+            "Pairs of element and point of the answers, other work counted as pairs that take as long",
+            labels=("operation",),
+        )
+        for operation, count in self._workshop.ledger.pairs.items():
+            pairs.add_metric((operation,), count)
+        yield pairs
+        yield from self._memos()
+
+    def _memos(self) -> Iterator[Metric]:
+        labels = ("memo",)
+        hits = CounterMetricFamily("forebay_memo_hits", "Times that a memo held it", labels=labels)
+        misses = CounterMetricFamily("forebay_memo_misses", "Times that it did not", labels=labels)
+        size = GaugeMetricFamily("forebay_memo_bytes", "Memory of factorisations that are kept")
+        states = self._workshop.ledger.memos()
+        for name, state in states.items():
+            hits.add_metric((name,), state.hits)
+            misses.add_metric((name,), state.misses)
+        size.add_metric((), states["walls"].size)
+        yield from (hits, misses, size)
 
 
 class Measured:

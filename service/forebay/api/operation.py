@@ -13,7 +13,10 @@ from pydantic import ValidationError
 
 from forebay.api import envelope
 from forebay.api.encoders.envelope_json import ENVELOPE
+from forebay.api.expense import Expense
 from forebay.api.limits import Limits, Price
+from forebay.api.media import JSON
+from forebay.api.origins import at_origin
 from forebay.api.outcome import Answered, Encoder, Outcome, Reply
 from forebay.api.problems import Problem
 from forebay.api.reading import read_request
@@ -31,6 +34,7 @@ class Operation(Generic[R]):
     """A compute route: its names, its schemas, its computation, its price.
 
     compute : of a request and the media type asked for, or the limits if `is_about_limits`
+    readable : media types of bodies
     """
 
     operation_id: str
@@ -43,6 +47,7 @@ class Operation(Generic[R]):
     price: Callable[[R], Price]
     encoders: tuple[Encoder, ...] = (ENVELOPE,)
     is_about_limits: bool = False
+    readable: tuple[str, ...] = (JSON,)
 
     @property
     def tag(self) -> str:
@@ -67,6 +72,7 @@ async def nobody_leaves() -> None:
 class Job(NamedTuple):
     """One request to be answered.
 
+    content_type : media type of the body
     patience : seconds that its client is willing to wait, None if as long as the limits allow
     has_left : returns once the client has gone, and its answer is of no use
     """
@@ -74,6 +80,7 @@ class Job(NamedTuple):
     operation: Operation[Any]
     body: bytes
     media_type: str
+    content_type: str = JSON
     patience: float | None = None
     has_left: Callable[[], Awaitable[None]] = nobody_leaves
 
@@ -83,13 +90,19 @@ class Deferred(NamedTuple):
 
 
 def perform(
-    operation: Operation[Any], body: bytes, media_type: str, *, limits: Limits, allowance: int | None = None
+    operation: Operation[Any],
+    body: bytes,
+    media_type: str,
+    content_type: str = JSON,
+    *,
+    limits: Limits,
+    allowance: int | None = None,
 ) -> Reply | Problem | Deferred:
     """Answer of a body, the problem that stands in its way, or Deferred if its work exceeds `allowance`."""
-    started, system = perf_counter(), UnitSystem.SI
+    started, system, site = perf_counter(), UnitSystem.SI, None
     try:
-        request = read_request(operation.request, body)
-        system = request.unit_system
+        request = read_request(operation.request, body, content_type)
+        system, site = request.unit_system, getattr(request, "layout", None)
         price = operation.price(request)
         limits.check(price)
         if allowance is not None and (price.lengthy or price.work > allowance):
@@ -101,12 +114,13 @@ def perform(
     except ValidationError as error:
         return problem_of(error)
     except FlowError as error:
-        return from_flow(error, system)
+        return from_flow(at_origin(error, site, system), system)
     except Problem as problem:
         return problem
     times = {"parse": parsed - started, "compute": computed - parsed, "encode": perf_counter() - computed}
     timing = ", ".join(f"{name};dur={1e3 * seconds:.2f}" for name, seconds in times.items())
-    return reply._replace(headers={**reply.headers, "Server-Timing": timing})
+    expense = Expense.of(operation.operation_id, price.pairs + price.effort)
+    return reply._replace(headers={**reply.headers, "Server-Timing": timing}, expense=expense)
 
 
 def _encode(operation: Operation[Any], request: ComputeRequest, outcome: Outcome, media_type: str) -> Reply:

@@ -4,6 +4,7 @@ from collections.abc import Callable, Mapping
 from dataclasses import dataclass, field
 from typing import Any, NamedTuple
 
+from forebay.api.expense import Expense
 from forebay.api.schemas.common import ComputeRequest
 from forebay.api.warnings import Notice
 from forebay.flow.layout import Layout
@@ -52,11 +53,13 @@ class Reply(NamedTuple):
     """An answer in bytes.
 
     media_type : as sent, with its parameters
+    expense : what it has cost, None if nobody has counted it
     """
 
     media_type: str
     body: bytes
     headers: dict[str, str]
+    expense: Expense | None = None
 
 
 def always() -> bool:

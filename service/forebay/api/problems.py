@@ -35,6 +35,12 @@ HTTP_PROBLEMS = {
         "The body is not JSON",
         "The body is truncated, nested too deep, or not UTF-8 JSON. Send valid JSON.",
     ),
+    "malformed-columns": ProblemKind(
+        400,
+        "The body is not a line of JSON and columns",
+        "As application/octet-stream a body is one line of JSON, a line feed, all x and all y as float64, "
+        "little-endian. Send whole columns of equal length.",
+    ),
     "token-missing": ProblemKind(
         401,
         "A token is asked for",

@@ -8,6 +8,7 @@ from typing import TypeVar
 import anyio
 from starlette.requests import ClientDisconnect
 
+from forebay.api.expense import Ledger
 from forebay.api.limits import Limits, Tier
 from forebay.api.operation import Deferred, Job, perform
 from forebay.api.outcome import Reply
@@ -27,12 +28,14 @@ class Workshop:
     """Runs operations: short ones at once, long ones in worker processes with a deadline.
 
     waiting : computations given to worker processes and not yet back
+    ledger : what the answers have cost
     """
 
     def __init__(self, limits: Limits) -> None:
         self.limits = limits
         self.waiting = 0
         self.pool = WorkerPool(limits)
+        self.ledger = Ledger()
         self._limiter: anyio.CapacityLimiter | None = None
 
     async def run(self, job: Job) -> Reply | Problem:
@@ -40,7 +43,8 @@ class Workshop:
 
         Raises Problem busy, deadline-exceeded, memory-exceeded or worker-lost.
         """
-        attempt = partial(perform, job.operation, job.body, job.media_type, limits=self.limits)
+        given = (job.operation, job.body, job.media_type, job.content_type)
+        attempt = partial(perform, *given, limits=self.limits)
         reply: Reply | Problem | Deferred = Deferred()
         if len(job.body) <= Tier.INLINE.body:
             reply = attempt(allowance=Tier.INLINE.work)
@@ -48,6 +52,8 @@ class Workshop:
             reply = await self.in_thread(partial(attempt, allowance=Tier.THREAD.work))
         if isinstance(reply, Deferred):
             reply = await self.in_process(job)
+        if isinstance(reply, Reply) and reply.expense is not None:
+            self.ledger.note(reply.expense)
         return reply
 
     async def in_thread(self, work: Attempt) -> Reply | Problem | Deferred:
@@ -69,7 +75,13 @@ class Workshop:
         if self.waiting >= self.limits.workers + self.limits.queue:
             raise Problem("busy", "Every worker and the queue are full", headers={"Retry-After": RETRY_AFTER})
         allowed = self.deadline(job.patience) if deadline is None else deadline
-        arguments = (job.operation.operation_id, job.body, job.media_type, self.limits)
+        arguments = (
+            job.operation.operation_id,
+            job.body,
+            job.media_type,
+            job.content_type,
+            self.limits,
+        )
         self.waiting += 1
         try:
             async with asyncio.timeout(allowed):  # cancels the work, on which its process is killed

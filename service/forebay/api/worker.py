@@ -21,12 +21,14 @@ def start_worker(memory: int) -> None:
     gc.freeze()  # what was imported before stays; looking through it again frees nothing
 
 
-def run_operation(operation_id: str, body: bytes, media_type: str, limits: Limits) -> Reply | Problem:
+def run_operation(
+    operation_id: str, body: bytes, media_type: str, content_type: str, limits: Limits
+) -> Reply | Problem:
     """Answer of one operation, looked up by name."""
     from forebay.api.routers.registry import OPERATIONS  # noqa: PLC0415  (the registry imports this module)
 
     try:
-        reply = perform(OPERATIONS[operation_id], body, media_type, limits=limits)
+        reply = perform(OPERATIONS[operation_id], body, media_type, content_type, limits=limits)
     except MemoryError:
         os._exit(OUT_OF_MEMORY)
     if isinstance(reply, Deferred):

@@ -11,6 +11,7 @@ from forebay.api.encoders.csv_table import TABLE
 from forebay.api.encoders.envelope_json import ENVELOPE
 from forebay.api.encoders.npy import ARRAY
 from forebay.api.limits import Price
+from forebay.api.media import COLUMNS, JSON
 from forebay.api.operation import Operation
 from forebay.api.outcome import Outcome
 from forebay.api.review import readings_of, reviewed
@@ -83,13 +84,15 @@ SAMPLE = Operation(
         "`head_change` and `pressure_coefficient` are Bernoulli against the ambient speed. With "
         '`"model": "point-intake-3d"` sources and sinks that have an `elevation` are points between bed and '
         "surface, at places with heights: columns `z` and `w` are added. With "
-        "`Accept: text/csv` the columns come as a table."
+        "`Accept: text/csv` the columns come as a table. As `application/octet-stream` a body is the request "
+        "on one line of JSON without `at`, a line feed, then all x and all y as float64, little-endian."
     ),
     request=SampleRequest,
     result=FieldResult,
     compute=compute,
     price=price,
     encoders=(ENVELOPE, TABLE, ARRAY, STREAM, coverage(FieldResult)),
+    readable=(JSON, COLUMNS),
 )
 
 router = APIRouter()

@@ -10,7 +10,7 @@ from typing_extensions import override
 
 from forebay.api.entity_tag import REVALIDATED, entity_tag, is_known
 from forebay.api.examples import request_example
-from forebay.api.media import JSON, negotiate, require_json
+from forebay.api.media import COLUMNS, JSON, body_type, negotiate
 from forebay.api.operation import Job, Operation
 from forebay.api.prefer import patience_in
 from forebay.api.problems import MEDIA_TYPE, Problem
@@ -24,6 +24,12 @@ COMPUTE_STATUSES = (400, 401, 406, 408, 413, 415, 422, 429, 500, 503, 504)
 
 READ_STATUSES = (401, 406, 422, 500)
 """Statuses of the problems that a catalogue can answer with."""
+
+OF_COLUMNS = (
+    "The same request on one line of JSON without `at` (or with its `z` alone, one for all), a line feed, "
+    "then all x and all y as float64, little-endian"
+)
+"""What a body with raw columns holds."""
 
 REQUESTS: dict[str, type[ComputeRequest]] = {}
 """Request models that routes refer to, by their name in the OpenAPI document."""
@@ -46,11 +52,12 @@ def serve(router: APIRouter, operation: Operation[Any]) -> None:
 
     async def handler(request: Request) -> Response:
         media_type = negotiate(request.headers.get("accept"), operation.media_types)
-        require_json(request.headers.get("content-type"), request.headers.get("content-encoding"))
-        tag = entity_tag(operation.path, media_type, await request.body())
+        headers = request.headers
+        given = body_type(headers.get("content-type"), headers.get("content-encoding"), operation.readable)
+        tag = entity_tag(operation.path, media_type, given, await request.body())
         if is_known(tag, request.headers.get("if-none-match")):
             return Response(status_code=304, headers={"ETag": tag, **REVALIDATED})
-        return await answered(request, operation, media_type, tag)
+        return await answered(request, Job(operation, await request.body(), media_type, given), tag)
 
     router.add_api_route(
         operation.path,
@@ -67,7 +74,7 @@ def serve(router: APIRouter, operation: Operation[Any]) -> None:
     )
 
 
-async def answered(request: Request, operation: Operation[Any], media_type: str, tag: str) -> Response:
+async def answered(request: Request, job: Job, tag: str) -> Response:
     """Answer of a request, which stops being computed when its client leaves."""
 
     async def has_left() -> None:
@@ -76,8 +83,7 @@ async def answered(request: Request, operation: Operation[Any], media_type: str,
 
     workshop: Workshop = request.app.state.workshop
     patience = patience_in(request.headers.get("prefer"))
-    job = Job(operation, await request.body(), media_type, patience, has_left)
-    reply = await workshop.run(job)
+    reply = await workshop.run(job._replace(patience=patience, has_left=has_left))
     applied = {} if patience is None else {"Preference-Applied": f"wait={int(workshop.deadline(patience))}"}
     if isinstance(reply, Problem):
         raise reply
@@ -90,7 +96,10 @@ def body_of(operation: Operation[Any]) -> dict[str, Any]:
     REQUESTS[operation.request.__name__] = operation.request
     reference = {"$ref": f"#/components/schemas/{operation.request.__name__}"}
     example = request_example(operation.operation_id)
-    return {"required": True, "content": {JSON: {"schema": reference, "example": example}}}
+    content: dict[str, Any] = {JSON: {"schema": reference, "example": example}}
+    if COLUMNS in operation.readable:
+        content[COLUMNS] = {"schema": {"type": "string", "format": "binary", "description": OF_COLUMNS}}
+    return {"required": True, "content": content}
 
 
 def answer_of(operation: Operation[Any]) -> dict[str, Any]:

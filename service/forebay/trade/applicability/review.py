@@ -99,6 +99,12 @@ def evaluate(site: Site) -> tuple[ApplicabilityWarning, ...]:
     return tuple(sorted(raised, key=lambda warning: _ORDER.index(warning.severity)))
 
 
+def remembered_reviews() -> tuple[int, int]:
+    """How often what the layout alone raises was remembered, and how often evaluated, since the start."""
+    known = _of_layout.cache_info()
+    return known.hits, known.misses
+
+
 class AnswerNeededError(Exception):
     """A rule has asked for the answer at hand, where only the layout is given."""
 
