@@ -6,6 +6,7 @@ import sys
 from collections.abc import Sequence
 from pathlib import Path
 
+from forebay.kernel_cache import settle_kernel_cache
 from forebay.settings import SettingsError
 
 FAILURE = 1
@@ -21,6 +22,8 @@ def main(arguments: Sequence[str] | None = None) -> int:
     chosen = parser.parse_args(arguments)
     run = {"serve": serve, "demo": demo, "assess": assess, "openapi": openapi}[chosen.command]
     try:
+        if note := settle_kernel_cache():
+            print(f"forebay: {note}", file=sys.stderr)
         return run(chosen)
     except SettingsError as error:
         print(f"forebay: {error}", file=sys.stderr)
