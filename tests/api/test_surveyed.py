@@ -4,6 +4,10 @@ import json
 
 import pytest
 
+from forebay.api.origins import at_origin
+from forebay.api.schemas.layout import Layout
+from forebay.api.units import UnitSystem
+from forebay.flow.errors import OverlappingStructuresError, UnbalancedDischargeError
 from support.http import assert_problem, pointers
 from support.tree import ROOT
 
@@ -164,3 +168,45 @@ def test_outline_is_said_in_one_way(ready_client, outline, pointer):
     request = {"layout": layout(structures=[{"kind": "outline", "name": "o"} | outline])}
     problem = assert_problem(ready_client.post("/v1/layout/review", json=request), 422, "invalid-request")
     assert pointers(problem) == {pointer}
+
+
+QUAY = {"kind": "outline", "name": "quay", "points": [[20, 0], [40, 0], [40, 5], [20, 5]]}
+
+
+def test_error_of_the_flow_names_the_structure_as_it_was_written(ready_client):
+    # the quay becomes land, and the flow's first structure is the request's second
+    piers = [
+        {"kind": "pier", "name": name, "at": [100, y], "radius": 5} for name, y in (("a", 20), ("b", 28))
+    ]
+    request = {"layout": layout(structures=[QUAY, *piers])}
+    problem = assert_problem(
+        ready_client.post("/v1/layout/review", json=request), 422, "overlapping-structures"
+    )
+    assert pointers(problem) == {"#/layout/structures/2/at"}
+    assert problem["detail"] == "the pier touches structures/1"
+
+
+def test_warning_names_the_structure_as_it_was_written(ready_client):
+    pier = {"kind": "pier", "name": "pile", "at": [100, 25], "radius": 2}
+    request = {"layout": layout(structures=[QUAY, pier], bed_friction=0.005)}
+    warnings = ready_client.post("/v1/layout/review", json=request).json()["warnings"]
+    about = {w["pointer"] for w in warnings if w["code"] == "pier-lee"}
+    assert about == {"#/layout/structures/1"}
+
+
+def test_error_of_the_conversion_keeps_its_number(ready_client):
+    request = {"layout": layout(structures=[QUAY, BOX | {"name": "quay"}])}
+    problem = assert_problem(ready_client.post("/v1/layout/review", json=request), 422, "duplicate-name")
+    assert pointers(problem) == {"#/layout/structures/1/name"}
+
+
+def test_error_about_an_island_leads_to_its_ring():
+    """Islands of the flow are numbered without those that are dropped; the request has them as rings."""
+    hole, dot = [[50, 20], [60, 20], [60, 30], [50, 30]], [[100, 25], [100, 25], [100, 25]]
+    water = {"type": "Polygon", "coordinates": [RECTANGLE["water"]["coordinates"][0], dot, hole]}
+    site = Layout.model_validate(layout(shore=RECTANGLE | {"water": water}))
+    site.converted(UnitSystem.SI)
+    error = at_origin(OverlappingStructuresError("touch", ("shore", "islands", 0)), site, UnitSystem.SI)
+    assert error.path == ("shore", "water", "coordinates", 2)
+    error = at_origin(UnbalancedDischargeError("two", ("shore", "edges", 1)), site, UnitSystem.SI)
+    assert error.path == ("shore", "open_edges", 1)

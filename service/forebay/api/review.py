@@ -6,6 +6,7 @@ from typing import Any
 import numpy as np
 
 from forebay.api.boundary import written_boundary
+from forebay.api.origins import original_path
 from forebay.api.outcome import Outcome
 from forebay.api.schemas.layout import Layout, LayoutRequest
 from forebay.api.units import UnitSystem
@@ -37,7 +38,10 @@ def reviewed_site(
     if readings is not None:
         bound = bound_boundary(layout)
         readings = replace(readings, boundary_bound=None if bound is None else bound.relative)
-    notices = review_layout(layout, readings, data=data)
+    notices = tuple(
+        replace(notice, path=original_path(notice.path, site, units)) if notice.in_layout else notice
+        for notice in review_layout(layout, readings, data=data)
+    )
     walls = written_boundary(site, units, layout, bound)
     return Outcome(result, layout, data, notices, boundary=walls)
 

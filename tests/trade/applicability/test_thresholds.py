@@ -432,6 +432,21 @@ class TestSpeeds:
         at = site(Layout(DEPTH, shore=Channel(0j, 1 + 0j, 20.0), elements=(Sink("a", 10j, 80.0),)))
         assert at.far_speeds == {"upstream": 0.5, "downstream": 0.5}
 
+    def test_surveyed_water_moves_through_its_open_edges(self):
+        # 60 m3/s through 20 m by 4 m; 100 m on, where the water is 30 m wide, 80 m3/s with the outfall's 20
+        outer = (0j, 100 - 5j, 100 + 25j, 20j)
+        square = EdgeProfile.EQUIPOTENTIAL
+        edges = (OpenEdge("upper", 3, 1, 60.0, square), OpenEdge("lower", 1, 1, None, square))
+        shore = Surveyed(outer, (), edges)
+        at = site(Layout(DEPTH, shore=shore, elements=(Source("a", 50 + 10j, 20.0), Sink("b", 9j + 9, 1e-9))))
+        assert at.far_speeds == pytest.approx({"upper": 0.75, "lower": 80 / 120}, rel=1e-9)
+        assert raised("ambient-zero", at) == []
+        still = replace(shore, edges=(replace(edges[0], discharge=0.0), replace(edges[1], discharge=0.0)))
+        assert (
+            len(raised("ambient-zero", site(Layout(DEPTH, shore=still, elements=(Sink("b", 9j, 1.0),))))) == 1
+        )
+        assert site(Layout(DEPTH, shore=replace(shore, edges=()))).current == 0.0
+
     def test_dead_end_is_fed_through_its_open_end(self):
         at = site(Layout(DEPTH, shore=DeadEnd(0j, 1 + 0j, 20.0), elements=(Sink("a", 5 + 10j, 80.0),)))
         assert at.far_speeds == {"open-end": 1.0}

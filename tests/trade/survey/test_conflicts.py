@@ -74,8 +74,8 @@ def test_what_stands_free_is_let_be(things):
         ((moved(QUAY, 330 + 35j),), ElementOnLandError, ("structures", 0)),  # all of it on the island
         ((Pier("p", 100 + 1j, 2.0),), OverlappingStructuresError, ("structures", 0, "radius")),
         ((moved(QUAY, -5 + 40j),), OverlappingStructuresError, ("structures", 0)),  # across an open edge
-        ((Sink("eyot", 100 + 40j, 1.0),), DuplicateNameError, ("shore", "islands", 0, "name")),
-        ((Sink("upstream", 100 + 40j, 1.0),), DuplicateNameError, ("shore", "open_edges", 0, "name")),
+        ((Sink("eyot", 100 + 40j, 1.0),), DuplicateNameError, ("elements", 0, "name")),
+        ((Sink("upstream", 100 + 40j, 1.0),), DuplicateNameError, ("elements", 0, "name")),
     ],
 )
 def test_conflict_with_surveyed_water_is_refused(things, error, path):

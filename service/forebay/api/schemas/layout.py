@@ -24,7 +24,7 @@ from forebay.api.units import UnitSystem
 from forebay.flow import layout as flow
 from forebay.flow.placement import places
 from forebay.trade.applicability.site import SiteData
-from forebay.trade.survey.attachments import attached, with_attached
+from forebay.trade.survey.attachments import Attached, attached, with_attached
 from forebay.trade.survey.conflicts import check_conflicts
 from forebay.trade.survey.errors import UnsuitableGridError
 from forebay.trade.survey.grids import MapGrid, projected_grid, scale_error
@@ -135,6 +135,10 @@ class Layout(Conditions):
             self._known[units] = self.to_flow(units), self.site_data(units)
         return self._known[units]
 
+    def is_converted(self, units: UnitSystem) -> bool:
+        """Whether `converted` has succeeded."""
+        return units in self._known
+
     def to_flow(self, units: UnitSystem) -> flow.Layout:
         """Layout in SI, with complex positions.
 
@@ -199,9 +203,16 @@ class Layout(Conditions):
         for index, structure in enumerate(self.structures):
             if isinstance(structure, Outline):
                 changes += structure.traced(units, ("structures", index))[1]
-        if water is not None:
-            changes += attached(water.shore, tuple(self._flow_structures(units))).changes
+        changes += () if water is None else self._attached(water, units).changes
         return tuple(changes)
+
+    def merged(self, units: UnitSystem) -> tuple[int, ...]:
+        """Numbers of the structures that became part of surveyed land."""
+        water = self.surveyed(units)
+        return () if water is None else self._attached(water, units).merged
+
+    def _attached(self, water: SurveyedWater, units: UnitSystem) -> Attached:
+        return attached(water.shore, tuple(self._flow_structures(units)))
 
     def site_data(self, units: UnitSystem) -> SiteData:
         """What is known of the site beside its flow, in SI.

@@ -3,7 +3,7 @@
 import math
 from collections.abc import Iterator
 
-from forebay.flow.layout import LineSink, LineSource, Vortex
+from forebay.flow.layout import LineSink, LineSource, Surveyed, Vortex
 from forebay.trade.applicability.site import Site
 from forebay.trade.applicability.warning import ApplicabilityWarning, Severity, WarningKind
 
@@ -36,7 +36,7 @@ AMBIENT_ZERO = WarningKind(
     code="ambient-zero",
     severity=Severity.NOTE,
     meaning="without a current a capture zone has no finite width: in time an intake draws from everywhere",
-    threshold="ambient velocity zero, and an intake",
+    threshold="ambient velocity zero, no flow through open edges, and an intake",
     formula="width Q / (h U) for U -> 0",
     source="sink in a uniform current (Bear 1979, Hydraulics of Groundwater; own check)",
     unit="m/s",
@@ -84,7 +84,8 @@ def rotational_field(site: Site) -> Iterator[ApplicabilityWarning]:
 
 def ambient_zero(site: Site) -> Iterator[ApplicabilityWarning]:
     """Intakes without a current."""
-    if site.layout.ambient.velocity == 0j and any(site.intakes()):
+    driven = isinstance(site.layout.shore, Surveyed) and site.current > 0.0
+    if site.layout.ambient.velocity == 0j and not driven and any(site.intakes()):
         yield AMBIENT_ZERO.raised(
             "There is no ambient current: the capture zone of an intake has no finite width.",
             ("ambient", "velocity"),

@@ -9,6 +9,7 @@ from functools import cached_property
 import numpy as np
 
 from forebay.flow.arrays import ComplexArray, FloatArray
+from forebay.flow.ends import ends_of as far_ends
 from forebay.flow.errors import Path
 from forebay.flow.layout import (
     Channel,
@@ -21,6 +22,7 @@ from forebay.flow.layout import (
     Pier,
     Sink,
     Source,
+    Surveyed,
     Vortex,
     outflow,
 )
@@ -165,7 +167,7 @@ class Site:
 
     @property
     def far_speeds(self) -> dict[str, float]:
-        """Speed [m/s] at each far end by its name, by continuity in a channel."""
+        """Speed [m/s] at each far end by its name, by continuity in a channel and through open edges."""
         layout, ambient = self.layout, abs(self.layout.ambient.velocity)
         match layout.shore:
             case Channel(width=width):
@@ -175,6 +177,8 @@ class Site:
                 return {"upstream": ambient, "downstream": abs(ambient + gain)}
             case DeadEnd(width=width):
                 return {"open-end": abs(self.net_outflow) / (layout.depth * width)}
+            case Surveyed(edges=edges) if edges:
+                return {end.name: end.speed for end in far_ends(layout)}
             case _:
                 return {"ambient": ambient}
 

@@ -55,7 +55,7 @@ def check_conflicts(layout: Layout) -> None:
     ElementInStructureError : an element lies inside an outline, or a line crosses it
     ElementOnLandError : an element, pier or outline lies outside the surveyed water
     ElementMisplacedError : a vortex or doublet stands on a bank, anything on an open edge
-    DuplicateNameError : an open edge or island is called like something else
+    DuplicateNameError : an open edge, element or structure is called like an island or another
     """
     bodies = [_body(structure, ("structures", k)) for k, structure in enumerate(layout.structures)]
     outlines = [body for body in bodies if body.radius == 0.0]
@@ -124,12 +124,15 @@ def _step(element: Element) -> str:
 
 
 def _check_names(layout: Layout, shore: Surveyed) -> None:
-    taken = {thing.name for thing in (*layout.elements, *layout.structures)}
-    named = [(("open_edges", index), edge.name) for index, edge in enumerate(shore.edges)]
-    named += [(("islands", index), island.name) for index, island in enumerate(shore.islands)]
+    taken = {island.name for island in shore.islands}
+    named: list[tuple[Path, str]] = [
+        (("shore", "open_edges", index), edge.name) for index, edge in enumerate(shore.edges)
+    ]
+    named += [(("elements", index), element.name) for index, element in enumerate(layout.elements)]
+    named += [(("structures", index), solid.name) for index, solid in enumerate(layout.structures)]
     for path, name in named:
         if name in taken:
-            raise DuplicateNameError("something else has this name", ("shore", *path, "name"))
+            raise DuplicateNameError("something else has this name", (*path, "name"))
         taken.add(name)
 
 

@@ -6,7 +6,7 @@ import numpy as np
 import shapely
 
 from forebay.flow.arrays import ComplexArray
-from forebay.flow.errors import Path
+from forebay.flow.errors import DuplicateNameError, Path
 from forebay.flow.layout import Island
 from forebay.trade.survey.errors import IslandError, UnknownIslandError
 from forebay.trade.survey.rings import Ring, pairs
@@ -79,6 +79,7 @@ def named_islands(
     Raises
     ------
     UnknownIslandError : a place lies in no island, or in one that is named already
+    DuplicateNameError : a name is that of another island, whose number may have made it
     """
     named: dict[int, IslandSurvey] = {}
     for index, survey in enumerate(surveys):
@@ -89,8 +90,17 @@ def named_islands(
         if number in named:
             raise UnknownIslandError("the island there has a name already", (*path, index, "at"))
         named[number] = survey
+    unnamed = {f"island {ring.path[-1]}" for number, ring in enumerate(rings) if number not in named}
+    _require_own_names(surveys, unnamed, path)
     islands = []
     for number, ring in enumerate(rings):
         survey = named.get(number, IslandSurvey(f"island {ring.path[-1]}", 0j))
         islands.append(Island(survey.name, tuple(ring.points.tolist()), survey.circulation))
     return tuple(islands)
+
+
+def _require_own_names(surveys: tuple[IslandSurvey, ...], taken: set[str], path: Path) -> None:
+    for index, survey in enumerate(surveys):
+        if survey.name in taken:
+            raise DuplicateNameError("another island has this name", (*path, index, "name"))
+        taken.add(survey.name)

@@ -78,7 +78,7 @@ class SurveyedWater:
     shore : rings in the layout's x, y [m];  grid : the grid of these, None for a local plan
     scale_error : largest error of lengths in it [-], None for a local plan
     changes : what was mended, moved and left out;  area : of the water [m2]
-    given, vertices : number of vertices before and after
+    given, vertices : number of vertices before and after;  island_paths : where each island's ring is given
     """
 
     shore: Surveyed
@@ -88,6 +88,7 @@ class SurveyedWater:
     area: float
     given: int
     vertices: int
+    island_paths: tuple[Path, ...]
 
 
 @lru_cache(maxsize=32)
@@ -117,7 +118,8 @@ def surveyed_water(survey: Survey) -> SurveyedWater:
     islands = named_islands(rings[1:], survey.islands, ISLANDS)
     shore = Surveyed(tuple(rings[0].points.tolist()), islands, edges)
     area = sum(ring.signed_area for ring in rings)
-    return SurveyedWater(shore, grid, error, changes, area, given, vertices)
+    paths = tuple(ring.path for ring in rings[1:])
+    return SurveyedWater(shore, grid, error, changes, area, given, vertices, paths)
 
 
 def _too_many(asked: int, limit: int) -> TooLargeError:
