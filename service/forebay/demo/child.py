@@ -1,6 +1,7 @@
 """The service as a child process: a free port, a log, readiness, a clean end."""
 
 import json
+import os
 import socket
 import subprocess
 import sys
@@ -22,6 +23,9 @@ READY = "ready"
 FAILED = "failed"
 """Word by which /readyz says that waiting is of no use."""
 
+PATIENCE = {"FOREBAY_DEADLINE": "600"}
+"""Settings of the child unless the environment has others: on a busy machine an answer may take long."""
+
 STOP = 15.0
 """Longest wait for the end after a polite signal [s]."""
 
@@ -41,7 +45,9 @@ class Service:
     def __enter__(self) -> Self:
         with self.log.open("wb") as sink:
             command = [sys.executable, "-m", "forebay", "serve", "--host", LOOPBACK, "--port", str(self.port)]
-            self.process = subprocess.Popen(command, stdout=sink, stderr=subprocess.STDOUT)  # noqa: S603
+            self.process = subprocess.Popen(  # noqa: S603
+                command, stdout=sink, stderr=subprocess.STDOUT, env=PATIENCE | os.environ
+            )
         try:
             self._await_readiness()
         except BaseException:
