@@ -178,8 +178,8 @@ def test_the_paper_says_what_it_is(paper):
 
 def test_the_paper_brings_its_own_faces(paper):
     text = b" ".join(page_fonts(paper))
-    assert b"STIX" in text
-    assert b"DejaVu" in text
+    assert b"Forebay-Text" in text
+    assert b"Forebay-Label" in text
 
 
 def page_fonts(paper):
