@@ -4,7 +4,8 @@ from html import escape
 
 import pytest
 
-from forebay.api.problems import catalogue
+from forebay.api.cures import CURES
+from forebay.api.problems import catalogue, flow_errors
 from support.http import assert_problem
 
 
@@ -74,12 +75,17 @@ def test_every_problem_is_explained(client, code):
         "type": f"/problems/{code}",
         "title": kind.title,
         "status": kind.status,
-        "explanation": kind.explanation,
+        "cause": kind.cause,
+        "cure": kind.cure,
     }
     page = client.get(f"/problems/{code}", headers={"Accept": "text/html"})
     assert page.headers["content-type"].startswith("text/html")
-    assert escape(kind.title) in page.text
+    assert all(escape(text) in page.text for text in (kind.title, kind.cause, kind.cure))
     assert "{" not in page.text
+
+
+def test_each_error_of_a_request_has_a_cure_and_no_other():
+    assert set(CURES) == set(flow_errors())
 
 
 def test_unknown_problem(client):

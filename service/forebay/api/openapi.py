@@ -172,7 +172,7 @@ def _name_problems(responses: dict[str, Any]) -> None:
 
 def _example(code: str, kind: ProblemKind) -> dict[str, Any]:
     """A problem of this kind as it arrives."""
-    problem = Problem(code, kind.explanation)
+    problem = Problem(code, kind.cause)
     if code == "invalid-request":
         errors = ({"pointer": "#/layout/depth", "detail": "Input should be greater than or equal to 0.001"},)
         problem = Problem(code, "1 error in the request", errors=errors)

@@ -7,6 +7,7 @@ from typing import Any, NamedTuple
 
 from typing_extensions import override
 
+from forebay.api.cures import CURES
 from forebay.flow.errors import FlowError, Path
 
 MEDIA_TYPE = "application/problem+json"
@@ -22,106 +23,137 @@ API_NAMES = {"start": "from", "end": "to", "interior_angle": "interior_angle_deg
 
 
 class ProblemKind(NamedTuple):
-    """One kind of problem: status, title, and what a client can do about it."""
+    """One kind of problem: status, title, what caused it, and what a client can do about it."""
 
     status: int
     title: str
-    explanation: str
+    cause: str
+    cure: str
 
 
 HTTP_PROBLEMS = {
     "malformed-json": ProblemKind(
         400,
         "The body is not JSON",
-        "The body is truncated, nested too deep, or not UTF-8 JSON. Send valid JSON.",
+        "The body is truncated, nested too deep, or not UTF-8 JSON.",
+        "Send valid JSON; `detail` says where it ends.",
     ),
     "malformed-columns": ProblemKind(
         400,
         "The body is not a line of JSON and columns",
         "As application/octet-stream a body is one line of JSON, a line feed, all x and all y as float64, "
-        "little-endian. Send whole columns of equal length.",
+        "little-endian; this one is not.",
+        "Send whole columns of equal length after the line, or application/json.",
     ),
     "token-missing": ProblemKind(
         401,
         "A token is asked for",
-        "Send `Authorization: Bearer` with one of the service's tokens; ask those who run it for one.",
+        "The service has been given tokens, and the request carries none of them.",
+        "Send `Authorization: Bearer` with one of the tokens; ask those who run the service for one.",
     ),
     "not-found": ProblemKind(
-        404, "No such resource", "The address names nothing here; /openapi.json lists every route."
+        404,
+        "No such resource",
+        "The address names nothing here.",
+        "Take an address from /openapi.json, which lists every route.",
     ),
     "method-not-allowed": ProblemKind(
         405,
         "Method not allowed",
-        "The route exists but not with this method; the Allow header lists those it has.",
+        "The route exists but not with this method.",
+        "Use one of the methods in the Allow header.",
     ),
     "not-acceptable": ProblemKind(
         406,
         "No acceptable media type",
-        "Accept asks for nothing that this route can answer; `offered` lists it.",
+        "Accept asks for nothing that this route can answer.",
+        "Ask for one of the media types in `offered`, or for any by leaving Accept out.",
     ),
     "body-timeout": ProblemKind(
-        408, "The body stopped coming", "The rest of the body did not come in time. Send the request again."
+        408,
+        "The body stopped coming",
+        "The rest of the body did not come in time.",
+        "Send the request again.",
     ),
     "body-too-large": ProblemKind(
-        413, "The body is too large", "The body exceeds the limit in bytes that GET /v1/limits publishes."
+        413,
+        "The body is too large",
+        "The body exceeds the limit in bytes that GET /v1/limits publishes.",
+        "Ask for less at a time, or send long columns as application/octet-stream.",
     ),
     "unsupported-media-type": ProblemKind(
-        415, "Unsupported media type", "Send application/json in UTF-8, without Content-Encoding."
+        415,
+        "Unsupported media type",
+        "The route does not read bodies of this type, in this encoding, or compressed.",
+        "Send application/json in UTF-8, without Content-Encoding; Accept-Post lists what else is read.",
     ),
     "invalid-request": ProblemKind(
         422,
         "The request does not fit its schema",
-        "A field is missing, unknown, of the wrong type or out of its bounds; `errors` points at each.",
+        "A field is missing, unknown, of the wrong type or out of its bounds.",
+        "Correct what each of `errors` points at; /openapi.json has the schema.",
     ),
     "memory-exceeded": ProblemKind(
         422,
         "The computation needs too much memory",
-        "The worker met the limit `worker_memory` of GET /v1/limits and was replaced. Ask for less.",
+        "The worker met the limit `worker_memory` of GET /v1/limits and was replaced.",
+        "Ask for fewer points or columns at a time.",
     ),
     "too-many-requests": ProblemKind(
         429,
         "Too many computations at a time",
-        "As many as one token may have are running. Wait for one to end, or retry after Retry-After.",
+        "As many computations as one token may have are running.",
+        "Wait for one to end, or retry after Retry-After.",
     ),
     "internal-error": ProblemKind(
         500,
         "Internal error",
-        "The service failed. Nothing in the request needs to change; report the request id.",
+        "The service failed. Nothing in the request needs to change.",
+        "Report the request id to those who run the service: it identifies the log entry.",
     ),
     "busy": ProblemKind(
-        503, "The service is busy", "Every worker and the queue are full. Retry after Retry-After."
+        503, "The service is busy", "Every worker and the queue are full.", "Retry after Retry-After."
     ),
     "not-ready": ProblemKind(
         503,
         "The service is not ready",
-        "Kernels are being prepared, no worker answers, or the service stops. Retry after Retry-After.",
+        "Kernels are being prepared, no worker answers, or the service stops.",
+        "Retry after Retry-After.",
     ),
     "worker-lost": ProblemKind(
         503,
         "The worker process was lost",
-        "The process of the computation ended from outside, twice. Retry after Retry-After.",
+        "The process of the computation ended from outside, twice.",
+        "Retry after Retry-After.",
     ),
     "deadline-exceeded": ProblemKind(
         504,
         "The computation took too long",
         "The work was stopped at the deadline of GET /v1/limits or of `Prefer: wait`, counted from the "
-        "request. Ask for less, or POST /v1/estimate first.",
+        "request.",
+        "Ask for less, or POST /v1/estimate first.",
     ),
 }
 """Problems of the HTTP layer itself, by code."""
 
 PROXY_PROBLEMS = {
     "malformed-request": ProblemKind(
-        400, "The request is not HTTP", "The request line or a header cannot be read. Send HTTP/1.1."
+        400, "The request is not HTTP", "The request line or a header cannot be read.", "Send HTTP/1.1."
     ),
     "address-too-long": ProblemKind(
-        414, "The address is too long", "Send what you ask for in the body of a POST, not in the address."
+        414,
+        "The address is too long",
+        "The request line exceeds what is read.",
+        "Send what you ask for in the body of a POST, not in the address.",
     ),
     "headers-too-large": ProblemKind(
-        431, "The headers are too large", "Send fewer and shorter headers; cookies mean nothing here."
+        431,
+        "The headers are too large",
+        "One header, or all together, exceed what is read.",
+        "Send fewer and shorter headers; cookies mean nothing here.",
     ),
     "unreachable": ProblemKind(
-        502, "The service cannot be reached", "No replica answers the proxy. Retry after Retry-After."
+        502, "The service cannot be reached", "No replica answers the proxy.", "Retry after Retry-After."
     ),
 }
 """Problems that only a reverse proxy in front of the service answers with, by code."""
@@ -143,7 +175,7 @@ def flow_errors(root: type[FlowError] = FlowError) -> dict[str, type[FlowError]]
 def catalogue() -> dict[str, ProblemKind]:
     """Every kind of problem this service answers with, by code."""
     flow = {
-        code: ProblemKind(FLOW_STATUS, kind.title, " ".join((kind.__doc__ or "").split()))
+        code: ProblemKind(FLOW_STATUS, kind.title, " ".join((kind.__doc__ or "").split()), CURES[code])
         for code, kind in flow_errors().items()
     }
     return HTTP_PROBLEMS | PROXY_PROBLEMS | flow
@@ -222,7 +254,7 @@ def from_status(status: int, headers: Mapping[str, str] | None = None) -> Proble
     code = codes.get(
         status, "malformed-json" if status < HTTPStatus.INTERNAL_SERVER_ERROR else "internal-error"
     )
-    return Problem(code, HTTP_PROBLEMS[code].explanation, headers=_all_allowed(headers or NOTHING))
+    return Problem(code, HTTP_PROBLEMS[code].cause, headers=_all_allowed(headers or NOTHING))
 
 
 def _all_allowed(headers: Mapping[str, str]) -> dict[str, str]:

@@ -139,7 +139,8 @@ def explanation(code: str, media_type: str) -> Response:
             "code": code,
             "title": kind.title,
             "status": str(kind.status),
-            "explanation": kind.explanation,
+            "cause": kind.cause,
+            "cure": kind.cure,
         }
         for name, value in facts.items():
             text = text.replace("{" + name + "}", escape(value))
@@ -148,6 +149,7 @@ def explanation(code: str, media_type: str) -> Response:
         "type": f"/problems/{code}",
         "title": kind.title,
         "status": kind.status,
-        "explanation": kind.explanation,
+        "cause": kind.cause,
+        "cure": kind.cure,
     }
     return Response(orjson.dumps(document), media_type=JSON)

@@ -160,4 +160,5 @@ class ProblemExplanation(Answer):
     type: Annotated[str, Field(examples=["/problems/too-large"])]
     title: str
     status: Annotated[int, Field(examples=[422], json_schema_extra={"unit": "1"})]
-    explanation: str
+    cause: Annotated[str, Field(description="Why it arises")]
+    cure: Annotated[str, Field(description="What a client can do about it")]
