@@ -3,8 +3,11 @@
 import math
 from collections.abc import Iterator
 
+import numpy as np
+
+from forebay.flow.arrays import ComplexArray
 from forebay.flow.layout import LineSource, Source
-from forebay.trade.applicability.geometry import distance_to, ends_of
+from forebay.trade.applicability.geometry import ends_of
 from forebay.trade.applicability.site import PortShape, Site
 from forebay.trade.applicability.warning import ApplicabilityWarning, Severity, WarningKind
 
@@ -112,5 +115,13 @@ def _nearest(site: Site, element: Source | LineSource) -> tuple[float, str] | No
     near = [(distance, repr(name)) for distance, name in filter(None, found)]
     points = site.readings.points
     if points is not None and points.size > 0:
-        near.append((min(distance_to(element, complex(z)) for z in points.ravel()), "a point of the answer"))
+        near.append((_least_distance(element, points.ravel()), "a point of the answer"))
     return min(near, default=None)
+
+
+def _least_distance(element: Source | LineSource, places: ComplexArray) -> float:
+    """Distance from an outfall to the nearest of places, shape (n,) [m]."""
+    start, end = ends_of(element)[0], ends_of(element)[-1]
+    chord = end - start
+    share = np.clip(((places - start) * chord.conjugate()).real / abs(chord) ** 2, 0.0, 1.0) if chord else 0.0
+    return float(np.min(np.abs(places - start - share * chord)))
