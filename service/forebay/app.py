@@ -8,6 +8,7 @@ from typing import Any
 import orjson
 from fastapi import FastAPI, Request
 from fastapi.exceptions import RequestValidationError
+from fastapi.telemetry import TelemetryConfig
 from starlette.exceptions import HTTPException
 from starlette.responses import Response
 from typing_extensions import override
@@ -27,6 +28,15 @@ from forebay.api.routers.registry import OPERATIONS, ROUTERS
 from forebay.api.validation import problem_of_query
 from forebay.api.work import Workshop
 from forebay.settings import Settings
+
+SILENT: TelemetryConfig = {
+    "tracing": False,
+    "metrics": False,
+    "logs": False,
+    "operation_spans": False,
+    "auto_configure": False,
+}
+"""Nothing leaves but answers, whatever the environment says; /metrics and the log can be read."""
 
 
 class Application(FastAPI):
@@ -57,6 +67,7 @@ def create_app(settings: Settings | None = None) -> Application:
         openapi_url=None,
         redirect_slashes=False,
         root_path=settings.root_path,
+        telemetry=SILENT,
         lifespan=_lifespan,
         exception_handlers={HTTPException: _raise_status, RequestValidationError: _raise_query},
     )

@@ -62,7 +62,7 @@ class Settings(BaseModel):
     drain: Annotated[
         float,
         Field(ge=0, le=600, description="Time from SIGTERM, when /readyz turns, to the end of listening [s]"),
-    ] = 0.0
+    ] = 5.0
     tokens_file: Annotated[
         Path | None, Field(description="File of bearer tokens, one a line, read again when it changes")
     ] = None

@@ -1,8 +1,12 @@
 """Settings: read once from the environment, wrong ones named."""
 
 import pytest
+from fastapi import FastAPI
+from opentelemetry import trace
 from pydantic import ValidationError
+from starlette.testclient import TestClient
 
+from forebay.app import create_app
 from forebay.settings import Settings, SettingsError
 
 
@@ -46,6 +50,27 @@ def test_wrong_setting_is_named(name, value):
     with pytest.raises(SettingsError, match=f"FOREBAY_{name}: ") as raised:
         Settings.from_environment({f"FOREBAY_{name}": value})
     assert value not in str(raised.value) or name != "TOKENS"
+
+
+class Recorder:
+    """Stands for a tracer provider that somebody has configured."""
+
+    def __init__(self):
+        self.asked = 0
+
+    def get_tracer(self, *_arguments, **_options):
+        self.asked += 1
+        return trace.NoOpTracer()
+
+
+@pytest.mark.parametrize(("make", "asked"), [(FastAPI, 1), (lambda: create_app(Settings(workers=1)), 0)])
+def test_nothing_is_told_to_a_tracer(make, asked, monkeypatch):
+    # the framework alone would tell it, as the first of the two shows
+    recorder = Recorder()
+    monkeypatch.setattr("fastapi.telemetry._asgi.trace.get_tracer_provider", lambda: recorder)
+    monkeypatch.setenv("FASTAPI_OTEL_AUTO_CONFIGURE", "true" if asked == 0 else "")
+    TestClient(make()).get("/livez")
+    assert min(recorder.asked, 1) == asked
 
 
 def test_settings_do_not_change():

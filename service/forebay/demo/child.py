@@ -23,8 +23,8 @@ READY = "ready"
 FAILED = "failed"
 """Word by which /readyz says that waiting is of no use."""
 
-PATIENCE = {"FOREBAY_DEADLINE": "600"}
-"""Settings of the child unless the environment has others: on a busy machine an answer may take long."""
+PATIENCE = {"FOREBAY_DEADLINE": "600", "FOREBAY_DRAIN": "0"}
+"""Settings of the child unless the environment has others: an answer may take long, and nobody else asks."""
 
 STOP = 15.0
 """Longest wait for the end after a polite signal [s]."""
