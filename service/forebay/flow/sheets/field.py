@@ -312,7 +312,8 @@ class SheetField:
         if own is not None:
             mine = own if rule.is_identity else np.full(z.size, -2, dtype=np.int64)
         chosen = slice(rule.number * NODES, (rule.number + 1) * NODES)
-        image = panels.poles[:, chosen], parts.coefficients[:, chosen], rule.allowed
+        places, weights = (np.ascontiguousarray(a[:, chosen]) for a in (panels.poles, parts.coefficients))
+        image = places, weights, rule.allowed  # one layout, for which the kernel is compiled beforehand
         seen = np.ascontiguousarray(rule.image(z)), np.ascontiguousarray(tau), mine, panels.lip
         integral, slope, taken, bent = near_sums(
             seen, panels.elements, parts.density, panels.chart, image, panels.tree
