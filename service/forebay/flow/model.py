@@ -19,6 +19,7 @@ from forebay.flow.features import (
     lines_of,
     singularities_of,
 )
+from forebay.flow.kernels.nearest import first_within
 from forebay.flow.layout import Layout, Pier
 from forebay.flow.maps import LogarithmMap
 from forebay.flow.piers import PierSolution, solve_piers
@@ -240,17 +241,9 @@ class FlowModel:
         """
         at = np.asarray(z, dtype=np.complex128)
         reach = TOUCHING * self.scale if radius is None else radius
-        found = np.full(at.shape, -1, dtype=np.int64)
-        columns = np.sort(self.singular_places.real)
-        left, right = (
-            np.searchsorted(columns, at.real - reach),
-            np.searchsorted(columns, at.real + reach, "right"),
-        )
-        near = np.nonzero(np.atleast_1d(left != right))
-        for index, place in reversed(list(enumerate(self.singular_places))):
-            hit = np.abs(np.atleast_1d(at)[near] - place) <= reach
-            np.atleast_1d(found)[tuple(axis[hit] for axis in near)] = index
-        return found
+        order = np.argsort(self.singular_places.real)
+        found: IntArray = first_within(at.ravel(), self.singular_places, order, reach)
+        return found.reshape(at.shape)
 
     @cached_property
     def singular_places(self) -> ComplexArray:
