@@ -196,7 +196,7 @@ def test_zone_on_the_map_lies_in_the_water(slow_client):
     assert response.status_code == 200, response.text
     # 1e-6 deg, a decimetre: a streamline along a bank is drawn with chords
     water = shapely.geometry.shape(POLYGON).buffer(1e-6)
-    found = {}
+    found: dict[str, list[str]] = {}
     for feature in response.json()["features"]:
         shape = shapely.geometry.shape(feature["geometry"])
         assert shape.is_valid
