@@ -81,10 +81,8 @@ def filter_failure(context, failure, case, response):
     """Whether a failure of a check is one."""
     if isinstance(failure, ServerError):
         return code_of(response) not in PROMISES
-    refused = isinstance(failure, RejectedPositiveData)
-    if refused and code_of(response) == "malformed-columns":
-        return False  # a schema has no words for bytes
-    return not (refused and response.status_code == 422 and is_impossible(response))
+    refused = isinstance(failure, RejectedPositiveData) and response.status_code == 422
+    return not (refused and is_impossible(response))
 
 
 SCHEMA.hook(filter_failure)
