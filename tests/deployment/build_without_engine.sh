@@ -19,7 +19,7 @@ if [[ ! -d $scratch/debian ]]; then
     mkdir -p "$scratch/base"
     tar -C "$scratch/debian" -cf "$scratch/base/base.tar" .
     printf 'FROM scratch\nADD base.tar /\n' > "$scratch/base/Dockerfile"
-    "${store[@]}" build --isolation chroot --tag "docker.io/library/$base" "$scratch/base" > "$scratch/base.log" 2>&1
+    "${store[@]}" build --isolation chroot --tag "localhost/$base" "$scratch/base" > "$scratch/base.log" 2>&1
 fi
 
 # The settings with which this machine reaches its package index and trusts it.
