@@ -2,8 +2,11 @@
 import createClient from "openapi-fetch";
 import type { components, paths } from "./contract.js";
 
+// Answers are read as JSON; other media types of the same routes have types of their own.
 type Layout = components["schemas"]["Layout"];
 type Element = NonNullable<Layout["elements"]>[number];
+
+type Media = "application/json" | "application/problem+json";
 
 declare const process: { argv: string[] };
 
@@ -27,16 +30,16 @@ function describe(element: Element): string {
   }
 }
 
-const layout: Layout = {
+const layout = {
   depth: 4,
   ambient: { velocity: [0.1, 0] },
   elements: [
     { kind: "sink", name: "intake", at: [0, 0], discharge: 2 },
     { kind: "source", name: "outfall", at: [3, 0], discharge: { value: 2, unit: "m3/s" } },
   ],
-};
+} satisfies Layout;
 
-const client = createClient<paths>({ baseUrl: process.argv[2] ?? "" });
+const client = createClient<paths, Media>({ baseUrl: process.argv[2] ?? "" });
 
 const traced = await client.POST("/v1/withdrawal/trace", { body: { layout } });
 if (traced.error !== undefined) throw new Error(traced.error.title);
@@ -52,7 +55,7 @@ if (refused.error === undefined) throw new Error("a depth of zero was accepted")
 
 console.log(
   JSON.stringify({
-    elements: (layout.elements ?? []).map(describe),
+    elements: layout.elements.map(describe),
     recirculation: intake.recirculation_share,
     warnings: traced.data.warnings.map((warning) => warning.code),
     u: sampled.data.result.u,

@@ -17,7 +17,8 @@ HEAD = """\
 import createClient from "openapi-fetch";
 import type { paths } from "./contract.js";
 declare const process: { argv: string[] };
-const client = createClient<paths>({ baseUrl: process.argv[2] ?? "" });
+type Media = "application/json" | "application/problem+json" | "image/svg+xml";
+const client = createClient<paths, Media>({ baseUrl: process.argv[2] ?? "" });
 const seen: Record<string, unknown> = {};
 """
 
