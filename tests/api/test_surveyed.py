@@ -1,6 +1,7 @@
 """Surveyed shores and outlines over HTTP: what an answer says of them, and pointers to what is wrong."""
 
 import json
+from typing import Any
 
 import pytest
 
@@ -13,7 +14,7 @@ from support.tree import ROOT
 
 BEND = json.loads((ROOT / "openapi" / "examples" / "layout-river-bend.json").read_text(encoding="utf-8"))
 
-RECTANGLE = {
+RECTANGLE: dict[str, Any] = {
     "kind": "surveyed",
     "water": {"type": "Polygon", "coordinates": [[[0, 0], [200, 0], [200, 50], [0, 50], [0, 0]]]},
     "open_edges": [

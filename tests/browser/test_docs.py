@@ -92,7 +92,9 @@ class Witness:
     """What a page asks for, what of it fails, and what the browser complains of."""
 
     def __init__(self, page):
-        self.asked, self.failed, self.complaints = [], [], []
+        self.asked: list[str] = []
+        self.failed: list[str] = []
+        self.complaints: list[str] = []
         page.on("request", lambda request: self.asked.append(request.url))
         page.on("requestfailed", lambda request: self.failed.append(request.url))
         page.on("response", lambda answer: self.failed.append(answer.url) if answer.status >= 400 else None)
