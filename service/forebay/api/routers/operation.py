@@ -7,7 +7,6 @@ from prometheus_client.exposition import choose_encoder
 from pydantic import BaseModel
 from starlette.responses import Response
 
-from forebay.api.metrics import Metrics
 from forebay.api.problems import Problem
 from forebay.api.routers.serving import problem_responses
 
@@ -46,6 +45,6 @@ async def readyz(request: Request) -> Health:
     responses={200: {"description": "Metrics", "content": {"text/plain": {"schema": {"type": "string"}}}}},
 )
 async def read_metrics(request: Request) -> Response:
-    metrics: Metrics = request.app.state.metrics
+    metrics = request.app.state.metrics
     encoder, content_type = choose_encoder(request.headers.get("accept", ""))
     return Response(encoder(metrics.registry), media_type=content_type)
