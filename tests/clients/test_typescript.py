@@ -79,7 +79,7 @@ def test_written_program_gets_what_it_asks_for(built, service):
     [
         "at: { x: [5], y: [0], line: { from: [0, 0], to: [1, 0], count: 2 } }",
         'at: { points: [["5", 0]] }',
-        'at: { points: [[5, 0]] }, quantity: ["stream_function"]',
+        "at: { point: [[5, 0]] }",
     ],
     ids=["two-ways", "text-for-a-number", "misspelt"],
 )
