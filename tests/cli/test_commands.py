@@ -97,7 +97,9 @@ def test_wrong_command_lines_end_with_two(arguments):
 
 def test_serve_takes_host_and_port(monkeypatch):
     seen = {}
-    monkeypatch.setattr("forebay.server.uvicorn.run", lambda app, **settings: seen.update(settings))
+    monkeypatch.setattr(
+        "forebay.server.Server.run", lambda self: seen.update(host=self.config.host, port=self.config.port)
+    )
     assert main(["serve", "--host", "127.0.0.2", "--port", "9000"]) == 0
     assert (seen["host"], seen["port"]) == ("127.0.0.2", 9000)
 

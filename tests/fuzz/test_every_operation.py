@@ -114,6 +114,7 @@ def check(path, method, mode, *, examples):
     send()
 
 
+@pytest.mark.slow  # the library starts the app anew for every call, so that readiness takes minutes
 @pytest.mark.parametrize(("path", "method", "mode"), OPERATIONS)
 def test_answers_are_the_declared_ones(path, method, mode):
     check(path, method, mode, examples=8)
