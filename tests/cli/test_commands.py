@@ -96,7 +96,7 @@ def test_wrong_command_lines_end_with_two(arguments):
 
 
 def test_serve_takes_host_and_port(monkeypatch):
-    seen = {}
+    seen: dict[str, object] = {}
     monkeypatch.setattr(
         "forebay.server.Server.run", lambda self: seen.update(host=self.config.host, port=self.config.port)
     )

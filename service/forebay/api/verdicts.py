@@ -6,6 +6,7 @@ from typing import Any
 from forebay.api.units import UnitSystem
 from forebay.flow.stagnation.result import StagnationSearch
 from forebay.flow.withdrawal.result import IntakeWithdrawal, WithdrawalStatus
+from forebay.trade.applicability.solved_walls import WIDE
 from forebay.workflows.assessment import Assessment
 
 Verdict = dict[str, Any]
@@ -15,8 +16,9 @@ OWN = "forebay"
 
 OWN_SOURCE = "own check of the numbers"
 
-CERTAIN_SHARE = 1e-6
-"""Error of a share up to which the service calls it certain [-]: far below what screening can tell."""
+CERTAIN_SHARE = 1e-2
+"""Error of a share up to which the service calls it certain [-]: one part in a hundred of an intake's water,
+less than turbulence and an uneven bed change (convention of this service)."""
 
 TIGHT_WALL = 1e-6
 """Velocity through a wall, over the reference speed, up to which the service calls it tight [-]."""
@@ -30,6 +32,8 @@ def verdicts_of(assessment: Assessment) -> list[Verdict]:
         assessment.withdrawal.answer,
     )
     verdicts = [] if flow is None else [wall_verdict(flow.boundary_residual)]
+    if flow is not None and flow.wall_bound is not None:
+        verdicts.append(solved_wall_verdict(flow.wall_bound))
     verdicts += [] if search is None else [completeness_verdict(search)]
     return [*verdicts, *(share_verdict(intake) for intake in withdrawal or ())]
 
@@ -78,13 +82,26 @@ def screen_verdict(screen: str, verdict: Mapping[str, Any]) -> Verdict:
 
 
 def wall_verdict(residual: float) -> Verdict:
-    """Whether no water passes the walls of structures."""
+    """Whether no water passes the walls of piers."""
     return {
         "part": "flow",
-        "subject": "walls of structures",
+        "subject": "walls of piers",
         "criterion": OWN,
         "rule": "velocity through them, over the reference speed",
         **most(residual, TIGHT_WALL, "1"),
+        "note": "",
+        "source": OWN_SOURCE,
+    }
+
+
+def solved_wall_verdict(bound: float) -> Verdict:
+    """Whether outlines and surveyed shores are solved well enough."""
+    return {
+        "part": "flow",
+        "subject": "outlines and surveyed shores",
+        "criterion": OWN,
+        "rule": "bound of the stream function's error, over the flow through",
+        **most(bound, WIDE, "1"),
         "note": "",
         "source": OWN_SOURCE,
     }

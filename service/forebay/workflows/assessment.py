@@ -44,11 +44,13 @@ class FarField:
     """The flow far away, and how well it meets the walls.
 
     ends : far ends of the water
-    boundary_residual : largest velocity through a structure's wall over the reference speed [-]
+    boundary_residual : largest velocity through a pier's wall over the reference speed [-]
+    wall_bound : error of psi that outlines and surveyed shores leave, over the flow through [-]; None without
     """
 
     ends: tuple[End, ...]
     boundary_residual: float
+    wall_bound: float | None = None
 
 
 @dataclass(frozen=True, slots=True)
@@ -104,7 +106,7 @@ def assess_layout(layout: Layout, questions: Questions | None = None) -> Assessm
     search = attempt(partial(search_model, model, None))
     withdrawal = _withdrawal(model, search)
     return Assessment(
-        flow=Part.of(FarField(model.ends, model.boundary_residual)),
+        flow=Part.of(FarField(model.ends, model.boundary_residual, _wall_bound(model))),
         stagnation=search,
         withdrawal=withdrawal,
         recirculation=_recirculation(withdrawal),
@@ -148,3 +150,8 @@ def _field(layout: Layout, questions: Questions) -> Part[FieldSamples]:
     if questions.points.size == 0:
         return Part.not_asked(NO_POINTS)
     return attempt(partial(sample_field, layout, questions.points, questions.quantities))
+
+
+def _wall_bound(model: FlowModel) -> float | None:
+    """Bound of psi over the flow through [-], None where no wall had to be solved."""
+    return None if model.bound is None else model.bound.relative
