@@ -14,17 +14,21 @@ from forebay.flow.shores import Frame
 
 @dataclass(frozen=True, slots=True)
 class PotentialFlow:
-    """A flow whose potential is single-valued: F(z) [m2/s]."""
+    """A flow whose potential is single-valued.
+
+    potential : F(z) [m2/s];  derivative : W = dF/dz [m/s]
+    """
 
     potential: Callable[[ComplexArray], ComplexArray]
+    derivative: Callable[[ComplexArray], ComplexArray]
 
     def chord(self, a: ComplexArray, b: ComplexArray) -> ComplexArray:
         """Difference of F [m2/s]."""
         return self.potential(b) - self.potential(a)
 
     def velocity(self, z: ComplexArray) -> ComplexArray:
-        """Not known: only surveyed water asks for it, and begins from still water."""
-        raise NotImplementedError
+        """W [m/s] at z."""
+        return self.derivative(z)
 
 
 def typical_flows(shore: Shore, rings: tuple[Ring, ...], frame: Frame) -> tuple[Known, ...]:
@@ -36,7 +40,7 @@ def typical_flows(shore: Shore, rings: tuple[Ring, ...], frame: Frame) -> tuple[
             Known(StillWater(), (), {n: (n == edges[0]) - float(n == edge) for n in edges}, still, (), 1.0)
             for edge in edges[1:]
         )
-    flows = [PotentialFlow(potential) for potential in _potentials(shore, frame)]
+    flows = _potential_flows(shore, frame)
     return tuple(Known(flow, (), {}, still, (), _flux(flow, rings)) for flow in flows)
 
 
@@ -46,16 +50,17 @@ def _flux(flow: PotentialFlow, rings: tuple[Ring, ...]) -> float:
     return max(float(np.max(np.abs(value - value[0]))) for value in values)
 
 
-def _potentials(shore: Shore, frame: Frame) -> list[Callable[[ComplexArray], ComplexArray]]:
-    tau = frame.map.forward
+def _potential_flows(shore: Shore, frame: Frame) -> list[PotentialFlow]:
+    tau, slope = frame.map.forward, frame.map.slope
+    along = PotentialFlow(tau, slope)
     match shore:
         case OpenWater():
-            return [tau, lambda z: 1j * tau(z)]
+            return [along, PotentialFlow(lambda z: 1j * tau(z), lambda z: 1j * slope(z))]
         case StraightBank() | Channel():
-            return [tau]
+            return [along]
         case Corner():
-            return [lambda z: np.exp(tau(z))]
+            return [PotentialFlow(lambda z: np.exp(tau(z)), lambda z: np.exp(tau(z)) * slope(z))]
         case DeadEnd():
-            return [lambda z: np.cosh(tau(z))]
+            return [PotentialFlow(lambda z: np.cosh(tau(z)), lambda z: np.sinh(tau(z)) * slope(z))]
         case _:
             return []
