@@ -26,6 +26,7 @@ def test_water_is_stated_by_its_properties(ready_client):
     envelope = answer(ready_client, STRESS, fluid={"temperature": 12, "salinity": 3}, states=STATES)
     water = ready_client.get("/v1/water", params={"temperature": 12, "salinity": 3}).json()["result"]
     assert envelope["result"]["fluid"] == {
+        "law": "newtonian",
         "dynamic_viscosity": water["dynamic_viscosity"],
         "density": water["density"],
         "second_viscosity": None,
@@ -38,7 +39,7 @@ def test_water_is_stated_by_its_properties(ready_client):
 def test_own_fluid_is_stated_as_given(ready_client):
     fluid = {"dynamic_viscosity": 0.002, "density": 1010.0, "second_viscosity": -0.001}
     envelope = answer(ready_client, STRESS, fluid=fluid, states=STATES)
-    assert envelope["result"]["fluid"] == fluid
+    assert envelope["result"]["fluid"] == {"law": "newtonian", **fluid}
     assert notes(envelope) == []
 
 

@@ -19,7 +19,7 @@ def service(tmp_path_factory: pytest.TempPathFactory) -> Iterator[Running]:
         deadline="60",
     )
     try:
-        running.wait_until_warm()
+        running.wait_until_ready()
         yield running
     finally:
         running.stop()

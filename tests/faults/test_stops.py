@@ -21,7 +21,7 @@ DRAIN = 5.0
 @pytest.mark.slow
 def test_sigterm_under_load_loses_no_request(another):
     service = another(workers="1", queue="50", drain=str(DRAIN))
-    service.wait_until_warm()
+    service.wait_until_ready()
     lost, answered = [], []
     stopping = threading.Event()
 

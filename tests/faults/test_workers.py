@@ -60,7 +60,7 @@ def test_worker_that_is_killed_twice_is_a_problem_to_retry(service):
 @pytest.mark.slow
 def test_worker_out_of_memory_is_replaced(another):
     small = another(workers="1", worker_memory=str(MEMORY), max_points="6000000")
-    small.wait_until_warm()
+    small.wait_until_ready()
     everything = ["potential", "stream_function", "vorticity", "acceleration_x", "acceleration_y"]
     greedy = a_sample(
         at={"grid": {"x": [0, 90], "nx": 2500, "y": [10, 90], "ny": 2000}}, quantities=everything

@@ -7,9 +7,7 @@ JSON Schema has no words for; those rules are listed here, so that a new one is 
 
 import copy
 import re
-import time
 
-import orjson
 import pytest
 import schemathesis
 from hypothesis import HealthCheck, Phase, given, settings
@@ -21,6 +19,7 @@ from forebay.api.examples import OPEN_WATER
 from forebay.api.problems import flow_errors
 from forebay.app import create_app
 from forebay.settings import Settings
+from support.running import Running
 
 RULES = (
     "A window runs from smaller to larger in x and in y",
@@ -29,32 +28,33 @@ RULES = (
 )
 """Rules between values of one request, as patterns of the refusal's text."""
 
-SMALL = Settings(workers=1, max_points=2000, max_pairs=200_000, max_elements=20, deadline=5.0)
+LIMITS = {
+    "workers": "1",
+    "max_points": "2000",
+    "max_pairs": "200000",
+    "max_elements": "20",
+    "deadline": "5",
+}
 """Limits under which no request takes long: what is looked for here does not depend on size."""
 
 PATIENCE = 60.0
 """Longest wait for an answer [s]: the deadline, and a machine that does other things beside."""
 
-COMPILATION = 600.0
-"""Longest wait for readiness [s]: a fresh machine compiles every kernel first."""
-
 PROMISES = ("not-ready", "busy", "deadline-exceeded")
 """Problems with a status from 500 on by which the service keeps its word."""
 
 
-def application():
-    """The service, with a small site in its examples: the demonstration takes ten times as long."""
-    app = create_app(SMALL)
-    document = copy.deepcopy(app.openapi())
-    for item in document["paths"].values():
+def document():
+    """The contract, with a small site in its examples: the demonstration takes ten times as long."""
+    contract = copy.deepcopy(create_app(Settings()).openapi())
+    for item in contract["paths"].values():
         for content in item.get("post", {}).get("requestBody", {}).get("content", {}).values():
             if "layout" in content.get("example", {}):
                 content["example"]["layout"] = OPEN_WATER
-    app.state.openapi_bytes = orjson.dumps(document)
-    return app
+    return contract
 
 
-SCHEMA = schemathesis.openapi.from_asgi("/openapi.json", application())
+SCHEMA = schemathesis.openapi.from_dict(document())
 
 OPERATIONS = [
     (path, method.upper(), mode)
@@ -88,15 +88,18 @@ def filter_failure(context, failure, case, response):
 SCHEMA.hook(filter_failure)
 
 
-@pytest.fixture(scope="module", autouse=True)
-def readiness():
-    deadline = time.monotonic() + COMPILATION
-    while SCHEMA["/readyz"]["GET"].Case().call(timeout=PATIENCE).status_code != 200:
-        assert time.monotonic() < deadline
-        time.sleep(0.5)
+@pytest.fixture(scope="module")
+def address(tmp_path_factory):
+    """Of a running service: made for each call, as the library does with an app, it would never be ready."""
+    service = Running(tmp_path_factory.mktemp("fuzz") / "service.log", **LIMITS)
+    try:
+        service.wait_until_ready()
+        yield service.address
+    finally:
+        service.stop()
 
 
-def check(path, method, mode, *, examples):
+def check(address, path, method, mode, *, examples):
     """Send so many requests of a kind, the same every time, and check each answer."""
 
     @given(case=SCHEMA[path][method].as_strategy(generation_mode=mode))
@@ -109,18 +112,18 @@ def check(path, method, mode, *, examples):
         suppress_health_check=list(HealthCheck),
     )
     def send(case):
-        case.call_and_validate(timeout=PATIENCE)
+        case.call_and_validate(base_url=address, timeout=PATIENCE)
 
     send()
 
 
-@pytest.mark.slow  # the library starts the app anew for every call, so that readiness takes minutes
+@pytest.mark.slow  # to make up bodies of so large a contract takes a quarter of an hour
 @pytest.mark.parametrize(("path", "method", "mode"), OPERATIONS)
-def test_answers_are_the_declared_ones(path, method, mode):
-    check(path, method, mode, examples=8)
+def test_answers_are_the_declared_ones(address, path, method, mode):
+    check(address, path, method, mode, examples=8)
 
 
 @pytest.mark.slow
 @pytest.mark.parametrize(("path", "method", "mode"), OPERATIONS)
-def test_answers_are_the_declared_ones_at_length(path, method, mode):
-    check(path, method, mode, examples=300)
+def test_answers_are_the_declared_ones_at_length(address, path, method, mode):
+    check(address, path, method, mode, examples=300)

@@ -12,8 +12,6 @@ import httpx2
 import orjson
 
 from forebay.demo.child import LOOPBACK, free_port
-from support.heavy import QUEUED
-from support.http import SAMPLE, a_sample
 
 START = 600.0
 """Longest wait for readiness [s]: on a fresh machine the kernels are compiled first."""
@@ -36,17 +34,13 @@ class Running:
                 command, stdout=sink, stderr=subprocess.STDOUT, env={**os.environ, **variables}
             )
 
-    def wait_until_warm(self) -> None:
-        """Wait until it listens and a worker has answered, whether all else has been prepared or not."""
+    def wait_until_ready(self) -> None:
+        """Wait until it says so: its workers prepare nothing any more."""
         deadline = time.monotonic() + START
-        while not self.is_alive():
+        while not (self.is_alive() and self.get("/readyz").status_code == 200):
             assert self.process.poll() is None, self.log.read_text(encoding="utf-8")[-3000:]
             assert time.monotonic() < deadline
             time.sleep(0.05)
-        for body in (a_sample(), QUEUED):
-            response = self.post(SAMPLE, body, Prefer="wait=600")
-            assert response.status_code == 200, response.text[:2000]
-        eventually(lambda: self.metric("forebay_computations_waiting_or_running") == 0, START)
 
     def is_alive(self) -> bool:
         """Whether it listens and answers."""
