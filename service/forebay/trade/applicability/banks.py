@@ -22,7 +22,7 @@ BANK_SHEAR = WarningKind(
         "distance to the bank at most the larger of the depth and Q / (2 pi h U); any distance "
         "without current"
     ),
-    formula="an intake nearer than Q / (2 pi h U) draws from the bank itself",
+    formula="at Q / (2 pi h U) the zone of an intake touches the bank; nearer, it draws from the bank itself",
     source="sink beside a wall (own check); slow bank water: open-channel hydraulics",
     unit="m",
 )

@@ -7,7 +7,7 @@ from forebay.trade.applicability.site import Site
 from forebay.trade.applicability.warning import ApplicabilityWarning, Severity, WarningKind
 
 STEADY_WAKE = 50.0
-"""Keulegan-Carpenter number below which a wake is not quasi-steady [-]; 10 to 50 in the literature."""
+"""Keulegan-Carpenter number up to which a wake is not quasi-steady [-]; 10 to 50 in the literature."""
 
 SLIGHT_ROTATION = 10.0
 """Rossby number below which the earth's rotation is felt [-]."""
@@ -27,7 +27,7 @@ TIDAL_REVERSAL = WarningKind(
     code="tidal-reversal",
     severity=Severity.CAUTION,
     meaning="the tide turns before the wake of a pier is quasi-steady",
-    threshold="KC < 50 (10 to 50 in the literature)",
+    threshold="KC <= 50 (10 to 50 in the literature)",
     formula="KC = U T / D",
     source="Keulegan-Carpenter number; threshold from memory",
     unit="1",
@@ -80,7 +80,7 @@ def tidal_reversal(site: Site) -> Iterator[ApplicabilityWarning]:
     for path, pier in site.piers():
         diameter = 2.0 * pier.radius
         number = site.current * period / diameter
-        if number < STEADY_WAKE:
+        if number <= STEADY_WAKE:
             yield TIDAL_REVERSAL.raised(
                 f"The current past pier {pier.name!r} reverses after {number:.3g} of its diameters: the wake "
                 "of one tide meets the next.",
