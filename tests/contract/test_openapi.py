@@ -160,6 +160,27 @@ def test_every_choice_of_kinds_has_a_discriminator():
         assert len(union["discriminator"]["mapping"]) == len(union["oneOf"])
 
 
+def targets(part):
+    """Every schema that some discriminator leads to, by name."""
+    inner = part.values() if isinstance(part, dict) else part if isinstance(part, list) else ()
+    if isinstance(part, dict):
+        yield from (
+            name.rsplit("/", 1)[1] for name in part.get("discriminator", {}).get("mapping", {}).values()
+        )
+    for further in inner:
+        yield from targets(further)
+
+
+def test_discriminators_lead_to_objects_only():
+    # generators of typed clients add the kind to each of them, which they cannot to a choice of objects
+    assert {SCHEMAS[name].get("type") for name in targets(SCHEMAS)} == {"object"}
+
+
+def test_kinds_without_a_discriminator_are_told_apart_by_a_constant():
+    assert {way["properties"]["kind"]["const"] for way in SCHEMAS["Outline"]["anyOf"]} == {"outline"}
+    assert SCHEMAS["Pier"]["properties"]["kind"]["const"] == "pier"
+
+
 def test_document_says_what_the_answers_are_not_for():
     text = " ".join(DOCUMENT["info"]["description"].split())
     assert "Screening level" in text

@@ -8,7 +8,7 @@ from pydantic import BaseModel
 from pydantic.json_schema import models_json_schema
 
 from forebay import __version__
-from forebay.api.openapi_dialect import translated
+from forebay.api.openapi_dialect import settle_discriminators, translated
 from forebay.api.problems import MEDIA_TYPE, Problem, ProblemKind, catalogue
 from forebay.api.routers.serving import ENVELOPES, REQUESTS, problem_responses
 from forebay.api.schemas.boundary import BoundaryValue
@@ -86,6 +86,7 @@ def build_document(app: FastAPI) -> dict[str, Any]:
         routes=app.routes,
         tags=[{"name": name, "description": text} for name, text in TAGS.items()],
         servers=[{"url": ".", "description": "Where this document was read"}],
+        contact={"name": "Those who run this service"},
         license_info={"name": "Apache-2.0", "identifier": "Apache-2.0"},
     )
     schemas = document.setdefault("components", {}).setdefault("schemas", {})
@@ -101,6 +102,7 @@ def build_document(app: FastAPI) -> dict[str, Any]:
         for operation in item.values():
             _complete(operation)
     translated_document: dict[str, Any] = translated(document)
+    settle_discriminators(translated_document["components"]["schemas"])
     return translated_document
 
 

@@ -2,9 +2,12 @@
 
 * `unit` becomes `x-unit`: OpenAPI keeps names without `x-` for itself.
 * A default that is an object is told in the description: generators of typed clients cannot write one.
+* A discriminator leads to objects only. Where one of several kinds is itself a choice of objects, there is
+  none: the constant `kind` of each of them tells them apart.
 """
 
 import json
+from collections.abc import Iterator
 from typing import Any
 
 VALUES = frozenset({"const", "default", "enum", "example", "examples", "mapping"})
@@ -23,6 +26,22 @@ def translated(part: Any) -> Any:  # noqa: ANN401  (any part of a document)
             return [translated(item) for item in part]
         case _:
             return part
+
+
+def settle_discriminators(schemas: dict[str, Any]) -> None:
+    """Leave out every discriminator of the components that leads to something other than an object."""
+    objects = {f"#/components/schemas/{name}" for name, schema in schemas.items() if "properties" in schema}
+    for part in _parts(schemas):
+        if not objects.issuperset(part.get("discriminator", {}).get("mapping", {}).values()):
+            del part["discriminator"]
+
+
+def _parts(part: Any) -> Iterator[dict[str, Any]]:  # noqa: ANN401
+    """Every mapping in a part of the document, outer ones first."""
+    if isinstance(part, dict):
+        yield part
+    for inner in part.values() if isinstance(part, dict) else part if isinstance(part, list) else ():
+        yield from _parts(inner)
 
 
 def _inner(key: str, value: Any) -> Any:  # noqa: ANN401

@@ -17,25 +17,35 @@ class Singularity:
     """A point element in the water.
 
     at : position, x + iy [m];  owner : its name;  kind : the element
-    strength : g = (q - i Gamma)/(2 pi) [m2/s];  on : name of the wall it stands on, or "water"
+    strength : g = (q - i Gamma)/(2 pi) [m2/s];  wall : on which it stands, None in the water
     """
 
     at: complex
     owner: str
     kind: PointElement
     strength: complex
-    on: str
+    wall: Wall | None
+
+    @property
+    def on(self) -> str:
+        """Name of the wall, or "water"."""
+        return WATER if self.wall is None else self.wall.name
 
 
 @dataclass(frozen=True, slots=True)
 class Line:
-    """A line element: flux [m/s] out of it per length, negative for a sink; `on` as for Singularity."""
+    """A line element: flux [m/s] out of it per length, negative for a sink; `wall` in which it lies."""
 
     start: complex
     end: complex
     owner: str
     flux: float
-    on: str
+    wall: Wall | None
+
+    @property
+    def on(self) -> str:
+        """Name of the wall, or "water"."""
+        return WATER if self.wall is None else self.wall.name
 
 
 @dataclass(frozen=True, slots=True)
@@ -48,16 +58,16 @@ class CoredVortex:
     circulation: float
 
 
-def wall_at(at: complex, walls: tuple[Wall, ...], reach: float) -> str:
-    """Name of the wall within `reach` [m] of a point, else "water"."""
-    z = np.asarray(at)
-    return next((wall.name for wall in walls if float(wall.distance(z)) <= reach), WATER)
+def wall_at(places: tuple[complex, ...], walls: tuple[Wall, ...], reach: float) -> Wall | None:
+    """The first wall with all places within `reach` [m] of it, None without one."""
+    z = np.array(places)
+    return next((wall for wall in walls if bool(np.all(wall.distance(z) <= reach))), None)
 
 
 def singularities_of(layout: Layout, walls: tuple[Wall, ...], reach: float) -> tuple[Singularity, ...]:
     """The point elements of a layout, in its order."""
     return tuple(
-        Singularity(e.at, e.name, e, strength(e, layout.depth), wall_at(e.at, walls, reach))
+        Singularity(e.at, e.name, e, strength(e, layout.depth), wall_at((e.at,), walls, reach))
         for e in layout.elements
         if not isinstance(e, LineSource | LineSink)
     )
@@ -71,7 +81,7 @@ def lines_of(layout: Layout, walls: tuple[Wall, ...], reach: float) -> tuple[Lin
             e.end,
             e.name,
             outflow(e) / layout.depth / abs(e.end - e.start),
-            _wall_along(e.start, e.end, walls, reach),
+            wall_at((e.start, 0.5 * (e.start + e.end), e.end), walls, reach),
         )
         for e in layout.elements
         if isinstance(e, LineSource | LineSink)
@@ -86,7 +96,3 @@ def cores_of(layout: Layout) -> tuple[CoredVortex, ...]:
         if isinstance(e, Vortex) and e.core
     )
 
-
-def _wall_along(start: complex, end: complex, walls: tuple[Wall, ...], reach: float) -> str:
-    names = {wall_at(at, walls, reach) for at in (start, 0.5 * (start + end), end)}
-    return names.pop() if len(names) == 1 else WATER

@@ -205,11 +205,12 @@ def _captures(model: FlowModel, places: ComplexArray, lines: LineFaces) -> tuple
 
 def _room(model: FlowModel, places: ComplexArray, j: int) -> float:
     """Distance from place j to the next place or wall, the wall it stands on left out [m]."""
-    at, own = places[j], model.singularities[j].on
+    at, own = complex(places[j]), model.singularities[j].wall
     others = np.abs(np.delete(places, j) - at)
-    walls = [float(wall.distance(at)) for wall in model.walls if wall.name != own]
+    walls = [float(wall.distance(np.asarray(at))) for wall in model.walls if wall is not own]
     piers = [abs(at - pier.at) - pier.radius for pier in model.piers]
-    return float(min([model.scale, *others[others > 0.0], *walls, *piers]))
+    rings = [model.rings_set.gap_beside(at, own)] if model.rings else []
+    return float(min([model.scale, *others[others > 0.0], *walls, *piers, *rings]))
 
 
 def _radius(model: FlowModel, at: complex, strength: float, room: float) -> float:

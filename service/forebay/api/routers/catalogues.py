@@ -75,7 +75,14 @@ def answer(
     return Response(envelope.encode(document), media_type=media_type)
 
 
-@router.get("/v1/water", operation_id="readWater", summary="Properties of water", **documented(WaterResult))
+@router.get(
+    "/v1/water",
+    operation_id="readWater",
+    summary="Properties of water",
+    description="Density, viscosity and what else the computations take from temperature and salinity, each "
+    "with its source; what is neglected is named.",
+    **documented(WaterResult),
+)
 async def read_water(
     *,
     temperature: Temperature,
@@ -103,6 +110,8 @@ def water(temperature: float, salinity: float, units: UnitSystem) -> dict[str, A
     "/v1/criteria",
     operation_id="listCriteria",
     summary="Published limits for fish-protection screens, and rules for submergence",
+    description="Every criterion that a check can be asked for by its id, as published and in SI, with the "
+    "document it stands in and what is known of its standing.",
     **documented(CriteriaResult),
 )
 async def read_criteria(request: Request) -> Response:
@@ -140,6 +149,8 @@ def submergence_rule(rule: Rule) -> dict[str, Any]:
     "/v1/warnings",
     operation_id="listWarnings",
     summary="Every kind of warning with its threshold and source",
+    description="What each code in `warnings` of an answer means, from which value on it is given, and who "
+    "says so. Codes are permanent.",
     **documented(WarningsResult),
 )
 async def read_warnings(request: Request) -> Response:
@@ -150,6 +161,8 @@ async def read_warnings(request: Request) -> Response:
     "/v1/limits",
     operation_id="readLimits",
     summary="What one request may ask for",
+    description="Bytes, points, elements and seconds beyond which this installation refuses a request. "
+    "`POST /v1/estimate` prices a request against them.",
     **documented(LimitsResult),
 )
 async def read_limits(request: Request) -> Response:

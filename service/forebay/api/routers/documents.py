@@ -67,6 +67,8 @@ class Index(BaseModel):
     "/",
     operation_id="readIndex",
     summary="Where to go on",
+    description="Version, and addresses of the contract, the documentation and the catalogues. A browser is "
+    "led to the documentation.",
     tags=["operation"],
     response_class=Response,
     responses={200: {"description": "Links", "model": Index}, **problem_responses((406,))},
@@ -107,6 +109,8 @@ async def openapi(request: Request) -> Response:
     "/problems/{code}",
     operation_id="explainProblem",
     summary="What a problem means and what to do about it",
+    description="The `type` of every problem leads here: its cause and its cure, as JSON for programs, as a "
+    "page for readers.",
     tags=["operation"],
     response_class=Response,
     responses={

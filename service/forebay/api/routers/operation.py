@@ -19,7 +19,12 @@ class Health(BaseModel):
     status: Literal["pass"] = "pass"
 
 
-@router.get("/livez", operation_id="isAlive", summary="Whether the process answers at all")
+@router.get(
+    "/livez",
+    operation_id="isAlive",
+    summary="Whether the process answers at all",
+    description="Answers at once whatever is being computed; no answer means that the process hangs.",
+)
 async def livez() -> Health:
     return Health()
 
@@ -28,6 +33,8 @@ async def livez() -> Health:
     "/readyz",
     operation_id="isReady",
     summary="Whether every kernel is compiled and a worker process answers",
+    description="Whether to send requests here: 503 with the reason while kernels are prepared, when no "
+    "worker process answers, and from SIGTERM on.",
     responses=problem_responses((503,)),
 )
 async def readyz(request: Request) -> Health:
@@ -41,6 +48,7 @@ async def readyz(request: Request) -> Health:
     "/metrics",
     operation_id="readMetrics",
     summary="Counters for Prometheus",
+    description="Requests by route and status, times, queue, workers and why they ended, work done, memos.",
     response_class=Response,
     responses={200: {"description": "Metrics", "content": {"text/plain": {"schema": {"type": "string"}}}}},
 )

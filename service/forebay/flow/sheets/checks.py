@@ -30,6 +30,11 @@ from forebay.flow.sheets.standing import footing_of
 _ROUNDING = 1e-9
 """Net discharge below this part of the whole is rounding [-]."""
 
+_PLACES = 33
+"""Places of a line that are looked at."""
+_ALONG = 1e-6
+"""Distance from a wall, over the length of a line, within which it runs along the wall [-]."""
+
 
 def check_rings(layout: Layout, rings: RingSet, reach: float) -> None:
     """Raise the LayoutError that names the first fault of elements and piers among the rings.
@@ -78,18 +83,24 @@ def _check_element(element: Element, rings: RingSet, reach: float, path: Path) -
             _check_on_ring(element, touched, (*path, name))
     if rings.on_open_edge([at for _, at in ends], reach):
         raise ElementMisplacedError("an element cannot stand on an open edge", (*path, ends[0][0]))
-    if (
-        is_line
-        and footing_of(element, rings, reach) is None
-        and rings.crossed(ends[0][1], ends[-1][1], reach)
-    ):
-        raise ElementOnLandError("the line crosses land", (*path, "to"))
+    if is_line and footing_of(element, rings, reach) is None:
+        _check_off_rings((ends[0][1], ends[-1][1]), rings, reach, (*path, "to"))
     if isinstance(element, Vortex) and element.core and element.core.model is CoreModel.RANKINE:
         gap = float(rings.gap(np.array([element.at]))[0])
         if element.core.radius > gap:
             raise ElementOnLandError(
                 f"the core reaches {element.core.radius - gap:.4g} m into land", (*path, "core", "radius")
             )
+
+
+def _check_off_rings(ends: tuple[complex, complex], rings: RingSet, reach: float, path: Path) -> None:
+    """A line that stands on no ring crosses none, and follows none that bends on its way."""
+    if rings.crossed(*ends, reach):
+        raise ElementOnLandError("the line crosses land", path)
+    a, b = ends
+    between = np.asarray(a + (b - a) * np.linspace(0.0, 1.0, _PLACES), dtype=np.complex128)
+    if bool(np.all(np.abs(rings.distance(between)) <= _ALONG * abs(b - a))):
+        raise ElementMisplacedError("the line runs along a wall that is not straight there", path)
 
 
 def _check_wet(at: complex, rings: RingSet, reach: float, path: Path) -> None:

@@ -54,6 +54,15 @@ class RingSet:
         at = np.ascontiguousarray(z, dtype=np.complex128).ravel()
         return nearest_edges(at, *self._edges)[0].reshape(np.shape(z))
 
+    def gap_beside(self, z: complex, wall: Wall | None) -> float:
+        """Distance to the nearest edge that is no part of a wall, or where that wall ends [m]."""
+        starts, ends = self._edges
+        if wall is not None:
+            middles = 0.5 * (starts + ends)
+            apart = np.asarray(wall.distance(middles)) > _PART * np.abs(ends - starts)
+            starts, ends = starts[apart], ends[apart]
+        return float(nearest_edges(np.array([z]), starts, ends)[0][0])
+
     def wet(self, z: ComplexArray, reach: float) -> BoolArray:
         """Whether points lie in the water or within `reach` [m] of a ring."""
         at = np.asarray(z, dtype=np.complex128)
@@ -126,11 +135,47 @@ _STRAIGHT = 1e-6
 """Bends below this part of half a circle are none [-]."""
 
 
+_PART = 1e-6
+"""Distance of an edge's middle from a wall, over the edge's length, within which it is part of it [-]."""
+
+
 def wall_of(ring: Ring, edge: int) -> Wall:
     """An edge of a ring as a wall with its name."""
     start, end = complex(ring.starts[edge]), complex(ring.ends[edge])
     length = abs(end - start)
     return Wall(ring.edges[edge], start, (end - start) / length, 0.0, length)
+
+
+def stretch_of(ring: Ring, edge: int, straight: float) -> Wall:
+    """An edge as a wall, with those of its kind before and after it that go straight on.
+
+    straight : distance from the edge's line within which they do [m]
+    """
+    wall = wall_of(ring, edge)
+    first, last = _straight_on(ring, edge, -1, straight), _straight_on(ring, edge, 1, straight)
+    before, after = (
+        float(((z - wall.point) * wall.direction.conjugate()).real)
+        for z in (ring.starts[first], ring.ends[last])
+    )
+    return Wall(wall.name, wall.point, wall.direction, -before, after)
+
+
+def _straight_on(ring: Ring, edge: int, step: int, straight: float) -> int:
+    """The last edge in a direction along the ring that continues an edge."""
+    wall, count, last = wall_of(ring, edge), ring.starts.size, edge
+    for _ in range(count - 1):
+        after = last + step
+        if not ring.closed and not 0 <= after < count:
+            break
+        after %= count
+        far = complex(ring.ends[after] if step > 0 else ring.starts[after])
+        local = (far - wall.point) * wall.direction.conjugate()
+        known = complex(ring.ends[last] if step > 0 else ring.starts[last])
+        advance = step * ((far - known) * wall.direction.conjugate()).real
+        if ring.kinds[after] != ring.kinds[edge] or abs(local.imag) > straight or advance <= 0.0:
+            break
+        last = after
+    return last
 
 
 def inner_point(ring: Ring) -> complex:

@@ -111,7 +111,7 @@ def stand_ins_of(layout: Layout, standing: Footings, outer: Ring, origin: comple
         places, shares = _spread(layout.elements[k])
         places = places - origin
         strength = DOUBLED * outflow(layout.elements[k]) / (2.0 * np.pi * layout.depth)
-        wall = footing.wall.after * footing.wall.direction
+        wall = (footing.wall.before + footing.wall.after) * footing.wall.direction
         other = _stand_in(outer, complex(shares @ places), 1j * footing.wall.direction, ("elements", k))
         parts.append((places, strength * shares, np.full(places.size, wall), np.full(places.size, other)))
     if not parts:

@@ -6,7 +6,7 @@ import numpy as np
 
 from forebay.flow.layout import Element, Layout, LineElement, LineSink, LineSource
 from forebay.flow.sheets.ring import Ring
-from forebay.flow.sheets.ring_set import RingSet, inner_point, wall_of
+from forebay.flow.sheets.ring_set import RingSet, inner_point, stretch_of
 from forebay.flow.shores import Wall
 
 DOUBLED = 2.0
@@ -26,6 +26,8 @@ class Footing:
     inner: complex | None
 
 
+_STRAIGHT = 1e-9
+"""How far the edges under a line may bend, over its length, and still be one stretch [-]."""
 Footings = dict[int, Footing]
 """By the index of the element in its layout."""
 
@@ -41,11 +43,13 @@ def footings(layout: Layout, rings: RingSet, reach: float) -> Footings:
 
 
 def footing_of(element: Element, rings: RingSet, reach: float) -> Footing | None:
-    """Edge on which an element stands with all its length."""
-    edges = [dict(rings.edges_at(at, reach)) for at in _points(element)]
-    for ring, edge in edges[0].items():
-        if all(other.get(ring) == edge for other in edges[1:]):
-            return Footing(wall_of(ring, edge), ring, inner_point(ring) if ring.is_solid else None)
+    """Stretch of wall, straight over one edge or several, on which an element stands with all its length."""
+    places = _points(element)
+    straight = min(reach, _STRAIGHT * abs(places[-1] - places[0]))
+    for ring, edge in rings.edges_at(places[0], reach):
+        wall = stretch_of(ring, edge, straight)
+        if bool(np.all(wall.distance(np.array(places)) <= reach)):
+            return Footing(wall, ring, inner_point(ring) if ring.is_solid else None)
     return None
 
 

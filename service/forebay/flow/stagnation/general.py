@@ -17,6 +17,7 @@ import numpy as np
 from forebay.flow.arrays import BoolArray, ComplexArray, FloatArray
 from forebay.flow.layout import Doublet, Surveyed
 from forebay.flow.model import FlowModel
+from forebay.flow.placement import TOUCHING
 from forebay.flow.stagnation.bounds import exponent_of
 from forebay.flow.stagnation.candidates import depths, on_walls
 from forebay.flow.stagnation.clusters import enclose, groups
@@ -163,6 +164,7 @@ class GeneralSearch:
         return np.array(at, dtype=np.complex128), np.array(radii, dtype=np.float64)
 
     def _hole(self, pole: _Pole) -> float:
+        """Radius of a disc about a pole, 0 if none can be proven to hold no zero, as on a ring."""
         others = np.abs(self.model.singular_places - pole.at)
         limits = [float(np.min(others[others > 0.0], initial=2.0 * self.model.scale))]
         limits += [abs(pier.at - pole.at) - pier.radius for pier in self.model.piers]
@@ -173,7 +175,7 @@ class GeneralSearch:
                 2.0
                 * float(np.min([w.distance(np.asarray(pole.at)) for w in self.model.walls], initial=np.inf))
             )
-        for part in _HOLES:
+        for part in _HOLES if min(limits) > TOUCHING * self.model.scale else ():
             radius = part * min(limits)
             try:
                 if winding(self.field.proves, pole.at, radius) == -pole.order:

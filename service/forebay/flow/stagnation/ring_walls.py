@@ -16,13 +16,11 @@ from math import inf
 
 import numpy as np
 
-from forebay.flow.arrays import ComplexArray, FloatArray, IntArray
+from forebay.flow.arrays import FloatArray, IntArray
 from forebay.flow.model import FlowModel
 from forebay.flow.sheets.mesh import Mesh
-from forebay.flow.sheets.ring import EdgeKind
+from forebay.flow.stagnation.ring_runs import Run, runs_of
 
-_PLACES = np.array([-0.995, -0.9, -0.6, -0.2, 0.2, 0.6, 0.9, 0.995])
-"""Where the sign is looked at on every element."""
 _BISECTIONS = 50
 
 
@@ -41,51 +39,12 @@ class Flip:
     standing: float
 
 
-@dataclass(frozen=True, slots=True)
-class _Run:
-    """Consecutive places of one ring on edges of one kind, shape (n,).
-
-    z : places [m];  speed : component along or across [m/s];  element : of each
-    turn : factor that makes the component of W real;  closed : whether the last is followed by the first
-    """
-
-    z: ComplexArray
-    speed: FloatArray
-    element: IntArray
-    turn: ComplexArray
-    closed: bool
-
-
 def ring_flips(model: FlowModel, mesh: Mesh) -> list[Flip]:
-    """All changes of sign along the rings of a model, poles on the wall left out."""
-    poles = np.array([s.at for s in model.singularities], dtype=np.complex128)
-    return [flip for run in _runs(model, mesh) for flip in _flips(model, mesh, run, poles)]
+    """All changes of sign along the rings of a model, elements on the wall left out."""
+    return [flip for run in runs_of(model, mesh) for flip in _flips(model, mesh, run)]
 
 
-def _runs(model: FlowModel, mesh: Mesh) -> list[_Run]:
-    z, element = mesh.points(_PLACES)
-    across = mesh.is_equipotential[element]
-    turn = mesh.direction[element] * np.where(across, -1j, 1.0)
-    speed = (model.velocity(z) * turn).real
-    runs = []
-    group = np.where(mesh.kind == EdgeKind.UNIFORM, -2, mesh.group)[element]
-    for k in range(len(mesh.rings)):
-        own = np.flatnonzero(mesh.ring[element] == k)
-        cuts = np.flatnonzero(np.diff(group[own])) + 1
-        if cuts.size == 0:
-            parts = [own]
-        elif mesh.rings[k].closed:
-            parts = np.split(np.roll(own, -cuts[0]), cuts[1:] - cuts[0])
-        else:
-            parts = np.split(own, cuts)
-        for part in parts:
-            if group[part[0]] != -2:
-                closed = cuts.size == 0 and mesh.rings[k].closed
-                runs.append(_Run(z[part], speed[part], element[part], turn[part], closed))
-    return runs
-
-
-def _flips(model: FlowModel, mesh: Mesh, run: _Run, poles: ComplexArray) -> list[Flip]:
+def _flips(model: FlowModel, mesh: Mesh, run: Run) -> list[Flip]:
     following = np.roll(np.arange(run.z.size), -1)
     changes = np.sign(run.speed) * np.sign(run.speed[following]) < 0.0
     if not run.closed:
@@ -94,20 +53,18 @@ def _flips(model: FlowModel, mesh: Mesh, run: _Run, poles: ComplexArray) -> list
     if here.size == 0:
         return []
     places = np.array([_refined(model, mesh, run, int(k), int(following[k])) for k in here])
-    is_pole = _holds_pole(run, here, following, poles)
-    standing, partner = _standing(run, here[~is_pole])
-    names = [mesh.rings[mesh.ring[e]].edges[mesh.edge[e]] for e in run.element[here[~is_pole]]]
-    sizes = 2.0 * np.abs(mesh.half[run.element[here[~is_pole]]])
-    own = places[~is_pole]
-    apart = np.where(partner >= 0, np.abs(own - own[partner]), np.inf)
+    standing, partner = _standing(run, here)
+    names = [mesh.rings[mesh.ring[e]].edges[mesh.edge[e]] for e in run.element[here]]
+    sizes = 2.0 * np.abs(mesh.half[run.element[here]])
+    apart = np.where(partner >= 0, np.abs(places - places[partner]), np.inf)
     sizes = np.minimum(sizes, np.where(apart > 0.0, apart, np.inf))
     return [
         Flip(complex(at), name, float(size), float(least))
-        for at, name, size, least in zip(own, names, sizes, standing, strict=True)
+        for at, name, size, least in zip(places, names, sizes, standing, strict=True)
     ]
 
 
-def _refined(model: FlowModel, mesh: Mesh, run: _Run, a: int, b: int) -> complex:
+def _refined(model: FlowModel, mesh: Mesh, run: Run, a: int, b: int) -> complex:
     """Where the sign changes between two places; the vertex if they lie on different edges."""
     if mesh.edge[run.element[a]] != mesh.edge[run.element[b]]:
         return complex(mesh.end[run.element[a]])
@@ -121,17 +78,7 @@ def _refined(model: FlowModel, mesh: Mesh, run: _Run, a: int, b: int) -> complex
     return 0.5 * (low + high)
 
 
-def _holds_pole(run: _Run, here: IntArray, following: IntArray, poles: ComplexArray) -> np.ndarray:
-    """Whether an element stands on the wall between the two places of a change."""
-    a, b = run.z[here], run.z[following[here]]
-    if poles.size == 0:
-        return np.zeros(here.size, dtype=np.bool_)
-    share = (poles - a[:, None]) / (b - a)[:, None]
-    between = (share.real > 0.0) & (share.real < 1.0) & (np.abs(share.imag) < 1e-6)
-    return np.asarray(between.any(axis=1), dtype=np.bool_)
-
-
-def _standing(run: _Run, here: IntArray) -> tuple[FloatArray, IntArray]:
+def _standing(run: Run, here: IntArray) -> tuple[FloatArray, IntArray]:
     """Standing of every change [m/s], and which other it vanishes with, -1 for none; shape of here."""
     left = list(range(here.size))
     standing, partner = np.full(here.size, inf), np.full(here.size, -1, dtype=np.int64)
@@ -152,7 +99,7 @@ def _standing(run: _Run, here: IntArray) -> tuple[FloatArray, IntArray]:
     return standing, partner
 
 
-def _top(run: _Run, a: int, b: int) -> float:
+def _top(run: Run, a: int, b: int) -> float:
     """Largest speed after place a up to place b [m/s]."""
     count = (b - a) % run.z.size or run.z.size
     index = (a + 1 + np.arange(count)) % run.z.size

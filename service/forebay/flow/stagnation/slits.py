@@ -4,6 +4,10 @@ At an end the velocity is logarithmically unbounded, and a saddle sits exponenti
 faces a
 current; it is a property of the constant strength. Small discs about the ends are therefore left out of the
 search and looked at by themselves. A slit has index 0 or 1 as the current across it is strong or weak.
+
+In a wall that was solved for, nothing can be proven on the wall itself. There the component through a slit
+has one sign, so that the direction of the velocity runs within half a turn between the signs that the
+component along the wall has just before and behind.
 """
 
 from dataclasses import dataclass
@@ -16,7 +20,7 @@ from forebay.flow.lines import LineTerm
 from forebay.flow.model import FlowModel
 from forebay.flow.segments import Segment
 from forebay.flow.stagnation.field import BoundedField
-from forebay.flow.stagnation.result import WATER
+from forebay.flow.stagnation.ring_track import Opening, mesh_of, opening_of
 from forebay.flow.stagnation.turning import Disc, turning
 
 TIP = 1e-7
@@ -28,7 +32,8 @@ class Slit:
     """One line element.
 
     line, term : as in the model;  jump : W on its left less W on its right [m/s]
-    in_wall : whether it lies in a wall;  roots : whether start and end stand on a wall
+    in_wall : whether it lies in a wall;  roots : whether start and end stand on a straight wall
+    opening : where it stands on a ring, None if it does not
     """
 
     line: Line
@@ -36,6 +41,7 @@ class Slit:
     jump: complex
     in_wall: bool
     roots: tuple[bool, bool]
+    opening: Opening | None = None
 
     @property
     def length(self) -> float:
@@ -74,16 +80,19 @@ class Slit:
 def slits_of(model: FlowModel) -> list[Slit]:
     """The line elements of a model as slits."""
     terms = [term for term in model.terms if isinstance(term, LineTerm)]
+    mesh = mesh_of(model)
     found = []
     for line, term in zip(model.lines, terms, strict=True):
         tangent = (line.end - line.start) / abs(line.end - line.start)
-        in_wall = line.on != WATER
+        in_wall = line.wall is not None
+        opening = None if mesh is None else opening_of(model, mesh, line)
         reach = 1e-9 * model.scale
         roots = tuple(
             any(float(wall.distance(np.asarray(end))) <= reach for wall in model.walls)
             for end in (line.start, line.end)
         )
-        found.append(Slit(line, term, -1j * line.flux * np.conj(tangent), in_wall, (roots[0], roots[1])))
+        jump = -1j * line.flux * np.conj(tangent)
+        found.append(Slit(line, term, jump, in_wall, (roots[0], roots[1]), opening))
     return found
 
 
@@ -98,6 +107,8 @@ class SlitTurning:
     def total(self) -> float:
         """Turning along the edge, the water on the left, from wall to wall where it touches one [rad]."""
         slit = self._slit
+        if slit.opening is not None:
+            return self._along_ring(slit.opening)
         if slit.in_wall:
             return self._along_wall()
         edge = self._side(1) - self._side(-1)
@@ -191,3 +202,15 @@ class SlitTurning:
             closing = float(np.angle(limit / beside)) * sign
             self.hidden.append((centre, round((closing - turn) / np.pi)))
         return total
+
+    def _along_ring(self, opening: Opening) -> float:
+        """A line in a wall that was solved for, from just before it to just behind it."""
+        track, step = opening.track, TIP * (opening.high - opening.low)
+        s = track.wrapped(np.array([opening.low - step, opening.high + step]))
+        z, direction = track.places(s), track.mesh.direction[track.elements(s)]
+        along = (self._field.model.velocity(z) * direction).real
+        for k, limit in enumerate((opening.toward, -opening.toward)):
+            hides = along[k] * limit < 0.0 and not opening.is_convex(at_end=bool(k))
+            self.hidden.append((complex(z[k]), int(hides)))
+        angle = opening.toward * np.pi * (along < 0.0)
+        return float(angle[1] - angle[0])

@@ -106,7 +106,7 @@ class PointMouth:
 
 
 def _point_mouth(model: FlowModel, singularity: Singularity, surroundings: Surroundings) -> PointMouth:
-    wall = next((wall for wall in model.walls if wall.name == singularity.on), None)
+    wall = singularity.wall
     return PointMouth(
         model=model,
         at=singularity.at,
