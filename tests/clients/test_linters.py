@@ -1,7 +1,5 @@
 """Two general linters find nothing in the contract, not even a hint, under their published rules."""
 
-import json
-
 import pytest
 
 from support.node import CLIENTS, needs_node, run_node
@@ -28,31 +26,12 @@ def test_contract_is_clean(linter):
     assert "problem" not in lint(linter, CONTRACT)
 
 
-FAULTS = {
-    "without-licence": lambda document: document["info"].pop("license"),
-    "example-that-does-not-fit": lambda document: document["components"]["schemas"]["Pier"]["properties"][
-        "radius"
-    ].update(examples=["wide"]),
-    "two-operations-of-one-id": lambda document: document["paths"]["/livez"]["get"].update(
-        operationId="isReady"
-    ),
-}
-"""What a linter has to see, and how it is put into the contract."""
-
-
-@pytest.mark.parametrize(
-    ("linter", "fault"),
-    [
-        ("redocly", "without-licence"),
-        ("redocly", "two-operations-of-one-id"),
-        ("spectral", "example-that-does-not-fit"),
-        ("spectral", "two-operations-of-one-id"),
-    ],
-)
-def test_linter_can_complain(linter, fault, tmp_path):
-    contract = json.loads(CONTRACT.read_text(encoding="utf-8"))
-    FAULTS[fault](contract)
+@pytest.mark.parametrize("linter", LINTERS)
+def test_linter_can_complain(linter, tmp_path):
     document = tmp_path / "openapi.json"
-    document.write_text(json.dumps(contract), encoding="utf-8")
-    with pytest.raises(AssertionError):
+    # it says neither where it is served nor under which licence or by whom
+    document.write_text(
+        '{"openapi": "3.1.0", "info": {"title": "x", "version": "1"}, "paths": {}}', encoding="utf-8"
+    )
+    with pytest.raises(AssertionError, match="problem"):
         lint(linter, document)
