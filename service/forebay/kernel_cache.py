@@ -1,17 +1,21 @@
 """Where compiled kernels are kept: settled before anything is compiled, so that no disk stands in the way.
 
 The compiler keeps what it makes beside the source, or in NUMBA_CACHE_DIR. Where neither can be written to it
-refuses to start, and on a full disk it fails at the first request.
+refuses to start, and on a full disk it fails at the first request. A disk that fills up later is passed over.
 """
 
 import atexit
+import logging
 import os
 import shutil
 import tempfile
 from collections.abc import MutableMapping
 from pathlib import Path
+from typing import Any
 
 from forebay.settings import SettingsError
+
+LOG = logging.getLogger("forebay")
 
 VARIABLE = "NUMBA_CACHE_DIR"
 """The compiler's own setting, read when it is imported."""
@@ -44,6 +48,22 @@ def settle_kernel_cache(
         return None
     environment[VARIABLE] = str(_temporary())
     return f"{named or sources} cannot be written to or is full: kernels are compiled at every start"
+
+
+def pass_over_full_disks() -> None:
+    """Use in this process what the compiler has made and cannot keep; by itself it raises instead."""
+    from numba.core import caching  # noqa: PLC0415  (reads the environment, which must be settled before)
+
+    save = caching.Cache.save_overload
+
+    def save_if_there_is_room(cache: Any, signature: Any, compiled: Any) -> None:  # noqa: ANN401
+        try:
+            save(cache, signature, compiled)
+        except OSError as error:
+            LOG.warning("a compiled kernel could not be kept: %s", error.strerror)
+
+    if save.__name__ != save_if_there_is_room.__name__:
+        caching.Cache.save_overload = save_if_there_is_room
 
 
 def _has_room(folder: Path) -> bool:

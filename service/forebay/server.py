@@ -9,6 +9,7 @@ from typing_extensions import override
 
 from forebay.api.request_log import start_log
 from forebay.app import Application, create_app
+from forebay.kernel_cache import pass_over_full_disks
 from forebay.settings import Settings
 
 GRACE = 10
@@ -59,6 +60,7 @@ def run_server(*, host: str | None, port: int | None) -> int:
         timeout_graceful_shutdown=GRACE,
     )
     log = start_log()
+    pass_over_full_disks()
     try:
         Server(config, app, settings.drain).run()
     finally:

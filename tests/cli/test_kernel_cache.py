@@ -37,6 +37,19 @@ print(settle_kernel_cache(sources=Path(sys.argv[1])))
 """
 
 
+NO_ROOM = """\
+import resource
+resource.setrlimit(resource.RLIMIT_FSIZE, (0, resource.RLIM_INFINITY))
+"""
+"""As on a full disk: files can be made, and nothing written into them."""
+
+REGARDLESS = """\
+from forebay.kernel_cache import pass_over_full_disks
+pass_over_full_disks()
+pass_over_full_disks()
+"""
+
+
 @pytest.fixture
 def sealed(tmp_path):
     """A folder of sources beside which nothing can be kept, whoever runs this: its cache is a file."""
@@ -78,6 +91,15 @@ def test_kernels_are_compiled_where_nothing_can_be_kept_and_nothing_is_left(seal
     assert outcome.returncode == 0, outcome.stderr
     assert "compiled at every start" in outcome.stdout
     assert not list(sealed.parent.glob("forebay-kernels-*"))
+
+
+def test_kernel_is_used_that_a_disk_full_since_the_start_cannot_keep(sealed, tmp_path):
+    place = {VARIABLE: str(tmp_path / "kernels")}
+    alone = compiled(sealed, NO_ROOM, **place)
+    assert "OSError" in alone.stderr
+    outcome = compiled(sealed, REGARDLESS + NO_ROOM, **place)
+    assert outcome.returncode == 0, outcome.stderr
+    assert outcome.stderr.count("could not be kept") == 1
 
 
 def test_place_that_can_be_written_to_stays(sealed, tmp_path):

@@ -8,6 +8,7 @@ from forebay.api.limits import Limits
 from forebay.api.operation import Deferred, perform
 from forebay.api.outcome import Reply
 from forebay.api.problems import Problem
+from forebay.kernel_cache import pass_over_full_disks
 
 OUT_OF_MEMORY = 77
 """Exit code of a worker that met its memory limit: its caller learns of it, and a fresh one follows."""
@@ -15,6 +16,7 @@ OUT_OF_MEMORY = 77
 
 def start_worker(memory: int) -> None:
     """Limit the memory of this process; the deadlines of its caller limit its time."""
+    pass_over_full_disks()
     _, hardest = resource.getrlimit(resource.RLIMIT_DATA)
     allowed = memory if hardest == resource.RLIM_INFINITY else min(memory, hardest)
     resource.setrlimit(resource.RLIMIT_DATA, (allowed, hardest))
