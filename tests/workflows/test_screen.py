@@ -256,8 +256,27 @@ def test_face_on_the_wall_of_an_outline_draws():
     assert gained[1] < -0.01
 
 
-def test_face_over_two_edges_takes_its_approach_from_its_area():
-    flow, _ = flow_of(AT_QUAY, face(16 + 4j, 24 + 4j))
+def test_face_over_two_edges_in_a_line_draws_as_over_one():
+    one = Outline("quay", (10 + 0j, 30 + 0j, 30 + 4j, 10 + 4j))
+    (over_two,), (over_one,) = (
+        check_screens(layout, (face(16 + 4j, 24 + 4j),), ())
+        for layout in (AT_QUAY, replace(AT_QUAY, structures=(one,)))
+    )
+    assert over_two.flow.basis is Basis.MODELLED
+    parts = np.linspace(0.1, 0.9, 9)
+    speeds = (found.flow.sides[0].on.along(parts) for found in (over_two, over_one))
+    bound = compile_layout(AT_QUAY).bound
+    assert bound is not None
+    # the walls are met to far less in the middle of an edge: what is left comes from its ends, 4 m off
+    np.testing.assert_allclose(*speeds, atol=2.0 * float(bound.velocity(np.array([4.0]))[0]))
+
+
+BENT = Outline("quay", (10 + 0j, 30 + 0j, 30 + 4j, 20 + 4.000002j, 10 + 4j))
+"""The same with a bend too small to leave the wall, but of more than rounding."""
+
+
+def test_face_over_a_bend_takes_its_approach_from_its_area():
+    flow, _ = flow_of(replace(AT_QUAY, structures=(BENT,)), face(16 + 4j, 24 + 4j))
     assert flow.basis is Basis.CALCULATED
     assert flow.on == "quay"
     assert flow.max_approach == pytest.approx(1.2 / (8.0 * 1.5), rel=1e-12)

@@ -95,4 +95,3 @@ def cores_of(layout: Layout) -> tuple[CoredVortex, ...]:
         for e in layout.elements
         if isinstance(e, Vortex) and e.core
     )
-

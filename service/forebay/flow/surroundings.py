@@ -7,13 +7,19 @@ import numpy as np
 
 from forebay.flow.arrays import BoolArray, ComplexArray, FloatArray, IntArray
 from forebay.flow.far_field import FarField, far_field_of
+from forebay.flow.features import Line
 from forebay.flow.kernels.nearest import nearest_sites
 from forebay.flow.layout import Doublet, Element, Surveyed, outflow
 from forebay.flow.model import FlowModel
 from forebay.flow.open_edges import OpenEdges, open_edges_of
+from forebay.flow.placement import TOUCHING
 
 _NEAR = 0.005
 """Radius of capture over the distance to the next site, and the other velocity over the element's own [-]."""
+_TOUCH = 1e-9
+"""Distance from a line element, over its length, at which it is reached [-]."""
+_NEAR_SOLVED = 4.0
+"""The same in a wall that was solved for, over the distance that counts as on it, if that is more [-]."""
 _TIP = 1e-7
 """Radius of capture about the end of a line over its length [-]."""
 _RING = np.exp(2j * np.pi * (np.arange(16) + 0.5) / 16)
@@ -70,6 +76,8 @@ class LineFaces:
 
     start, end : [m];  owners : names;  flux : out of both sides together, per length [m/s]
     in_water : whether water can pass to the other side (not so on a bank)
+    touch : distance at which it is reached, over its length [-]
+    side : 1 or -1 as the water lies left or right of it if it lies in a wall that was solved for, else 0
     """
 
     start: ComplexArray
@@ -77,6 +85,8 @@ class LineFaces:
     owners: tuple[str, ...]
     flux: FloatArray
     in_water: BoolArray
+    touch: FloatArray
+    side: FloatArray
 
     @property
     def lengths(self) -> FloatArray:
@@ -96,15 +106,36 @@ class LineFaces:
         return np.asarray(np.any(opposite & (at >= 0.0) & (at <= 1.0), axis=1))
 
     def ahead(self, z: ComplexArray, heading: ComplexArray) -> tuple[FloatArray, IntArray]:
-        """Distance along the heading to the nearest line [m], inf without one, and its index; shape (n,)."""
+        """Distance along the heading to the nearest line [m], inf without one, and its index; shape (n,).
+
+        In a wall that was solved for a line is met where it is reached: beyond, the flow means nothing.
+        """
         p = self.local(z)
         slope = heading[:, None] / (self.end - self.start)
+        height, fall = (
+            p.imag - self.side * self.touch,
+            np.where(self.side == 0.0, 1.0, self.side) * slope.imag,
+        )
         with np.errstate(divide="ignore", invalid="ignore"):
-            steps = -p.imag / slope.imag
+            steps = -height / slope.imag
             at = p.real + steps * slope.real
-        steps = np.where((steps > 0.0) & (at >= 0.0) & (at <= 1.0), steps, np.inf)
+        behind = (
+            (self.side * height <= 0.0)
+            & (self.side != 0.0)
+            & (fall < 0.0)
+            & (self.side * p.imag >= -self.touch)
+        )
+        steps, at = np.where(behind, 0.0, steps), np.where(behind, p.real, at)
+        steps = np.where(((steps > 0.0) | behind) & (at >= 0.0) & (at <= 1.0), steps, np.inf)
         index = np.argmin(steps, axis=1)
         return steps[np.arange(z.size), index], index
+
+    def beside(self, z: ComplexArray, index: IntArray) -> BoolArray:
+        """Whether points are at the line of their own index, or at its extension, shape (n,)."""
+        height = self.local(z).imag[np.arange(z.size), index]
+        return np.asarray(
+            np.abs(height - (self.side * self.touch)[index]) <= self.touch[index], dtype=np.bool_
+        )
 
 
 @dataclass(frozen=True, slots=True)
@@ -178,13 +209,27 @@ def _role(element: Element) -> int:
 
 
 def _line_faces(model: FlowModel) -> LineFaces:
+    solved = np.array(
+        [line.wall is not None and line.wall not in model.walls for line in model.lines], dtype=np.bool_
+    )
+    side = np.array([_side(line) for line in model.lines], dtype=np.float64)
+    lengths = np.array([abs(line.end - line.start) for line in model.lines])
     return LineFaces(
         start=np.array([line.start for line in model.lines], dtype=np.complex128),
         end=np.array([line.end for line in model.lines], dtype=np.complex128),
         owners=tuple(line.owner for line in model.lines),
         flux=np.array([line.flux for line in model.lines], dtype=np.float64),
-        in_water=np.array([line.on == "water" for line in model.lines], dtype=np.bool_),
+        in_water=np.array([line.wall is None for line in model.lines], dtype=np.bool_),
+        touch=np.where(solved, np.maximum(_TOUCH, _NEAR_SOLVED * TOUCHING * model.scale / lengths), _TOUCH),
+        side=np.where(solved, side, 0.0),
     )
+
+
+def _side(line: Line) -> float:
+    """1 if the water lies left of a line in a wall, -1 if right, 0 in the water."""
+    if line.wall is None:
+        return 0.0
+    return float(np.sign((line.wall.direction * (line.end - line.start).conjugate()).real))
 
 
 def _captures(model: FlowModel, places: ComplexArray, lines: LineFaces) -> tuple[FloatArray, FloatArray]:

@@ -37,8 +37,6 @@ _REACH = 0.45
 _SHRINK, _GROW, _SAFETY = 0.2, 4.0, 0.9
 _STILL = 1e-25
 """Speed over the speed of reference below which a line has come to rest [-]."""
-_TOUCH = 1e-9
-"""Distance from a line element, over its length, at which it is reached [-]."""
 _ABREAST = 1e-6
 """Distance ahead to a line element, over its length, within which a line beside its plane is there [-]."""
 _CLOSED = 1e-10
@@ -251,7 +249,7 @@ class _Run:
             return stay
         ahead, index = faces.ahead(lines.z, self._heading())
         lines.step = np.minimum(lines.step, 0.9 * ahead)
-        near = np.abs(faces.local(lines.z).imag[np.arange(index.size), index]) <= _TOUCH
+        near = faces.beside(lines.z, index)
         arrived = (ahead <= _ABREAST * faces.lengths[index]) & near
         if not np.any(arrived):
             return stay
@@ -275,7 +273,9 @@ class _Run:
             return False
         crossing = Crossing(k, complex(lines.z[i]), arriving, leaving, float(lines.time[i]))
         self._record_crossing(i, crossing)
-        lines.z[i : i + 1], change = self._other_side(lines.z[i : i + 1], unit, local, abs(span))
+        lines.z[i : i + 1], change = self._other_side(
+            lines.z[i : i + 1], unit, local, float(faces.touch[k]) * abs(span)
+        )
         lines.psi[i] += change
         lines.w[i : i + 1] = self.model.velocity(lines.z[i : i + 1])
         return True
@@ -284,16 +284,16 @@ class _Run:
         self.crossings.setdefault(int(self.lines.index[i]), []).append(crossing)
 
     def _other_side(
-        self, z: ComplexArray, unit: complex, local: complex, length: float
+        self, z: ComplexArray, unit: complex, local: complex, touch: float
     ) -> tuple[ComplexArray, float]:
         """The point of the same streamline just beyond a line element, and what is left of the change of psi.
 
         Straight across psi changes by the flow along the line; a shift along the line makes good for it.
         """
-        opposite = z + 1j * unit * (-local.imag - np.sign(local.imag) * _TOUCH * length)
+        opposite = z + 1j * unit * (-local.imag - np.sign(local.imag) * touch)
         change = float(self.model.chord(z, opposite).imag[0])
         shift = -change / float((self.model.velocity(opposite)[0] * unit).imag)
-        opposite = opposite + unit * np.clip(shift, -1e3 * _TOUCH * length, 1e3 * _TOUCH * length)
+        opposite = opposite + unit * np.clip(shift, -1e3 * touch, 1e3 * touch)
         return opposite, float(self.model.chord(z, opposite).imag[0])
 
     def _stop(self, index: IntArray, closed: BoolArray) -> None:
