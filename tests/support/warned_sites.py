@@ -16,6 +16,7 @@ from forebay.flow.layout import (
     Layout,
     LineSink,
     OpenEdge,
+    Outline,
     Pier,
     Sink,
     Source,
@@ -58,9 +59,20 @@ def pier_in(speed, radius=1.5):
     return site(Layout(DEPTH, ambient=Ambient(speed + 0j), structures=(Pier("P", 0j, radius),)))
 
 
-def wake(number):
+def box(length, breadth):
+    """An outline about the origin, its length along x."""
+    a, b = 0.5 * length, 0.5 * breadth
+    return Outline("box", (complex(-a, -b), complex(a, -b), complex(a, b), complex(-a, b)))
+
+
+def box_in(speed, breadth=3.0):
+    return site(Layout(DEPTH, ambient=Ambient(speed + 0j), structures=(box(2.0 * breadth, breadth),)))
+
+
+def wake(number, body=None):
     # S = c_f D / h with D = h
-    return site(replace(CURRENT, structures=(Pier("P", 0j, 0.5 * DEPTH),)), SiteData(bed_friction=number))
+    body = body or Pier("P", 0j, 0.5 * DEPTH)
+    return site(replace(CURRENT, structures=(body,)), SiteData(bed_friction=number))
 
 
 def outfall(area=None, distance=50.0, current=0.5):
@@ -128,9 +140,9 @@ def known_opening(share):
     return site(layout, SiteData(elevations={"a": DEPTH / 2}), Readings(points))
 
 
-def tidal(period):
+def tidal(period, body=None):
     # KC = U T / D = 0.5 T / 3
-    layout = replace(CURRENT, structures=(Pier("P", 0j, 1.5),))
+    layout = replace(CURRENT, structures=(body or Pier("P", 0j, 1.5),))
     return site(layout, SiteData(tidal_period=period))
 
 

@@ -1,6 +1,7 @@
 """A layout as a client writes it, and its conversion into the flow's own values."""
 
 from collections.abc import Iterator
+from dataclasses import replace
 from typing import Annotated
 
 import numpy as np
@@ -219,7 +220,10 @@ class Layout(Conditions):
 
         Raises ElevationOutsideWaterError for an elevation above the surface.
         """
-        return self.data_of(self.elements, units)
+        merged = set(self.merged(units))
+        outlines = (s for index, s in enumerate(self._flow_structures(units)) if index in merged)
+        known = tuple(outline for outline in outlines if isinstance(outline, flow.Outline))
+        return replace(self.data_of(self.elements, units), merged=known)
 
 
 class LayoutRequest(ComputeRequest):

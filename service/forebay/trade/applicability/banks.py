@@ -4,7 +4,12 @@ import math
 from collections.abc import Iterator
 
 from forebay.flow.layout import Channel, Core, CoreModel, Corner, Vortex
-from forebay.trade.applicability.geometry import bank_distance, distance_to, element_bank_distance
+from forebay.trade.applicability.geometry import (
+    bank_distance,
+    distance_to,
+    element_bank_distance,
+    ring_distance,
+)
 from forebay.trade.applicability.site import Site
 from forebay.trade.applicability.warning import ApplicabilityWarning, Severity, WarningKind
 
@@ -82,12 +87,13 @@ def bank_shear(site: Site) -> Iterator[ApplicabilityWarning]:
 
 
 def core_near_wall(site: Site) -> Iterator[ApplicabilityWarning]:
-    """Vortices whose core reaches a bank or a pier."""
+    """Vortices whose core reaches a bank, a pier or an outline."""
     for path, element in site.elements():
         if not isinstance(element, Vortex) or element.core is None:
             continue
         limit = _reach(element.core)
         walls = [distance_to(pier, element.at) for pier in site.layout.piers]
+        walls += [ring_distance(element.at, outline.points) for outline in site.layout.outlines]
         distance = min([bank_distance(site.layout.shore, element.at), *walls])
         if distance < limit:
             yield CORE_NEAR_WALL.raised(

@@ -1,7 +1,6 @@
 """Distances between things of a layout, before anything is computed."""
 
 import math
-from collections.abc import Iterable
 
 from forebay.flow.layout import (
     Basin,
@@ -37,12 +36,13 @@ def bank_distance(shore: Shore, z: complex) -> float:  # noqa: PLR0911
             ahead = _within(_ahead(z, corner, along), length)
             return min(_within(_across(z, corner, along), width), ahead)
         case Surveyed():
-            return _to_rings(z, (shore.outer, *(island.points for island in shore.islands)))
+            rings = (shore.outer, *(island.points for island in shore.islands))
+            return min(ring_distance(z, ring) for ring in rings)
 
 
-def _to_rings(z: complex, rings: Iterable[tuple[complex, ...]]) -> float:
-    sides = [side for ring in rings for side in zip(ring, ring[1:] + ring[:1], strict=True)]
-    return min(_to_segment(z, start, end) for start, end in sides)
+def ring_distance(z: complex, ring: tuple[complex, ...]) -> float:
+    """Distance from a place to the nearest edge of a ring [m]."""
+    return min(_to_segment(z, start, end) for start, end in zip(ring, ring[1:] + ring[:1], strict=True))
 
 
 def _across(z: complex, point: complex, along: complex) -> float:

@@ -19,6 +19,7 @@ from forebay.flow.layout import (
     Layout,
     LineSink,
     LineSource,
+    Outline,
     Pier,
     Sink,
     Source,
@@ -26,6 +27,7 @@ from forebay.flow.layout import (
     Vortex,
     outflow,
 )
+from forebay.trade.applicability.bodies import Body, bodies_of
 from forebay.trade.applicability.geometry import distance_to, ends_of
 from forebay.trade.exposure import Threshold
 
@@ -50,6 +52,7 @@ class SiteData:
     elevations : of openings above the bed, by name [m];  opening_radii : in plan, by name [m]
     excess_densities : of outfalls' water over the water around, by name [kg/m3]
     port_shapes : of outfalls by name; a point's port is round, a line's a slot, if nothing is known
+    merged : outlines that stand on surveyed land and have become part of it, so that the layout lacks them
     """
 
     bed_friction: float | None = None
@@ -65,6 +68,7 @@ class SiteData:
     opening_radii: Mapping[str, float] = field(default_factory=dict)
     excess_densities: Mapping[str, float] = field(default_factory=dict)
     port_shapes: Mapping[str, PortShape] = field(default_factory=dict)
+    merged: tuple[Outline, ...] = ()
 
 
 @dataclass(frozen=True, slots=True)
@@ -104,11 +108,11 @@ class Site:
         for index, element in enumerate(self.layout.elements):
             yield ("elements", index), element
 
-    def piers(self) -> Iterator[tuple[Path, Pier]]:
-        """Piers with their paths."""
-        for index, structure in enumerate(self.layout.structures):
-            if isinstance(structure, Pier):
-                yield ("structures", index), structure
+    @cached_property
+    def bodies(self) -> tuple[Body, ...]:
+        """Piers, outlines and islands: what water flows past."""
+        found = bodies_of(self.layout, self.data.merged)
+        return tuple(body for body in found if self.breadth(body) > 0.0)
 
     def compact(self) -> Iterator[tuple[Path, Source | Sink]]:
         """Sources and sinks at a point."""
@@ -187,20 +191,32 @@ class Site:
         """Largest speed at a far end [m/s]: the current that the elements are in."""
         return max(self.far_speeds.values())
 
-    def speed_scale(self, z: complex, *, besides: Thing) -> float:
-        """Bound on the speed at a place without banks, the part of `besides` left out [m/s]."""
+    def stream(self, z: complex) -> complex:
+        """The ambient current at a place [m/s]; zero where it has no vector, as in surveyed water."""
         ambient = self.layout.ambient
         (a, b), (c, d) = ambient.gradient
         away = z - ambient.at
         shear = complex(a * away.real + b * away.imag, c * away.real + d * away.imag)
-        local = max(self.current, abs(ambient.velocity + shear))
-        others = [element for element in self.layout.elements if element is not besides]
-        return local + math.fsum(_induced(element, z, self.layout.depth) for element in others)
+        return ambient.velocity + shear
+
+    def breadth(self, body: Body) -> float:
+        """Extent of a body across the stream, or its largest where the stream is not known [m]."""
+        return body.breadth(self.stream(body.middle))
+
+    def speed_past(self, body: Body) -> float:
+        """Bound on the speed at a body without banks [m/s].
+
+        An element nearer to its middle than half its breadth counts as if it stood that far away.
+        """
+        local = max(self.current, abs(self.stream(body.middle)))
+        least = 0.5 * self.breadth(body)
+        elements, depth = self.layout.elements, self.layout.depth
+        return local + math.fsum(_induced(element, body.middle, depth, least) for element in elements)
 
 
-def _induced(element: Element, z: complex, depth: float) -> float:
-    """Speed that one element alone makes at a distance, or a bound on it [m/s]."""
-    distance = distance_to(element, z)
+def _induced(element: Element, z: complex, depth: float, least: float) -> float:
+    """Speed that one element alone makes at a distance of at least `least`, or a bound on it [m/s]."""
+    distance = max(distance_to(element, z), least)
     match element:
         case Vortex():
             strength = abs(element.circulation)

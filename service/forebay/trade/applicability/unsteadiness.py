@@ -26,9 +26,9 @@ ROTATION_SOURCE = "Rossby number (own check of f = 1.03126e-4 1/s at 45 deg); th
 TIDAL_REVERSAL = WarningKind(
     code="tidal-reversal",
     severity=Severity.CAUTION,
-    meaning="the tide turns before the wake of a pier is quasi-steady",
+    meaning="the tide turns before the wake of a pier, an outline or an island is quasi-steady",
     threshold="KC <= 50 (10 to 50 in the literature)",
-    formula="KC = U T / D",
+    formula="KC = U T / D, D across the stream",
     source="Keulegan-Carpenter number; threshold from memory",
     unit="1",
 )
@@ -57,7 +57,7 @@ TIDAL_PERIOD_UNKNOWN = WarningKind(
     code="tidal-period-unknown",
     severity=Severity.NOTE,
     meaning="the water is saline and no tidal period is given, so that reversal of wakes cannot be judged",
-    threshold="datum missing, salinity >= 0.5 g/kg and a pier",
+    threshold="datum missing, salinity >= 0.5 g/kg and a body in the stream",
     formula="none",
     source="convention of this service",
 )
@@ -73,30 +73,29 @@ LATITUDE_UNKNOWN = WarningKind(
 
 
 def tidal_reversal(site: Site) -> Iterator[ApplicabilityWarning]:
-    """Piers in a current that reverses."""
+    """Bodies in a current that reverses."""
     period = site.data.tidal_period
     if period is None:
         return
-    for path, pier in site.piers():
-        diameter = 2.0 * pier.radius
-        number = site.current * period / diameter
+    for body in site.bodies:
+        number = site.current * period / site.breadth(body)
         if number <= STEADY_WAKE:
             yield TIDAL_REVERSAL.raised(
-                f"The current past pier {pier.name!r} reverses after {number:.3g} of its diameters: the wake "
-                "of one tide meets the next.",
-                path,
+                f"The current past {body.called} reverses after {number:.3g} times its breadth across the "
+                "stream: the wake of one tide meets the next.",
+                body.path,
                 value=number,
                 limit=STEADY_WAKE,
             )
 
 
 def tidal_period_unknown(site: Site) -> Iterator[ApplicabilityWarning]:
-    """Piers in saline water of unknown tide."""
+    """Bodies in saline water of unknown tide."""
     saline = site.layout.water.salinity >= SEA_WATER
-    if site.data.tidal_period is None and saline and any(site.piers()):
+    if site.data.tidal_period is None and saline and site.bodies:
         yield TIDAL_PERIOD_UNKNOWN.raised(
-            "No tidal period is given: whether the wakes of piers are steady before the tide turns cannot be "
-            "judged."
+            "No tidal period is given: whether the wakes of piers, outlines and islands are steady before "
+            "the tide turns cannot be judged."
         )
 
 

@@ -1,7 +1,8 @@
-"""Behind a pier the water separates, which potential flow does not know."""
+"""Behind a body in the stream the water separates, which potential flow does not know."""
 
 from collections.abc import Iterator
 
+from forebay.trade.applicability.bodies import Body
 from forebay.trade.applicability.site import Site
 from forebay.trade.applicability.warning import ApplicabilityWarning, Severity, WarningKind
 
@@ -26,9 +27,12 @@ STEADY_BUBBLE = 0.5
 PIER_LEE = WarningKind(
     code="pier-lee",
     severity=Severity.CAUTION,
-    meaning="the water separates from a pier: its lee holds a wake where the model has smooth flow",
-    threshold="Re = U D / nu > 50, which is every pier in a current",
-    formula="shedding frequency f = 0.2 U / D; lee of at least 5 D",
+    meaning=(
+        "the water separates from a pier, an outline or an island: its lee holds a wake where the model has "
+        "smooth flow"
+    ),
+    threshold="Re = U D / nu > 50, which is every body in a current; D across the stream",
+    formula="shedding frequency f = 0.2 U / D of bodies that stand free; lee of at least 5 D",
     source="bluff-body shedding, Strouhal number about 0.2 (Blevins, Flow-Induced Vibration)",
     unit="1",
 )
@@ -36,43 +40,52 @@ PIER_LEE = WarningKind(
 SHALLOW_WAKE = WarningKind(
     code="shallow-wake",
     severity=Severity.CAUTION,
-    meaning="which kind of wake a pier has in water this shallow; in every case there is one",
+    meaning=(
+        "which kind of wake a body that stands free has in water this shallow; in every case there is one"
+    ),
     threshold="S < 0.2 vortex street, 0.2 to 0.5 unsteady bubble, > 0.5 steady bubble",
-    formula="S = c_f D / h",
+    formula="S = c_f D / h, D across the stream; not for groynes, which water passes on one side only",
     source="Chen and Jirka 1995, Fluid Dynamics Research 16, 11-34",
     unit="1",
 )
 
 
 def pier_lee(site: Site) -> Iterator[ApplicabilityWarning]:
-    """Every pier that water flows past."""
-    for path, pier in site.piers():
-        speed, diameter = site.speed_scale(pier.at, besides=pier), 2.0 * pier.radius
-        reynolds = speed * diameter / COLD_WATER_VISCOSITY
+    """Every body that water flows past."""
+    for body in site.bodies:
+        speed, breadth = site.speed_past(body), site.breadth(body)
+        reynolds = speed * breadth / COLD_WATER_VISCOSITY
         if reynolds > SEPARATION_REYNOLDS:
-            frequency = STROUHAL * speed / diameter
             yield PIER_LEE.raised(
-                f"Water at up to {speed:.2g} m/s separates from pier {pier.name!r} (Reynolds number "
-                f"{reynolds:.2g}): eddies leave it about every {1.0 / frequency:.2g} s "
-                f"({frequency:.2g} 1/s), and "
-                f"for at least {LEE * diameter:.3g} m behind it the computed flow is wrong.",
-                path,
+                f"Water at up to {speed:.2g} m/s separates from {body.called} (Reynolds number "
+                f"{reynolds:.2g}): {_eddies(body, speed / breadth)}, and for at least {LEE * breadth:.3g} m "
+                "behind it the computed flow is wrong.",
+                body.path,
                 value=reynolds,
                 limit=SEPARATION_REYNOLDS,
             )
 
 
+def _eddies(body: Body, rate: float) -> str:
+    """What the lee holds; rate : speed over breadth [1/s]."""
+    if not body.stands_free:
+        return "an eddy stays in its lee"
+    frequency = STROUHAL * rate
+    return f"eddies leave it about every {1.0 / frequency:.2g} s ({frequency:.2g} 1/s)"
+
+
 def shallow_wake(site: Site) -> Iterator[ApplicabilityWarning]:
-    """Kind of wake of every pier, where the bed friction is known."""
+    """Kind of wake of every body that stands free, where the bed friction is known."""
     friction = site.data.bed_friction
     if friction is None:
         return
-    for path, pier in site.piers():
-        number = friction * 2.0 * pier.radius / site.layout.depth
+    for body in site.bodies:
+        if not body.stands_free:
+            continue
+        number = friction * site.breadth(body) / site.layout.depth
         yield SHALLOW_WAKE.raised(
-            f"Pier {pier.name!r} has the shallow-wake number {number:.2g}: {_kind_of_wake(number)} "
-            "behind it.",
-            path,
+            f"The {body.called} has the shallow-wake number {number:.2g}: {_kind_of_wake(number)} behind it.",
+            body.path,
             value=number,
             limit=VORTEX_STREET if number < VORTEX_STREET else STEADY_BUBBLE,
         )
