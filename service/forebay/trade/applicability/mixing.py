@@ -12,9 +12,7 @@ from forebay.trade.applicability.friction import MIXING_COEFFICIENT, STRIP_SHARE
 from forebay.trade.applicability.geometry import distance_to
 from forebay.trade.applicability.site import Site, SiteData
 from forebay.trade.applicability.warning import ApplicabilityWarning, Severity, WarningKind
-
-FULL_MIXING = 0.1
-"""Length of mixing over the width, from mid-stream, over U W2 / eps; from a bank it is 0.4 [-]."""
+from forebay.trade.applicability.width_mixing import mixing_length
 
 SPREAD = "sigma = sqrt(2 eps t), eps = 0.6 h u*, u* = U sqrt(c_f)"
 FISCHER = "Fischer et al. 1979, Mixing in Inland and Coastal Waters, chapter 5"
@@ -92,7 +90,10 @@ SPILL_MIXED = WarningKind(
         "began on no longer matters, and each intake gets its share of the whole river's water"
     ),
     threshold="U t > L_m at the median travel time",
-    formula="L_m = 0.1 U W2 / eps (0.4 from a bank), eps = 0.6 h u*",
+    formula=(
+        "L_m = k U W2 / eps, k = 0.1 from mid-stream, 0.4 from a bank, between them until the concentration "
+        "is even to 5 %; eps = 0.6 h u*"
+    ),
     source=FISCHER,
     unit="m",
 )
@@ -144,7 +145,9 @@ def spill_notices(
         path = ("releases", index)
         raised += _about_divides(layout, mixing, release, answer, path)
         raised += [
-            w for arrival in answer.arrivals for w in _about_arrival(layout, mixing, answer, arrival, path)
+            notice
+            for arrival in answer.arrivals
+            for notice in _about_arrival(layout, mixing, release, answer, arrival=arrival, path=path)
         ]
     order = tuple(reversed(Severity))
     return tuple(sorted(raised, key=lambda warning: order.index(warning.severity)))
@@ -175,7 +178,7 @@ def _about_divides(
 
 
 def _about_arrival(
-    layout: Layout, mixing: Mixing, answer: ReleaseArrivals, arrival: Arrival, path: Path
+    layout: Layout, mixing: Mixing, release: Release, answer: ReleaseArrivals, *, arrival: Arrival, path: Path
 ) -> Iterator[ApplicabilityWarning]:
     intake = next(e for e in layout.elements if isinstance(e, Sink | LineSink) and e.name == arrival.at)
     if mixing.current == 0.0 or math.isnan(mixing.coefficient):
@@ -191,12 +194,12 @@ def _about_arrival(
             (sigma, limit),
         )
     if isinstance(layout.shore, Channel):
-        length = FULL_MIXING * mixing.current * layout.shore.width**2 / mixing.coefficient
+        length = mixing_length(release, layout, layout.shore, mixing.coefficient, mixing.current)
         if way > length:
             yield _of(
                 SPILL_MIXED,
                 f"Water from {answer.name!r} drifts about {way:.3g} m to {arrival.at!r}; after {length:.3g} "
-                "m a spill is mixed over the width, and streamlines no longer tell where it goes.",
+                "m a spill from there is mixed over the width, and streamlines no longer tell where it goes.",
                 path,
                 (way, length),
             )
