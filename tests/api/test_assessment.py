@@ -137,6 +137,24 @@ def test_the_summary_has_ten_lines_at_most(ready_client):
     assert any("further intake" in line for line in lines)
 
 
+DEAD_END = {"kind": "dead-end", "point": [0, -20], "along": [1, 0], "width": 40}
+
+
+@pytest.mark.parametrize(
+    ("shore", "words"),
+    [
+        # 2 m3/s in 40 m by 4 m
+        (DEAD_END, "current through open ends up to 0.0125 m/s"),
+        ({"kind": "channel", "point": [0, -20], "along": [1, 0], "width": 40}, "current far upstream 0 m/s"),
+    ],
+    ids=["dead-end", "channel"],
+)
+def test_the_summary_tells_the_current_where_the_water_has_one(ready_client, shore, words):
+    intake = {"kind": "sink", "name": "intake", "at": [10, 0], "discharge": 2.0}
+    layout = {"depth": 4.0, "shore": shore, "elements": [intake]}
+    assert words in assessed(ready_client, layout=layout)["result"]["summary"][0]
+
+
 @pytest.mark.parametrize(("apart", "comes_back"), [(3.0, True), (4.0, False)])
 def test_what_outfalls_give_back_is_told(ready_client, apart, comes_back):
     # between intake and outfall u = U - q/(2 pi) (1/x + 1/(d - x)), which has no zero, so that all of it runs

@@ -7,7 +7,8 @@ from typing import Any, NamedTuple
 from forebay.api.figures import counted, duration, percent, quantity, share_with_error
 from forebay.api.units import UnitSystem
 from forebay.api.warnings import Notice
-from forebay.flow.layout import Layout, LineSink, LineSource, Sink, Source
+from forebay.flow.ends import ends_of
+from forebay.flow.layout import Basin, DeadEnd, Layout, LineSink, LineSource, Sink, Source, Surveyed
 from forebay.flow.withdrawal.result import IntakeWithdrawal
 from forebay.trade.applicability.warning import Severity
 from forebay.workflows.assessment import Assessment
@@ -68,12 +69,18 @@ def site_line(told: Told) -> str:
     layout = told.layout
     drawn = [element.discharge for element in layout.elements if isinstance(element, Sink | LineSink)]
     given = [element.discharge for element in layout.elements if isinstance(element, Source | LineSource)]
-    current = told.write(abs(layout.ambient.velocity), "m/s")
-    depth = told.write(layout.depth, "m")
-    parts = [f"Mean depth {depth}, current far upstream {current}"]
+    parts = [f"Mean depth {told.write(layout.depth, 'm')}, {current_text(told)}"]
     parts += [f"{counted(len(drawn), 'intake')} drawing {told.write(sum(drawn), 'm3/s')}"] if drawn else []
     parts += [f"{counted(len(given), 'outfall')} giving {told.write(sum(given), 'm3/s')}"] if given else []
     return "; ".join([*parts, *stagnation_words(told)]) + "."
+
+
+def current_text(told: Told) -> str:
+    """The current far upstream, or through an end of water that has ends of its own instead."""
+    if not isinstance(told.layout.shore, Surveyed | DeadEnd | Basin):
+        return f"current far upstream {told.write(abs(told.layout.ambient.velocity), 'm/s')}"
+    speeds = [end.speed for end in ends_of(told.layout)]
+    return f"current through open ends up to {told.write(max(speeds), 'm/s')}" if speeds else "no open end"
 
 
 def intake_lines(told: Told, room: int) -> list[str]:

@@ -57,25 +57,22 @@ def fit_box(space: Box, window: Window) -> Box:
     return Box(left, space.top, left + width, space.top + width * aspect)
 
 
-def open_map(sheet: Sheet, box: Box, window: Window, units: DisplayUnits) -> MapFrame:
-    """Axes with ticks and the directions of x and y."""
+def quiet_axes(sheet: Sheet, box: Box, tick_space: float = TICK_SPACE) -> "Axes":
+    """Axes in a box [px] in faint ink, with round ticks at least `tick_space` apart [px at scale 1]."""
     from matplotlib.ticker import MaxNLocator
 
+    width, height = box.right - box.left, box.bottom - box.top
     place = (
         box.left / sheet.width,
         1 - box.bottom / sheet.height,
-        (box.right - box.left) / sheet.width,
-        (box.bottom - box.top) / sheet.height,
+        width / sheet.width,
+        height / sheet.height,
     )
     axes = sheet.figure.add_axes(place)
-    axes.set_gid("map")
-    axes.set_xlim(*(value / units.metre for value in window.x))
-    axes.set_ylim(*(value / units.metre for value in window.y))
     axes.ticklabel_format(useOffset=False, style="plain")
-    for axis, length in ((axes.xaxis, box.right - box.left), (axes.yaxis, box.bottom - box.top)):
-        axis.set_major_locator(
-            MaxNLocator(nbins=max(2, int(length / (TICK_SPACE * sheet.scale))), steps=[1, 2, 5, 10])
-        )
+    for axis, length in ((axes.xaxis, width), (axes.yaxis, height)):
+        most = max(2, int(length / (tick_space * sheet.scale)))
+        axis.set_major_locator(MaxNLocator(nbins=most, steps=[1, 2, 5, 10]))
     axes.tick_params(
         labelsize=sheet.points(11),
         colors=FAINT_INK,
@@ -83,11 +80,20 @@ def open_map(sheet: Sheet, box: Box, window: Window, units: DisplayUnits) -> Map
         width=sheet.points(1),
         pad=sheet.points(4),
     )
-    size = sheet.points(11.5)
-    axes.set_xlabel(f"x [{units.length}]", fontsize=size, color=INK, labelpad=sheet.points(3))
-    axes.set_ylabel(f"y [{units.length}]", fontsize=size, color=INK, labelpad=sheet.points(3))
     for spine in axes.spines.values():
         spine.set_color(FAINT_INK)
         spine.set_linewidth(sheet.points(1.2))
         spine.set_zorder(15)
+    return axes
+
+
+def open_map(sheet: Sheet, box: Box, window: Window, units: DisplayUnits) -> MapFrame:
+    """Axes with ticks and the directions of x and y."""
+    axes = quiet_axes(sheet, box)
+    axes.set_gid("map")
+    axes.set_xlim(*(value / units.metre for value in window.x))
+    axes.set_ylim(*(value / units.metre for value in window.y))
+    size = sheet.points(11.5)
+    axes.set_xlabel(f"x [{units.length}]", fontsize=size, color=INK, labelpad=sheet.points(3))
+    axes.set_ylabel(f"y [{units.length}]", fontsize=size, color=INK, labelpad=sheet.points(3))
     return MapFrame(sheet, axes, box, window, units)

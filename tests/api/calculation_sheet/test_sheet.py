@@ -4,6 +4,7 @@ import io
 import json
 import re
 from html.parser import HTMLParser
+from pathlib import Path
 from typing import Any
 
 import pytest
@@ -116,6 +117,37 @@ def test_the_page_says_what_the_answer_says(page, answer):
 )
 def test_the_page_has_every_section(page, title):
     assert title in page.text
+
+
+RIVER = Path(__file__).parents[3] / "openapi" / "examples" / "layout-river-bend.json"
+
+
+def test_solved_walls_are_told(ready_client):
+    body = {"layout": json.loads(RIVER.read_text(encoding="utf-8"))}
+    found = ready_client.post(ROUTE, json=body).json()
+    text = Page(made(body, HTML).decode()).text
+    assert "Outlines and surveyed shores" in text
+    assert "A conformal map" not in text
+    solved, survey = found["boundary"]["solved"], found["boundary"]["survey"]
+    assert f"Unknowns: {solved['unknowns']}" in text
+    assert f"{survey['vertices']} vertices of the {survey['vertices_given']} given" in text
+    assert "merged with land" in text
+    assert "between banks and eyot" in text
+    for edge in survey["open_edges"]:
+        assert edge["name"] in text
+    speeds = [end["end_speed"] for end in found["result"]["ends"]]
+    assert f"current through open ends up to {figure(max(speeds))} m/s" in text
+
+
+def test_straight_walls_are_not_solved(page):
+    assert "Outlines and surveyed shores" not in page.text
+    assert "Solved walls" not in page.text
+
+
+def test_arrivals_are_drawn_where_anything_arrives(page, ready_client):
+    assert "share against time" in page.text
+    assert "p3-curve-1" in page.ids
+    assert "share against time" not in Page(post(ready_client, small(), HTML).text).text
 
 
 def test_free_text_is_text(ready_client):

@@ -2,11 +2,16 @@
 
 from collections.abc import Mapping
 from datetime import date
-from functools import cache
+from functools import cache, partial
 from importlib.resources import files
 from typing import Any, NamedTuple
 
-from forebay.api.calculation_sheet.closing import cautions_section, verdicts_section, warnings_section
+from forebay.api.calculation_sheet.closing import (
+    cautions_section,
+    place_of,
+    verdicts_section,
+    warnings_section,
+)
 from forebay.api.calculation_sheet.inputs import inputs_section
 from forebay.api.calculation_sheet.markup import Html, element, items, section
 from forebay.api.calculation_sheet.method import method_section
@@ -42,7 +47,7 @@ def sheet_document(filed: Filed, page_rules: str = "") -> str:
         section("Summary", items(result["summary"], ordered=True)),
         verdicts_section(result["verdicts"]),
         pictures_section(filed.pictures, inline=not page_rules),
-        results_section(result, envelope["units"]),
+        results_section(envelope, partial(place_of, request=request)),
         warnings_section(envelope["warnings"], request),
         cautions_section(result["cautions"]),
         inputs_section(request),

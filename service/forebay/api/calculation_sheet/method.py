@@ -49,8 +49,13 @@ def has_answer(part: str) -> Callable[[AssessmentRequest, Json], bool]:
 
 
 def has_bank(request: AssessmentRequest, _result: Json) -> bool:
-    """A step for layouts with banks."""
-    return request.layout.shore.kind != "open-water"
+    """A step for layouts with banks that a map makes straight."""
+    return request.layout.shore.kind not in {"open-water", "surveyed"}
+
+
+def has_solved_walls(request: AssessmentRequest, result: Json) -> bool:
+    """A step for layouts with walls that have to be solved for."""
+    return request.layout.shore.kind == "surveyed" or has_kind("outline")(request, result)
 
 
 STEPS: tuple[Step, ...] = (
@@ -106,6 +111,23 @@ STEPS: tuple[Step, ...] = (
         ),
         "Milne-Thomson, Hydrodynamical images, Proc. Cambridge Phil. Soc. 36, 1940, 246-247",
         has_kind("pier"),
+    ),
+    Step(
+        "Outlines and surveyed shores",
+        "Their walls are sheets over straight elements, whose density μ is solved for so that the stream "
+        "function is constant along each wall and, where asked for, the potential along an open edge; "
+        "elements are split until the flow obeys. Check: the walls are looked at again, at twelve points of "
+        "every element between those at which they were made to hold. The error of ψ is harmonic, so that "
+        "nowhere in the water is it larger than what is left along the walls, with what each island and the "
+        "open edges may add: the bound stated.",
+        Html(
+            "<i>F</i>(<i>z</i>) = <i>f</i>(<i>z</i>) + (1/2πi) ∫<sub>walls</sub> μ(<i>t</i>) d<i>t</i> / "
+            "(<i>t</i> − <i>z</i>), &emsp;|ψ − ψ<sub>exact</sub>| ≤ max<sub>walls</sub> |residual of ψ| + "
+            "max<sub>islands</sub> |<i>d<sub>k</sub></i>| + edges"
+        ),
+        "Muskhelishvili, Singular Integral Equations, 1953 (Cauchy integrals); Kress, Linear Integral "
+        "Equations, 3rd ed. 2014, chapters 6 and 13; maximum principle for harmonic functions",
+        has_solved_walls,
     ),
     Step(
         "Stagnation points",

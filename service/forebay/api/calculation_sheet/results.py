@@ -1,6 +1,6 @@
 """Results: a table for each part, every number with its unit and, where there is one, its error bound."""
 
-from collections.abc import Mapping, Sequence
+from collections.abc import Callable, Mapping, Sequence
 from itertools import islice
 from typing import Any
 
@@ -10,6 +10,7 @@ from forebay.api.calculation_sheet.spill_results import spill_part
 from forebay.api.calculation_sheet.stress_results import stress_part
 from forebay.api.calculation_sheet.submergence_results import submergence_part
 from forebay.api.calculation_sheet.tables import number, table, word
+from forebay.api.calculation_sheet.wall_results import walls_part
 from forebay.api.figures import error_bound, figure, percent, share_with_error, unit_name
 
 Json = Mapping[str, Any]
@@ -34,15 +35,20 @@ class Units(dict[str, str]):
         return Units({**self, **own})
 
 
-def results_section(result: Json, codes: Json) -> Html:
-    """Every part that was computed, and what became of the others."""
-    units = Units({name: unit_name(code) for name, code in codes.items()})
+def results_section(envelope: Json, place_of: Callable[[str], str]) -> Html:
+    """Every part that was computed, and what became of the others.
+
+    place_of : name of what a pointer leads to
+    """
+    result = envelope["result"]
+    units = Units({name: unit_name(code) for name, code in envelope["units"].items()})
     return section(
         "Results",
         intakes_part(result["withdrawal"], units),
         recirculation_part(result["recirculation"], units),
         stagnation_part(result["stagnation"], units),
         ends_part(result["ends"], result["boundary_residual"], units),
+        walls_part(envelope.get("boundary"), units, place_of),
         transects_part(result["transects"], units),
         field_part(result["field"], units),
         stress_part(result["stress"], units.inside("stress")),

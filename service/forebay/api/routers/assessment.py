@@ -23,6 +23,7 @@ from forebay.api.schemas.contour import flow_contours
 from forebay.api.summary import Told, summary_of
 from forebay.api.units import UnitSystem
 from forebay.api.verdicts import rule_verdicts, verdicts_of
+from forebay.charts.arrival_curves import Course, draw_arrivals
 from forebay.charts.options import FlowNetOptions, Picture
 from forebay.charts.units import SI, US
 from forebay.workflows.assessment import NOWHERE, Assessment, Questions, assess_layout
@@ -38,6 +39,10 @@ NET_CAPTION = (
 
 ZONES_CAPTION = "Zones of the intakes: the water that each takes. Plan, depth-mean potential flow."
 
+ARRIVALS_CAPTION = (
+    "Arrival of each release at the intakes that it reaches: share against time, by the mean flow."
+)
+
 PICTURE_SIZE = (640, 520)
 """Width and height of a sheet's pictures [px], at which its letters are as large as those of a table."""
 
@@ -52,10 +57,12 @@ def compute(request: AssessmentRequest, media_type: str) -> Outcome:
     outcome = reviewed(request, layout, written(assessment, request) | asked_written(asked), readings)
     outcome = replace(outcome, warnings=each_once((*outcome.warnings, *asked.notices())))
     outcome = replace(outcome, result=told(assessment, asked, outcome, request) | outcome.result)
-    return outcome if media_type == JSON else replace(outcome, pictures=pictures_of(assessment, request))
+    return (
+        outcome if media_type == JSON else replace(outcome, pictures=pictures_of(assessment, asked, request))
+    )
 
 
-def pictures_of(assessment: Assessment, request: AssessmentRequest) -> dict[str, bytes]:
+def pictures_of(assessment: Assessment, asked: Asked, request: AssessmentRequest) -> dict[str, bytes]:
     """Pictures of a sheet by their captions; a picture that failed is a caption that says so."""
     units = US if request.unit_system is UnitSystem.US else SI
     layout, title, intakes = request.flow_layout(), request.sheet.site, assessment.withdrawal.answer
@@ -64,7 +71,19 @@ def pictures_of(assessment: Assessment, request: AssessmentRequest) -> dict[str,
     drawings = {NET_CAPTION: partial(draw_assessment, layout, assessment, net)}
     if intakes:
         drawings[ZONES_CAPTION] = partial(draw_intake_zones, layout, intakes, zones)
+    if courses := courses_of(asked.result(PartName.SPILL)):
+        drawings[ARRIVALS_CAPTION] = partial(draw_arrivals, courses, replace(net, title=title or "Arrivals"))
     return dict(picture_of(caption, draw) for caption, draw in drawings.items())
+
+
+def courses_of(spill: dict[str, Any] | None) -> tuple[Course, ...]:
+    """Arrivals of every release at every intake that it reaches."""
+    return tuple(
+        Course(f"{release['name']} at {column['intake']}", release["curve"]["time"], column["share"], last)
+        for release in (spill or {}).get("releases", ())
+        for column in release["curve"]["by_intake"]
+        for last in (at["last_time"] for at in release["arrivals"] if at["intake"] == column["intake"])
+    )
 
 
 def picture_of(caption: str, draw: Callable[[], Picture]) -> tuple[str, bytes]:
