@@ -119,6 +119,20 @@ def test_the_page_has_every_section(page, title):
     assert title in page.text
 
 
+@pytest.mark.parametrize(
+    ("at", "words"),
+    [
+        ({"points": [[0.5, 1.25], [20, 5]]}, "at points (0.5, 1.25); (20, 5) m given"),
+        ({"x": [0.5, 20], "y": [1.25, 5]}, "at x (0.5, 20) m given"),
+        ({"line": {"from": [0.5, 1.25], "to": [20, 5], "count": 3}}, "at line from (0.5, 1.25) m given"),
+    ],
+    ids=["points", "columns", "line"],
+)
+def test_points_asked_for_are_those_on_the_page(at, words):
+    page = made(small(at=at), HTML).decode().replace("</td>", " </td>")
+    assert words in Page(page).text
+
+
 RIVER = Path(__file__).parents[3] / "openapi" / "examples" / "layout-river-bend.json"
 
 

@@ -21,7 +21,9 @@ def filed(answered: Answered) -> Filed:
     if not isinstance(request, AssessmentRequest):
         raise TypeError("only an assessment has a calculation sheet")
     envelope = orjson.loads(encode(answered.document))  # plain lists, null where there is no value
-    return Filed(request, envelope, answered.outcome.pictures, request.sheet.dated())
+    at = None if request.at is None else request.at.written_out()
+    asked = request.model_copy(update={"at": at})
+    return Filed(asked, envelope, answered.outcome.pictures, request.sheet.dated())
 
 
 def encode_html(answered: Answered) -> Reply:

@@ -87,6 +87,14 @@ class At(Strict):
         changed._columns = (x, y)  # noqa: SLF001  (of the same class)
         return changed
 
+    def written_out(self) -> Self:
+        """The same with every coordinate in the field that it was given in, arrays read outside included."""
+        if self._columns is None:
+            return self
+        x, y = (column.tolist() for column in self._columns)
+        pairs = [[a, b] for a, b in zip(x, y, strict=True)]
+        return self.model_copy(update={"points": pairs} if self.x is None else {"x": x, "y": y})
+
     @property
     def count(self) -> int:
         """Number of points asked for."""
