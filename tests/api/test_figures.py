@@ -39,6 +39,7 @@ def test_figures_are_readable(value, text):
         ("Pa.s", "Pa·s"),
         ("[lbf_av].s/[ft_i]2", "lbf·s/ft²"),
         ("Cel", "°C"),
+        ("{crs}", "of the crs"),
         ("1", ""),
     ],
 )

@@ -10,6 +10,7 @@ UNIT_WORDS = {
     "[degF]": "°F",
     "Cel": "°C",
     "deg": "°",
+    "{crs}": "of the crs",
     "By": "B",
     "a": "year",
 }

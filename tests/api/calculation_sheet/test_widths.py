@@ -36,3 +36,4 @@ def test_markup_takes_no_room():
     assert plain('<span class="caution">CAUTION</span> &lt;') == "CAUTION x"
     assert longest_word("one three two") == 5
     assert longest_word("") == 0
+    assert longest_word("NOT\N{NO-BREAK SPACE}MET at all") == 7

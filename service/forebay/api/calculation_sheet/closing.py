@@ -7,12 +7,13 @@ from forebay.api.calculation_sheet.markup import Html, element, items, section
 from forebay.api.calculation_sheet.tables import number, table, word
 from forebay.api.figures import quantity
 from forebay.api.schemas.assessment import AssessmentRequest
+from forebay.api.schemas.surveyed import SurveyedShore
 
 Json = Mapping[str, Any]
 
 OUTCOMES = {
     True: Html('<span class="met">met</span>'),
-    False: Html('<span class="missed">NOT MET</span>'),
+    False: Html('<span class="missed">NOT\N{NO-BREAK SPACE}MET</span>'),
     None: Html('<span class="open">not judged</span>'),
 }
 
@@ -85,11 +86,17 @@ def warning_row(alike: Sequence[Json], request: AssessmentRequest) -> tuple[str,
 
 
 def place_of(pointer: str, request: AssessmentRequest) -> str:
-    """What a pointer leads to: the name of an element or a structure, else its steps."""
-    steps = pointer.removeprefix("#/").split("/")
-    if len(steps) > 2 and steps[0] == "layout" and steps[1] in {"elements", "structures"}:
-        return str(getattr(request.layout, steps[1])[int(steps[2])].name)
-    return " ".join(steps)
+    """What a pointer leads to: the name of an element, a structure or an open edge, else its steps."""
+    shore = request.layout.shore
+    match pointer.removeprefix("#/").split("/"):
+        case ["layout", "elements" | "structures" as kind, index, *_]:
+            return str(getattr(request.layout, kind)[int(index)].name)
+        case ["layout", "shore", "open_edges", index, *_] if isinstance(shore, SurveyedShore):
+            return shore.open_edges[int(index)].name
+        case ["layout", "shore", "water", "coordinates", index, *_]:
+            return f"ring {int(index) + 1} of the surveyed water"
+        case steps:
+            return " ".join(steps).replace("_", " ")
 
 
 def compared(warning: Json, member: str) -> str:

@@ -27,6 +27,9 @@ LONGEST_WHOLE = 15.0
 HEADING = 0.95
 """Width of a character in a heading, over that of one in a cell."""
 
+BREAKS = re.compile(r"[ \n\t]+")
+"""Where a text may be broken; not at a no-break space."""
+
 TAGS = re.compile(r"<[^>]*>|&(\w+|#\w+);")
 
 
@@ -69,5 +72,5 @@ def plain(cell: str) -> str:
 
 
 def longest_word(text: str) -> int:
-    """Characters of the longest part of a text that has no space in it."""
-    return max((len(word) for word in text.split()), default=0)
+    """Characters of the longest part of a text that must not be broken."""
+    return max((len(word) for word in BREAKS.split(text)), default=0)
