@@ -85,6 +85,12 @@ def test_quantities_of_the_velocity_alone(ready_client):
     assert problem["errors"][0]["pointer"] == "#/quantities/1"
 
 
+def test_one_height_for_more_points_than_memory_holds_is_too_large(ready_client):
+    grid = {"x": [0, 1], "nx": 1_000_000, "y": [0, 1], "ny": 1_000_000}
+    response = ready_client.post(SAMPLE, json=body(at={"grid": grid, "z": 1.0}), headers={"Origin": "x"})
+    assert_problem(response, 422, "too-large")
+
+
 def test_table_has_the_heights(ready_client):
     response = ready_client.post(SAMPLE, json=body(), headers={"Accept": "text/csv"})
     rows = list(csv.DictReader(io.StringIO(response.text)))

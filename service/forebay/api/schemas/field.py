@@ -82,6 +82,11 @@ class HeightedAt(At):
         """The same; a column of heights must be held against the points themselves."""
         return not isinstance(self.z, list) and super().is_at(place)
 
+    @property
+    def has_heights(self) -> bool:
+        """Whether heights are given; counts no points, of which there may be too many."""
+        return self.z is not None or any(len(point) == 3 for point in self.points or ())
+
     def heights(self, units: UnitSystem) -> FloatArray | None:
         """Heights above the bed in SI, shape (n,); None if there are none."""
         if self.points is not None and len(self.points[0]) == 3:
@@ -119,7 +124,7 @@ class SampleRequest(LayoutRequest):
     @model_validator(mode="after")
     def _heights_with_depth(self) -> Self:
         """Check that heights come with the model that knows them, and with no other."""
-        if (self.at.heights(self.unit_system) is None) is (self.model is FieldModel.POINT_INTAKE_3D):
+        if self.at.has_heights is not (self.model is FieldModel.POINT_INTAKE_3D):
             raise PydanticCustomError(
                 "heights", "Heights (`z`, or three entries a point) go with the model point-intake-3d"
             )
