@@ -29,5 +29,10 @@ def test_solved_walls_are_judged_by_their_bound(ready_client, tolerance):
     assert verdicts["s"]["value"] <= 40.0 * tolerance * (0.3 * 40 + 0.6) / 0.6
 
 
-def test_without_solved_walls_nothing_is_said_of_them(ready_client):
-    assert "outlines and surveyed shores" not in _own(ready_client, OPEN)
+def test_without_solved_walls_and_piers_nothing_is_said_of_them(ready_client):
+    assert not {"outlines and surveyed shores", "walls of piers"} & set(_own(ready_client, OPEN))
+
+
+def test_walls_of_piers_are_judged_where_there_are_piers(ready_client):
+    pier = {"kind": "pier", "name": "P", "at": [20, 10], "radius": 1.5}
+    assert _own(ready_client, OPEN | {"structures": [pier]})["walls of piers"]["pass"]

@@ -1,11 +1,11 @@
 """Services that fault tests may hurt."""
 
-from collections.abc import Callable, Iterator
+from collections.abc import Callable, Iterator, Mapping
 from pathlib import Path
 
 import pytest
 
-from support.running import Running
+from support.running import NOTHING, Running
 
 
 @pytest.fixture(scope="session")
@@ -30,8 +30,9 @@ def another(tmp_path: Path) -> Iterator[Callable[..., Running]]:
     """Start services with settings of their own; they end with the test."""
     started: list[Running] = []
 
-    def start(**settings: str) -> Running:
-        running = Running(tmp_path / f"service-{len(started)}.log", **settings)
+    def start(environment: Mapping[str, str] = NOTHING, /, **settings: str) -> Running:
+        log = tmp_path / f"service-{len(started)}.log"
+        running = Running(log, environment, **settings)
         started.append(running)
         return running
 

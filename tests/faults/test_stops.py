@@ -12,7 +12,6 @@ from forebay.demo.child import LOOPBACK
 from support.heavy import QUEUED
 from support.http import SAMPLE, a_sample
 from support.running import eventually
-from support.tree import PACKAGE
 
 DRAIN = 5.0
 """Time between SIGTERM and the end of listening [s]."""
@@ -81,15 +80,3 @@ def test_address_that_others_reach_is_refused_without_tokens(another):
     text = service.log.read_text(encoding="utf-8")
     assert "FOREBAY_TOKENS_FILE" in text
     assert "Traceback" not in text
-
-
-@pytest.mark.parametrize("path", sorted((PACKAGE / "api").rglob("*.py")), ids=lambda path: path.name)
-def test_no_time_is_taken_from_a_clock_that_can_jump(path):
-    # deadlines, drains and the age of tokens are counted on monotonic clocks; the log and the
-    # date on a calculation sheet alone tell the time
-    text = path.read_text(encoding="utf-8")
-    assert "time.time(" not in text
-    assert ("datetime.now" not in text and "utcnow" not in text) or path.name in {
-        "request_log.py",
-        "sheet.py",
-    }

@@ -4,30 +4,17 @@ import os
 import signal
 import threading
 import time
-from concurrent.futures import ThreadPoolExecutor
 from functools import partial
 
 import orjson
 import pytest
 
-from support.heavy import HEAVY, QUEUED
+from support.heavy import FREED, HEAVY, QUEUED, begin
 from support.http import SAMPLE, a_sample, assert_problem
 from support.running import eventually
 
-FREED = 5.0
-"""Longest time until a worker without a client is gone [s]: 0.1 is the target, more for a crowded machine."""
-
-
 MEMORY = 3 * 2**28
 """Memory of a worker that is enough for small requests [bytes]."""
-
-
-def begin(service, body=HEAVY, **headers):
-    """Ask in a thread, and wait until a worker has the work."""
-    pool = ThreadPoolExecutor(1)
-    future = pool.submit(service.post, SAMPLE, body, **headers)
-    eventually(lambda: service.metric("forebay_workers_busy") == 1, 10.0)
-    return future
 
 
 def test_computation_of_a_killed_worker_is_begun_again(service):

@@ -2,17 +2,18 @@
 
 import http.client
 import json
-import os
 import threading
 import time
 from collections import Counter
+from concurrent.futures import ProcessPoolExecutor
 from dataclasses import dataclass, field
 from itertools import cycle
-from pathlib import Path
+from multiprocessing import get_context
 from typing import Any
 
 from forebay.api.examples import CHANNEL, OPEN_WATER
 from forebay.demo.child import LOOPBACK
+from support.running import memory_of
 
 GRID = {"grid": {"x": [-100, 100], "nx": 500, "y": [-100, 100], "ny": 400}}
 """Places of a large request: 200,000 points."""
@@ -49,16 +50,22 @@ class Tally:
 
 
 def saturate(port: int, process: int, *, seconds: float, clients: int) -> Tally:
-    """Send the mix from many clients for a time, watching."""
+    """Send the mix from many clients for a time, while another process watches.
+
+    The watcher is a process of its own, since threads of this one wait for each other.
+    """
     tally, ended = Tally(), threading.Event()
     threads = [threading.Thread(target=_send, args=(port, MIX, i, tally, ended)) for i in range(clients)]
-    threads += [threading.Thread(target=_watch, args=(port, process, tally, ended))]
-    for thread in threads:
-        thread.start()
-    time.sleep(seconds)
-    ended.set()
-    for thread in threads:
-        thread.join()
+    with ProcessPoolExecutor(1, get_context("spawn")) as watcher:
+        watching = watcher.submit(watch, port, process, seconds=seconds)
+        for thread in threads:
+            thread.start()
+        try:
+            tally.waits, tally.memory = watching.result()
+        finally:
+            ended.set()
+            for thread in threads:
+                thread.join()
     return tally
 
 
@@ -111,28 +118,16 @@ def _send(port: int, mix: tuple[Any, ...], first: int, tally: Tally, ended: thre
             tally.surprises.append(f"{route} {answer.status} {content[:200]!r}")
 
 
-def _watch(port: int, process: int, tally: Tally, ended: threading.Event) -> None:
-    while not ended.wait(0.05):
+def watch(port: int, process: int, *, seconds: float) -> tuple[list[float], list[int]]:
+    """Times of /livez [s], and resident memory of a process and all below it at those moments [bytes]."""
+    waits, memory, ends = [], [], time.monotonic() + seconds
+    while time.monotonic() < ends:
         started = time.perf_counter()
         connection = http.client.HTTPConnection(LOOPBACK, port, timeout=60.0)
         connection.request("GET", "/livez")
         assert connection.getresponse().status == 200
         connection.close()
-        tally.waits.append(time.perf_counter() - started)
-        tally.memory.append(memory_of(process))
-
-
-def memory_of(process: int) -> int:
-    """Resident memory of a process and of all below it [bytes]."""
-    total, waiting = 0, [process]
-    while waiting:
-        current = waiting.pop()
-        folder = Path("/proc") / str(current)
-        try:
-            total += int((folder / "statm").read_text().split()[1]) * os.sysconf("SC_PAGE_SIZE")
-            waiting += [
-                int(child) for child in (folder / "task" / str(current) / "children").read_text().split()
-            ]
-        except FileNotFoundError:
-            continue  # it has ended meanwhile
-    return total
+        waits.append(time.perf_counter() - started)
+        memory.append(memory_of(process))
+        time.sleep(0.05)
+    return waits, memory

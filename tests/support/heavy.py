@@ -1,6 +1,14 @@
 """Requests that keep a worker busy."""
 
-from support.http import Json, a_sample
+from concurrent.futures import Future, ThreadPoolExecutor
+
+import httpx2
+
+from support.http import SAMPLE, Json, a_sample
+from support.running import Running, eventually
+
+FREED = 5.0
+"""Longest time until a worker without a client is gone [s]: 0.1 is the target, more for a crowded machine."""
 
 HEAVY: Json = {
     "layout": {
@@ -19,3 +27,10 @@ QUEUED: Json = a_sample(at={"grid": {"x": [0, 90], "nx": 2000, "y": [10, 90], "n
 
 LARGE: Json = a_sample(at={"grid": {"x": [0, 90], "nx": 1000, "y": [10, 90], "ny": 900}}, digits=17)
 """An answer of tens of megabytes."""
+
+
+def begin(service: Running, body: Json = HEAVY, **headers: str) -> Future[httpx2.Response]:
+    """Ask in a thread, and wait until a worker has the work."""
+    future = ThreadPoolExecutor(1).submit(service.post, SAMPLE, body, **headers)
+    eventually(lambda: service.metric("forebay_workers_busy") == 1, 10.0)
+    return future

@@ -5,8 +5,9 @@ import socket
 import subprocess
 import sys
 import time
-from collections.abc import Callable
+from collections.abc import Callable, Mapping
 from pathlib import Path
+from types import MappingProxyType
 
 import httpx2
 import orjson
@@ -19,11 +20,13 @@ START = 600.0
 PATIENCE = 120.0
 """Longest wait for an answer [s]; what is measured has bounds of its own."""
 
+NOTHING: Mapping[str, str] = MappingProxyType({})
+
 
 class Running:
-    """A service process on loopback, with settings of its own."""
+    """A service process on loopback, with settings of its own, and other variables of its environment."""
 
-    def __init__(self, log: Path, **settings: str) -> None:
+    def __init__(self, log: Path, environment: Mapping[str, str] = NOTHING, /, **settings: str) -> None:
         self.port = free_port(0)
         self.address = f"http://{LOOPBACK}:{self.port}"
         self.log = log
@@ -31,7 +34,7 @@ class Running:
         command = [sys.executable, "-m", "forebay", "serve", "--port", str(self.port)]
         with log.open("wb") as sink:
             self.process = subprocess.Popen(
-                command, stdout=sink, stderr=subprocess.STDOUT, env={**os.environ, **variables}
+                command, stdout=sink, stderr=subprocess.STDOUT, env={**os.environ, **environment, **variables}
             )
 
     def wait_until_ready(self) -> None:
@@ -120,6 +123,22 @@ def processor_time(pid: int) -> float:
     except OSError:
         return 0.0
     return (int(fields[11]) + int(fields[12])) / os.sysconf("SC_CLK_TCK")
+
+
+def memory_of(process: int) -> int:
+    """Resident memory of a process and of all below it [bytes]."""
+    total, waiting = 0, [process]
+    while waiting:
+        current = waiting.pop()
+        folder = Path("/proc") / str(current)
+        try:
+            total += int((folder / "statm").read_text().split()[1]) * os.sysconf("SC_PAGE_SIZE")
+            waiting += [
+                int(child) for child in (folder / "task" / str(current) / "children").read_text().split()
+            ]
+        except FileNotFoundError:
+            continue  # it has ended meanwhile
+    return total
 
 
 def eventually(is_so: Callable[[], bool], seconds: float) -> float:

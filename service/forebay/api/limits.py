@@ -17,12 +17,12 @@ BYTES_A_VALUE = 12
 class Tier(Enum):
     """Where work is done, by the bytes of the body and the work in pairs of element and point.
 
-    In the event loop what takes about a millisecond, in a thread, which nothing can stop, a fraction of a
-    second, in a worker process everything else.
+    In the event loop what takes about a millisecond. In a thread, which nothing can stop and which holds up
+    the event loop as long as it computes without a pause, some twenty. In a worker process everything else.
     """
 
     INLINE = (16 * 1024, 100_000)
-    THREAD = (1024 * 1024, 20_000_000)
+    THREAD = (512 * 1024, 2_000_000)
 
     @property
     def body(self) -> int:

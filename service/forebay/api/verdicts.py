@@ -4,6 +4,7 @@ from collections.abc import Mapping
 from typing import Any
 
 from forebay.api.units import UnitSystem
+from forebay.flow.layout import Layout
 from forebay.flow.stagnation.result import StagnationSearch
 from forebay.flow.withdrawal.result import IntakeWithdrawal, WithdrawalStatus
 from forebay.trade.applicability.solved_walls import WIDE
@@ -24,14 +25,14 @@ TIGHT_WALL = 1e-6
 """Velocity through a wall, over the reference speed, up to which the service calls it tight [-]."""
 
 
-def verdicts_of(assessment: Assessment) -> list[Verdict]:
-    """Every verdict, in the order of the parts."""
+def verdicts_of(assessment: Assessment, layout: Layout) -> list[Verdict]:
+    """Every verdict, in the order of the parts; walls of piers are judged where there are piers."""
     flow, search, withdrawal = (
         assessment.flow.answer,
         assessment.stagnation.answer,
         assessment.withdrawal.answer,
     )
-    verdicts = [] if flow is None else [wall_verdict(flow.boundary_residual)]
+    verdicts = [wall_verdict(flow.boundary_residual)] if flow is not None and layout.piers else []
     if flow is not None and flow.wall_bound is not None:
         verdicts.append(solved_wall_verdict(flow.wall_bound))
     verdicts += [] if search is None else [completeness_verdict(search)]

@@ -13,6 +13,7 @@ from forebay.flow.layout import Doublet, Element, Surveyed, outflow
 from forebay.flow.model import FlowModel
 from forebay.flow.open_edges import OpenEdges, open_edges_of
 from forebay.flow.placement import TOUCHING
+from forebay.flow.shoreline import Shoreline, shoreline_of
 
 _NEAR = 0.005
 """Radius of capture over the distance to the next site, and the other velocity over the element's own [-]."""
@@ -105,28 +106,25 @@ class LineFaces:
             at = p.real + (q.real - p.real) * (p.imag / (p.imag - q.imag))
         return np.asarray(np.any(opposite & (at >= 0.0) & (at <= 1.0), axis=1))
 
-    def ahead(self, z: ComplexArray, heading: ComplexArray) -> tuple[FloatArray, IntArray]:
+    def ahead(self, z: ComplexArray, heading: ComplexArray, *, forward: bool) -> tuple[FloatArray, IntArray]:
         """Distance along the heading to the nearest line [m], inf without one, and its index; shape (n,).
 
-        In a wall that was solved for a line is met where it is reached: beyond, the flow means nothing.
+        In a wall that was solved for only what takes water in can be met, with the water or against it, and
+        where it is reached: beyond, the flow means nothing.
         """
         p = self.local(z)
         slope = heading[:, None] / (self.end - self.start)
-        height, fall = (
-            p.imag - self.side * self.touch,
-            np.where(self.side == 0.0, 1.0, self.side) * slope.imag,
-        )
+        height = p.imag - self.side * self.touch
         with np.errstate(divide="ignore", invalid="ignore"):
             steps = -height / slope.imag
+        there = (self.side != 0.0) & (self.side * slope.imag < 0.0)
+        there &= np.abs(p.imag) <= self.touch
+        steps = np.where(there, 0.0, steps)
+        with np.errstate(invalid="ignore"):
             at = p.real + steps * slope.real
-        behind = (
-            (self.side * height <= 0.0)
-            & (self.side != 0.0)
-            & (fall < 0.0)
-            & (self.side * p.imag >= -self.touch)
-        )
-        steps, at = np.where(behind, 0.0, steps), np.where(behind, p.real, at)
-        steps = np.where(((steps > 0.0) | behind) & (at >= 0.0) & (at <= 1.0), steps, np.inf)
+        takes = (self.side == 0.0) | ((self.flux < 0.0) == forward)
+        met = ((steps > 0.0) | there) & (at >= 0.0) & (at <= 1.0) & takes
+        steps = np.where(met, steps, np.inf)
         index = np.argmin(steps, axis=1)
         return steps[np.arange(z.size), index], index
 
@@ -145,6 +143,7 @@ class Surroundings:
     sites: Sites
     lines: LineFaces
     far: FarField | OpenEdges
+    shoreline: Shoreline | None = None
 
 
 def survey(model: FlowModel, stagnation: ComplexArray) -> Surroundings:
@@ -177,7 +176,7 @@ def survey(model: FlowModel, stagnation: ComplexArray) -> Surroundings:
         radius=radius,
         strength=strength,
     )
-    return Surroundings(sites, lines, _far(model, places))
+    return Surroundings(sites, lines, _far(model, places), shoreline_of(model, stagnation, sites))
 
 
 def _far(model: FlowModel, places: ComplexArray) -> FarField | OpenEdges:

@@ -2,7 +2,8 @@
 
 dz/ds = conj(W)/|W|, dt/ds = 1/|W| by Dormand and Prince's pair of order 5(4) in the arclength s, one step
 size per line. After each step the change of psi along the chord, which is exact, says how far the line has
-strayed; it is moved back across the flow. Straying along the line changes no share and no zone.
+strayed; it is moved back across the flow. Straying along the line changes no share and no zone. A line that
+runs into a wall that was solved for, closer to it than the error of psi there, follows the wall.
 
 References
 ----------
@@ -16,7 +17,9 @@ import numpy as np
 
 from forebay.flow.arrays import BoolArray, ComplexArray, FloatArray, IntArray
 from forebay.flow.model import FlowModel
+from forebay.flow.shoreline import Shoreline, Walk
 from forebay.flow.surroundings import Surroundings
+from forebay.flow.trace_state import Lines, Stride
 from forebay.flow.traces import Crossing, Stop, TraceRules, Traces
 
 _STAGES: FloatArray = np.array(
@@ -41,6 +44,11 @@ _ABREAST = 1e-6
 """Distance ahead to a line element, over its length, within which a line beside its plane is there [-]."""
 _CLOSED = 1e-10
 """Flux between a line and its own seed, over the strengths, below which the line has closed [-]."""
+_JOINING = 1e-2
+"""Flux between a line and a wall, over the bound of the stream function, below which it can meet it [-]."""
+_WALKS = 64
+"""Ways along walls after which a line is not carried on."""
+_TINY = float(np.finfo(np.float64).tiny)
 _LEAST_STEP = 1e-13
 """Step over the scale of the layout below which a line cannot proceed [-]."""
 
@@ -75,47 +83,21 @@ def trace_streamlines(
     return run.finished(seeds.size)
 
 
-@dataclass(slots=True)
-class _Lines:
-    """The lines still under way, arrays of one length; `index` says which seed each belongs to."""
-
-    index: IntArray
-    z: ComplexArray
-    w: ComplexArray
-    step: FloatArray
-    psi: FloatArray
-    time: FloatArray
-    distance: FloatArray
-
-    def kept(self, stay: BoolArray) -> "_Lines":
-        """The lines marked `stay`."""
-        return _Lines(*(getattr(self, name)[stay] for name in self.__slots__))
-
-
-def _start(model: FlowModel, seeds: ComplexArray, surroundings: Surroundings, rules: TraceRules) -> _Lines:
+def _start(model: FlowModel, seeds: ComplexArray, surroundings: Surroundings, rules: TraceRules) -> Lines:
     z = np.array(seeds, dtype=np.complex128)
     distance = surroundings.sites.nearest(z)[0]
     distance = np.where(np.isfinite(distance), distance, model.scale)
-    return _Lines(
+    return Lines(
         index=np.arange(z.size),
         z=z,
         w=model.velocity(z),
         step=min(0.2, 10.0 * rules.tolerance**0.2) * distance,
         psi=np.zeros(z.size),
+        level=np.zeros(z.size),
+        walks=np.zeros(z.size, dtype=np.int64),
         time=np.zeros(z.size),
         distance=distance,
     )
-
-
-@dataclass(slots=True)
-class _Stride:
-    """One attempted step: new places, error over tolerance, time taken, velocity before projection."""
-
-    z: ComplexArray
-    w: ComplexArray
-    error: FloatArray
-    time: FloatArray
-    blocked: BoolArray
 
 
 @dataclass(slots=True)
@@ -125,7 +107,7 @@ class _Run:
     model: FlowModel
     surroundings: Surroundings
     rules: TraceRules
-    lines: _Lines
+    lines: Lines
     ended: list[tuple[IntArray, ComplexArray, FloatArray, FloatArray, Stop, list[str]]] = field(
         default_factory=list
     )
@@ -160,8 +142,49 @@ class _Run:
         self._record(good)
         index = self._bound_steps()
         closed = self._closed(before)
+        ashore = lines.index[stride.ashore]
         stay = self._reach_lines()
         self._stop(index[stay], closed[stay])
+        if self.surroundings.shoreline is not None and ashore.size:
+            self._follow_walls(self.surroundings.shoreline, np.isin(self.lines.index, ashore))
+
+    def _follow_walls(self, shoreline: Shoreline, ashore: BoolArray) -> None:
+        """Carry lines that run into a wall that was solved for along it, if its error can have let them."""
+        lines = self.lines
+        near = np.flatnonzero(ashore & (lines.walks < _WALKS))
+        if near.size == 0:
+            return
+        flux = np.abs(self.model.rings_set.distance(lines.z[near]) * lines.w[near])
+        allowed = _JOINING * (self.model.bound.absolute if self.model.bound else 0.0)
+        stay = np.ones(lines.index.size, dtype=np.bool_)
+        for i, part in zip(near[flux <= allowed], flux[flux <= allowed], strict=True):
+            walk = shoreline.follow(complex(lines.z[i]), self.sense, float(part))
+            if walk is not None:
+                stay[i] = self._walk(int(i), walk)
+        self.lines = self.lines.kept(stay)
+
+    def _walk(self, i: int, walk: Walk) -> bool:
+        """Carry line i to the end of a way along a wall; returns whether it goes on from there."""
+        lines, goes_on = self.lines, walk.landmark.stop is None
+        path = np.concatenate([lines.z[i : i + 1], walk.path, [walk.landmark.onward] if goes_on else []])
+        steps = np.abs(np.diff(path))
+        path = path[np.append(True, steps > 0.0)]
+        steps = steps[steps > 0.0]
+        lines.level[i] += lines.psi[i] + float(self.model.chord(path[:-1], path[1:]).imag.sum())
+        times = lines.time[i] + walk.time * np.cumsum(steps) / max(float(steps.sum()), _TINY)
+        if self.rules.keep_paths:
+            self.points.append((np.full(steps.size, lines.index[i]), path[1:], times))
+        lines.z[i], lines.psi[i], lines.time[i] = path[-1], 0.0, lines.time[i] + walk.time
+        lines.walks[i] += 1
+        if walk.landmark.stop is not None:
+            mask = np.arange(lines.index.size) == i
+            self._write(mask, walk.landmark.stop, [walk.landmark.name])
+            return False
+        distance = float(self.surroundings.sites.nearest(path[-1:])[0][0])
+        lines.w[i : i + 1] = self.model.velocity(path[-1:])
+        lines.distance[i] = distance if np.isfinite(distance) else self.model.scale
+        lines.step[i] = min(0.2, 10.0 * self.rules.tolerance**0.2) * lines.distance[i]
+        return True
 
     def _closed(self, before: ComplexArray) -> BoolArray:
         """Whether the last step of a line has passed its own seed on the seed's own stream function."""
@@ -172,11 +195,12 @@ class _Run:
         passed &= np.abs(z - seeds) < 2.0 * np.abs(z - before)
         closed = np.zeros(z.shape, dtype=np.bool_)
         if np.any(passed):
-            psi = self.model.chord(z[passed], seeds[passed]).imag + self.lines.psi[passed]
+            strayed = self.lines.psi[passed] + self.lines.level[passed]
+            psi = self.model.chord(z[passed], seeds[passed]).imag + strayed
             closed[passed] = np.abs(psi) < _CLOSED * self.reference * self.model.scale
         return closed
 
-    def _attempt(self) -> _Stride:
+    def _attempt(self) -> Stride:
         lines, sense = self.lines, self.sense
         slopes = np.empty((7, lines.z.size), dtype=np.complex128)
         slowness = np.empty((7, lines.z.size))
@@ -196,9 +220,10 @@ class _Run:
             error = lines.step * defect / (self.rules.tolerance * lines.distance)
             time = lines.step * (_STAGES[5] @ slowness[:6])
         error = np.where(np.isfinite(error), error, np.inf)
-        return _Stride(z=z, w=w, error=error, time=time, blocked=blocked | ~self.model.wet(z))
+        ashore = ~self.model.wet(z)
+        return Stride(z=z, w=w, error=error, time=time, blocked=blocked | ashore, ashore=ashore)
 
-    def _accept(self, good: BoolArray, stride: _Stride) -> None:
+    def _accept(self, good: BoolArray, stride: Stride) -> None:
         """Move the good lines, then back across the flow on to their stream function."""
         lines = self.lines
         if not np.any(good):
@@ -247,7 +272,7 @@ class _Run:
         stay = np.ones(lines.index.size, dtype=np.bool_)
         if faces.flux.size == 0:
             return stay
-        ahead, index = faces.ahead(lines.z, self._heading())
+        ahead, index = faces.ahead(lines.z, self._heading(), forward=self.rules.forward)
         lines.step = np.minimum(lines.step, 0.9 * ahead)
         near = faces.beside(lines.z, index)
         arrived = (ahead <= _ABREAST * faces.lengths[index]) & near
@@ -338,7 +363,8 @@ class _Run:
 
     def _write(self, mask: BoolArray, stop: Stop, names: list[str]) -> None:
         lines = self.lines
-        self.ended.append((lines.index[mask], lines.z[mask], lines.time[mask], lines.psi[mask], stop, names))
+        strayed = lines.psi[mask] + lines.level[mask]
+        self.ended.append((lines.index[mask], lines.z[mask], lines.time[mask], strayed, stop, names))
 
     def finished(self, count: int) -> Traces:
         """Everything that has happened, in the order of the seeds."""

@@ -112,8 +112,9 @@ def told(
         part_written(name, asked.parts[name] if name in ROUTES else getattr(assessment, name))
         for name in PartName
     ]
-    verdicts = [*verdicts_of(assessment), *rule_verdicts(outcome.result, request.unit_system)]
-    about = Told(request.flow_layout(), assessment, outcome.result, outcome.warnings, request.unit_system)
+    layout, units = request.flow_layout(), request.unit_system
+    verdicts = [*verdicts_of(assessment, layout), *rule_verdicts(outcome.result, units)]
+    about = Told(layout, assessment, outcome.result, outcome.warnings, units)
     return {"summary": summary_of(about, parts, verdicts), "verdicts": verdicts, "parts": parts}
 
 

@@ -8,7 +8,7 @@ from fastapi.routing import APIRoute
 from starlette.responses import Response
 from typing_extensions import override
 
-from forebay.api.entity_tag import REVALIDATED, entity_tag, is_known
+from forebay.api.entity_tag import REVALIDATED, is_known, tag_of
 from forebay.api.examples import request_example
 from forebay.api.media import JSON, body_type, negotiate
 from forebay.api.operation import Job, Operation
@@ -48,7 +48,7 @@ def serve(router: APIRouter, operation: Operation[Any]) -> None:
         media_type = negotiate(request.headers.get("accept"), operation.media_types)
         headers = request.headers
         given = body_type(headers.get("content-type"), headers.get("content-encoding"), operation.readable)
-        tag = entity_tag(operation.path, media_type, given, await request.body())
+        tag = await tag_of(operation.path, media_type, given, await request.body())
         if is_known(tag, request.headers.get("if-none-match")):
             return Response(status_code=304, headers={"ETag": tag, **REVALIDATED})
         return await answered(request, Job(operation, await request.body(), media_type, given), tag)

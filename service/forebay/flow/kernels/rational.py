@@ -1,5 +1,7 @@
 """Kernel X(d) = 1/d: open water and straight bank."""
 
+import math
+
 import numpy as np
 from numba import njit
 
@@ -117,9 +119,25 @@ def path_integrals(start: ComplexArray, end: ComplexArray, poles: ComplexArray) 
 def magnitude_sums(tau: ComplexArray, poles: ComplexArray, strengths: ComplexArray) -> FloatArray:
     """Sum of |g X| over the poles, shape (n,) [m2/s]."""
     sums = np.zeros(tau.shape[0])
-    for i in range(tau.shape[0]):
+    x = np.zeros(_BLOCK)
+    y = np.zeros(_BLOCK)
+    total = np.zeros(_BLOCK)
+    for start in range(0, tau.shape[0], _BLOCK):
+        count = min(_BLOCK, tau.shape[0] - start)
+        for k in range(count):
+            x[k] = tau[start + k].real
+            y[k] = tau[start + k].imag
+        total[:] = 0.0
         for j in range(poles.shape[0]):
-            sums[i] += abs(strengths[j]) / abs(tau[i] - poles[j])
+            px = poles[j].real
+            py = poles[j].imag
+            g = abs(strengths[j])
+            for k in range(count):
+                dx = x[k] - px
+                dy = y[k] - py
+                total[k] += g / math.sqrt(dx * dx + dy * dy)
+        for k in range(count):
+            sums[start + k] = total[k]
     return sums
 
 

@@ -260,7 +260,7 @@ class GeneralSearch:
         return [Zero(z, WATER, radius, abs(count), 2 * count)]
 
     def _artefact(self, at: complex, count: int, slit: Slit) -> Zero:
-        wall = wall_name(self.model, at)
+        wall = wall_name(self.model, at) if slit.opening is None else slit.line.on
         return Zero(at, wall, TIP * slit.length, count, 0, is_artefact=True)
 
     def _vertex_zero(self) -> list[Zero]:

@@ -15,6 +15,8 @@ from forebay.flow.arrays import ComplexArray, FloatArray
 
 _TURN = 2.0 * math.pi
 _FAR = 3.0
+_BLOCK = 64
+"""Points in one block: 64 doubles a column stay in the first-level cache."""
 
 
 @njit(cache=True, error_model="numpy", inline="always")
@@ -125,6 +127,53 @@ def multipole_bounds(d: complex, radius: float, kappa: float, moments: ComplexAr
 
 
 @njit(cache=True, error_model="numpy")
+def plain_variation(
+    tau: ComplexArray,
+    radius: FloatArray,
+    poles: ComplexArray,
+    sizes: FloatArray,
+    sums: tuple[FloatArray, FloatArray],
+) -> None:
+    """Adds `simple_bounds` of X = 1/d times the sizes to both sums, many points at once.
+
+    With rho = |d| they are R^2 / (rho^2 (rho - R)) and R (2 rho - R) / (rho (rho - R))^2.
+    """
+    x = np.zeros(_BLOCK)
+    y = np.zeros(_BLOCK)
+    r = np.zeros(_BLOCK)
+    first = np.zeros(_BLOCK)
+    second = np.zeros(_BLOCK)
+    least = np.zeros(_BLOCK)
+    for start in range(0, tau.shape[0], _BLOCK):
+        count = min(_BLOCK, tau.shape[0] - start)
+        for k in range(count):
+            x[k] = tau[start + k].real
+            y[k] = tau[start + k].imag
+            r[k] = radius[start + k]
+        first[:] = 0.0
+        second[:] = 0.0
+        least[:] = np.inf
+        for j in range(poles.shape[0]):
+            px = poles[j].real
+            py = poles[j].imag
+            g = sizes[j]
+            for k in range(count):
+                dx = x[k] - px
+                dy = y[k] - py
+                square = dx * dx + dy * dy
+                rho = math.sqrt(square)
+                gap = rho - r[k]
+                q = 1.0 / (square * gap)
+                first[k] += g * q
+                second[k] += g * (rho + gap) * q / gap
+                least[k] = min(least[k], gap)
+        for k in range(count):
+            is_free = least[k] > 0.0
+            sums[0][start + k] += r[k] * r[k] * first[k] if is_free else np.inf
+            sums[1][start + k] += r[k] * second[k] if is_free else np.inf
+
+
+@njit(cache=True, error_model="numpy")
 def variation(  # noqa: PLR0913, PLR0917 - compiled, so that the parts of a field are passed one by one
     tau: ComplexArray,
     radius: FloatArray,
@@ -138,12 +187,14 @@ def variation(  # noqa: PLR0913, PLR0917 - compiled, so that the parts of a fiel
     n = tau.shape[0]
     value = np.zeros(n)
     slope = np.zeros(n)
+    sizes = np.abs(strengths)
+    if kappa == 0.0:
+        plain_variation(tau, radius, poles, sizes, (value, slope))
     for i in range(n):
-        for j in range(poles.shape[0]):
+        for j in range(poles.shape[0] if kappa > 0.0 else 0):
             v, s = simple_bounds(tau[i] - poles[j], radius[i], kappa)
-            g = abs(strengths[j])
-            value[i] += g * v
-            slope[i] += g * s
+            value[i] += sizes[j] * v
+            slope[i] += sizes[j] * s
         for k in range(centres.shape[0]):
             v, s = multipole_bounds(tau[i] - centres[k], radius[i], kappa, moments[k])
             value[i] += v

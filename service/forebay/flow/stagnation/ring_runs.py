@@ -13,15 +13,17 @@ import numpy as np
 
 from forebay.flow.arrays import BoolArray, ComplexArray, FloatArray, IntArray
 from forebay.flow.model import FlowModel
+from forebay.flow.ring_track import Opening, RingTrack, opening_of
 from forebay.flow.sheets.mesh import Mesh
 from forebay.flow.sheets.ring import EdgeKind
-from forebay.flow.stagnation.ring_track import Opening, RingTrack, opening_of
 from forebay.flow.stagnation.slits import TIP
 
 _PARTS = 0.5 + 0.5 * np.array([-0.995, -0.9, -0.6, -0.2, 0.2, 0.6, 0.9, 0.995])
 """Where the sign is looked at on every element [-]."""
 _STEPS = 0.5 ** np.arange(1, 31)
 """Distances from an element on the wall at which it is looked at too, over the sheets' size there [-]."""
+_NEAREST = 1e-10
+"""The least of these over the length of the ring, a thousand roundings of places on it [-]."""
 _UNIFORM = -2
 """Group of elements of which neither component is zero."""
 
@@ -103,21 +105,29 @@ def _places(track: RingTrack, openings: list[Opening]) -> _Places:
 def _beside(track: RingTrack, opening: Opening) -> _Places:
     """Places before and behind an opening; the run before it ends at the nearest one."""
     size = 2.0 * float(np.abs(track.mesh.half[track.elements(np.array([opening.low]))])[0])
-    span = opening.high - opening.low
+    least = _margin(track, opening)
     steps = size * _STEPS
-    steps = steps[steps > TIP * span] if span > 0.0 else steps
-    before = np.concatenate([opening.low - steps, [opening.low - TIP * span]])
-    behind = np.concatenate([[opening.high + TIP * span], opening.high + steps[::-1]])
-    speed = np.full(before.size + behind.size, np.nan)
+    steps = np.append(steps[steps > least], least)
+    before, behind = opening.low - steps, opening.high + steps[::-1]
+    speed = np.full(2 * steps.size, np.nan)
+    if opening.low == opening.high:
+        before, behind = np.append(before, opening.low), np.insert(behind, 0, opening.high)
+        known = opening.toward * inf
+        speed = np.concatenate([np.full(steps.size, np.nan), [known, -known], np.full(steps.size, np.nan)])
     last = np.zeros(speed.size, dtype=np.bool_)
     last[before.size - 1] = True
-    if span == 0.0:
-        speed[before.size - 1 : before.size + 1] = opening.toward * inf, -opening.toward * inf
     return _Places(track.wrapped(np.concatenate([before, behind])), speed, last)
 
 
+def _margin(track: RingTrack, opening: Opening) -> float:
+    """Distance from an opening below which nothing is looked at [m]."""
+    return float(max(TIP * (opening.high - opening.low), _NEAREST * track.length))
+
+
 def _within(track: RingTrack, opening: Opening, s: FloatArray) -> BoolArray:
-    """Whether places lie inside an opening, its tips included but for their outer edge."""
-    tip = 0.5 * TIP * (opening.high - opening.low)
-    inside = track.wrapped(s - opening.low + tip) if track.closed else s - opening.low + tip
-    return np.asarray((inside > 0.0) & (inside < opening.high - opening.low + 2.0 * tip), dtype=np.bool_)
+    """Whether places lie inside an opening or next to it; the very place of a point element does not."""
+    margin = 0.5 * _margin(track, opening)
+    beyond = s - opening.low + margin
+    inside = track.wrapped(beyond) if track.closed else beyond
+    within = (inside > 0.0) & (inside < opening.high - opening.low + 2.0 * margin)
+    return np.asarray(within & (s != track.wrapped(np.array([opening.low]))[0]), dtype=np.bool_)

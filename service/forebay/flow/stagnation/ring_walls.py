@@ -16,7 +16,7 @@ from math import inf
 
 import numpy as np
 
-from forebay.flow.arrays import FloatArray, IntArray
+from forebay.flow.arrays import ComplexArray, FloatArray, IntArray
 from forebay.flow.model import FlowModel
 from forebay.flow.sheets.mesh import Mesh
 from forebay.flow.stagnation.ring_runs import Run, runs_of
@@ -52,7 +52,7 @@ def _flips(model: FlowModel, mesh: Mesh, run: Run) -> list[Flip]:
     here = np.flatnonzero(changes)
     if here.size == 0:
         return []
-    places = np.array([_refined(model, mesh, run, int(k), int(following[k])) for k in here])
+    places = _refined(model, mesh, run, (here, following[here]))
     standing, partner = _standing(run, here)
     names = [mesh.rings[mesh.ring[e]].edges[mesh.edge[e]] for e in run.element[here]]
     sizes = 2.0 * np.abs(mesh.half[run.element[here]])
@@ -64,18 +64,16 @@ def _flips(model: FlowModel, mesh: Mesh, run: Run) -> list[Flip]:
     ]
 
 
-def _refined(model: FlowModel, mesh: Mesh, run: Run, a: int, b: int) -> complex:
-    """Where the sign changes between two places; the vertex if they lie on different edges."""
-    if mesh.edge[run.element[a]] != mesh.edge[run.element[b]]:
-        return complex(mesh.end[run.element[a]])
-    low, high, sign = complex(run.z[a]), complex(run.z[b]), np.sign(run.speed[a])
+def _refined(model: FlowModel, mesh: Mesh, run: Run, between: tuple[IntArray, IntArray]) -> ComplexArray:
+    """Where signs change between places, shape (n,) [m]; the vertex if they lie on different edges."""
+    a, b = between
+    low, high, sign = run.z[a], run.z[b], np.sign(run.speed[a])
     for _ in range(_BISECTIONS):
         middle = 0.5 * (low + high)
-        if middle in (low, high):
-            break
-        value = (model.velocity(np.array([middle]))[0] * run.turn[a]).real
-        low, high = (middle, high) if value * sign > 0.0 else (low, middle)
-    return 0.5 * (low + high)
+        ahead = (model.velocity(middle) * run.turn[a]).real * sign > 0.0
+        low, high = np.where(ahead, middle, low), np.where(ahead, high, middle)
+    at_vertex = mesh.edge[run.element[a]] != mesh.edge[run.element[b]]
+    return np.where(at_vertex, mesh.end[run.element[a]], 0.5 * (low + high))
 
 
 def _standing(run: Run, here: IntArray) -> tuple[FloatArray, IntArray]:

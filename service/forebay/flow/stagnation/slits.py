@@ -18,9 +18,9 @@ from forebay.flow.arrays import BoolArray, ComplexArray, FloatArray, IntArray
 from forebay.flow.features import Line
 from forebay.flow.lines import LineTerm
 from forebay.flow.model import FlowModel
+from forebay.flow.ring_track import Opening, mesh_of, opening_of
 from forebay.flow.segments import Segment
 from forebay.flow.stagnation.field import BoundedField
-from forebay.flow.stagnation.ring_track import Opening, mesh_of, opening_of
 from forebay.flow.stagnation.turning import Disc, turning
 
 TIP = 1e-7

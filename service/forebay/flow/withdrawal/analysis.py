@@ -29,10 +29,10 @@ from forebay.flow.withdrawal.result import (
     WithdrawalStatus,
 )
 from forebay.flow.withdrawal.sectors import (
-    FINEST,
     Sector,
     Source,
     Tally,
+    finest_of,
     probes,
     released,
     sectors_between,
@@ -175,7 +175,7 @@ def _error(flow: _Flow, mouthful: _Mouthful, counted: Tally) -> float:
     strengths += sum(abs(line.flux) * abs(line.end - line.start) for line in model.lines)
     left_open = (2.0 * mouthful.arrivals.error + counted.error) / mouth.total
     left_open += _LINE_ROUNDING if mouth.passed_through else 0.0
-    left_open += FINEST if counted.bisected else 0.0
+    left_open += finest_of(model, mouth) / mouth.total if counted.bisected else 0.0
     if model.bound is not None:
         divides = max(1, mouthful.arrivals.coordinates.size)
         left_open += 2.0 * divides * model.bound.absolute / mouth.total

@@ -28,6 +28,8 @@ PROBES: FloatArray = np.array([0.03, 0.4142, 0.97])
 _PARTS = 8
 FINEST = 1e-10
 """Bisection: parts per round and width, as part of the total, at which it ends [-]."""
+_OF_BOUND = 1e-2
+"""The same over the bound of psi that solved walls leave, if that is more [-]."""
 _SLIVER = 1e-6
 """Flux next to a divide found by bisection, over the total, that may remain unresolved [-]."""
 _NODES = (12, 20)
@@ -212,7 +214,7 @@ def _switches(
     """Coordinates at which the signature changes within a sector, with the signature beyond each."""
     if ends[0] == ends[1]:
         return []
-    if sector.flux <= FINEST * mouth.total:
+    if sector.flux <= finest_of(source.model, mouth):
         return [(0.5 * (sector.low + sector.high), ends[1])]
     places = sector.at(np.linspace(0.0, 1.0, _PARTS + 1))
     told = [ends[0], *source.signatures(source.trace(mouth, places[1:-1])), ends[1]]
@@ -220,6 +222,12 @@ def _switches(
     for a, b, left, right in zip(places[:-1], places[1:], told[:-1], told[1:], strict=True):
         found += _switches(source, mouth, Sector(float(a), float(b)), (left, right))
     return found
+
+
+def finest_of(model: FlowModel, mouth: Mouth) -> float:
+    """Flux between which and a divide bisection ends [m2/s]: below the error of solved walls it finds noise."""
+    bound = 0.0 if model.bound is None else model.bound.absolute
+    return max(FINEST * mouth.total, _OF_BOUND * bound)
 
 
 def _flux_by_origin(

@@ -12,6 +12,9 @@ from forebay.flow.model import FlowModel
 from forebay.flow.sheets.mesh import Mesh
 from forebay.flow.sheets.term import SheetTerm
 
+_AT_NODE = 1e-12
+"""Distance from the end of an element, over the ring's length, that is at it [-]."""
+
 
 @dataclass(frozen=True, eq=False)
 class RingTrack:
@@ -54,6 +57,34 @@ class RingTrack:
         element = self.elements(s)
         ahead = s - self._starts[element - self._first]
         return np.asarray(self.mesh.start[element] + ahead * self.mesh.direction[element])
+
+    def length_at(self, element: int, z: complex) -> float:
+        """Length along the ring at the place of an element nearest to z [m]."""
+        arm = (z - self.mesh.start[element]) * np.conj(self.mesh.direction[element])
+        own = element - self._first
+        return float(self._starts[own] + np.clip(arm.real, 0.0, self._starts[own + 1] - self._starts[own]))
+
+    def inward(self, s: float) -> complex:
+        """Unit vector into the water, at a vertex halfway between its edges."""
+        element = int(self.elements(np.array([s]))[0])
+        own = element - self._first
+        ends = np.abs(self._starts[own : own + 2] - s) <= _AT_NODE * self.length
+        if ends.any():
+            return complex(self.mesh.inward[element, int(np.argmax(ends))])
+        return complex(1j * self.mesh.direction[element])
+
+    def cuts(self, a: float, b: float) -> FloatArray:
+        """From a to b with the ends of elements between, a < b; on a closed ring they may run past it [m]."""
+        rounds = (
+            np.arange(np.floor(a / self.length), np.floor(b / self.length) + 1.0) if self.closed else [0.0]
+        )
+        nodes = np.concatenate([self._starts[:-1] + k * self.length for k in rounds])
+        return np.concatenate([[a], nodes[(nodes > a) & (nodes < b)], [b]])
+
+    def way(self, a: float, b: float) -> ComplexArray:
+        """Places from a to b along the ring, with all ends of elements between [m]."""
+        cuts = self.cuts(min(a, b), max(a, b))
+        return self.places(self.wrapped(cuts if a <= b else cuts[::-1]))
 
     def spread(self, parts: FloatArray) -> FloatArray:
         """Lengths at the same parts of every element, parts in (0, 1), ascending [m]."""
