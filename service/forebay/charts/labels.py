@@ -4,7 +4,10 @@ from collections.abc import Iterable, Sequence
 from dataclasses import dataclass, field
 from math import cos, hypot, pi, sin
 
+import numpy as np
+
 from forebay.charts.sheet import Box
+from forebay.flow.arrays import FloatArray
 
 DIRECTIONS = 16
 """Directions from its anchor in which a label is tried."""
@@ -84,13 +87,13 @@ def place_labels(wishes: Iterable[Wish], ground: Ground) -> tuple[list[Placed], 
 def candidates(wish: Wish, ground: Ground) -> list[tuple[float, Box]]:
     """Places inside the frame with their prices."""
     spots = []
+    points = np.array(ground.lines, dtype=np.float64).reshape(-1, 2)
     for distance in DISTANCES:
         for direction in range(DIRECTIONS):
             box = box_beside(wish, distance * ground.scale, 2 * pi * direction / DIRECTIONS)
             if box.within(ground.frame):
-                covered = sum(inside(box, point) for point in ground.lines)
                 dislike = PREFERRED.get(direction, OTHERWISE)
-                spots.append((distance + dislike + COVERING * covered, box))
+                spots.append((distance + dislike + COVERING * covered(box, points), box))
     return spots
 
 
@@ -114,6 +117,12 @@ def box_beside(wish: Wish, distance: float, angle: float) -> Box:
 def inside(box: Box, point: tuple[float, float]) -> bool:
     """Whether a point lies in a box."""
     return box.left <= point[0] <= box.right and box.top <= point[1] <= box.bottom
+
+
+def covered(box: Box, points: FloatArray) -> int:
+    """How many points, shape (n, 2), lie in a box, its edges included."""
+    x, y = points.T
+    return int(np.count_nonzero((box.left <= x) & (x <= box.right) & (box.top <= y) & (y <= box.bottom)))
 
 
 def distance_to(box: Box, point: tuple[float, float]) -> float:
