@@ -127,14 +127,19 @@ def stagnation_words(told: Told) -> list[str]:
     return [f"{counted(search.found_count, 'stagnation point')}, {closed}"]
 
 
+def line_about(title: str, noun: str, texts: Sequence[str]) -> list[str]:
+    """One line with what is told of the first things of a kind, the rest counted; none without any."""
+    if not texts:
+        return []
+    rest = len(texts) - MOST_NAMED
+    more = f"; {counted(rest, f'further {noun}')}" if rest > 0 else ""
+    return [f"{title}: {'; '.join(texts[:MOST_NAMED])}{more}."]
+
+
 def spill_lines(told: Told) -> list[str]:
     """What reaches intakes of each of the first releases, and when."""
     releases = (told.result["spill"] or {}).get("releases", ())
-    if not releases:
-        return []
-    rest = len(releases) - MOST_NAMED
-    more = f"; {counted(rest, 'further release')}" if rest > 0 else ""
-    return [f"Spills: {'; '.join(release_text(release) for release in releases[:MOST_NAMED])}{more}."]
+    return line_about("Spills", "release", [release_text(release) for release in releases])
 
 
 def release_text(release: Json) -> str:
@@ -148,32 +153,22 @@ def release_text(release: Json) -> str:
 
 def screen_lines(told: Told, verdicts: Sequence[Json]) -> list[str]:
     """Largest approach velocity of each of the first screens, and the limits it meets."""
-    screens = (told.result["screen"] or {}).get("screens", ())
-    if not screens:
-        return []
     texts = [
         f"{screen['element']} approach at most {told.write(screen['max_approach'], 'm/s')}, "
         f"{met_text(screen['element'], 'screen', verdicts)}"
-        for screen in screens[:MOST_NAMED]
+        for screen in (told.result["screen"] or {}).get("screens", ())
     ]
-    rest = len(screens) - MOST_NAMED
-    more = f"; {counted(rest, 'further screen')}" if rest > 0 else ""
-    return [f"Screens: {'; '.join(texts)}{more}."]
+    return line_about("Screens", "screen", texts)
 
 
 def submergence_lines(told: Told, verdicts: Sequence[Json]) -> list[str]:
     """Submergence of each of the first inlets, and the rules that it meets."""
-    inlets = (told.result["submergence"] or {}).get("inlets", ())
-    if not inlets:
-        return []
     texts = [
         f"{inlet['name']} {told.write(inlet['submergence'], 'm')} deep, "
         f"{met_text(inlet['name'], 'submergence', verdicts)}"
-        for inlet in inlets[:MOST_NAMED]
+        for inlet in (told.result["submergence"] or {}).get("inlets", ())
     ]
-    rest = len(inlets) - MOST_NAMED
-    more = f"; {counted(rest, 'further inlet')}" if rest > 0 else ""
-    return [f"Submergence: {'; '.join(texts)}{more}."]
+    return line_about("Submergence", "inlet", texts)
 
 
 def met_text(subject: str, part: str, verdicts: Sequence[Json]) -> str:

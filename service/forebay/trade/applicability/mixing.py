@@ -2,7 +2,7 @@
 
 import math
 from collections.abc import Iterator
-from dataclasses import dataclass, replace
+from dataclasses import dataclass
 
 from forebay.flow.arrivals.release import AtPoint, Release
 from forebay.flow.arrivals.result import Arrival, ReleaseArrivals, ReleaseStatus, Tail
@@ -138,9 +138,9 @@ def spill_notices(
 ) -> tuple[ApplicabilityWarning, ...]:
     """Warnings of the answer to a spill, the most serious first; paths start at the request."""
     mixing = Mixing.of(layout, data)
-    raised = [_of(ADVECTION_ONLY, _sentence(ADVECTION_ONLY), ())]
+    raised = [ADVECTION_ONLY.raised_in_request(_sentence(ADVECTION_ONLY), ())]
     if any(answer.arrivals or answer.transits for answer in answers):
-        raised.append(_of(ARRIVAL_SPREAD, _sentence(ARRIVAL_SPREAD), ()))
+        raised.append(ARRIVAL_SPREAD.raised_in_request(_sentence(ARRIVAL_SPREAD), ()))
     for index, (release, answer) in enumerate(zip(releases, answers, strict=True)):
         path = ("releases", index)
         raised += _about_divides(layout, mixing, release, answer, path)
@@ -157,23 +157,23 @@ def _about_divides(
     layout: Layout, mixing: Mixing, release: Release, answer: ReleaseArrivals, path: Path
 ) -> Iterator[ApplicabilityWarning]:
     if answer.status is ReleaseStatus.ON_DIVIDING_STREAMLINE:
-        yield _of(ON_DIVIDE, f"{answer.name!r}: {ON_DIVIDE.meaning}.", path)
+        yield ON_DIVIDE.raised_in_request(f"{answer.name!r}: {ON_DIVIDE.meaning}.", path)
         return
     if any(arrival.tail is Tail.UNBOUNDED for arrival in answer.arrivals):
-        yield _of(ENDLESS_TAIL, f"{answer.name!r}: {ENDLESS_TAIL.meaning}.", path)
+        yield ENDLESS_TAIL.raised_in_request(f"{answer.name!r}: {ENDLESS_TAIL.meaning}.", path)
     intakes = [element for element in layout.elements if isinstance(element, Sink | LineSink)]
     if not isinstance(release.place, AtPoint) or not intakes or mixing.current == 0.0:
         return
     way = min(distance_to(intake, release.place.at) for intake in intakes)
     sigma = mixing.spread(way / mixing.current)
     if answer.divide_distance < sigma:
-        yield _of(
-            NEAR_DIVIDE,
+        yield NEAR_DIVIDE.raised_in_request(
             f"{answer.name!r} is {answer.divide_distance:.2g} m from a dividing streamline, less than "
             f"turbulence spreads it ({sigma:.2g} m) over the {way:.3g} m to the nearest intake: either fate "
             "is possible.",
             path,
-            (answer.divide_distance, sigma),
+            value=answer.divide_distance,
+            limit=sigma,
         )
 
 
@@ -186,31 +186,24 @@ def _about_arrival(
     sigma, way = mixing.spread(arrival.median_time), mixing.current * arrival.median_time
     limit = STRIP_SHARE * intake.discharge / (layout.depth * mixing.current)
     if sigma > limit:
-        yield _of(
-            SPILL_STRIP_BLURRED,
+        yield SPILL_STRIP_BLURRED.raised_in_request(
             f"Until it reaches {arrival.at!r} turbulence spreads {answer.name!r} by {sigma:.2g} m across the "
             f"current, more than a quarter ({limit:.2g} m) of the strip drawn: the share is not sharp.",
             path,
-            (sigma, limit),
+            value=sigma,
+            limit=limit,
         )
     if isinstance(layout.shore, Channel):
         length = mixing_length(release, layout, layout.shore, mixing.coefficient, mixing.current)
         if way > length:
-            yield _of(
-                SPILL_MIXED,
+            yield SPILL_MIXED.raised_in_request(
                 f"Water from {answer.name!r} drifts about {way:.3g} m to {arrival.at!r}; after {length:.3g} "
                 "m a spill from there is mixed over the width, and streamlines no longer tell where it goes.",
                 path,
-                (way, length),
+                value=way,
+                limit=length,
             )
 
 
 def _sentence(kind: WarningKind) -> str:
     return f"{kind.meaning[0].upper()}{kind.meaning[1:]}."
-
-
-def _of(
-    kind: WarningKind, message: str, path: Path, compared: tuple[float, float] | None = None
-) -> ApplicabilityWarning:
-    value, limit = compared or (None, None)
-    return replace(kind.raised(message, path, value=value, limit=limit), in_layout=False)

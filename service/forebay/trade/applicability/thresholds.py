@@ -1,7 +1,6 @@
 """Thresholds of exposure whose publication was not read."""
 
 from collections.abc import Iterator, Sequence
-from dataclasses import replace
 
 from forebay.trade.applicability.site import Site
 from forebay.trade.applicability.warning import ApplicabilityWarning, Severity, WarningKind
@@ -28,4 +27,4 @@ def from_memory(thresholds: Sequence[Threshold]) -> tuple[ApplicabilityWarning, 
     if not unread:
         return ()
     message = f"From memory, not from the publication itself: {', '.join(unread)}."
-    return (replace(THRESHOLD_FROM_MEMORY.raised(message, ("exposure",)), in_layout=False),)
+    return (THRESHOLD_FROM_MEMORY.raised_in_request(message, ("exposure",)),)

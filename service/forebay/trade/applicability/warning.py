@@ -1,6 +1,6 @@
 """What a warning is: an entry of the catalogue, and its occurrence at a site."""
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from enum import StrEnum
 
 from forebay.flow.errors import Path
@@ -60,3 +60,9 @@ class WarningKind:
         return ApplicabilityWarning(
             self.code, self.severity, message, path, value, limit, self.source, unit=unit
         )
+
+    def raised_in_request(
+        self, message: str, path: Path = (), *, value: float | None = None, limit: float | None = None
+    ) -> ApplicabilityWarning:
+        """The same with a path from the request."""
+        return replace(self.raised(message, path, value=value, limit=limit), in_layout=False)

@@ -1,7 +1,6 @@
 """What has to be said with the numbers of a screen."""
 
 from collections.abc import Iterator
-from dataclasses import replace
 
 from forebay.flow.errors import Path
 from forebay.trade.applicability.warning import ApplicabilityWarning, Severity, WarningKind
@@ -86,7 +85,9 @@ def screen_notices(
 ) -> tuple[ApplicabilityWarning, ...]:
     """Warnings of a check of screens; paths start at the request. depth : of the water [m]."""
     return (
-        _of(REGULATOR_DECIDES, "Verdicts are a screening: the regulator and licensed engineers decide.", ()),
+        REGULATOR_DECIDES.raised_in_request(
+            "Verdicts are a screening: the regulator and licensed engineers decide.", ()
+        ),
         *remembered(limits),
         *(notice for index, flow in enumerate(flows) for notice in _of_screen(flow, index, depth)),
     )
@@ -97,25 +98,21 @@ def remembered(limits: tuple[Limit, ...]) -> Iterator[ApplicabilityWarning]:
     for limit in limits:
         if limit.confidence == Confidence.FROM_MEMORY:
             message = f"{limit.criterion!r} is listed from memory: read {limit.source} before relying on it."
-            yield _of(CRITERION_FROM_MEMORY, message, ("criteria", limit.index))
+            yield CRITERION_FROM_MEMORY.raised_in_request(message, ("criteria", limit.index))
 
 
 def _of_screen(flow: ScreenFlow, index: int, depth: float) -> Iterator[ApplicabilityWarning]:
     path: Path = ("screens", index)
     name, height = flow.screen.name, flow.screen.height
     if flow.basis is Basis.CALCULATED:
-        yield _of(DRAW_LEFT_OUT, f"{name!r}: {DRAW_LEFT_OUT.meaning}.", path)
+        yield DRAW_LEFT_OUT.raised_in_request(f"{name!r}: {DRAW_LEFT_OUT.meaning}.", path)
     else:
-        yield _of(FLUX_TAKEN_AS_EVEN, f"{name!r}: {FLUX_TAKEN_AS_EVEN.meaning}.", path)
+        yield FLUX_TAKEN_AS_EVEN.raised_in_request(f"{name!r}: {FLUX_TAKEN_AS_EVEN.meaning}.", path)
     if height > depth:
         message = f"{name!r} is {height:g} m high in water of {depth:g} m: right only for a leaning face."
-        yield _of(SCREEN_HIGHER_THAN_WATER, message, (*path, "height"), height, depth)
+        yield SCREEN_HIGHER_THAN_WATER.raised_in_request(
+            message, (*path, "height"), value=height, limit=depth
+        )
     if flow.min_approach < 0.0:
         message = f"Water leaves through part of {name!r}, at up to {-flow.min_approach:.3g} m/s."
-        yield _of(WATER_LEAVES_SCREEN, message, path, flow.min_approach, 0.0)
-
-
-def _of(
-    kind: WarningKind, message: str, path: Path, value: float | None = None, limit: float | None = None
-) -> ApplicabilityWarning:
-    return replace(kind.raised(message, path, value=value, limit=limit), in_layout=False)
+        yield WATER_LEAVES_SCREEN.raised_in_request(message, path, value=flow.min_approach, limit=0.0)

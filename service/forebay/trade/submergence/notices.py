@@ -1,7 +1,6 @@
 """What has to be said with the numbers of an inlet."""
 
 from collections.abc import Iterator
-from dataclasses import replace
 
 from forebay.flow.errors import Path
 from forebay.trade.applicability.warning import ApplicabilityWarning, Severity, WarningKind
@@ -59,7 +58,7 @@ def inlet_notices(checks: tuple[InletCheck, ...]) -> tuple[ApplicabilityWarning,
     """Warnings of a check of inlets; paths start at the request."""
     message = "Submergence rules are a screening: the intake's designer and the pump's maker decide."
     return (
-        _of(REGULATOR_DECIDES, message, ()),
+        REGULATOR_DECIDES.raised_in_request(message, ()),
         *_remembered(checks),
         *(notice for index, check in enumerate(checks) for notice in _of_inlet(check, index)),
     )
@@ -71,7 +70,7 @@ def _remembered(checks: tuple[InletCheck, ...]) -> Iterator[ApplicabilityWarning
     for rule in rules.values():
         if rule.standing is Standing.FROM_MEMORY:
             message = f"{rule.id!r} is listed from memory: read {rule.source} before relying on it."
-            yield _of(CRITERION_FROM_MEMORY, message, ("allow_from_memory",))
+            yield CRITERION_FROM_MEMORY.raised_in_request(message, ("allow_from_memory",))
 
 
 def _of_inlet(check: InletCheck, index: int) -> Iterator[ApplicabilityWarning]:
@@ -83,25 +82,23 @@ def _of_inlet(check: InletCheck, index: int) -> Iterator[ApplicabilityWarning]:
                 f"{inlet.name!r} has {found.available:.3g} m of water over its {found.datum.value}; "
                 f"{found.rule.id} asks for {found.required:.3g} m."
             )
-            yield _of(SUBMERGENCE_SHORT, message, path, found.available, found.required)
+            yield SUBMERGENCE_SHORT.raised_in_request(
+                message, path, value=found.available, limit=found.required
+            )
     if check.rings and inlet.circulation is None:
-        yield _of(SWIRL_UNDERESTIMATED, f"{inlet.name!r}: {SWIRL_UNDERESTIMATED.meaning}.", path)
+        yield SWIRL_UNDERESTIMATED.raised_in_request(f"{inlet.name!r}: {SWIRL_UNDERESTIMATED.meaning}.", path)
     if vortex is not None and vortex.draws_air:
         message = (
             f"A vortex of {abs(vortex.circulation):.3g} m2/s with a core of {vortex.core_radius:.2g} m would "
             f"lower the surface over {inlet.name!r} by {vortex.burgers_dip:.3g} m, down to the inlet."
         )
-        yield _of(AIR_COULD_BE_DRAWN, message, path, vortex.burgers_dip, inlet.submergence)
+        yield AIR_COULD_BE_DRAWN.raised_in_request(
+            message, path, value=vortex.burgers_dip, limit=inlet.submergence
+        )
     if band is not None and not band.contains(inlet.velocity):
         bound = band.least if inlet.velocity < band.least else band.largest
         message = (
             f"{inlet.velocity:.3g} m/s at the bell of {inlet.name!r}; "
             f"the band is {band.least:g} to {band.largest:g} m/s."
         )
-        yield _of(VELOCITY_OUT_OF_BAND, message, path, inlet.velocity, bound)
-
-
-def _of(
-    kind: WarningKind, message: str, path: Path, value: float | None = None, limit: float | None = None
-) -> ApplicabilityWarning:
-    return replace(kind.raised(message, path, value=value, limit=limit), in_layout=False)
+        yield VELOCITY_OUT_OF_BAND.raised_in_request(message, path, value=inlet.velocity, limit=bound)
