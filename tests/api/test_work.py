@@ -18,11 +18,13 @@ from forebay.api.operation import Job
 from forebay.api.outcome import Reply
 from forebay.api.prefer import patience_in
 from forebay.api.problems import Problem
+from forebay.api.readiness import Readiness
 from forebay.api.routers.registry import OPERATIONS
 from forebay.api.work import Workshop
 from forebay.app import create_app
 from forebay.settings import Settings
 from support.http import SAMPLE, a_sample, assert_problem, example
+from support.running import eventually
 
 LENGTHY = a_sample(at={"grid": {"x": [0, 1], "nx": 1000, "y": [10, 11], "ny": 900}})
 """Takes a good part of a second, far longer than the deadline below."""
@@ -91,6 +93,16 @@ def test_not_ready_before_the_kernels_are():
     assert_problem(response, 503, "not-ready")
     assert response.headers["retry-after"] == "1"
     assert client.get("/livez").status_code == 200
+
+
+def test_limits_below_an_example_leave_it_out_of_the_preparation(monkeypatch, caplog):
+    monkeypatch.setattr("forebay.api.readiness.rehearsals", lambda operation: [example(operation)])
+    app = create_app(Settings(workers=1, max_elements=1))
+    only = {"sampleField": OPERATIONS["sampleField"]}
+    app.state.readiness = Readiness(app.state.workshop, only)
+    with TestClient(app) as client:
+        eventually(lambda: client.get("/readyz").status_code == 200, 120.0)
+    assert "sampleField is not prepared" in caplog.text
 
 
 def test_failed_preparation_keeps_the_service_not_ready(monkeypatch, caplog):

@@ -30,6 +30,8 @@ class Running:
         self.port = free_port(0)
         self.address = f"http://{LOOPBACK}:{self.port}"
         self.log = log
+        # made once: a client takes as long as many requests; a connection serves one request
+        self.client = httpx2.Client(timeout=PATIENCE, limits=httpx2.Limits(max_keepalive_connections=0))
         variables = {f"FOREBAY_{name.upper()}": value for name, value in settings.items()}
         command = [sys.executable, "-m", "forebay", "serve", "--port", str(self.port)]
         with log.open("wb") as sink:
@@ -41,9 +43,11 @@ class Running:
         """Wait until it says so: its workers prepare nothing any more."""
         deadline = time.monotonic() + START
         while not (self.is_alive() and self.get("/readyz").status_code == 200):
-            assert self.process.poll() is None, self.log.read_text(encoding="utf-8")[-3000:]
+            log = self.log.read_text(encoding="utf-8")
+            assert self.process.poll() is None, log[-3000:]
+            assert '"preparation failed"' not in log, log[-3000:]
             assert time.monotonic() < deadline
-            time.sleep(0.05)
+            time.sleep(0.2)
 
     def is_alive(self) -> bool:
         """Whether it listens and answers."""
@@ -56,11 +60,11 @@ class Running:
         """Answer to a body."""
         content = body if isinstance(body, bytes) else orjson.dumps(body)
         sent = {"Content-Type": "application/json", "Origin": "https://tool.example", **headers}
-        return httpx2.post(self.address + path, content=content, headers=sent, timeout=PATIENCE)
+        return self.client.post(self.address + path, content=content, headers=sent)
 
     def get(self, path: str, **headers: str) -> httpx2.Response:
         """Answer to a GET."""
-        return httpx2.get(self.address + path, headers=headers, timeout=PATIENCE)
+        return self.client.get(self.address + path, headers=headers)
 
     def connect(self) -> socket.socket:
         """A bare connection."""
@@ -99,6 +103,7 @@ class Running:
 
     def stop(self) -> None:
         """End it, whatever state it is in."""
+        self.client.close()
         self.process.kill()
         self.process.wait()
 

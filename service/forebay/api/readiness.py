@@ -12,7 +12,9 @@ from forebay.api.examples import rehearsals
 from forebay.api.media import JSON
 from forebay.api.operation import Job, Operation, perform
 from forebay.api.outcome import Reply
+from forebay.api.problems import Problem
 from forebay.api.work import Workshop
+from forebay.flow.errors import TooLargeError
 
 LONGEST_COMPILATION = 600.0
 """Longest first run of one example [s]: on a fresh machine it compiles its kernels."""
@@ -75,6 +77,9 @@ class Readiness:
         media_type = operation.media_types[0]
         job = Job(operation, body, media_type)
         reply = await self._workshop.in_process(job, deadline=LONGEST_COMPILATION)
+        if isinstance(reply, Problem) and reply.code == TooLargeError.code:
+            LOG.warning("%s is not prepared: its example exceeds the limits", operation.operation_id)
+            return
         if JSON in operation.media_types:  # pictures are drawn in worker processes only
             work = partial(perform, operation, body, media_type, limits=self._workshop.limits)
             await self._workshop.in_thread(work)
