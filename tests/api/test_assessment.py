@@ -138,20 +138,22 @@ def test_the_summary_has_ten_lines_at_most(ready_client):
 
 
 DEAD_END = {"kind": "dead-end", "point": [0, -20], "along": [1, 0], "width": 40}
+BASIN = {"kind": "basin", "corner": [0, -20], "along": [1, 0], "length": 60, "width": 40}
 
 
 @pytest.mark.parametrize(
-    ("shore", "words"),
+    ("shore", "given", "words"),
     [
         # 2 m3/s in 40 m by 4 m
-        (DEAD_END, "current through open ends up to 0.0125 m/s"),
-        ({"kind": "channel", "point": [0, -20], "along": [1, 0], "width": 40}, "current far upstream 0 m/s"),
+        (DEAD_END, [], "current through open ends up to 0.0125 m/s"),
+        (DEAD_END | {"kind": "channel"}, [], "current far upstream 0 m/s"),
+        (BASIN, [{"kind": "source", "name": "outfall", "at": [30, 0], "discharge": 2.0}], "no open end"),
     ],
-    ids=["dead-end", "channel"],
+    ids=["dead-end", "channel", "basin"],
 )
-def test_the_summary_tells_the_current_where_the_water_has_one(ready_client, shore, words):
+def test_the_summary_tells_the_current_where_the_water_has_one(ready_client, shore, given, words):
     intake = {"kind": "sink", "name": "intake", "at": [10, 0], "discharge": 2.0}
-    layout = {"depth": 4.0, "shore": shore, "elements": [intake]}
+    layout = {"depth": 4.0, "shore": shore, "elements": [intake, *given]}
     assert words in assessed(ready_client, layout=layout)["result"]["summary"][0]
 
 

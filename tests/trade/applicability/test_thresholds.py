@@ -60,16 +60,17 @@ def case(code, at, site_at, raised, wording, **more):
     return Case(code, at, lambda x: list(RULE[code](site_at(x))), raised, wording, **more)
 
 
+def told_case(code, at, words, site_at, raised, wording, **more):
+    """A threshold at which a rule says something else."""
+    return Case(
+        code, at, lambda x: [w for w in RULE[code](site_at(x)) if words in w.message], raised, wording, **more
+    )
+
+
 def wake_case(at, words, raised, wording, limit, body=None):
     """A threshold of the shallow-wake number: one of its three kinds of wake."""
-    return Case(
-        "shallow-wake",
-        at,
-        lambda x: [w for w in RULE["shallow-wake"](wake(x, body)) if words in w.message],
-        raised,
-        wording,
-        limit,
-        at,
+    return told_case(
+        "shallow-wake", at, words, partial(wake, body=body), raised, wording, limit=limit, value=at
     )
 
 
@@ -104,6 +105,7 @@ SITES = [
     # compact openings: "mid-depth intake: r < h; bed or surface intake: r < 2 h"
     case("near-field-overlap", 8.0, pair, BELOW, "r < 2 h", limit=8.0),
     case("near-field-result", 8.0, asked, BELOW, "r < 2 h", limit=8.0),
+    told_case("near-field-result", 4.0, "wherever it opens", asked, BELOW, "r < h", limit=8.0, value=4.0),
     case(
         "near-field-overlap",
         stated("near-field-overlap", pair(1.0, data=OPENING)),

@@ -26,10 +26,8 @@ def walls_part(boundary: Json | None, units: Mapping[str, str], place_of: Callab
     )
 
 
-def bounds_table(solved: Json | None, units: Mapping[str, str]) -> Html:
+def bounds_table(solved: Json, units: Mapping[str, str]) -> Html:
     """How far off the stream function can be: everywhere, and between the banks and each island."""
-    if solved is None:
-        return Html()
     length = units["x"]
     worst = solved["worst"]
     place = f"{worst['ring']} ({figure(worst['x'], 6)}, {figure(worst['y'], 6)}) {length}".rstrip()
