@@ -104,7 +104,15 @@ def test_what_is_said_with_the_numbers():
 
 @pytest.mark.parametrize(
     ("discharge", "least", "largest"),
-    [(0.3149, 0.6, 2.7), (0.3151, 0.9, 2.4), (1.2599, 0.9, 2.4), (1.2601, 1.2, 2.1)],
+    # "below 315 L/s", "315 to 1260 L/s", "above 1260 L/s": both ends are in the middle band
+    [
+        (0.315 * (1 - 1e-9), 0.6, 2.7),
+        (0.315, 0.9, 2.4),
+        (0.315 * (1 + 1e-9), 0.9, 2.4),
+        (1.26 * (1 - 1e-9), 0.9, 2.4),
+        (1.26, 0.9, 2.4),
+        (1.26 * (1 + 1e-9), 1.2, 2.1),
+    ],
 )
 def test_velocity_bands_change_at_their_discharges(discharge, least, largest):
     # 315 and 1260 L/s (from memory)

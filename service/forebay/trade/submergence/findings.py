@@ -2,7 +2,6 @@
 
 from collections.abc import Iterator
 from dataclasses import dataclass
-from math import inf
 
 from forebay.trade.submergence.inlet import Inlet, InletKind
 from forebay.trade.submergence.rules import Standing
@@ -10,8 +9,11 @@ from forebay.trade.submergence.vortex import Vortex
 
 INSTITUTE = "ANSI/HI 9.8"
 
-BELL_BANDS = ((0.315, 0.6, 2.7), (1.26, 0.9, 2.4), (inf, 1.2, 2.1))
-"""Largest discharge [m3/s], least and largest velocity at the bell [m/s]; from memory."""
+BELL_BANDS = ((0.6, 2.7), (0.9, 2.4), (1.2, 2.1))
+"""Least and largest velocity at the bell [m/s] of small, middling and large pumps; from memory."""
+
+MIDDLING_FROM, MIDDLING_UP_TO = 0.315, 1.26
+"""Discharges of middling pumps, both included [m3/s]; from memory."""
 
 BELL_VELOCITY = 1.7
 """Recommended velocity at a bell [m/s]; from memory."""
@@ -54,7 +56,7 @@ def band_of(inlet: Inlet, *, from_memory: bool) -> Band | None:
     """Velocity band of a bell; None for other inlets, and where nothing from memory is wanted."""
     if inlet.kind is not InletKind.BELL or not from_memory:
         return None
-    least, largest = next((low, high) for up_to, low, high in BELL_BANDS if inlet.discharge <= up_to)
+    least, largest = BELL_BANDS[(inlet.discharge >= MIDDLING_FROM) + (inlet.discharge > MIDDLING_UP_TO)]
     return Band(least, largest, BELL_VELOCITY)
 
 
