@@ -44,8 +44,8 @@ _ABREAST = 1e-6
 """Distance ahead to a line element, over its length, within which a line beside its plane is there [-]."""
 _CLOSED = 1e-10
 """Flux between a line and its own seed, over the strengths, below which the line has closed [-]."""
-_JOINING = 1e-2
-"""Flux between a line and a wall, over the bound of the stream function, below which it can meet it [-]."""
+_STUCK = 1e-10
+"""Step over the scale of the layout below which a line may have run into a wall that was solved for [-]."""
 _WALKS = 64
 """Ways along walls after which a line is not carried on."""
 _TINY = float(np.finfo(np.float64).tiny)
@@ -142,7 +142,7 @@ class _Run:
         self._record(good)
         index = self._bound_steps()
         closed = self._closed(before)
-        ashore = lines.index[stride.ashore]
+        ashore = lines.index[stride.ashore | (lines.step < _STUCK * self.model.scale)]
         stay = self._reach_lines()
         self._stop(index[stay], closed[stay])
         if self.surroundings.shoreline is not None and ashore.size:
@@ -154,10 +154,9 @@ class _Run:
         near = np.flatnonzero(ashore & (lines.walks < _WALKS))
         if near.size == 0:
             return
-        flux = np.abs(self.model.rings_set.distance(lines.z[near]) * lines.w[near])
-        allowed = _JOINING * (self.model.bound.absolute if self.model.bound else 0.0)
+        flux = self.model.rings_set.gap(lines.z[near]) * np.abs(lines.w[near])
         stay = np.ones(lines.index.size, dtype=np.bool_)
-        for i, part in zip(near[flux <= allowed], flux[flux <= allowed], strict=True):
+        for i, part in zip(near, flux, strict=True):
             walk = shoreline.follow(complex(lines.z[i]), self.sense, float(part))
             if walk is not None:
                 stay[i] = self._walk(int(i), walk)

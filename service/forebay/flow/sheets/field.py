@@ -31,9 +31,8 @@ from forebay.flow.shores import Frame
 ABSCISSAE, _WEIGHTS = np.polynomial.legendre.leggauss(NODES)
 _VANDER = np.asarray(np.polynomial.legendre.legvander(ABSCISSAE, DEGREE), dtype=np.float64)
 _STEP = 2.0
-"""How far a point on an end of an element is moved off it over the distance that counts as on it [-]."""
-_ROUNDING = 1e-3
-"""Distance from an end within which it is, over the distance that counts as on an element [-]."""
+"""How far a point on an end of an element is moved off it over the distance that counts as on it [-]: there
+its neighbours would be seen from a side each."""
 Values = FloatArray | np.ndarray[tuple[int, ...], np.dtype[np.floating]]
 _SLOPES = np.asarray(
     np.polynomial.legendre.legval(ABSCISSAE, np.polynomial.legendre.legder(np.eye(DEGREE + 1))).T
@@ -143,7 +142,7 @@ class Panels:
             return z
         ends = self.middle - self.half, self.middle + self.half
         steps = _STEP * self.lip * self.inward
-        return np.asarray(off_nodes(np.ascontiguousarray(z), ends, steps, self.tree, _ROUNDING * self.lip))
+        return np.asarray(off_nodes(np.ascontiguousarray(z), ends, steps, self.tree, self.lip))
 
     @cached_property
     def tree(self) -> Tree:

@@ -225,7 +225,7 @@ def _switches(
 
 
 def finest_of(model: FlowModel, mouth: Mouth) -> float:
-    """Flux between which and a divide bisection ends [m2/s]: below the error of solved walls it finds noise."""
+    """Flux beside a divide at which bisection ends [m2/s]: below the error of solved walls it finds noise."""
     bound = 0.0 if model.bound is None else model.bound.absolute
     return max(FINEST * mouth.total, _OF_BOUND * bound)
 
