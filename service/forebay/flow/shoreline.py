@@ -21,7 +21,8 @@ from forebay.flow.sheets.mesh import Mesh
 from forebay.flow.sheets.ring import EdgeKind
 from forebay.flow.traces import Stop
 
-_NODES, _WEIGHTS = np.polynomial.legendre.leggauss(6)
+_NODES, _WEIGHTS = np.polynomial.legendre.leggauss(5)
+"""None of these are the six at which elements have their poles."""
 _JOINING = 1e-2
 """Flux between a streamline and a wall, over the bound of psi, below which it can run into the wall [-]."""
 _ON = 10.0
@@ -32,6 +33,8 @@ _DOUBT = 15.0
 """The same over the distance within which the stagnation point is known [-]."""
 _TIP = 1e-6
 """Distance from the end of an element on a wall, over its length, that is at its end [-]."""
+_STILL = 1e-6
+"""Speed along a wall, over its mean on the way, below which it counts as that much [-]."""
 _BEYOND = 1e-6
 """Distance from the end of a wall on a bank at which water goes on along the bank, over the scale [-]."""
 
@@ -159,13 +162,16 @@ class Shoreline:
         return best
 
     def _time(self, track: RingTrack, a: float, b: float) -> float:
-        """Time from a to b along a ring at the speed along the wall, six places on every element [s]."""
+        """Time from a to b along a ring at the speed along the wall, five places on every element [s].
+
+        In a corner the wall itself stands still; what passes it has some speed.
+        """
         edges = track.cuts(min(a, b), max(a, b))
         half = 0.5 * np.diff(edges)
         s = track.wrapped((edges[:-1] + half)[:, None] + half[:, None] * _NODES)
         element = track.elements(s.ravel())
         speed = np.abs((self.model.velocity(track.places(s.ravel())) * self.mesh.direction[element]).real)
-        speed = np.maximum(speed, np.finfo(np.float64).tiny).reshape(s.shape)
+        speed = np.maximum(speed, _STILL * float(speed.mean())).reshape(s.shape)
         return float(np.sum(half[:, None] * _WEIGHTS / speed))
 
 

@@ -98,8 +98,9 @@ def find_influence_zone(layout: Layout, enquiry: Enquiry) -> InfluenceZone:
     -------
     InfluenceZone. `induced` is the length of the difference between the velocities with and without the
     element, the ambient current unchanged; `total` the speed itself, other elements' zones in the window
-    included. In the plane every box is proven inside or outside by bounds of the velocity; in three
-    dimensions bounds come from corners and are estimates.
+    included. In the plane every box is proven inside or outside by bounds of the velocity, but for boxes
+    across walls that were solved for; there, and in three dimensions, bounds come from corners and are
+    estimates.
 
     Raises
     ------
@@ -119,7 +120,8 @@ def find_influence_zone(layout: Layout, enquiry: Enquiry) -> InfluenceZone:
             break
         half *= 2.0
         zone, touches = enclose(half)
-    return _described(zone, enquiry, layout.depth, middle, (half, touches))
+    found = _described(zone, enquiry, layout.depth, middle, (half, touches))
+    return replace(found, is_certified=found.is_certified and not model.rings)
 
 
 def _named(layout: Layout, name: str) -> Sink | Source | LineSink | LineSource:

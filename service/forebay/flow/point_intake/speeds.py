@@ -12,10 +12,15 @@ from forebay.flow.stagnation.field import BoundedField
 
 MARGIN = 1.5
 """Factor on the largest difference from the centre among a box's corners [-]."""
+_CLEAR = 3.0
+"""Distance to a place without a velocity, over a box's radius, at which corners tell the box [-]."""
 
 
 def plane_speeds(model: FlowModel, without: FlowModel | None = None) -> Look:
-    """Speeds of a depth-mean flow over boxes, with proven bounds.
+    """Speeds of a depth-mean flow over boxes, with proven bounds but for boxes across solved walls.
+
+    Nothing is proven in a disc that a solved wall crosses, though the velocity there is bounded: such boxes
+    are told by their corners and sides, as in three dimensions, unless a place without a velocity is near.
 
     without : a second flow to be subtracted as a vector, so that what remains is what the two differ by
     """
@@ -27,9 +32,33 @@ def plane_speeds(model: FlowModel, without: FlowModel | None = None) -> Look:
         discs = [field.discs(z, radius) for field in fields]
         velocity = discs[0].velocity - (discs[1].velocity if without is not None else 0.0)
         spread = np.sum([disc.spread(radius) for disc in discs], axis=0)
+        if model.rings:
+            blind = ~np.isfinite(spread) & _crosses_wall(model, z, radius)
+            velocity[blind], spread[blind] = _sampled((model, without), z[blind], half)
         return _speeds(model, z, radius, np.abs(velocity), np.where(np.isfinite(spread), spread, np.inf))
 
     return look
+
+
+def _crosses_wall(model: FlowModel, z: ComplexArray, radius: FloatArray) -> BoolArray:
+    """Whether discs meet a ring and no place without a velocity."""
+    places = model.singular_places[np.isfinite(model.singular_places)]
+    near = np.min(np.abs(z[:, None] - places), axis=1, initial=np.inf)
+    return np.asarray((np.abs(model.rings_distance(z)) <= radius) & (near > _CLEAR * radius))
+
+
+def _sampled(
+    models: tuple[FlowModel, FlowModel | None], z: ComplexArray, half: FloatArray
+) -> tuple[ComplexArray, FloatArray]:
+    """Mean velocity of the wet ones of nine places of a box [m/s], and `MARGIN` times what they differ."""
+    steps = [complex(i * half[0], j * half[1]) for i in (-1, 0, 1) for j in (-1, 0, 1)]
+    at = z[:, None] + np.array(steps)
+    wet = models[0].wet(at)
+    velocity = models[0].velocity(at) - (0.0 if models[1] is None else models[1].velocity(at))
+    count = np.maximum(wet.sum(axis=1), 1)
+    mean = np.where(wet, velocity, 0.0).sum(axis=1) / count
+    apart = np.where(wet, np.abs(velocity - mean[:, None]), 0.0).max(axis=1, initial=0.0)
+    return mean, np.where(wet.any(axis=1), MARGIN * apart, np.inf)
 
 
 def near_field_speeds(field: NearField, without: FlowModel | None = None) -> Look:

@@ -25,15 +25,15 @@ def search_model(model: FlowModel, window: Window | None = None) -> StagnationSe
     """
     if model.is_rational:
         found = _search_rational(model)
-        return found if window is None else _restricted(found, window)
+        return found if window is None else restricted(found, window)
     region = default_region(model) if window is None else region_of(model, window)
     if region.size == 0.0:  # the window lies on land
         return StagnationSearch((), 0, 0, complete=True, method=SearchMethod.WINDING, degree=0, weight=0)
     found = _search_general(model, region)
-    return found if window is None else _restricted(found, window)
+    return found if window is None else restricted(found, window)
 
 
-def _restricted(found: StagnationSearch, window: Window) -> StagnationSearch:
+def restricted(found: StagnationSearch, window: Window) -> StagnationSearch:
     """The points that lie in a window; where nothing is missing in all, nothing is missing in the window."""
     points = tuple(point for point in found.points if window.contains(point.at))
     missing = found.expected_count - found.found_count
