@@ -66,8 +66,36 @@ RINGED: dict[str, Any] = {
 }
 """A small site within rings."""
 
-ON_RINGS = frozenset({"sampleField", "integrateContour"})
-"""Operations rehearsed within rings: they take the kernels of solved walls; searches there take long."""
+LINED: tuple[dict[str, Any], ...] = tuple(
+    {
+        "depth": 3.0,
+        **shore,
+        "elements": [
+            {"kind": "sink", "name": "intake", "at": [20, 8], "discharge": 1.0},
+            {"kind": "source", "name": "outfall", "at": [5, 30], "discharge": 0.6},
+            {"kind": "line-sink", "name": "screen bay", "from": [30, 0], "to": [36, 0], "discharge": 0.4},
+        ],
+    }
+    for shore in (
+        {"shore": {"kind": "corner", "vertex": [0, 0], "along": [1, 0], "interior_angle_deg": 110}},
+        {
+            "tolerance": 1e-3,
+            "ambient": {"velocity": [0.4, 0.0]},
+            "shore": {"kind": "straight-bank", "point": [0, 0], "along": [1, 0]},
+            "structures": [
+                {"kind": "outline", "name": "groyne", "points": [[10, 0], [12, 0], [12, 8], [10, 8]]}
+            ],
+        },
+    )
+)
+"""Small sites with a line element in the corner of two banks, and on a bank beside a groyne."""
+
+MORE_SITES: dict[str, tuple[dict[str, Any], ...]] = {
+    "sampleField": (RINGED,),
+    "integrateContour": (RINGED, *LINED),
+    "searchStagnation": LINED,
+}
+"""Sites on which an operation is rehearsed too, for kernels that no other takes."""
 
 OF_NAMED_ELEMENTS = frozenset({"findInfluenceZone", "checkScreen", "checkSubmergence", "computeArrivals"})
 """Operations whose example names elements of its own site, so that no other can stand in for it."""
@@ -78,7 +106,7 @@ def rehearsals(operation_id: str) -> list[dict[str, Any]]:
     example = request_example(operation_id)
     if "layout" not in example or operation_id in OF_NAMED_ELEMENTS:
         return [example]
-    layouts = (OPEN_WATER, CHANNEL, RINGED) if operation_id in ON_RINGS else (OPEN_WATER, CHANNEL)
+    layouts = (OPEN_WATER, CHANNEL, *MORE_SITES.get(operation_id, ()))
     return [example | {"layout": layout} for layout in layouts]
 
 

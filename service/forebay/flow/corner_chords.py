@@ -41,5 +41,6 @@ def _monotone(
     root = np.sqrt(np.maximum(half**2 - square * (np.abs(a) ** 2 - radius**2), 0.0))
     outwards = np.abs(end - corner.vertex) >= np.abs(start - corner.vertex)
     part = np.where(outwards[:, None], root - half, -root - half) / np.where(square > 0.0, square, 1.0)
-    crossing = corner.forward(a + corner.vertex + np.clip(part, 0.0, 1.0) * span).imag
+    height = corner.forward(a + corner.vertex + np.clip(part, 0.0, 1.0) * span).imag
+    crossing = np.ascontiguousarray(height)  # one layout, for which the kernel is compiled beforehand
     return field.chords(corner.forward(start), corner.forward(end), owner_count=columns, crossing=crossing)
