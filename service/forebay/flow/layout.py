@@ -191,12 +191,25 @@ class Island:
 
 
 @dataclass(frozen=True, slots=True)
+class Stretch:
+    """Land with a name of its own, a jetty that has grown out of a bank, say.
+
+    ring : 0 for the outer ring, k for the k-th island;  edges : as `OpenEdge.first`, in any order
+    """
+
+    name: str
+    ring: int
+    edges: tuple[int, ...]
+
+
+@dataclass(frozen=True, slots=True)
 class Surveyed:
     """Water within a polygon; `outer` anticlockwise, x + iy [m], so that water lies left of every ring."""
 
     outer: tuple[complex, ...]
     islands: tuple[Island, ...] = ()
     edges: tuple[OpenEdge, ...] = ()
+    stretches: tuple[Stretch, ...] = ()
 
 
 Shore = OpenWater | StraightBank | Channel | Corner | DeadEnd | Basin | Surveyed

@@ -1,5 +1,7 @@
 """Rings of a layout: its surveyed shore, and the outlines among its structures."""
 
+from dataclasses import replace
+
 import numpy as np
 
 from forebay.flow.arrays import IntArray
@@ -41,7 +43,7 @@ def rings_of(layout: Layout, frame: Frame, scale: float) -> tuple[Ring, ...]:
         rings.append(_outer(layout.shore))
         paths.append(("shore",))
         for k, island in enumerate(layout.shore.islands):
-            rings.append(_island(island))
+            rings.append(_named(_island(island), layout.shore, k + 1, island.points))
             paths.append(("shore", "islands", k))
     first = len(layout.elements) + 1
     for k, structure in enumerate(layout.structures):
@@ -111,19 +113,27 @@ def _outer(shore: Surveyed) -> Ring:
             if names[k % points.size] != BANK:
                 raise UnsolvableBoundaryError("the open edge overlaps another", ("shore", "edges", j))
             names[k % points.size], kinds[k % points.size] = edge.name, _KINDS[edge.profile]
-    _check_edges(shore, names)
+    _check_edges(shore, kinds)
     order = sorted(shore.edges, key=lambda edge: edge.profile is not EdgeProfile.EQUIPOTENTIAL)
     turn = order[0].first % points.size if order else 0
     names, kinds = names[turn:] + names[:turn], kinds[turn:] + kinds[:turn]
     vertices = np.roll(points, -turn)
-    return Ring(BANK, vertices, closed=True, edges=tuple(names), kinds=tuple(kinds), is_solid=False, owner=0)
+    ring = Ring(BANK, vertices, closed=True, edges=tuple(names), kinds=tuple(kinds), is_solid=False, owner=0)
+    return _named(ring, shore, 0, shore.outer)
 
 
-def _check_edges(shore: Surveyed, names: list[str]) -> None:
+def _named(ring: Ring, shore: Surveyed, number: int, points: tuple[complex, ...]) -> Ring:
+    """A ring with the names of the stretches on it; points : as the shore has them."""
+    named = {points[k]: s.name for s in shore.stretches if s.ring == number for k in s.edges}
+    edges = tuple(named.get(complex(z), name) for z, name in zip(ring.starts, ring.edges, strict=True))
+    return replace(ring, edges=edges)
+
+
+def _check_edges(shore: Surveyed, kinds: list[EdgeKind]) -> None:
     """Between two open edges there is land, where the water between them is parted."""
     for j, edge in enumerate(shore.edges):
-        after = names[(edge.first + edge.count) % len(names)]
-        if after != BANK or edge.count >= len(names):
+        after = kinds[(edge.first + edge.count) % len(kinds)]
+        if after is not EdgeKind.LAND or edge.count >= len(kinds):
             raise UnsolvableBoundaryError(
                 "no land parts the open edge from the next", ("shore", "edges", j, "count")
             )

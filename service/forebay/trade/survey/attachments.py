@@ -8,7 +8,7 @@ import shapely
 
 from forebay.flow.arrays import ComplexArray
 from forebay.flow.errors import OverlappingStructuresError, Path
-from forebay.flow.layout import Island, Layout, OpenEdge, Outline, Surveyed
+from forebay.flow.layout import Island, Layout, OpenEdge, Outline, Stretch, Surveyed
 from forebay.trade.survey.rings import (
     MOST_LOST,
     REACH,
@@ -55,6 +55,7 @@ def attached(shore: Surveyed, structures: tuple[object, ...]) -> Attached:
     """Water less the outlines among `structures` that touch or cross a ring of it."""
     water = polygon_of(np.array(shore.outer), [np.array(island.points) for island in shore.islands])
     reach, merged = REACH * size_of(np.array(shore.outer)), []
+    solids: list[tuple[str, shapely.Polygon]] = []
     for index, outline in enumerate(structures):
         if not isinstance(outline, Outline):
             continue
@@ -62,7 +63,28 @@ def attached(shore: Surveyed, structures: tuple[object, ...]) -> Attached:
         if shapely.distance(water.boundary, solid) <= reach:
             water = _less(water, solid.buffer(reach, join_style="mitre"), ("structures", index))
             merged.append(index)
-    return Attached(_rebuilt(shore, water) if merged else shore, tuple(merged))
+            solids.append((outline.name, solid))
+    if not merged:
+        return Attached(shore, ())
+    rebuilt = _rebuilt(shore, water)
+    return Attached(replace(rebuilt, stretches=_stretches(rebuilt, solids, 2.0 * reach)), tuple(merged))
+
+
+def _stretches(
+    shore: Surveyed, solids: list[tuple[str, shapely.Polygon]], reach: float
+) -> tuple[Stretch, ...]:
+    """Which edges of the rings are those of solids: all of them lies within `reach` of the solid's own."""
+    found = []
+    for number, points in enumerate([shore.outer, *(island.points for island in shore.islands)]):
+        ends = np.array(points, dtype=np.complex128)
+        lines = shapely.linestrings(
+            [[(a.real, a.imag), (b.real, b.imag)] for a, b in zip(ends, np.roll(ends, -1), strict=True)]
+        )
+        for name, solid in solids:
+            beside = shapely.covers(shapely.buffer(solid.exterior, 2.0 * reach), lines)
+            if beside.any():
+                found.append(Stretch(name, number, tuple(np.flatnonzero(beside).tolist())))
+    return tuple(found)
 
 
 def _less(water: shapely.Polygon, solid: shapely.Polygon, path: Path) -> shapely.Polygon:
