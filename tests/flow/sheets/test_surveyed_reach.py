@@ -11,6 +11,10 @@ from pyproj import Transformer
 from forebay.flow.layout import EdgeProfile, Island, Layout, OpenEdge, Sink, Source, Surveyed
 from forebay.flow.model import compile_layout
 from forebay.flow.sheets.memo import MEMO
+from forebay.flow.surroundings import survey
+from forebay.flow.traces import TraceRules
+from forebay.flow.tracing import trace_streamlines
+from forebay.workflows.withdrawal import trace_withdrawal
 
 DATA = Path(__file__).parents[2] / "data" / "east-river-reach.geojson"
 DEPTH = 10.0
@@ -127,3 +131,42 @@ def test_no_flow_through_the_walls_and_round_closed_contours(model):
     wide = centre + 1.0002 * (ring - centre)
     around = model.chord(wide, np.roll(wide, -1)).sum()
     assert abs(around) < 1e-8  # one branch of F, so that differences cancel up to rounding of 1e3 m2/s
+
+
+@pytest.mark.slow
+def test_recirculation_is_that_of_counted_streamlines():
+    """An intake 400 m below an outfall, on the edge of its plume, against flux counted at the outfall."""
+    outfall = Source("outfall", reach_place(), 4.0)
+    alone = compile_layout(Layout(DEPTH, shore=reach(1000.0), elements=(outfall,)))
+    around = survey(alone, np.empty(0, dtype=np.complex128))
+    (edge,) = trace_streamlines(
+        alone,
+        np.array([outfall.at + 3.0 * upstream(alone, outfall.at)]),
+        surroundings=around,
+        rules=TraceRules(tolerance=1e-4, keep_paths=True),
+    ).paths
+    below = edge[np.argmin(np.abs(np.abs(edge - outfall.at) - 400.0))]
+    layout = Layout(DEPTH, shore=reach(1000.0), elements=(outfall, Sink("intake", complex(below), 5.0)))
+    (intake,) = trace_withdrawal(layout).intakes
+    assert intake.status == "ok"
+    model = compile_layout(layout)
+    around = survey(model, np.empty(0, dtype=np.complex128))
+    site, count = around.sites.named("outfall"), 400
+    turns = np.exp(2j * np.pi * (np.arange(count) + 0.5) / count)
+    seeds = outfall.at + 1e-2 * around.sites.radius[site] * turns  # equal angles are equal fluxes there
+    traces = trace_streamlines(model, seeds, surroundings=around, rules=TraceRules(tolerance=1e-4))
+    taken = sum(name == "intake" for name in traces.names)
+    assert 0.1 < taken / count < 0.9
+    # counting is right to a streamline at each of two divides, equal angles to 1e-2 of half a percent
+    assert intake.recirculation_share == pytest.approx(4.0 / 5.0 * taken / count, abs=0.8 * (2.5 / count))
+
+
+def reach_place():
+    """In the middle of the eastern channel."""
+    return 511.0 + 473.0j
+
+
+def upstream(model, z):
+    """Unit vector against the flow."""
+    velocity = np.conj(model.velocity(np.array([z + 50.0]))[0])
+    return -velocity / abs(velocity)
