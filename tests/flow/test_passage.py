@@ -42,6 +42,12 @@ def test_water_that_passes_elsewhere_misses():
     assert np.isnan(found.dose)
 
 
+def test_still_water_gets_nowhere():
+    found = follow_passage(compile_layout(Layout(2.0)), 0j, 3 + 4j, 10.0)
+    assert (found.status, found.miss) == (PassageStatus.MISSES, 5.0)
+    assert np.isnan(found.time)
+
+
 def test_water_does_not_flow_back():
     found = follow_passage(MODEL, 5 + 6j, -5 + 6j, 0.1)
     assert found.status is PassageStatus.MISSES

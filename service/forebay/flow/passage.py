@@ -83,6 +83,8 @@ def follow_passage(model: FlowModel, start: complex, target: complex, within: fl
     beyond = far_field_of(model, np.append(surroundings.sites.at, places))  # both places lie this side of it
     surroundings = replace(surroundings, far=beyond)
     traces = trace_streamlines(model, places[:1], surroundings=surroundings, rules=rules)
+    if traces.paths[0].size < 2:  # still water goes nowhere, however near the target is
+        return Passage(PassageStatus.MISSES, miss=abs(target - start), end=traces.stops[0])
     path, times = _cut(model, traces.paths[0], traces.path_times[0], target)
     miss = float(abs(path[-1] - target))
     if miss > within:
