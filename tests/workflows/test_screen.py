@@ -268,7 +268,9 @@ def test_face_over_two_edges_in_a_line_draws_as_over_one():
     bound = compile_layout(AT_QUAY).bound
     assert bound is not None
     # the walls are met to far less in the middle of an edge: what is left comes from its ends, 4 m off
-    np.testing.assert_allclose(next(speeds), next(speeds), atol=2.0 * float(bound.velocity(np.array([4.0]))[0]))
+    np.testing.assert_allclose(
+        next(speeds), next(speeds), atol=2.0 * float(bound.velocity(np.array([4.0]))[0])
+    )
 
 
 BENT = Outline("quay", (10 + 0j, 30 + 0j, 30 + 4j, 20 + 4.000002j, 10 + 4j))
