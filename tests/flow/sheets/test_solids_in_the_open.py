@@ -124,6 +124,33 @@ def test_polygon_is_a_pier_on_every_shore(name):
     assert np.abs(chords[:-1]).max() < 1e-12
 
 
+@pytest.mark.parametrize("stands", ["free", "on the bank"])
+@pytest.mark.parametrize("name", SHORES)
+def test_velocity_is_the_slope_of_the_potential_beside_long_edges(name, stands):
+    """F and W are summed by different kernels, and beside an element both take its integral for its nodes."""
+    shore, at = SHORES[name]
+    middle = at if stands == "free" else complex(abs(at.real), 1.0)
+    square = tuple(middle + corner for corner in (-1 - 1j, 1 - 1j, 1 + 1j, -1 + 1j))
+    discharge = 3.0 if name == "basin" else 2.0
+    elements = (Sink("s", middle + 4, 3.0), Source("t", middle + 6 + 1j, discharge))
+    ambient = Ambient(1 + 0j if name == "channel" else 0j)
+    model = compile_layout(
+        Layout(1.0, ambient=ambient, shore=shore, elements=elements, structures=(Outline("p", square),))
+    )
+    z = middle + np.array([1.1, 1.5, 2.5, 1.2 + 0.5j, 1.2j, 2j, -1.3, -1.08 + 0.2j, 1.3 + 1.3j])
+    ahead = 0.05 + 0.02j
+    nodes, weights = np.polynomial.legendre.leggauss(12)
+    inner = z[:, None] + ahead * 0.5 * (1.0 + nodes)
+    quadrature = (model.velocity(inner.ravel()).reshape(inner.shape) @ weights) * 0.5 * ahead
+    chords = model.chord(z, z + ahead)
+    # rounding: sums of some 1e3 terms of the size of the ambient speed
+    assert np.abs(chords - quadrature).max() < 1e-11
+    step = 1e-5
+    slope = (model.velocity(z + step) - model.velocity(z - step)) / (2.0 * step)
+    # central difference: step^2 times the third derivative, 1e2 at the nearest corner; rounding 1e-15 / step
+    assert np.abs(model.jet(z).slope - slope).max() < 1e-6
+
+
 def test_polygon_beside_a_bank_is_a_pier():
     """Schwarz's alternating method in 80-bit floats for a circle and its image."""
     pier = Pier("p", 2 + 1.4j, 1.0, 0.4)

@@ -30,6 +30,8 @@ _STACK = 64
 
 Chart = tuple[int, complex, complex]
 """Kind, rate (multiple of z or of the logarithm), vertex [m]."""
+Kernel = tuple[Chart, bool]
+"""Chart, and whether it is W that is asked for: then X stands beside the slope of the chart."""
 Elements = tuple[ComplexArray, ComplexArray, FloatArray]
 """Middles [m] and 1 / half [1/m] of elements, shape (m,), and nodes in [-1, 1], shape (q,)."""
 Density = tuple[ComplexArray, ComplexArray, ComplexArray]
@@ -106,14 +108,15 @@ def charted(z: complex, step: complex, chart: Chart) -> tuple[complex, complex, 
 
 @njit(cache=True, error_model="numpy")
 def element_integral(
-    z: complex, zeta: complex, e: int, elements: Elements, density: Density, chart: Chart
+    z: complex, zeta: complex, e: int, elements: Elements, density: Density, kernel: Kernel
 ) -> tuple[complex, complex, complex, complex]:
     """Integral of a density less 1/(z - t) at the nodes, without (i / pi), and its derivative.
 
-    Then the sum over the nodes of the shore's kernel and its derivative. In a plain chart nothing is taken
-    out of the integral, and that sum is zero.
+    Then the sum over the nodes of the shore's kernel, X or X dtau/dz, and of the derivative of the latter. In
+    a plain chart nothing is taken out of the integral, and those sums are zero.
     """
     _, rate, nodes = elements
+    chart, of_velocity = kernel
     coefficients, nodal, weights = density
     degree = coefficients.shape[1]
     q = np.empty(degree, np.complex128)
@@ -124,7 +127,7 @@ def element_integral(
     for n in range(degree):
         part += coefficients[e, n] * q[n]
         bend += coefficients[e, n] * dq[n]
-    kernel = 0j
+    whole = 0j
     curve = 0j
     if chart[0] != PLAIN:
         for j in range(nodes.shape[0]):
@@ -133,9 +136,9 @@ def element_integral(
             bend += nodal[e, j] * u * u
             d, first, second = charted(z, (zeta - nodes[j]) / rate[e], chart)
             x = periodic_kernel(d)
-            kernel += weights[e, j] * x
+            whole += weights[e, j] * (x * first if of_velocity else x)
             curve += weights[e, j] * ((0.25 - x * x) * first * first + x * second)
-    return part, bend * rate[e], kernel, curve
+    return part, bend * rate[e], whole, curve
 
 
 @njit(cache=True, error_model="numpy")
@@ -143,7 +146,7 @@ def near_sums(
     seen: tuple[ComplexArray, ComplexArray, IntArray, float],
     elements: Elements,
     density: Density,
-    chart: Chart,
+    kernel: Kernel,
     image: Image,
     tree: Tree,
 ) -> tuple[ComplexArray, ComplexArray, ComplexArray, ComplexArray]:
@@ -155,7 +158,7 @@ def near_sums(
     Returns
     -------
     shape (n,) each: integrals and their derivatives; sums of the image's poles and of their derivatives, to
-    be taken away. Of a density of W the first are W and dW/dz if the kernel's weights are those of W.
+    be taken away. Of a density of W the first are W and dW/dz.
     """
     z, tau, own, lip = seen
     poles, weights, allowed = image
@@ -185,10 +188,10 @@ def near_sums(
                 zeta = place_of(z[i] - middle[e], rate[e], reach)
                 if zeta.real * zeta.real + zeta.imag * zeta.imag > NEAR * NEAR or not allowed[e]:
                     continue
-                part, bend, kernel, curve = element_integral(z[i], zeta, e, elements, density, chart)
-                results[0, i] += complex(-part.imag, part.real) / math.pi + kernel
+                part, bend, whole, curve = element_integral(z[i], zeta, e, elements, density, kernel)
+                results[0, i] += complex(-part.imag, part.real) / math.pi + whole
                 results[1, i] += complex(-bend.imag, bend.real) / math.pi + curve
-                taken, bent = image_sum(tau[i], e, poles, weights, chart[0] == PLAIN)
+                taken, bent = image_sum(tau[i], e, poles, weights, kernel[0][0] == PLAIN)
                 results[2, i] += taken
                 results[3, i] += bent
     return results[0], results[1], results[2], results[3]

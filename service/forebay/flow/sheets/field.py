@@ -197,10 +197,11 @@ def _around(a: int, b: int, centres: ComplexArray, radii: FloatArray) -> tuple[c
 
 @dataclass(frozen=True, eq=False)
 class _Parts:
-    """A density as the kernels take it: see `Density`, and coefficients of all poles, shape (m, r q)."""
+    """A density as the kernels take it, coefficients of all poles, shape (m, r q), and whether it is of W."""
 
     density: Density
     coefficients: ComplexArray
+    of_velocity: bool
 
 
 @dataclass(frozen=True, eq=False)
@@ -224,13 +225,13 @@ class SheetField:
     def _potential_parts(self) -> _Parts:
         nodal = self.density @ _VANDER.T
         density = np.ascontiguousarray(self.density), 0.5 * _WEIGHTS * nodal, self.panels.own_moments(nodal)
-        return _Parts(density, self.panels.moments(nodal))
+        return _Parts(density, self.panels.moments(nodal), of_velocity=False)
 
     @cached_property
     def _velocity_parts(self) -> _Parts:
         nodal, rate = self.slope @ _VANDER[:, :DEGREE].T, self.panels.rate[:, None]
         density = self.slope * rate, 0.5 * _WEIGHTS * nodal * rate, self.panels.own_strengths(nodal)
-        return _Parts(density, self.panels.strengths(nodal))
+        return _Parts(density, self.panels.strengths(nodal), of_velocity=True)
 
     @cached_property
     def strengths(self) -> ComplexArray:
@@ -314,7 +315,8 @@ class SheetField:
         places, weights = (np.ascontiguousarray(a[:, chosen]) for a in (panels.poles, parts.coefficients))
         image = places, weights, rule.allowed  # one layout, for which the kernel is compiled beforehand
         seen = np.ascontiguousarray(rule.image(z)), np.ascontiguousarray(tau), mine, panels.lip
+        kernel = panels.chart, parts.of_velocity
         integral, slope, taken, bent = near_sums(
-            seen, panels.elements, parts.density, panels.chart, image, panels.tree
+            seen, panels.elements, parts.density, kernel, image, panels.tree
         )
         return integral, slope, taken, bent
