@@ -14,6 +14,7 @@ from forebay.flow.layout import (
     Layout,
     Outline,
     Pier,
+    Shore,
     Sink,
     Source,
     StraightBank,
@@ -90,7 +91,7 @@ def test_groyne_on_a_bank_is_half_of_a_free_solid():
     assert error.max() < 1e-3
 
 
-SHORES = {
+SHORES: dict[str, tuple[Shore, complex]] = {
     "channel": (Channel(0j, 1 + 0j, 10.0), 3 + 4j),
     "corner": (Corner(0j, 1 + 0j, np.pi / 2), 5 + 4j),
     "headland": (Corner(0j, 1 + 0j, 1.5 * np.pi), -3 + 4j),
