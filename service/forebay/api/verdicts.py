@@ -84,25 +84,24 @@ def screen_verdict(screen: str, verdict: Mapping[str, Any]) -> Verdict:
 
 def wall_verdict(residual: float) -> Verdict:
     """Whether no water passes the walls of piers."""
-    return {
-        "part": "flow",
-        "subject": "walls of piers",
-        "criterion": OWN,
-        "rule": "velocity through them, over the reference speed",
-        **most(residual, TIGHT_WALL, "1"),
-        "note": "",
-        "source": OWN_SOURCE,
-    }
+    return _of_the_solution(
+        "walls of piers", "velocity through them, over the reference speed", most(residual, TIGHT_WALL, "1")
+    )
 
 
 def solved_wall_verdict(bound: float) -> Verdict:
     """Whether outlines and surveyed shores are solved well enough."""
+    rule = "bound of the stream function's error, over the flow through"
+    return _of_the_solution("outlines and surveyed shores", rule, most(bound, WIDE, "1"))
+
+
+def _of_the_solution(subject: str, rule: str, judged: Verdict) -> Verdict:
     return {
         "part": "flow",
-        "subject": "outlines and surveyed shores",
+        "subject": subject,
         "criterion": OWN,
-        "rule": "bound of the stream function's error, over the flow through",
-        **most(bound, WIDE, "1"),
+        "rule": rule,
+        **judged,
         "note": "",
         "source": OWN_SOURCE,
     }
